@@ -1,0 +1,1 @@
+//! Floor 1: mathematics on numbers only: no names, no text, no tables.

@@ -1,1 +1,3 @@
+//! The program: arguments to a window or a command.
+
 fn main() {}

@@ -3,7 +3,7 @@
 use std::hash::{Hash, Hasher};
 
 /// A finite `f64`. Minus zero is stored as zero, so that equal numbers have equal hashes.
-#[derive(Clone, Copy, PartialEq, PartialOrd, Default)]
+#[derive(Clone, Copy, PartialEq, Default)]
 pub struct Real(f64);
 
 impl Real {
@@ -31,6 +31,12 @@ impl Real {
 }
 
 impl Eq for Real {}
+
+impl PartialOrd for Real {
+    fn partial_cmp(&self, other: &Self) -> Option<std::cmp::Ordering> {
+        Some(self.cmp(other))
+    }
+}
 
 impl Ord for Real {
     fn cmp(&self, other: &Self) -> std::cmp::Ordering {

@@ -1,1 +1,5 @@
-//! Floor 1.
+//! Floor 1: pictures.
+
+/// What is shown.
+#[derive(Clone, Debug, Default)]
+pub struct Figure {}

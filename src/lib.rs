@@ -13,3 +13,5 @@
 //! | 5 | [`cli`] | commands without a window |
 
 pub mod base;
+pub mod export;
+pub mod figure;

@@ -13,6 +13,7 @@
 //! | 5 | [`cli`] | commands without a window |
 
 pub mod base;
+<<<<<<< HEAD
 pub mod cli;
 pub mod eval;
 pub mod export;
@@ -22,3 +23,7 @@ pub mod report;
 pub mod store;
 pub mod study;
 pub mod table;
+=======
+pub mod export;
+pub mod figure;
+>>>>>>> 6fe0d5ddc6da08900bf6641470145d4bc66183fe

@@ -14,6 +14,7 @@
 
 pub mod base;
 pub mod eval;
+pub mod export;
 pub mod figure;
 pub mod numeric;
 pub mod report;

@@ -13,7 +13,6 @@
 //! | 5 | [`cli`] | commands without a window |
 
 pub mod base;
-<<<<<<< HEAD
 pub mod cli;
 pub mod eval;
 pub mod export;
@@ -23,7 +22,3 @@ pub mod report;
 pub mod store;
 pub mod study;
 pub mod table;
-=======
-pub mod export;
-pub mod figure;
->>>>>>> 6fe0d5ddc6da08900bf6641470145d4bc66183fe

@@ -73,8 +73,9 @@ impl Prepared {
     /// About how many bytes this holds beyond the data.
     #[must_use]
     pub fn bytes(&self) -> usize {
-        if Arc::ptr_eq(&self.samples.x, &self.data.samples.x) { 0 } else { matrix_bytes(&self.samples.x) }
-            + matrix_bytes(&self.samples.x) / 4
+        let matrix = matrix_bytes(&self.samples.x);
+        let own = if Arc::ptr_eq(&self.samples.x, &self.data.samples.x) { 0 } else { matrix };
+        own + matrix / 4
     }
 }
 

@@ -52,7 +52,7 @@ pub fn answer(fitted: &Fitted) -> Result<Outcome, Ended> {
     facts.push(Fact::number("penalty added", lift, "", digits, "What a ridge penalty of the chosen strength adds to every eigenvalue: strength times samples, times the ridge share in an elastic net."));
     facts.push(Fact::number("chosen strength", fitted.last.strength, "", digits, "The penalty strength of the final fit."));
     let info = fitted.last.path.info(fitted.last.strength_at);
-    facts.push(Fact::number("effective degrees of freedom", info.effective_df, "", digits, "How many parameters' worth of freedom the predictors use in the final fit."));
+    facts.push(Fact::number("effective degrees of freedom", info.effective_df - 1.0 - fitted.prepared.data.covariate_names.len() as f64, "", digits, "How many parameters' worth of freedom the predictors use in the final fit."));
     facts.push(Fact::number("participation ratio", all.participation_ratio(), "", digits, "How many directions really carry variation: (Σd²)²/Σd⁴ of the eigenvalues d²."));
     // The zero eigenvalues are alike; as many as there are samples are enough to be seen.
     let n_shown = all.eigenvalues.len() + all.n_zero().min(rows.len());

@@ -9,7 +9,7 @@ mod tune;
 pub use nested::{HeldOut, OuterFit, nested, one_split};
 pub use part::{PartFit, fit_part};
 pub use tally::Tally;
-pub use tune::{Tuned, tune};
+pub use tune::{Extended, Reach, Tuned, tune};
 
 use crate::base::work::Cancelled;
 use crate::numeric::choose::Rule;

@@ -88,7 +88,7 @@ pub fn one_split(
     work: &Work<'_>,
 ) -> Result<(OuterFit, Tally), Halt> {
     let tuned = tune(material, procedure, split, purpose, Reach::Chosen, work)?;
-    let predicted = tuned.fit.predict(split.held_out());
+    let predicted = tuned.fit.predict(material, split.held_out());
     let at = tuned.strength_at;
     let n_strengths = tuned.curves.get(tuned.share_at).map(|curve| curve.strengths.len());
     let fit = OuterFit {

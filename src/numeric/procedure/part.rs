@@ -21,7 +21,6 @@ pub struct Learnt<'a> {
     /// All samples, prepared.
     pub samples: Cow<'a, Samples>,
     predictors: PartPredictors<'a>,
-    covariates: &'a Matrix,
     scaling: Scaling,
 }
 
@@ -74,7 +73,7 @@ pub fn learn_part<'a>(
         TrailingScale::UnitVariance => Scaling::UnitVariance,
         TrailingScale::Leave => procedure.scaling,
     };
-    Ok(Learnt { chain, samples, predictors, covariates: material.covariates, scaling })
+    Ok(Learnt { chain, samples, predictors, scaling })
 }
 
 fn nothing_missing(
@@ -182,7 +181,7 @@ pub fn fit_part<'a>(
 impl PartFit<'_> {
     /// The linear predictor of some samples at every strength: rows × strengths.
     #[must_use]
-    pub fn predict(&self, rows: &[usize]) -> Matrix {
-        self.path.predict(self.learnt.predictors(), self.learnt.covariates, rows)
+    pub fn predict(&self, material: &Material<'_>, rows: &[usize]) -> Matrix {
+        self.path.predict(&self.learnt.task(material, &[]), rows)
     }
 }

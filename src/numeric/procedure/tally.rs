@@ -21,10 +21,10 @@ impl Tally {
     /// Counts the solutions of a path.
     pub fn count(&mut self, path: &Path) {
         for at in 0..path.n_points() {
-            let info = path.info(at);
+            let (gap, settled) = path.gap(at);
             self.solutions += 1;
-            self.unsettled += usize::from(!info.settled);
-            self.worst_gap = self.worst_gap.max(info.relative_gap);
+            self.unsettled += usize::from(!settled);
+            self.worst_gap = self.worst_gap.max(gap);
         }
     }
 

@@ -153,7 +153,11 @@ impl Search<'_, '_> {
         let p = learnt.samples.active.iter().filter(|active| **active).count();
         let ratio = ratio.unwrap_or_else(|| usual_ratio(share, rows.len(), p));
         let params = RangeParams { count, ratio };
-        let strengths = learnt.strengths(self.material, rows, share, params)?;
+        let mut strengths = learnt.strengths(self.material, rows, share, params)?;
+        if strengths.is_empty() {
+            // Nothing varies with the outcome: at every strength the model is empty.
+            strengths.push(1.0);
+        }
         drop(learnt);
         let curve = self.errors(share, &strengths, &work.part(0.0..0.7))?;
         let at_weak_end = choose::lowest(&curve.errors) == Some(strengths.len() - 1);
@@ -238,12 +242,12 @@ impl Search<'_, '_> {
             let df = fit.path.info(at).effective_df;
             match self.rule {
                 Rule::ExtendedBic { gamma } => {
-                    choose::extended_bic(losses[at], n, df, p, gamma)
+                    choose::extended_bic(losses[at], n, df - unpenalised, p, gamma)
                 }
                 Rule::GeneralisedCrossValidation
                 | Rule::LowestError
                 | Rule::OneStandardError => {
-                    choose::generalised_cross_validation(losses[at], n, df + unpenalised)
+                    choose::generalised_cross_validation(losses[at], n, df)
                 }
             }
         };
@@ -258,7 +262,7 @@ impl Search<'_, '_> {
 
 /// The mean loss of some rows at every strength, under the sample weights.
 fn mean_losses(material: &Material<'_>, fit: &PartFit<'_>, rows: &[usize]) -> Vec<f64> {
-    let predicted = fit.predict(rows);
+    let predicted = fit.predict(material, rows);
     let weight = |row: usize| material.weights.map_or(1.0, |weights| weights[row]);
     let total: f64 = rows.iter().map(|&row| weight(row)).sum();
     let loss = |at: usize| {
@@ -266,7 +270,7 @@ fn mean_losses(material: &Material<'_>, fit: &PartFit<'_>, rows: &[usize]) -> Ve
         let sum: f64 = rows
             .iter()
             .zip(column.iter())
-            .map(|(&row, &eta)| weight(row) * material.response.loss(row, eta))
+            .map(|(&row, &eta)| weight(row) * material.response.squared_error(row, eta))
             .sum();
         sum / total
     };

@@ -152,7 +152,7 @@ fn strength(facts: &mut Facts, fitted: &Fitted) {
     }
     let info = last.path.info(last.strength_at);
     facts.push(Fact::count("chosen predictors", info.n_chosen, "How many predictors have a coefficient other than zero in the final fit."));
-    facts.push(Fact::number("effective degrees of freedom", info.effective_df, "", Precision::Significant(3), "How many parameters' worth of freedom the predictors use in the final fit."));
+    facts.push(Fact::number("effective degrees of freedom", info.effective_df - 1.0 - fitted.prepared.data.covariate_names.len() as f64, "", Precision::Significant(3), "How many parameters' worth of freedom the predictors use in the final fit."));
 }
 
 fn apparent(fitted: &Fitted) -> Measures {
@@ -256,7 +256,7 @@ fn certificates(facts: &mut Facts, fitted: &Fitted) {
     facts.push(Fact::count("solutions", tally.solutions, "How many penalised fits were computed in all."));
     facts.push(Fact::count("unsettled solutions", tally.unsettled, "How many of them did not reach the solver's tolerance."));
     facts.push(Fact::number("worst gap", tally.worst_gap, "", Precision::Significant(2), "The largest relative duality gap of all solutions: how far the objective can at most be from its minimum, as a share of the objective without predictors."));
-    facts.push(Fact::number("solver tolerance", Params::default().tolerance, "", Precision::Significant(1), "The relative duality gap at which a fit counts as settled."));
+    facts.push(Fact::number("solver tolerance", Params::default().relative_gap, "", Precision::Significant(1), "The relative duality gap at which a fit counts as settled."));
     facts.push(Fact::count("fits checked", tally.proof.n_fits(), "For how many training parts it was checked at run time from which samples their preparation was learnt."));
     facts.push(Fact::count("learned steps checked", tally.proof.n_learned_steps(), "How many learned steps were checked."));
     facts.push(Fact::count("proof violations", tally.proof.n_violations(), "How many of them had been learnt from a sample that was held out."));

@@ -184,7 +184,7 @@ fn final_fit(
     let material = prepared.material();
     let split = Split::everything(analysed);
     let tuned = tune(&material, procedure, &split, "final", Reach::WholeRange, work)?;
-    let predicted = tuned.fit.predict(analysed);
+    let predicted = tuned.fit.predict(&material, analysed);
     let fitted = predicted.column(tuned.strength_at).iter().copied().collect();
     let PartFit { learnt, path } = tuned.fit;
     Ok((

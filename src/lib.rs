@@ -13,3 +13,4 @@
 //! | 5 | [`cli`] | commands without a window |
 
 pub mod base;
+pub mod numeric;

@@ -1,1 +1,28 @@
 //! Floor 1: mathematics on numbers only: no names, no text, no tables.
+
+pub mod active_set;
+pub mod basis;
+pub mod certificate;
+pub mod descent;
+pub mod error;
+pub mod factor;
+pub mod freedom;
+pub mod gaussian;
+pub mod ground;
+pub mod lanes;
+pub mod matrix;
+pub mod panels;
+pub mod path;
+pub mod penalty;
+pub mod predictors;
+pub mod quadratic;
+pub mod range;
+pub mod response;
+pub mod ridge;
+pub mod scan;
+pub mod shortcut;
+pub mod task;
+pub mod working;
+
+#[cfg(test)]
+pub(crate) mod designs;

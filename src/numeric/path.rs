@@ -405,6 +405,14 @@ impl Path {
         all
     }
 
+    /// The relative duality gap of a fit, and whether it is as small as was asked for. Unlike
+    /// [`Path::info`] this never computes anything.
+    #[must_use]
+    pub fn gap(&self, at: usize) -> (f64, bool) {
+        let info = &self.points[at].info;
+        (info.relative_gap, info.settled)
+    }
+
     /// How a fit ended. For the elastic net this computes the effective degrees of freedom, which
     /// takes a small decomposition.
     #[must_use]

@@ -16,7 +16,7 @@ pub struct Predictors {
 
 #[derive(Debug)]
 struct Inner {
-    x: Matrix,
+    x: Arc<Matrix>,
     /// Middle between the smallest and the largest value of each column.
     middle: Vec<f64>,
     /// Half the distance between them; NaN for a column with a value that is not finite.
@@ -30,7 +30,8 @@ impl Predictors {
     /// Values that are not finite are accepted here; a fit that has such a column among its
     /// candidates answers with [`FitError::Number`](crate::numeric::error::FitError::Number).
     #[must_use]
-    pub fn new(x: Matrix) -> Self {
+    pub fn new(x: impl Into<Arc<Matrix>>) -> Self {
+        let x: Arc<Matrix> = x.into();
         let n = x.nrows();
         let (middle, half_range) = if n == 0 {
             (vec![0.0; x.ncols()], vec![0.0; x.ncols()])

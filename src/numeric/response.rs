@@ -1,6 +1,7 @@
 //! The outcome of all samples, and what a linear predictor says about it.
 
 use crate::numeric::error::{FitError, Ingredient};
+use crate::numeric::samples::OutcomeValues;
 use crate::numeric::task::numbers;
 
 /// How times that are equal are counted in the partial likelihood.
@@ -56,6 +57,40 @@ impl Response {
             Self::Classes { class, .. } => class.len(),
             Self::Count { count, .. } => count.len(),
             Self::Time { time, .. } => time.len(),
+        }
+    }
+
+    /// The outcome for steps that are learnt with it.
+    #[must_use]
+    pub fn values(&self) -> Option<OutcomeValues<'_>> {
+        match self {
+            Self::Measured(values) | Self::Count { count: values, .. } => {
+                Some(OutcomeValues::Numbers(values))
+            }
+            Self::Classes { class, .. } => Some(OutcomeValues::Classes(class)),
+            Self::Time { time, event, .. } => Some(OutcomeValues::Times { time, event }),
+            // Such a step would need a copy as numbers; none is there yet.
+            Self::YesNo(_) => None,
+        }
+    }
+
+    /// The weighted mean of a measured outcome over some rows: the prediction of the model
+    /// without predictors. NaN for another kind of outcome.
+    #[must_use]
+    pub fn baseline(&self, rows: &[usize], weights: Option<&[f64]>) -> f64 {
+        let Self::Measured(values) = self else { return f64::NAN };
+        let weight = |row: usize| weights.map_or(1.0, |weights| weights[row]);
+        let total: f64 = rows.iter().map(|&row| weight(row)).sum();
+        rows.iter().map(|&row| weight(row) * values[row]).sum::<f64>() / total
+    }
+
+    /// The squared error of a linear predictor for one sample of a measured outcome; NaN for
+    /// another kind.
+    #[must_use]
+    pub fn squared_error(&self, row: usize, eta: f64) -> f64 {
+        match self {
+            Self::Measured(values) => (values[row] - eta).powi(2),
+            Self::YesNo(_) | Self::Classes { .. } | Self::Count { .. } | Self::Time { .. } => f64::NAN,
         }
     }
 

@@ -17,4 +17,5 @@ pub mod eval;
 pub mod figure;
 pub mod numeric;
 pub mod report;
+pub mod store;
 pub mod study;

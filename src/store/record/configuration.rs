@@ -67,11 +67,8 @@ fn describe(study: &Study, id: CellId, described: &BTreeMap<CellId, Described>) 
     };
     // A cell that this version does not know counts as it stands in the file.
     if let Some(whole) = study.kept().whole(id, &cell.settings)
-        && let Ok(mut value) = serde_json::from_str::<Value>(whole)
+        && let Ok(value) = serde_json::from_str(whole)
     {
-        if let Value::Object(map) = &mut value {
-            let _ = (map.shift_remove("id"), map.shift_remove("title"));
-        }
         return value;
     }
     let link = |id: CellId| match described.get(&id) {

@@ -9,7 +9,7 @@ use crate::store::format::v1::{
 };
 use crate::study::Study;
 use crate::study::cell::{Cell, CellId, Kind};
-use crate::study::kept::{Kept, KeptCell, KeptField};
+use crate::study::kept::{Kept, KeptCell, KeptField, Step};
 use crate::study::ledger::{Ledger, Look, Opening};
 use crate::study::prose::{Piece, Prose};
 use crate::study::settings::Settings;
@@ -20,6 +20,8 @@ use std::collections::BTreeSet;
 
 /// Numbers of cells in a file are at most this, so that there is always a next one.
 const MOST_ID: u32 = 999_999_999;
+
+const LEDGER: &str = "ledger";
 
 /// Reads a study. What cannot be read is kept, shown as such, and told as a problem; only
 /// something that is no study at all is refused.
@@ -50,7 +52,7 @@ pub fn read(
     let title = complain(top.text("title")).unwrap_or_default();
     let next_id = top.read("next-id", |at| at.count().map(|count| count.to_string()));
     let next_id = complain(next_id).and_then(|digits| digits.parse().ok());
-    let ledger = top.get("ledger");
+    let ledger = top.get(LEDGER);
 
     let outlines = outline(
         &entries,
@@ -206,7 +208,7 @@ fn read_cell(entry: &At<'_>, outline: &Outline, reading: &Reading<'_>) -> (Setti
     let stand_in = |words: String, complaint: Complaint| {
         let pieces = vec![Piece::Text(format!("*{words} It is kept as it was.*"))];
         let left = Left {
-            whole: Some(entry.value().to_string()),
+            whole: Some(whole(entry.value())),
             fields: Vec::new(),
             complaint: Some(complaint),
         };
@@ -272,6 +274,19 @@ fn read_cell(entry: &At<'_>, outline: &Outline, reading: &Reading<'_>) -> (Setti
             stand_in(words, Box::new(complaint))
         }
     }
+}
+
+/// A cell in the file's own words, but for its number and title, which the study keeps.
+fn whole(value: &Value) -> String {
+    let mut value = value.clone();
+    if let Value::Object(map) = &mut value {
+        let _ = (map.shift_remove("id"), map.shift_remove("title"));
+    } else {
+        let mut group = Group::default();
+        group.put("was", value);
+        value = group.value();
+    }
+    value.to_string()
 }
 
 /// A remark on fields that are kept without having an effect.
@@ -390,7 +405,11 @@ pub fn write(study: &Study, ledger: &Ledger, file: &dyn Fn(&TableSource) -> Stri
         .iter()
         .map(|cell| write_cell(cell, kept, &writing));
     top.put("cells", Value::Array(cells.collect()));
-    top.put_some("ledger", write_ledger(ledger));
+    let in_ledger = |field: &KeptField| field.path.first() == Some(&Step::Field(LEDGER.to_owned()));
+    let counted = write_ledger(ledger);
+    if counted.is_some() || kept.fields.iter().any(in_ledger) {
+        top.put(LEDGER, counted.unwrap_or_else(|| Group::default().value()));
+    }
     let mut value = top.value();
     // The ledger is only ever appended to, so that its positions stay; cells are not part of this.
     put_back(&mut value, &kept.fields, Positions::AsRead);
@@ -399,13 +418,15 @@ pub fn write(study: &Study, ledger: &Ledger, file: &dyn Fn(&TableSource) -> Stri
 
 fn write_cell(cell: &Cell, kept: &Kept, writing: &Writing<'_>) -> Value {
     if let Some(whole) = kept.whole(cell.id, &cell.settings)
-        && let Ok(mut value) = serde_json::from_str::<Value>(whole)
+        && let Ok(Value::Object(fields)) = serde_json::from_str(whole)
     {
-        if let Value::Object(map) = &mut value {
-            let _ = map.insert("id".to_owned(), cell.id.number().into());
-            let _ = map.insert("title".to_owned(), cell.title.clone().into());
+        let mut group = Group::default();
+        group.put("id", cell.id.number());
+        group.put("title", cell.title.clone());
+        for (name, value) in fields {
+            group.put(&name, value);
         }
-        return value;
+        return group.value();
     }
     let mut group = Group::default();
     group.put("id", cell.id.number());

@@ -236,7 +236,14 @@ impl Paragraph {
     /// The same paragraph with one entry of a fact that is a table. An entry that the fact does
     /// not hold is marked as missing.
     #[must_use]
-    pub fn entry(self, cell: CellId, fact: &str, table: &FactTable, row: usize, name: &str) -> Self {
+    pub fn entry(
+        self,
+        cell: CellId,
+        fact: &str,
+        table: &FactTable,
+        row: usize,
+        name: &str,
+    ) -> Self {
         let span = match table.column(name) {
             Some(column) if row < column.values.len() => Span::Entry {
                 cell,

@@ -1,5 +1,6 @@
 //! Floor 4: studies on disk: the packed form, the readable form, what is recorded, what is rescued.
 
+mod acts;
 pub mod archive;
 pub mod bare;
 mod disk;
@@ -10,14 +11,15 @@ pub mod record;
 pub mod rescue;
 
 use crate::base::problem::{Place, Problem};
-use crate::store::record::Record;
 use crate::study::Study;
 use crate::study::ledger::Ledger;
 use crate::study::settings::data::TableSource;
 use crate::study::source::Shelf;
 use std::path::Path;
 
-pub use crate::store::record::fingerprint;
+pub use crate::store::acts::note_acts;
+pub use crate::store::disk::{make_folder, replace};
+pub use crate::store::record::{Record, fingerprint};
 
 /// The form of a study on disk.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -101,6 +103,14 @@ pub fn open_bytes(path: &Path, bytes: &[u8]) -> Result<Opened, Problem> {
                      table, start one.",
             )),
     }
+}
+
+/// The bytes of a table's file.
+///
+/// # Errors
+/// A [`Problem`] when there is no such file or it cannot be read.
+pub fn read_table(path: &Path) -> Result<Vec<u8>, Problem> {
+    disk::read(path).map_err(|error| disk::not_read(path, "the table", &error))
 }
 
 /// Saves a study in the form that the name asks for. The file that was there before stays as it

@@ -138,5 +138,9 @@ fn data(settings: &Data, inputs: &Inputs<'_>, work: &Work<'_>) -> Result<Outcome
     let mut facts = Facts::new();
     facts::publish(&mut facts, settings, &roles);
     let caveats = design::caveats(&roles.dataset, &roles.findings, &facts);
-    Ok(Outcome { gives: Gives::Data(Arc::new(roles.dataset)), facts, caveats })
+    Ok(Outcome {
+        gives: Gives::Data(Arc::new(roles.dataset)),
+        facts,
+        caveats,
+    })
 }

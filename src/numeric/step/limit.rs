@@ -1,7 +1,7 @@
 //! Filling values that are known only to lie beyond a limit.
 
 use crate::base::work::Work;
-use crate::numeric::samples::{Samples, Side};
+use crate::numeric::samples::{Limit, Samples, Side};
 use crate::numeric::step::{Class, Preparation, StepStop};
 use std::borrow::Cow;
 use std::sync::Arc;
@@ -34,15 +34,7 @@ impl LimitFill {
 }
 
 impl Preparation for LimitFill {
-    type Found = ();
-
-    fn class(&self) -> Class {
-        Class::FixedReference
-    }
-
-    fn given(&self) -> Option<()> {
-        Some(())
-    }
+    knows_enough!(Class::FixedReference);
 
     fn apply<'s>(
         &self,
@@ -50,7 +42,7 @@ impl Preparation for LimitFill {
         mut samples: Cow<'s, Samples>,
         work: &Work<'_>,
     ) -> Result<Cow<'s, Samples>, StepStop> {
-        let is_due = |samples: &Samples, limit: &crate::numeric::samples::Limit| {
+        let is_due = |samples: &Samples, limit: &Limit| {
             samples.active[limit.column] && samples.x[(limit.row, limit.column)].is_nan()
         };
         if !samples.limits.iter().any(|limit| is_due(&samples, limit)) {
@@ -63,11 +55,10 @@ impl Preparation for LimitFill {
             LimitRule::OverRootTwo => std::f64::consts::FRAC_1_SQRT_2,
             LimitRule::Whole => 1.0,
         };
-        let (due, rest) = std::mem::take(&mut changed.limits)
+        let (due, rest): (Vec<Limit>, Vec<Limit>) = std::mem::take(&mut changed.limits)
             .into_iter()
             .partition(|limit| is_due(changed, limit));
         changed.limits = rest;
-        let due: Vec<crate::numeric::samples::Limit> = due;
         let x = Arc::make_mut(&mut changed.x);
         for limit in due {
             x[(limit.row, limit.column)] = match limit.side {

@@ -312,11 +312,8 @@ fn the_record_of_a_cell_that_is_due_stays_in_the_file() {
     let folder = Folder::new();
     let (mut desk, [_, prepare, fit, question]) = line(&folder);
     let record = Record::from(&desk.study, &desk.standings);
-    let _ = desk
-        .study
-        .apply(Edit::Remove { id: prepare })
-        .map(drop)
-        .unwrap();
+    let removed = desk.study.apply(Edit::Remove { id: prepare });
+    assert!(removed.is_ok());
     let mut standings = record.standings(&desk.study);
     assert_eq!(standings.get(fit).state, State::Due);
     standings.put(fit, current(any_facts(&mut Dice(99)), Vec::new()));
@@ -658,6 +655,24 @@ fn unsaved_work_is_found_offered_and_forgotten() {
     assert_eq!(opened.study, desk.study);
     assert_eq!(opened.problems, []);
     assert_eq!(states(&opened.record, &opened.study), [State::Current; 4]);
+
+    // The study lay in its readable form: its tables are named by path again when it is saved.
+    let readable = folder.file("lab.json");
+    let save = |shelf: &Shelf| {
+        let nothing = Record::default();
+        store::save(&readable, &desk.study, shelf, &desk.ledger, &nothing).unwrap();
+        get(&readable)
+    };
+    let before = save(&desk.shelf);
+    let session = Session {
+        original: Some(&readable),
+        ..session
+    };
+    rescue
+        .keep(session, &desk.study, &desk.shelf, &desk.ledger, &record)
+        .unwrap();
+    let opened = rescue.open(&rescue.left_behind().0[0]).unwrap();
+    assert_eq!(save(&opened.shelf), before);
 
     put(&folder.file("data/rescue/broken.widefold"), "PK nonsense");
     let (left, problems) = rescue.left_behind();

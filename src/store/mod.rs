@@ -18,7 +18,11 @@ use crate::study::source::Shelf;
 use std::path::Path;
 
 pub use crate::store::acts::note_acts;
+<<<<<<< HEAD
 pub use crate::store::disk::{make_folder, replace};
+=======
+pub use crate::store::disk::replace;
+>>>>>>> 18950c9de453d71349233ef5a4720e3a3a5ae284
 pub use crate::store::record::{Record, fingerprint};
 
 /// The form of a study on disk.
@@ -132,6 +136,15 @@ pub fn save(
             disk::replace(path, &bytes)
         }
     }
+}
+
+/// The bytes of a file.
+///
+/// # Errors
+/// A [`Problem`] when the file could not be read, or has no end, as a device has none.
+pub fn read_file(path: &Path) -> Result<Vec<u8>, Problem> {
+    let what = format!("“{}”", disk::name_of(path));
+    disk::read(path).map_err(|error| disk::not_read(path, &what, &error))
 }
 
 /// Puts the bytes of a table's file on the shelf and returns the table, with every interpretation

@@ -13,4 +13,9 @@
 //! | 5 | [`cli`] | commands without a window |
 
 pub mod base;
+pub mod eval;
+pub mod figure;
+pub mod numeric;
+pub mod report;
+pub mod study;
 pub mod table;

@@ -2,6 +2,7 @@
 
 pub mod axis;
 pub mod column;
+pub mod correct;
 pub mod digest;
 pub mod find;
 pub mod finding;
@@ -143,6 +144,18 @@ impl Table {
             }
         }
         place
+    }
+
+    /// Puts another column of the same name and length in place of one.
+    ///
+    /// # Panics
+    /// When name or length differ.
+    pub fn replace(&mut self, at: usize, column: Column) {
+        assert!(
+            column.name == self.columns[at].name && column.len() == self.n_rows,
+            "a column is replaced by one of the same name and length"
+        );
+        self.columns[at] = column;
     }
 
     /// The rows in the given order, with their places; rows may come more than once or not at all.

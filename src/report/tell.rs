@@ -1,7 +1,7 @@
 //! Builds paragraphs from patterns: words, and facts in braces.
 
 use crate::base::number::Precision;
-use crate::eval::fact::{FactTable, Facts};
+use crate::eval::fact::{Fact, FactTable, Facts};
 use crate::report::block::{Paragraph, Span};
 use crate::study::cell::CellId;
 
@@ -50,7 +50,7 @@ impl<'a> Source<'a> {
             paragraph = match open {
                 '{' => {
                     let (name, form) = inside.split_once('|').unwrap_or((inside, ""));
-                    last = self.facts.value(name);
+                    last = self.count(name);
                     if form == "%" {
                         paragraph.fact_as(self.cell, self.facts, name, Precision::Percent(0))
                     } else {
@@ -73,6 +73,12 @@ impl<'a> Source<'a> {
         paragraph.text(rest)
     }
 
+    /// What decides between one and many: a number, or the number of rows of a table.
+    fn count(&self, name: &str) -> Option<f64> {
+        let rows = || self.facts.table(name).map(|table| table.n_rows() as f64);
+        self.facts.value(name).or_else(rows)
+    }
+
     /// Whether the cell gives this fact; a number that is not known counts as not given.
     #[must_use]
     pub fn has(&self, name: &str) -> bool {
@@ -85,6 +91,16 @@ impl<'a> Source<'a> {
     #[must_use]
     pub fn value(&self, name: &str) -> Option<f64> {
         self.facts.value(name)
+    }
+
+    /// The facts of this list that the cell gives, with a value that is known.
+    #[must_use]
+    pub fn given(&self, names: &[&str]) -> Vec<&'a Fact> {
+        names
+            .iter()
+            .filter(|name| self.value(name).is_some() || self.facts.words(name).is_some())
+            .filter_map(|name| self.facts.get(name))
+            .collect()
     }
 
     /// Whether the fact is a number above zero.
@@ -154,7 +170,6 @@ pub fn without_results(title: &str) -> Paragraph {
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::eval::fact::Fact;
 
     #[test]
     fn a_pattern_binds_its_numbers_and_chooses_its_words() {
@@ -175,12 +190,10 @@ mod tests {
             "{samples} [scan was|scans were] of “‹0›”, ⟨1/(2n)⟩, {nested r²|%}, {units}.",
             &["W 12"],
         );
-        assert_eq!(
-            said.plain(),
-            "1 scan was of “W 12”, 1/(2n), 80 %, {units}."
-        );
+        assert_eq!(said.plain(), "1 scan was of “W 12”, 1/(2n), 80 %, {units}.");
         assert_eq!(said.missing(), ["units"]);
-        let digits = |span: &&Span| matches!(span, Span::Text(text) if text.contains(char::is_numeric));
+        let digits =
+            |span: &&Span| matches!(span, Span::Text(text) if text.contains(char::is_numeric));
         assert_eq!(said.spans.iter().find(digits), None);
     }
 

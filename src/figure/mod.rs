@@ -103,9 +103,10 @@ pub struct Axis {
 }
 
 /// How numbers become places on an axis.
-#[derive(Clone, Debug, PartialEq)]
+#[derive(Clone, Debug, Default, PartialEq)]
 pub enum Scale {
     /// Equal steps.
+    #[default]
     Linear,
     /// Equal ratios. Numbers that are not above zero have no place.
     Log10,

@@ -1,6 +1,6 @@
 //! Rows with a name, a bar and columns of text.
 
-use crate::figure::{Role, Tip};
+use crate::figure::{Role, Scale, Tip};
 
 /// Rows with a name, a bar and columns of text.
 #[derive(Clone, Debug, PartialEq)]
@@ -9,6 +9,8 @@ pub struct Rows {
     pub names: String,
     /// The heading of the bars; may be empty.
     pub bars: String,
+    /// How numbers become places along the bars; lengths are read in equal steps only.
+    pub scale: Scale,
     /// The numbers at the two ends of the bars' axis; `None` takes them from the rows and zero.
     pub range: Option<(f64, f64)>,
     /// Whether the unused length of the axis is shown.

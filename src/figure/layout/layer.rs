@@ -212,7 +212,6 @@ fn line(
     label: Option<&Label>,
     tip: Option<&Tip>,
 ) {
-    let is_outside = places.iter().flatten().any(|at| !frame.holds(*at));
     let stroke = match weight {
         Weight::Strong | Weight::Normal | Weight::Fine => {
             Stroke::solid(style::mark_ink(role), style::line_width(weight))
@@ -263,7 +262,7 @@ fn line(
             stroke,
         });
     }
-    clipped(frame, out, is_outside, marks);
+    clipped(frame, out, marks);
 }
 
 fn is_one_of_many(weight: Weight) -> bool {
@@ -320,11 +319,6 @@ fn band(frame: &Frame, out: &mut Painted, role: Role, x: &[f64], low: &[f64], hi
             .map(|(own, other)| other.and(*own))
             .collect()
     };
-    let is_outside = lows
-        .iter()
-        .chain(&highs)
-        .flatten()
-        .any(|at| !frame.holds(*at));
     let lower = thin::pieces(both(&lows, &highs).into_iter());
     let upper = thin::pieces(both(&highs, &lows).into_iter());
     let mut marks = Vec::new();
@@ -341,7 +335,7 @@ fn band(frame: &Frame, out: &mut Painted, role: Role, x: &[f64], low: &[f64], hi
             ink: style::band_ink(role),
         });
     }
-    clipped(frame, out, is_outside, marks);
+    clipped(frame, out, marks);
 }
 
 fn interval(frame: &Frame, out: &mut Painted, role: Role, x: &[f64], low: &[f64], high: &[f64]) {
@@ -461,14 +455,21 @@ fn mark(
     }
 }
 
-/// Puts marks on the sheet, cut to the area of the data where they reach beyond it.
-fn clipped(frame: &Frame, out: &mut Painted, is_outside: bool, marks: Vec<Mark>) {
-    if is_outside {
+/// Puts lines and areas on the sheet, cut to the area of the data where they reach beyond it.
+fn clipped(frame: &Frame, out: &mut Painted, marks: Vec<Mark>) {
+    let is_inside = |mark: &Mark| match mark {
+        Mark::Line { points, .. } | Mark::Area { points, .. } => {
+            points.iter().all(|at| frame.holds(*at))
+        }
+        Mark::Disc { center, .. } => frame.holds(*center),
+        Mark::Rect { rect, .. } | Mark::Clip { rect, .. } => frame.plot.covers(rect),
+    };
+    if marks.iter().all(is_inside) {
+        out.marks.extend(marks);
+    } else {
         out.marks.push(Mark::Clip {
             rect: frame.plot,
             marks,
         });
-    } else {
-        out.marks.extend(marks);
     }
 }

@@ -26,7 +26,7 @@ const WIDEST_MARGIN: f64 = 0.34;
 /// The least width for numbers beside a square panel.
 const ASIDE: f64 = 150.0;
 /// The room that a vertical axis wants for each of its numbers.
-const TICK_PITCH: f64 = 34.0;
+const TICK_PITCH: f64 = 22.0;
 
 /// Lays panels out below each other.
 pub(super) fn lay(panels: &[Panel], figure: &Figure, room: Rect, sheet: &mut Sheet) -> Shown {

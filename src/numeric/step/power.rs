@@ -101,35 +101,69 @@ fn power_of_log(log: f64, power: f64) -> f64 {
     }
 }
 
-/// The place of the largest value of a function with one peak, by golden-section search
-/// (Kiefer 1953) after a look at 20 places.
+/// The place of the largest value of a function with one peak: a look at five places, then
+/// parabolas through the best three values, with golden sections where a parabola does not help
+/// (Brent 1973, chapter 5). Ends when the place is known to 1e-7.
 fn best_between(low: f64, high: f64, f: &mut dyn FnMut(f64) -> f64) -> f64 {
-    const PLACES: usize = 20;
-    const GOLDEN: f64 = 0.618_033_988_749_894_8;
-    // From one step of 0.5 on each side to 1e-7: the likelihood is flat beyond that.
-    const CUTS: usize = 34;
+    const PLACES: usize = 4;
+    const GOLDEN: f64 = 0.381_966_011_250_105_1;
+    const TOLERANCE: f64 = 1e-7;
     let at = |i: usize| low + (high - low) * i as f64 / PLACES as f64;
     let looks: Vec<f64> = (0..=PLACES).map(|i| f(at(i))).collect();
-    let best = (0..=PLACES)
+    let first = (0..=PLACES)
         .max_by(|&i, &j| looks[i].total_cmp(&looks[j]))
         .expect("there are places");
-    let (mut a, mut b) = (at(best.saturating_sub(1)), at((best + 1).min(PLACES)));
-    let (mut left, mut right) = (b - GOLDEN * (b - a), a + GOLDEN * (b - a));
-    let (mut of_left, mut of_right) = (f(left), f(right));
-    for _ in 0..CUTS {
-        if of_left > of_right {
-            b = right;
-            (right, of_right) = (left, of_left);
-            left = b - GOLDEN * (b - a);
-            of_left = f(left);
+    let (mut a, mut b) = (at(first.saturating_sub(1)), at((first + 1).min(PLACES)));
+    // The best place x, the second best w, the one before v; the last step and the one before.
+    let (mut x, mut of_x) = (at(first), looks[first]);
+    let (mut w, mut of_w, mut v, mut of_v) = (x, of_x, x, of_x);
+    let (mut step, mut before) = (0.0_f64, 0.0_f64);
+    for _ in 0..100 {
+        let middle = 0.5 * (a + b);
+        if (x - middle).abs() + 0.5 * (b - a) <= 2.0 * TOLERANCE {
+            break;
+        }
+        let r = (x - w) * (of_x - of_v);
+        let q = (x - v) * (of_x - of_w);
+        let top = (x - v) * q - (x - w) * r;
+        let below = 2.0 * (r - q);
+        let parabola = -top / below;
+        let lands_inside = x + parabola > a && x + parabola < b;
+        let helps = before.abs() > TOLERANCE && parabola.abs() < 0.5 * before.abs();
+        before = step;
+        step = if below != 0.0 && helps && lands_inside {
+            parabola
         } else {
-            a = left;
-            (left, of_left) = (right, of_right);
-            right = a + GOLDEN * (b - a);
-            of_right = f(right);
+            before = if x < middle { b - x } else { a - x };
+            GOLDEN * before
+        };
+        let u = x + if step.abs() >= TOLERANCE {
+            step
+        } else {
+            TOLERANCE.copysign(step)
+        };
+        let of_u = f(u);
+        if of_u >= of_x {
+            if u < x {
+                b = x;
+            } else {
+                a = x;
+            }
+            (v, of_v, w, of_w, x, of_x) = (w, of_w, x, of_x, u, of_u);
+        } else {
+            if u < x {
+                a = u;
+            } else {
+                b = u;
+            }
+            if of_u >= of_w || w == x {
+                (v, of_v, w, of_w) = (w, of_w, u, of_u);
+            } else if of_u >= of_v || v == x || v == w {
+                (v, of_v) = (u, of_u);
+            }
         }
     }
-    0.5 * (a + b)
+    x
 }
 
 impl Preparation for PowerTransform {

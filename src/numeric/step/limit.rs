@@ -1,5 +1,6 @@
 //! Filling values that are known only to lie beyond a limit.
 
+use crate::base::real::Real;
 use crate::base::work::Work;
 use crate::numeric::samples::{Limit, Samples, Side};
 use crate::numeric::step::{Class, Preparation, StepStop};
@@ -23,6 +24,8 @@ pub enum LimitRule {
     OverRootTwo,
     /// L itself.
     Whole,
+    /// This share of L.
+    Share(Real),
 }
 
 impl LimitFill {
@@ -54,6 +57,7 @@ impl Preparation for LimitFill {
             LimitRule::Half => 0.5,
             LimitRule::OverRootTwo => std::f64::consts::FRAC_1_SQRT_2,
             LimitRule::Whole => 1.0,
+            LimitRule::Share(share) => share.get(),
         };
         let (due, rest): (Vec<Limit>, Vec<Limit>) = std::mem::take(&mut changed.limits)
             .into_iter()

@@ -1,0 +1,180 @@
+//! Settings of a Fit cell: one penalised regression, how its strength is chosen, how it is judged.
+
+use crate::base::real::Real;
+use crate::study::link::Link;
+
+/// Settings of a Fit cell.
+#[derive(Clone, Debug, PartialEq, Eq, Hash)]
+pub struct Fit {
+    /// The Data or Prepare cell whose samples are fitted.
+    pub input: Link,
+    /// The penalty.
+    pub penalty: Penalty,
+    /// On which scale the penalty acts.
+    pub scaling: Scaling,
+    /// How the strength comes about.
+    pub strength: Strength,
+    /// How the whole procedure is judged.
+    pub judge: Judge,
+    /// The seed of all that is drawn at random.
+    pub seed: u64,
+}
+
+impl Default for Fit {
+    /// A lasso with the usual plan: the lowest error among 100 strengths by 10 parts, 5 times;
+    /// judged on 5 outer parts, 10 times.
+    fn default() -> Self {
+        Self {
+            input: Link::open(),
+            penalty: Penalty::Lasso,
+            scaling: Scaling::UnitVariance,
+            strength: Strength::Chosen {
+                rule: Rule::LowestError,
+                range: PenaltyRange::default(),
+                inner: Plan {
+                    scheme: Scheme::Units,
+                    parts: 10,
+                    repeats: 5,
+                },
+            },
+            judge: Judge::Nested(Plan {
+                scheme: Scheme::Units,
+                parts: 5,
+                repeats: 10,
+            }),
+            seed: 20_260_301,
+        }
+    }
+}
+
+/// The penalty.
+#[derive(Clone, Debug, PartialEq, Eq, Hash)]
+pub enum Penalty {
+    /// Half the squared coefficients; lasso share 0.
+    Ridge,
+    /// The absolute coefficients; lasso share 1.
+    Lasso,
+    /// Between the two. Several shares: the best of them is chosen with the strength.
+    ElasticNet {
+        /// Lasso shares, each above 0 and below 1, rising, at least one.
+        shares: Vec<Real>,
+    },
+}
+
+impl Penalty {
+    /// The lasso shares that are tried.
+    #[must_use]
+    pub fn shares(&self) -> Vec<f64> {
+        match self {
+            Self::Ridge => vec![0.0],
+            Self::Lasso => vec![1.0],
+            Self::ElasticNet { shares } => shares.iter().map(|share| share.get()).collect(),
+        }
+    }
+}
+
+/// On which scale the penalty acts.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
+pub enum Scaling {
+    /// Each predictor is divided by its standard deviation (divisor n) in the training part.
+    UnitVariance,
+    /// The predictors keep the scale on which they arrive.
+    AsPrepared,
+}
+
+/// How the penalty strength comes about.
+#[derive(Clone, Debug, PartialEq, Eq, Hash)]
+pub enum Strength {
+    /// Set by hand; 0 or more.
+    ByHand(Real),
+    /// Chosen from a range by a rule.
+    Chosen {
+        /// The rule.
+        rule: Rule,
+        /// The strengths tried.
+        range: PenaltyRange,
+        /// The parts by which the error of each strength is found; not used by the rules that
+        /// need no parts.
+        inner: Plan,
+    },
+}
+
+/// The rules that choose a strength.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
+pub enum Rule {
+    /// The strength with the lowest mean held-out error.
+    LowestError,
+    /// The largest strength whose error is within one standard error of the lowest.
+    OneStandardError,
+    /// The lowest generalised cross-validation value; needs no parts.
+    GeneralisedCrossValidation,
+    /// The lowest extended Bayesian information criterion; needs no parts.
+    ExtendedBic {
+        /// The weight of the number of possible models, from 0 to 1.
+        gamma: Real,
+    },
+}
+
+impl Rule {
+    /// Whether the rule needs inner parts.
+    #[must_use]
+    pub const fn needs_parts(self) -> bool {
+        match self {
+            Self::LowestError | Self::OneStandardError => true,
+            Self::GeneralisedCrossValidation | Self::ExtendedBic { .. } => false,
+        }
+    }
+}
+
+/// The strengths that are tried: falling from the all-zero point, evenly spaced on the log scale.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
+pub struct PenaltyRange {
+    /// How many strengths.
+    pub count: u32,
+    /// The smallest strength as a share of the largest; `None` takes the usual share.
+    pub ratio: Option<Real>,
+}
+
+impl Default for PenaltyRange {
+    fn default() -> Self {
+        Self {
+            count: 100,
+            ratio: None,
+        }
+    }
+}
+
+/// A plan of parts.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
+pub struct Plan {
+    /// How samples come into parts.
+    pub scheme: Scheme,
+    /// How many parts; not used where the scheme fixes the number.
+    pub parts: u32,
+    /// How often the parts are drawn anew.
+    pub repeats: u32,
+}
+
+/// How samples come into parts. Units are never divided.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
+pub enum Scheme {
+    /// Units at random.
+    Units,
+    /// Units at random, with each class or event spread evenly.
+    Balanced,
+    /// Whole batches.
+    WholeBatches,
+    /// One unit at a time.
+    LeaveOneUnitOut,
+    /// Blocks of units that follow each other in order.
+    Blocks,
+}
+
+/// How the whole procedure, choice of strength included, is judged.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
+pub enum Judge {
+    /// By nested cross-validation.
+    Nested(Plan),
+    /// Not at all; the write-up says so.
+    Declined,
+}

@@ -13,9 +13,12 @@
 //! | 5 | [`cli`] | commands without a window |
 
 pub mod base;
+pub mod cli;
 pub mod eval;
 pub mod export;
 pub mod figure;
 pub mod numeric;
 pub mod report;
+pub mod store;
 pub mod study;
+pub mod table;

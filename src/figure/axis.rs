@@ -25,6 +25,8 @@ pub struct Mapping {
     /// The ends, in the units in which the axis is even (logarithms for ratios).
     low: f64,
     high: f64,
+    /// The numbers to write, if they are not chosen here.
+    given: Vec<f64>,
 }
 
 #[derive(Clone, Debug, PartialEq)]
@@ -73,12 +75,14 @@ impl Mapping {
                 kind,
                 low: -0.5,
                 high,
+                given: Vec::new(),
             };
         }
         let mut mapping = Self {
             kind,
             low: f64::INFINITY,
             high: f64::NEG_INFINITY,
+            given: axis.ticks.clone(),
         };
         let fixed = axis.range.and_then(|(low, high)| {
             let ends = (mapping.even(low)?, mapping.even(high)?);
@@ -130,7 +134,7 @@ impl Mapping {
         match (ends, &self.kind) {
             (Ends::Exact, _) => {}
             (Ends::Rounded, Kind::Even | Kind::Share) => {
-                let step = nice_step(span / 4.0);
+                let step = nice_step(span / 6.0);
                 // A hair inwards first, so that an end that is a multiple stays where it is.
                 self.low = ((self.low + 1e-9 * span) / step).floor() * step;
                 self.high = ((self.high - 1e-9 * span) / step).ceil() * step;
@@ -210,7 +214,7 @@ impl Mapping {
 
     /// The power of ten that is taken out of the written numbers, in steps of three.
     fn exponent(&self) -> i32 {
-        if self.kind != Kind::Even {
+        if self.kind != Kind::Even || !self.given.is_empty() {
             return 0;
         }
         let size = self.low.abs().max(self.high.abs());
@@ -225,6 +229,9 @@ impl Mapping {
     #[must_use]
     pub fn ticks(&self, most: usize) -> Vec<Tick> {
         let most = most.max(2);
+        if !self.given.is_empty() {
+            return self.given_ticks();
+        }
         match &self.kind {
             Kind::Even => self.even_ticks(most),
             Kind::Share => self.share_ticks(most),
@@ -249,6 +256,29 @@ impl Mapping {
                 })
                 .collect(),
         }
+    }
+
+    /// The given numbers that lie on the axis, with as many decimals as they need.
+    fn given_ticks(&self) -> Vec<Tick> {
+        let needs = |value: &f64| {
+            (0..6_u8)
+                .find(|places| {
+                    let scaled = value * 10f64.powi(i32::from(*places));
+                    (scaled - scaled.round()).abs() < 1e-6
+                })
+                .unwrap_or(6)
+        };
+        let places = self.given.iter().map(needs).max().unwrap_or(0);
+        self.given
+            .iter()
+            .filter_map(|value| {
+                let share = self.share(*value)?;
+                (-1e-9..=1.0 + 1e-9).contains(&share).then(|| Tick {
+                    share: share.clamp(0.0, 1.0),
+                    text: number::text(*value, Precision::Decimals(places)),
+                })
+            })
+            .collect()
     }
 
     fn even_ticks(&self, most: usize) -> Vec<Tick> {
@@ -375,4 +405,121 @@ fn multiples(low: f64, high: f64, step: f64) -> impl Iterator<Item = f64> {
 /// How many decimals the multiples of a step need.
 fn decimals(step: f64) -> u8 {
     (-(step.log10() + 1e-9).floor()).clamp(0.0, 12.0) as u8
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn texts(map: &Mapping, most: usize) -> Vec<String> {
+        map.ticks(most).into_iter().map(|tick| tick.text).collect()
+    }
+
+    fn mapping(scale: Scale, values: &[f64], ends: Ends) -> Mapping {
+        let axis = Axis::scaled("", "", scale);
+        Mapping::new(&axis, values.iter().copied(), ends)
+    }
+
+    #[test]
+    fn even_axes_are_written_in_ones_twos_and_fives() {
+        let map = mapping(Scale::Linear, &[0.21, 0.93], Ends::Rounded);
+        assert_eq!(texts(&map, 6), ["0.2", "0.4", "0.6", "0.8", "1.0"]);
+        let map = mapping(Scale::Linear, &[-7.0, 12.0], Ends::Rounded);
+        assert_eq!(texts(&map, 5), ["−10", "−5", "0", "5", "10", "15"]);
+        let map = mapping(Scale::Percent, &[0.0, 1.0], Ends::Exact);
+        assert_eq!(texts(&map, 2), ["0 %", "50 %", "100 %"]);
+    }
+
+    #[test]
+    fn axes_of_ratios_are_written_at_decades_or_in_ones_twos_and_fives() {
+        let map = mapping(Scale::Log10, &[0.001, 1.0], Ends::Exact);
+        assert_eq!(texts(&map, 5), ["0.001", "0.01", "0.1", "1"]);
+        let map = mapping(Scale::Log10, &[0.5, 30.0], Ends::Exact);
+        assert_eq!(texts(&map, 5), ["0.5", "1", "2", "5", "10", "20"]);
+        let map = mapping(Scale::Log10, &[1e-9, 1e-3], Ends::Exact);
+        assert_eq!(texts(&map, 4), ["10⁻⁸", "10⁻⁶", "10⁻⁴"]);
+    }
+
+    #[test]
+    fn zero_has_a_shelf_below_the_smallest_ratio() {
+        let map = mapping(Scale::Log10AndZero, &[0.0, 0.1, 10.0], Ends::Padded);
+        assert_eq!(texts(&map, 5)[0], "0");
+        let places = [0.0, -1e-17, 0.1, 10.0].map(|value| map.share(value).unwrap());
+        assert!(places[0] == places[1] && places[1] < SHELF && SHELF < places[2]);
+        assert!(places[2] < places[3] && places[3] < 1.0);
+    }
+
+    #[test]
+    fn large_and_small_numbers_are_written_with_a_common_factor() {
+        let map = mapping(Scale::Linear, &[1.2e9, 3.4e9], Ends::Rounded);
+        assert_eq!(map.factor(), "× 10⁹");
+        assert_eq!(texts(&map, 5), ["1.0", "1.5", "2.0", "2.5", "3.0", "3.5"]);
+        let map = mapping(Scale::Linear, &[2e-7, 9e-7], Ends::Rounded);
+        assert_eq!(map.factor(), "× 10⁻⁶");
+        assert_eq!(
+            mapping(Scale::Linear, &[0.0, 40.0], Ends::Exact).factor(),
+            ""
+        );
+    }
+
+    #[test]
+    fn numbers_without_a_place_have_none() {
+        let even = mapping(Scale::Linear, &[0.0, 1.0], Ends::Exact);
+        let ratio = mapping(Scale::Log10, &[0.1, 1.0], Ends::Exact);
+        for odd in [f64::NAN, f64::INFINITY, f64::NEG_INFINITY, f64::MAX] {
+            assert_eq!(even.share(odd), None);
+        }
+        assert_eq!(ratio.share(0.0), None);
+        assert_eq!(ratio.share(-3.0), None);
+        assert_eq!(even.share(0.25), Some(0.25));
+    }
+
+    #[test]
+    fn written_numbers_lie_on_the_axis_in_order_whatever_the_numbers() {
+        let scales = [
+            Scale::Linear,
+            Scale::Percent,
+            Scale::Log10,
+            Scale::Log10AndZero,
+        ];
+        let sizes = [1e-305, 1e-40, 3e-5, 0.7, 1.0, 812.0, 4e7, 1e200, 9e299];
+        for scale in scales {
+            for low in sizes {
+                for high in sizes {
+                    for ends in [Ends::Rounded, Ends::Padded, Ends::Exact] {
+                        for values in [[low, high], [-low, high], [low, low]] {
+                            let map = mapping(scale.clone(), &values, ends);
+                            let ticks = map.ticks(5);
+                            let inside = |tick: &Tick| (-1e-6..=1.0 + 1e-6).contains(&tick.share);
+                            assert!(ticks.iter().all(inside), "{scale:?} {values:?} {ticks:?}");
+                            assert!(
+                                ticks.windows(2).all(|pair| pair[0].share < pair[1].share),
+                                "{scale:?} {values:?} {ticks:?}"
+                            );
+                            assert!(ticks.len() < 20, "{scale:?} {values:?} {ticks:?}");
+                        }
+                    }
+                }
+            }
+        }
+    }
+
+    #[test]
+    fn given_numbers_are_written_with_the_decimals_that_they_need() {
+        let axis = Axis::linear("", "")
+            .with_range(0.0, 24.0)
+            .with_ticks(&[0.0, 7.5, 24.0, 90.0]);
+        let map = Mapping::new(&axis, std::iter::empty(), Ends::Exact);
+        assert_eq!(texts(&map, 3), ["0.0", "7.5", "24.0"]);
+    }
+
+    #[test]
+    fn an_axis_without_numbers_or_with_equal_ones_has_a_length() {
+        for values in [&[][..], &[f64::NAN], &[0.0], &[5.0, 5.0], &[-3e-9, -3e-9]] {
+            for scale in [Scale::Linear, Scale::Log10, Scale::Log10AndZero] {
+                let map = mapping(scale, values, Ends::Exact);
+                assert!(map.high > map.low, "{values:?}");
+            }
+        }
+    }
 }

@@ -47,6 +47,24 @@ pub fn fitted(text: &str, face: Face, size: f64, room: f64) -> String {
     cut
 }
 
+/// A text broken between words into at most `most` lines of `room` pixels; what does not fit
+/// stays on the last line, to be cut short there.
+#[must_use]
+pub fn lines(text: &str, face: Face, size: f64, room: f64, most: usize) -> Vec<String> {
+    let mut lines: Vec<String> = Vec::new();
+    for word in text.split_whitespace() {
+        let count = lines.len();
+        match lines.last_mut() {
+            Some(line) if count >= most || width(&format!("{line} {word}"), face, size) <= room => {
+                line.push(' ');
+                line.push_str(word);
+            }
+            Some(_) | None => lines.push(word.to_owned()),
+        }
+    }
+    lines
+}
+
 /// The width of a letter in em: in the face itself, else in the font for symbols.
 fn advance(letter: char, face: Face) -> f64 {
     let code = u32::from(letter);
@@ -60,6 +78,36 @@ fn advance(letter: char, face: Face) -> f64 {
 #[must_use]
 pub fn has(letter: char, face: Face) -> bool {
     look_up(u32::from(letter), face).is_some()
+}
+
+/// A text in pieces that each need one font: the face itself, or the one for symbols where that
+/// has the letters and the face has not. Left to themselves, programs that set text choose the
+/// font for symbols for the whole text.
+#[must_use]
+pub fn runs(text: &str, face: Face) -> Vec<(Face, &str)> {
+    let font = |letter: char| {
+        if !has(letter, face) && has(letter, Face::Symbols) {
+            Face::Symbols
+        } else {
+            face
+        }
+    };
+    let mut runs = Vec::new();
+    let mut start = 0;
+    let mut current = None;
+    for (at, letter) in text.char_indices() {
+        let next = font(letter);
+        match current {
+            Some(before) if before != next => {
+                runs.push((before, &text[start..at]));
+                start = at;
+            }
+            Some(_) | None => {}
+        }
+        current = Some(next);
+    }
+    runs.extend(current.map(|last| (last, &text[start..])));
+    runs
 }
 
 fn look_up(code: u32, face: Face) -> Option<u16> {
@@ -102,6 +150,32 @@ mod tests {
         assert!(width(&cut, Face::Sans, 12.0) <= 80.0);
         assert_eq!(fitted(name, Face::Sans, 12.0, 800.0), name);
         assert_eq!(fitted(name, Face::Sans, 12.0, 3.0), "");
+    }
+
+    #[test]
+    fn a_long_text_is_broken_between_words() {
+        let text = "observed against predicted salt in moisture";
+        let broken = lines(text, Face::Sans, 12.0, 150.0, 5);
+        assert!(broken.len() == 2 && broken.join(" ") == text);
+        assert!(
+            broken
+                .iter()
+                .all(|line| width(line, Face::Sans, 12.0) <= 150.0)
+        );
+        assert_eq!(lines(text, Face::Sans, 12.0, 10.0, 2).len(), 2);
+        assert!(lines("", Face::Sans, 12.0, 10.0, 2).is_empty());
+    }
+
+    #[test]
+    fn a_text_is_cut_where_it_needs_another_font() {
+        let runs = runs("R² ≤ 0.8", Face::SansStrong);
+        let expected = [
+            (Face::SansStrong, "R² "),
+            (Face::Symbols, "≤"),
+            (Face::SansStrong, " 0.8"),
+        ];
+        assert_eq!(runs, expected);
+        assert!(super::runs("", Face::Sans).is_empty());
     }
 
     #[test]

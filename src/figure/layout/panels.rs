@@ -26,7 +26,7 @@ const WIDEST_MARGIN: f64 = 0.34;
 /// The least width for numbers beside a square panel.
 const ASIDE: f64 = 150.0;
 /// Between the written numbers of a horizontal axis.
-const TICK_AIR: f64 = 26.0;
+const TICK_AIR: f64 = 18.0;
 /// The room that a vertical axis wants for each of its numbers.
 const TICK_PITCH: f64 = 34.0;
 
@@ -53,30 +53,36 @@ pub(super) fn lay(panels: &[Panel], figure: &Figure, room: Rect, sheet: &mut She
         .map(|((panel, map), row)| y_ticks(panel, map, row.height))
         .collect();
     let margins = margins(panels, &y_ticks, &x_maps, room.width);
+    let widths = widths(panels, &rows, room.width - margins.left - margins.right);
     let frames: Vec<Frame> = rows
         .iter()
+        .zip(widths)
         .zip(x_maps)
         .zip(y_maps)
         .zip(y_ticks)
-        .zip(panels)
-        .map(|((((row, x), y), y_ticks), panel)| {
-            let width = (room.width - margins.left - margins.right).max(1.0);
-            let width = match panel.height {
-                Height::Square => width.min(row.height),
-                Height::Share(_) | Height::Strip | Height::Line => width,
-            };
-            Frame {
-                plot: Rect::new(room.x + margins.left, row.top, width, row.height),
-                x,
-                y,
-                y_ticks,
-            }
+        .map(|((((row, width), x), y), y_ticks)| Frame {
+            plot: Rect::new(room.x + margins.left, row.top, width, row.height),
+            x,
+            y,
+            y_ticks,
         })
         .collect();
 
-    let mut shown = Shown::Nothing;
+    let shows = |(panel, frame): (&Panel, &Frame)| {
+        let mut layers = panel.layers.iter();
+        layers.any(|part| frame::shows_something(part, frame))
+    };
+    if !figure.empty.is_empty() && !panels.iter().zip(&frames).any(shows) {
+        // Axes without data would show numbers that nobody measured.
+        return Shown::Nothing;
+    }
     for group in groups(panels) {
-        let (above, last) = (&frames[group.start], &frames[group.end - 1]);
+        let bearer = group
+            .clone()
+            .rev()
+            .find(|at| bears_axis(panels, *at))
+            .unwrap_or(group.start);
+        let (above, last) = (&frames[group.start], &frames[bearer]);
         rulers(&panels[group.start], above, last, sheet);
         x_axis(&panels[group.start], above, last, sheet);
         let mut drops = Vec::new();
@@ -86,16 +92,13 @@ pub(super) fn lay(panels: &[Panel], figure: &Figure, room: Rect, sheet: &mut She
             let mut painted = Painted::default();
             for part in &panel.layers {
                 layer::paint(part, frame, &mut painted);
-                if frame::shows_something(part, frame) {
-                    shown = Shown::Something;
-                }
             }
             drops.append(&mut painted.drops);
             // A line from what was chosen down through the strips, behind their marks.
-            if at > group.start {
+            if at > group.start && panel.height != Height::Line {
                 sheet.marks(drops.iter().map(|from| drop_line(from.x, frame)));
             }
-            if at + 1 < group.end {
+            if at + 1 < group.end && panels[at + 1].height != Height::Line {
                 let own: Vec<Mark> = drops
                     .iter()
                     .map(|from| Mark::Line {
@@ -116,7 +119,7 @@ pub(super) fn lay(panels: &[Panel], figure: &Figure, room: Rect, sheet: &mut She
         }
     }
     aside(figure, panels, &frames, room, sheet);
-    shown
+    Shown::Something
 }
 
 fn drop_line(x: f64, frame: &Frame) -> Mark {
@@ -156,6 +159,7 @@ fn above(panels: &[Panel], at: usize) -> f64 {
     let gap = match (at, panels[at].height) {
         (0, _) => 2.0,
         (_, Height::Strip) => STRIP_GAP,
+        (_, Height::Line) if panels[at - 1].height != Height::Line => STRIP_GAP,
         (_, Height::Line) => 0.0,
         (_, Height::Share(_) | Height::Square) => PANEL_GAP,
     };
@@ -167,19 +171,28 @@ fn above(panels: &[Panel], at: usize) -> f64 {
     }
 }
 
-/// The height below a panel: numbers and heading of the horizontal axis, if it is the last that
-/// shares one.
+/// The height below a panel: numbers and heading of the horizontal axis, if it is the one under
+/// which they stand.
 fn below(panels: &[Panel], at: usize) -> f64 {
-    let is_last = panels.get(at + 1).is_none_or(|next| next.x.is_some());
-    if !is_last {
+    if !bears_axis(panels, at) {
         return 0.0;
     }
     let heading = x_axis_of(panels, at).map(Axis::heading).unwrap_or_default();
-    20.0 + if heading.is_empty() {
-        2.0
+    22.0 + if heading.is_empty() {
+        0.0
     } else {
-        style::SMALL_LINE + 2.0
+        style::SMALL_LINE
     }
+}
+
+/// Whether the horizontal axis stands below a panel: the last of its run that is no line of
+/// numbers.
+fn bears_axis(panels: &[Panel], at: usize) -> bool {
+    let later = panels[at + 1..]
+        .iter()
+        .take_while(|next| next.x.is_none())
+        .all(|next| next.height == Height::Line);
+    later && (panels[at].height != Height::Line || panels[at].x.is_some())
 }
 
 fn x_axis_of(panels: &[Panel], at: usize) -> Option<&Axis> {
@@ -251,6 +264,21 @@ fn rows(panels: &[Panel], room: Rect) -> Vec<Row> {
         .collect()
 }
 
+/// The width of each panel's area of data: as wide as there is room, except below and in a
+/// square one.
+fn widths(panels: &[Panel], rows: &[Row], room: f64) -> Vec<f64> {
+    let room = room.max(1.0);
+    let mut widths = Vec::new();
+    for group in groups(panels) {
+        let width = match panels[group.start].height {
+            Height::Square => room.min(rows[group.start].height),
+            Height::Share(_) | Height::Strip | Height::Line => room,
+        };
+        widths.extend(group.map(|_| width));
+    }
+    widths
+}
+
 fn x_mappings(panels: &[Panel]) -> Vec<Mapping> {
     let default = Axis::linear("", "");
     let mut maps = Vec::new();
@@ -264,7 +292,8 @@ fn x_mappings(panels: &[Panel]) -> Vec<Mapping> {
             }
         }
         if members[0].height == Height::Square {
-            maps.push(square_mapping(&members[0], axis));
+            let map = square_mapping(&members[0], axis);
+            maps.extend(group.map(|_| map.clone()));
             continue;
         }
         let has_dots = members
@@ -324,22 +353,27 @@ fn y_mapping(panel: &Panel) -> Mapping {
 fn y_ticks(panel: &Panel, map: &Mapping, height: f64) -> Vec<Tick> {
     match panel.height {
         Height::Strip | Height::Line => Vec::new(),
-        Height::Share(_) | Height::Square => {
-            map.ticks((height / TICK_PITCH).floor().clamp(2.0, 6.0) as usize)
-        }
+        Height::Share(_) => map.ticks((height / TICK_PITCH).floor().clamp(2.0, 7.0) as usize),
+        Height::Square => map.ticks(square_ticks(height)),
     }
+}
+
+/// How many numbers are written along either axis of a square.
+fn square_ticks(side: f64) -> usize {
+    (side / 46.0).floor().clamp(2.0, 6.0) as usize
 }
 
 fn margins(panels: &[Panel], y_ticks: &[Vec<Tick>], x_maps: &[Mapping], width: f64) -> Margins {
     let small = |text: &str| metrics::width(text, Face::Sans, style::SMALL);
     let widest = |widths: &mut dyn Iterator<Item = f64>| widths.fold(0.0, f64::max);
     let numbers = widest(&mut y_ticks.iter().flatten().map(|tick| small(&tick.text)));
-    let strips = widest(
-        &mut panels
-            .iter()
-            .filter(|panel| is_strip(panel))
-            .map(|panel| small(&panel.y.heading())),
-    );
+    let strips =
+        widest(&mut panels.iter().filter(|panel| is_strip(panel)).map(
+            |panel| match panel.height {
+                Height::Line => small(&panel.y.heading()) + style::GAP,
+                Height::Strip | Height::Share(_) | Height::Square => small(&panel.y.heading()),
+            },
+        ));
     let names = |end: End| {
         widest(
             &mut panels
@@ -435,8 +469,7 @@ fn grid(panel: &Panel, frame: &Frame, sheet: &mut Sheet) {
         }
     }
     if panel.height == Height::Square {
-        let most = (plot.width / TICK_PITCH).floor().clamp(2.0, 6.0) as usize;
-        for tick in frame.x.ticks(most) {
+        for tick in frame.x.ticks(square_ticks(plot.width)) {
             let x = crisp(plot.x + tick.share * plot.width).min(plot.right() - 0.5);
             sheet.mark(Mark::Line {
                 points: vec![Point::new(x, plot.y), Point::new(x, plot.bottom())],
@@ -459,7 +492,11 @@ fn grid(panel: &Panel, frame: &Frame, sheet: &mut Sheet) {
         | Layer::Text { .. } => false,
     });
     let y_ends = frame.y.ends();
-    let crosses_zero = y_ends.0 < 0.0 && y_ends.1 > 0.0 && !is_strip(panel);
+    let has_zero_line = match panel.height {
+        Height::Share(_) => true,
+        Height::Strip | Height::Line | Height::Square => false,
+    };
+    let crosses_zero = y_ends.0 < 0.0 && y_ends.1 > 0.0 && has_zero_line;
     if stands || crosses_zero {
         let y = crisp(frame.base()).clamp(plot.y + 0.5, plot.bottom() - 0.5);
         sheet.mark(level(y, Ink::Axis));
@@ -470,10 +507,12 @@ fn grid(panel: &Panel, frame: &Frame, sheet: &mut Sheet) {
 fn y_axis(panel: &Panel, frame: &Frame, margins: &Margins, sheet: &mut Sheet) {
     let plot = frame.plot;
     if is_strip(panel) {
-        let at = Point::new(
-            plot.x - style::GAP,
-            plot.y + plot.height / 2.0 + style::BASELINE,
-        );
+        // Numbers in a line of text are centred on their places, the first at the very edge.
+        let away = match panel.height {
+            Height::Line => 2.0 * style::GAP,
+            Height::Strip | Height::Share(_) | Height::Square => style::GAP,
+        };
+        let at = Point::new(plot.x - away, plot.y + plot.height / 2.0 + style::BASELINE);
         let _ = sheet.fitted(
             &panel.y.heading(),
             at,
@@ -545,7 +584,12 @@ fn x_axis(panel: &Panel, first: &Frame, last: &Frame, sheet: &mut Sheet) {
     // As many numbers as have room, measured on a generous first try.
     let tried = first.x.ticks(6);
     let pitch = widest(&tried) + TICK_AIR;
-    let most = (width / pitch).floor().clamp(2.0, 8.0) as usize;
+    let most = match panel.height {
+        Height::Square => square_ticks(width),
+        Height::Share(_) | Height::Strip | Height::Line => {
+            (width / pitch).floor().clamp(2.0, 8.0) as usize
+        }
+    };
     let ticks = first.x.ticks(most);
     let pitch = (width / ticks.len().max(1) as f64).max(1.0);
     let is_names = match axis.scale {
@@ -566,7 +610,7 @@ fn x_axis(panel: &Panel, first: &Frame, last: &Frame, sheet: &mut Sheet) {
             .max(1.0);
         (every as usize, every * pitch - style::GAP)
     };
-    let baseline = plot.bottom() + 15.0;
+    let baseline = plot.bottom() + 17.0;
     for tick in ticks.iter().step_by(every) {
         let x = plot.x + tick.share * plot.width;
         let _ = sheet.fitted(
@@ -598,7 +642,7 @@ fn x_axis(panel: &Panel, first: &Frame, last: &Frame, sheet: &mut Sheet) {
         return;
     }
     let at = Point::new(plot.right(), baseline + style::SMALL_LINE);
-    let placed = sheet.fitted(
+    let _ = sheet.fitted(
         &heading,
         at,
         Anchor::End,
@@ -606,7 +650,6 @@ fn x_axis(panel: &Panel, first: &Frame, last: &Frame, sheet: &mut Sheet) {
         (Ink::QuietText, Face::Sans),
         plot.right(),
     );
-    debug_assert!(placed == Placed::Yes || sheet.size().height < 120.0 || plot.right() < 120.0);
 }
 
 /// Names at the ends of lines, with a fine stroke to the line where they had to move.
@@ -621,13 +664,7 @@ fn end_names(names: &[EndName], frame: &Frame, margins: &Margins, sheet: &mut Sh
             .collect();
         let (edge, away, anchor, room) = match end {
             End::Left => (plot.x, -1.0, Anchor::End, margins.left),
-            End::Right => {
-                let numbers = match margins.numbers {
-                    End::Left => 0.0,
-                    End::Right => 0.0,
-                };
-                (plot.right(), 1.0, Anchor::Start, margins.right - numbers)
-            }
+            End::Right => (plot.right(), 1.0, Anchor::Start, margins.right),
         };
         for wish in ends::spread(wishes, plot.y, plot.bottom()) {
             let name = &names[wish.at];

@@ -8,13 +8,19 @@ use crate::figure::layout::sheet::{self, Placed, Sheet};
 use crate::figure::layout::style;
 use crate::figure::picture::{Anchor, Point, Rect, Word};
 
+/// So many pixels away from its place are as bad for a word as covering one more busy place.
+const FAR: f64 = 3.0;
+
 /// Sets the words that want a place, the most important first.
 pub(super) fn words(painted: &Painted, frame: &Frame, sheet: &mut Sheet) {
-    for wish in &painted.wishes {
+    for wish in painted.wishes.iter().filter(|wish| !wish.text.is_empty()) {
         let best = candidates(wish, frame)
             .into_iter()
             .filter(|word| sheet.has_room(word) && lies_in(word, frame, wish))
-            .map(|word| (covered(&word.rect(), &painted.busy), word))
+            .map(|word| {
+                let far = distance(&word.rect(), wish) / FAR;
+                (covered(&word.rect(), &painted.busy) as f64 + far, word)
+            })
             // The first of equals: candidates are listed by preference.
             .reduce(|best, next| if next.0 < best.0 { next } else { best });
         if let Some((_, word)) = best {
@@ -29,15 +35,40 @@ fn lies_in(word: &Word, frame: &Frame, wish: &Wish) -> bool {
     let rect = word.rect();
     let plot = frame.plot;
     let over = match wish.place {
-        Place::Above(_) => 16.0,
-        Place::Beside(..) | Place::AtTop(_) | Place::OnLine(_) => 6.0,
+        Place::Above(_) | Place::RightAbove(_) => 16.0,
+        Place::Beside(..) | Place::AtTop(_) | Place::OnLine(_) | Place::Along(..) => 6.0,
     };
-    rect.y >= plot.y - over && rect.bottom() <= plot.bottom() + 4.0
+    let (left, right) = match wish.place {
+        Place::Above(_) | Place::RightAbove(_) => (f64::NEG_INFINITY, f64::INFINITY),
+        Place::Beside(..) | Place::AtTop(_) | Place::OnLine(_) | Place::Along(..) => {
+            (plot.x - 1.0, plot.right() + 1.0)
+        }
+    };
+    rect.y >= plot.y - over
+        && rect.bottom() <= plot.bottom() + 4.0
+        && rect.x >= left
+        && rect.right() <= right
+}
+
+/// How far a word is from the place that it belongs to, for words that may wander.
+fn distance(rect: &Rect, wish: &Wish) -> f64 {
+    match wish.place {
+        Place::Beside(at, _) => {
+            let x = (rect.x - at.x).max(at.x - rect.right()).max(0.0);
+            let y = (rect.y - at.y).max(at.y - rect.bottom()).max(0.0);
+            x.hypot(y)
+        }
+        Place::AtTop(_)
+        | Place::OnLine(_)
+        | Place::Along(..)
+        | Place::Above(_)
+        | Place::RightAbove(_) => 0.0,
+    }
 }
 
 /// How many busy places a rectangle covers.
 fn covered(rect: &Rect, busy: &[Point]) -> usize {
-    let around = rect.grown(1.5);
+    let around = rect.grown(5.0);
     busy.iter().filter(|at| around.holds(**at)).count()
 }
 
@@ -68,6 +99,18 @@ fn candidates(wish: &Wish, frame: &Frame) -> Vec<Word> {
             }
             words
         }
+        Place::Along(from, to) => {
+            let along = |share: f64| {
+                Point::new(
+                    from.x + share * (to.x - from.x),
+                    from.y + share * (to.y - from.y),
+                )
+            };
+            let places = [0.8, 0.7, 0.9, 0.6, 0.5, 0.3, 0.15].map(along);
+            let below = places.map(|at| word(Point::new(at.x + 8.0, at.y + 10.0), Anchor::Start));
+            let above = places.map(|at| word(Point::new(at.x - 8.0, at.y - 4.0), Anchor::End));
+            below.into_iter().chain(above).collect()
+        }
         Place::AtTop(x) => {
             let mut words = Vec::new();
             for step in 0..4 {
@@ -91,8 +134,12 @@ fn candidates(wish: &Wish, frame: &Frame) -> Vec<Word> {
         }
         Place::Above(at) => vec![
             word(Point::new(at.x, at.y - 4.0), Anchor::Middle),
-            word(Point::new(at.x + 7.0, at.y + 1.0), Anchor::Start),
-            word(Point::new(at.x - 7.0, at.y + 1.0), Anchor::End),
+            word(Point::new(at.x + 5.0, at.y - 4.0), Anchor::Start),
+            word(Point::new(at.x - 5.0, at.y - 4.0), Anchor::End),
+        ],
+        Place::RightAbove(at) => vec![
+            word(Point::new(at.x + 4.0, at.y - 4.0), Anchor::Start),
+            word(Point::new(at.x - 4.0, at.y - 4.0), Anchor::End),
         ],
     }
 }

@@ -9,9 +9,9 @@ use crate::figure::metrics;
 use crate::figure::picture::{Anchor, Mark, Point, Rect, Region, Turn, Word};
 
 /// The height of a tile on a page.
-const TALL: f64 = 24.0;
+const TALL: f64 = 26.0;
 /// The widest tile.
-const WIDEST: f64 = 64.0;
+const WIDEST: f64 = 72.0;
 /// The smallest side of a tile; more tiles than have room are merged by their mean.
 const SMALLEST: f64 = 2.0;
 /// Between tiles that are large enough for a gap.
@@ -323,7 +323,11 @@ fn key(grid: &Grid<'_>, room: Rect, sheet: &mut Sheet) {
         return;
     }
     let y = room.bottom() - 18.0;
-    let is_one_sided = grid.tiles.values.iter().all(|value| !(*value < 0.0));
+    let is_one_sided = grid
+        .tiles
+        .values
+        .iter()
+        .all(|value| value.is_nan() || *value >= 0.0);
     let lowest = if is_one_sided { 0.0 } else { -100.0 };
     let (steps, step) = (21_u8, 6.0);
     let first = words.first().map_or(0.0, |word| {

@@ -44,6 +44,9 @@ pub enum Standing {
     Quiet,
 }
 
+/// From so many lines on, those of the background are see-through.
+const CROWD: usize = 80;
+
 impl Trace {
     /// The figure: the lines, and a strip with the count below it.
     #[must_use]
@@ -56,8 +59,14 @@ impl Trace {
         let mut layers = Vec::new();
         let quiet = |line: &&TraceLine| line.standing == Standing::Quiet;
         let named = |line: &&TraceLine| line.standing == Standing::Named;
-        for line in self.lines.iter().filter(quiet).filter(is_ever) {
-            layers.push(self.layer(line, Role::Quiet, Weight::Fine, None));
+        let background: Vec<&TraceLine> = self.lines.iter().filter(quiet).filter(is_ever).collect();
+        let weight = if background.len() > CROWD {
+            Weight::Faint
+        } else {
+            Weight::Fine
+        };
+        for line in background {
+            layers.push(self.layer(line, Role::Quiet, weight, None));
         }
         for (nth, line) in self.lines.iter().filter(named).filter(is_ever).enumerate() {
             let label = Label {
@@ -88,10 +97,22 @@ impl Trace {
         Layer::Line {
             role,
             x: self.strengths.clone(),
-            y: line.values.clone(),
+            y: without_rest(&line.values),
             weight,
             label,
             tip: line.tip.clone(),
         }
     }
+}
+
+/// The coefficients without the stretches at zero, so that lines do not cover each other there;
+/// the zeros next to another value stay, so that each line begins on the axis.
+fn without_rest(values: &[f64]) -> Vec<f64> {
+    let is_zero = |at: Option<usize>| at.and_then(|at| values.get(at)).is_none_or(|v| *v == 0.0);
+    (0..values.len())
+        .map(|at| {
+            let is_rest = is_zero(Some(at)) && is_zero(at.checked_sub(1)) && is_zero(Some(at + 1));
+            if is_rest { f64::NAN } else { values[at] }
+        })
+        .collect()
 }

@@ -115,7 +115,7 @@ pub fn blocks(chain: &Chain<'_>, question: &Question, source: &Source<'_>) -> Ve
         Ask::ErrorCurve => error_curve::blocks(source),
         Ask::CoefficientTrace => coefficient_trace::blocks(source),
         Ask::Agreement => agreement::blocks(chain, source),
-        Ask::Ladder { .. } => ladder::blocks(source),
+        Ask::Ladder { .. } => ladder::blocks(chain, source),
         Ask::ChosenAgain { .. } => chosen_again::blocks(source),
         Ask::StandIns { .. } => stand_ins::blocks(source),
     }

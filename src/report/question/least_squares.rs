@@ -19,16 +19,21 @@ pub fn answer(source: &Source<'_>) -> Paragraph {
         )
     } else {
         source.say(
-            "Least squares has an answer here, but a fragile one: the largest eigenvalue is \
-             {condition number} times the smallest; the penalty brings that down to {penalised \
-             condition number} times.",
+            "Least squares has one answer here, but it can be a fragile one: the largest eigenvalue \
+             is {condition number} times the smallest.",
             &[],
         )
     }
 }
 
+/// Whether the penalty has a squared part, which adds to every eigenvalue. A lasso makes the answer
+/// unique in another way: by leaving predictors out.
+fn lifts(source: &Source<'_>) -> bool {
+    source.is_above_zero("penalty added")
+}
+
 /// The facts of the grid.
-const NUMBERS: [&str; 11] = [
+const NUMBERS: [&str; 12] = [
     "samples",
     "predictors",
     "rank",
@@ -37,6 +42,7 @@ const NUMBERS: [&str; 11] = [
     "smallest positive eigenvalue",
     "condition number",
     "penalised condition number",
+    "penalty added",
     "chosen strength",
     "effective degrees of freedom",
     "participation ratio",
@@ -68,22 +74,36 @@ fn figure(source: &Source<'_>) -> Option<NamedFigure> {
             .column(column)
             .map_or_else(String::new, |column| column.shown(row))
     };
+    let has_lift = lifts(source);
+    let column = |name: &str| {
+        if has_lift {
+            table.numbers(name).to_vec()
+        } else {
+            Vec::new()
+        }
+    };
     let tip = |row: usize| {
         let direction = format!("direction {}", text("direction", row));
-        let words = format!(
-            "{direction}: eigenvalue {}, with the penalty {}, share left {}",
-            text("eigenvalue", row),
-            text("penalised eigenvalue", row),
-            text("shrinkage factor", row)
-        );
+        let mut words = format!("{direction}: eigenvalue {}", text("eigenvalue", row));
+        if has_lift {
+            words.push_str(&format!(
+                ", with the penalty {}, share left {}",
+                text("penalised eigenvalue", row),
+                text("shrinkage factor", row)
+            ));
+        }
         Tip::new(Meaning::Thing(direction), words)
     };
     let shape = Spectrum {
         caption: Caption {
-            title: "Eigenvalues of the predictors’ cross-products, without and with the penalty"
-                .to_owned(),
+            title: if has_lift {
+                "Eigenvalues of the predictors’ cross-products, without and with the penalty"
+            } else {
+                "Eigenvalues of the predictors’ cross-products"
+            }
+            .to_owned(),
             description: format!(
-                "{} directions, from the strongest to the weakest, with and without the penalty.",
+                "{} directions, from the strongest to the weakest.",
                 number::text(eigenvalues.len() as f64, Precision::Whole)
             ),
             empty: "No spectrum is known.".to_owned(),
@@ -92,19 +112,21 @@ fn figure(source: &Source<'_>) -> Option<NamedFigure> {
         eigenvalue: Heading::new("eigenvalue", ""),
         eigenvalues: eigenvalues.to_vec(),
         own_label: "without penalty".to_owned(),
-        lifted: table.numbers("penalised eigenvalue").to_vec(),
+        lifted: column("penalised eigenvalue"),
         lifted_label: "with penalty".to_owned(),
         factor: "share left".to_owned(),
-        factors: table.numbers("shrinkage factor").to_vec(),
+        factors: column("shrinkage factor"),
         tips: (0..eigenvalues.len()).map(tip).collect(),
     };
     Some(NamedFigure {
         name: "spectrum".to_owned(),
         figure: shape.figure(),
-        reading: Paragraph::of(
+        reading: Paragraph::of(if has_lift {
             "How many independent directions the data really have, and which of them the penalty \
-             mutes.",
-        ),
+             mutes."
+        } else {
+            "How many independent directions the data really have."
+        }),
     })
 }
 
@@ -119,11 +141,22 @@ pub fn methods(source: &Source<'_>) -> Vec<Paragraph> {
          rank.",
         &[],
     ));
+    telling.say(if lifts(source) {
+        source.say(
+            "Their condition number was {condition number}; with {penalty added} added to every \
+             eigenvalue by the squared part of the penalty at the chosen strength {chosen strength} \
+             it was {penalised condition number}.",
+            &[],
+        )
+    } else {
+        source.say(
+            "Their condition number was {condition number}; that of the predictors chosen at the \
+             strength {chosen strength} alone was {penalised condition number}.",
+            &[],
+        )
+    });
     telling.say(source.say(
-        "Their condition number was {condition number}; with the chosen strength {chosen strength} \
-         added to every eigenvalue (in the scaling of the objective) it was {penalised condition \
-         number}, and the squared penalty of that strength would leave {effective degrees of \
-         freedom} effective degrees of freedom.",
+        "The final fit used {effective degrees of freedom} effective degrees of freedom.",
         &[],
     ));
     telling.done()

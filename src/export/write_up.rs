@@ -449,7 +449,8 @@ fn inline(paragraph: &Paragraph) -> String {
             Span::Text(text)
             | Span::Name(text)
             | Span::Fact { text, .. }
-            | Span::Entry { text, .. } => {
+            | Span::Entry { text, .. }
+            | Span::Counted { text, .. } => {
                 line.push_str(&escape(text));
             }
             Span::Strong(text) => line.push_str(&format!("**{}**", escape(text))),

@@ -13,7 +13,6 @@ use faer::{Accum, Mat, MatMut, MatRef, Par};
 /// A matrix, stored by columns; samples go down the rows.
 pub type Matrix = nalgebra::DMatrix<f64>;
 
-<<<<<<< HEAD
 fn view(matrix: &Matrix) -> MatRef<'_, f64> {
     MatRef::from_column_major_slice(matrix.as_slice(), matrix.nrows(), matrix.ncols())
 }
@@ -91,22 +90,12 @@ pub(crate) fn transposed_product(left: &Matrix, right: &Matrix) -> Matrix {
         Par::Seq,
     );
     result
-=======
-/// A factorisation that did not end.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub(crate) struct NotFactorised;
-
-/// The product of two matrices.
-pub(crate) fn product(left: &Matrix, right: &Matrix) -> Matrix {
-    left * right
->>>>>>> e45c50d23bca62ffd9025a54d7d366f0c7710d4b
 }
 
 /// Eigenvalues (rising) and eigenvectors (columns) of a symmetric matrix of which the lower
 /// triangle is given.
 ///
 /// # Errors
-<<<<<<< HEAD
 /// [`FitError::Factorisation`] when the iteration does not end, as with entries that are not finite.
 pub(crate) fn symmetric_eigen(lower: &Matrix) -> Result<(Vec<f64>, Matrix), FitError> {
     let n = lower.nrows();
@@ -167,15 +156,4 @@ pub fn thin_svd(matrix: &Matrix) -> Result<(Matrix, Vec<f64>, Matrix), FitError>
     .map_err(|_| FitError::Factorisation)?;
     let values = (0..size).map(|at| values.column_vector()[at]).collect();
     Ok((owned(left.as_ref()), values, owned(right.as_ref())))
-=======
-/// [`NotFactorised`] when the iteration does not end, as with entries that are not finite.
-pub(crate) fn symmetric_eigen(lower: &Matrix) -> Result<(Vec<f64>, Matrix), NotFactorised> {
-    let n = lower.nrows();
-    let eigen = nalgebra::SymmetricEigen::try_new(lower.clone(), f64::EPSILON, 10_000)
-        .ok_or(NotFactorised)?;
-    let mut order: Vec<usize> = (0..n).collect();
-    order.sort_by(|&a, &b| eigen.eigenvalues[a].total_cmp(&eigen.eigenvalues[b]));
-    let values = order.iter().map(|&at| eigen.eigenvalues[at]).collect();
-    Ok((values, eigen.eigenvectors.select_columns(&order)))
->>>>>>> e45c50d23bca62ffd9025a54d7d366f0c7710d4b
 }

@@ -1,26 +1,8 @@
-<<<<<<< HEAD
-//! Counted acts: looks at the outcome, and openings of sealed sets.
-=======
 //! Counts what is never undone: configurations held against the outcome, and opened seals.
->>>>>>> 18950c9de453d71349233ef5a4720e3a3a5ae284
 
 use crate::eval::standing::{Standings, State};
 use crate::store::record::fingerprint;
 use crate::study::Study;
-<<<<<<< HEAD
-use crate::study::cell::CellId;
-use crate::study::ledger::{Ledger, Look, Opening};
-use crate::study::settings::Settings;
-use crate::study::settings::question::{Ask, Seal};
-
-/// Notes, after an evaluation, which configurations were evaluated against the outcome and which
-/// sealed sets were opened. What was counted before is not counted again.
-pub fn note_acts(study: &Study, standings: &Standings, ledger: &mut Ledger, date: &str) {
-    for cell in study.cells() {
-        if standings.get(cell.id).state != State::Current {
-            continue;
-        }
-=======
 use crate::study::cell::{Cell, CellId};
 use crate::study::ledger::{Ledger, Look, Opening};
 use crate::study::link::Link;
@@ -34,7 +16,6 @@ use crate::study::settings::question::{Ask, Question, Seal};
 pub fn note_acts(study: &Study, standings: &Standings, ledger: &mut Ledger, date: &str) {
     let current = |cell: &&Cell| standings.get(cell.id).state == State::Current;
     for cell in study.cells().iter().filter(current) {
->>>>>>> 18950c9de453d71349233ef5a4720e3a3a5ae284
         match &cell.settings {
             Settings::Fit(_) => ledger.look(Look {
                 configuration: fingerprint(study, cell.id),
@@ -42,18 +23,9 @@ pub fn note_acts(study: &Study, standings: &Standings, ledger: &mut Ledger, date
                 date: date.to_owned(),
             }),
             Settings::Question(question) => {
-<<<<<<< HEAD
-                if let (Ask::Ladder { seal: Seal::Opened }, Some(fit)) =
-                    (&question.ask, question.fit.0)
-                    && let Some(data) = data_below(study, fit)
-                {
-                    ledger.open(Opening {
-                        cell: data,
-=======
                 if let Some((data, fit)) = opened(study, question) {
                     ledger.open(Opening {
                         cell: data.title.clone(),
->>>>>>> 18950c9de453d71349233ef5a4720e3a3a5ae284
                         configuration: fingerprint(study, fit),
                         date: date.to_owned(),
                     });
@@ -68,17 +40,6 @@ pub fn note_acts(study: &Study, standings: &Standings, ledger: &mut Ledger, date
     }
 }
 
-<<<<<<< HEAD
-/// The title of the Data cell that a cell draws on in the end.
-fn data_below(study: &Study, id: CellId) -> Option<String> {
-    let mut at = study.cell(id)?;
-    // A study has no circles but for files edited by hand; as many steps as cells are enough.
-    for _ in study.cells() {
-        if matches!(at.settings, Settings::Data(_)) {
-            return Some(at.title.clone());
-        }
-        at = study.cell(*at.settings.draws_on().first()?)?;
-=======
 /// The data cell whose sealed set a question opens, and the fit that is judged on it.
 fn opened<'a>(study: &'a Study, question: &Question) -> Option<(&'a Cell, CellId)> {
     match &question.ask {
@@ -107,7 +68,6 @@ fn opened<'a>(study: &'a Study, question: &Question) -> Option<(&'a Cell, CellId
             | Settings::Score(_)
             | Settings::Prose(_) => return None,
         };
->>>>>>> 18950c9de453d71349233ef5a4720e3a3a5ae284
     }
     None
 }

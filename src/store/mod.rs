@@ -18,11 +18,7 @@ use crate::study::source::Shelf;
 use std::path::Path;
 
 pub use crate::store::acts::note_acts;
-<<<<<<< HEAD
 pub use crate::store::disk::{make_folder, replace};
-=======
-pub use crate::store::disk::replace;
->>>>>>> 18950c9de453d71349233ef5a4720e3a3a5ae284
 pub use crate::store::record::{Record, fingerprint};
 
 /// The form of a study on disk.

@@ -147,16 +147,6 @@ impl Record {
         agreeing.collect()
     }
 
-    /// The recorded outcomes of all cells whose record agrees with what the study says now.
-    #[must_use]
-    pub fn outcomes(&self, study: &Study) -> BTreeMap<CellId, Arc<Outcome>> {
-        study
-            .cells()
-            .iter()
-            .filter_map(|cell| Some((cell.id, Arc::new(self.outcome_if_agrees(study, cell.id)?))))
-            .collect()
-    }
-
     /// How the cells of a study stand when it has just been opened: recorded results that agree
     /// are current or failed, others are shown but due.
     #[must_use]

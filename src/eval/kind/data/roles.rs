@@ -2,6 +2,8 @@
 
 use crate::base::number::{self, Precision};
 use crate::base::problem::{Place, Problem};
+use crate::base::thread::Threads;
+use crate::base::work::Work;
 use crate::eval::kind::Ended;
 use crate::eval::kind::data::Dataset;
 use crate::eval::kind::data::outcome::{self, Found};
@@ -47,7 +49,12 @@ const LEAST_SAMPLES: usize = 3;
 ///
 /// # Errors
 /// When a column that has a role does not exist or cannot have it.
-pub fn assign(settings: &Data, joined: Joined) -> Result<Roles, Ended> {
+pub fn assign(
+    settings: &Data,
+    joined: Joined,
+    threads: Threads,
+    work: &Work<'_>,
+) -> Result<Roles, Ended> {
     let Joined {
         mut table,
         n_first,
@@ -177,7 +184,9 @@ pub fn assign(settings: &Data, joined: Joined) -> Result<Roles, Ended> {
                 .map(|outcome| outcome.column.as_str()),
             predictors: &columns,
         },
-    ));
+        threads,
+        work,
+    )?);
     let (batches, batch_names) = batches.map_or((None, Vec::new()), |(batches, names)| {
         (Some(batches), names)
     });

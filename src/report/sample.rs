@@ -538,7 +538,7 @@ pub fn question_facts(ask: &Ask) -> Facts {
                         ("largest eigenvalue", 412.0),
                         ("smallest positive eigenvalue", 1.1e-6),
                         ("condition number", f64::INFINITY),
-                    ("penalty added", 11.1),
+                        ("penalty added", 11.1),
                         ("penalised condition number", 13_200.0),
                         ("effective degrees of freedom", 31.2),
                         ("participation ratio", 2.61),

@@ -48,7 +48,10 @@ pub fn answer(chain: &Chain<'_>, source: &Source<'_>) -> Paragraph {
 /// The rest of the answer.
 #[must_use]
 pub fn blocks(chain: &Chain<'_>, source: &Source<'_>) -> Vec<Block> {
-    let mut blocks: Vec<Block> = figure(chain, source).map(Block::Figure).into_iter().collect();
+    let mut blocks: Vec<Block> = figure(chain, source)
+        .map(Block::Figure)
+        .into_iter()
+        .collect();
     blocks
         .extend(Grid::of_table("The ladder", source.cell, source.facts, "ladder").map(Block::Grid));
     let sealed = source.given(&[

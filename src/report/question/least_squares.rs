@@ -5,7 +5,9 @@ use crate::figure::shape::spectrum::Spectrum;
 use crate::figure::shape::{Caption, Heading};
 use crate::figure::{Meaning, Tip};
 use crate::report::block::{Block, Grid, NamedFigure, Paragraph};
+use crate::report::chain::Chain;
 use crate::report::tell::{Source, Telling};
+use crate::study::settings::fit::Penalty;
 
 /// The answer in one sentence.
 #[must_use]
@@ -26,10 +28,12 @@ pub fn answer(source: &Source<'_>) -> Paragraph {
     }
 }
 
-/// Whether the penalty has a squared part, which adds to every eigenvalue. A lasso makes the answer
-/// unique in another way: by leaving predictors out.
-fn lifts(source: &Source<'_>) -> bool {
-    source.is_above_zero("penalty added")
+/// Whether the penalty has no squared part, so that it makes the answer unique in another way: by
+/// leaving predictors out. What a ridge penalty of the same strength would do is shown instead.
+fn is_lasso(chain: &Chain<'_>) -> bool {
+    chain
+        .fit
+        .is_some_and(|(_, fit)| matches!(fit.penalty, Penalty::Lasso))
 }
 
 /// The facts of the grid.
@@ -50,8 +54,11 @@ const NUMBERS: [&str; 12] = [
 
 /// The rest of the answer.
 #[must_use]
-pub fn blocks(source: &Source<'_>) -> Vec<Block> {
-    let mut blocks: Vec<Block> = figure(source).map(Block::Figure).into_iter().collect();
+pub fn blocks(chain: &Chain<'_>, source: &Source<'_>) -> Vec<Block> {
+    let mut blocks: Vec<Block> = figure(chain, source)
+        .map(Block::Figure)
+        .into_iter()
+        .collect();
     let numbers = source
         .facts
         .all()
@@ -66,7 +73,7 @@ pub fn blocks(source: &Source<'_>) -> Vec<Block> {
     blocks
 }
 
-fn figure(source: &Source<'_>) -> Option<NamedFigure> {
+fn figure(chain: &Chain<'_>, source: &Source<'_>) -> Option<NamedFigure> {
     let table = source.rows("spectrum")?;
     let eigenvalues = table.numbers("eigenvalue");
     let text = |column: &str, row: usize| {
@@ -74,34 +81,24 @@ fn figure(source: &Source<'_>) -> Option<NamedFigure> {
             .column(column)
             .map_or_else(String::new, |column| column.shown(row))
     };
-    let has_lift = lifts(source);
-    let column = |name: &str| {
-        if has_lift {
-            table.numbers(name).to_vec()
-        } else {
-            Vec::new()
-        }
+    let lifted = if is_lasso(chain) {
+        "with a ridge penalty of the chosen strength"
+    } else {
+        "with the penalty"
     };
     let tip = |row: usize| {
         let direction = format!("direction {}", text("direction", row));
-        let mut words = format!("{direction}: eigenvalue {}", text("eigenvalue", row));
-        if has_lift {
-            words.push_str(&format!(
-                ", with the penalty {}, share left {}",
-                text("penalised eigenvalue", row),
-                text("shrinkage factor", row)
-            ));
-        }
+        let words = format!(
+            "{direction}: eigenvalue {}, {lifted} {}, share left {}",
+            text("eigenvalue", row),
+            text("penalised eigenvalue", row),
+            text("shrinkage factor", row)
+        );
         Tip::new(Meaning::Thing(direction), words)
     };
     let shape = Spectrum {
         caption: Caption {
-            title: if has_lift {
-                "Eigenvalues of the predictors’ cross-products, without and with the penalty"
-            } else {
-                "Eigenvalues of the predictors’ cross-products"
-            }
-            .to_owned(),
+            title: format!("Eigenvalues of the predictors’ cross-products, without and {lifted}"),
             description: format!(
                 "{} directions, from the strongest to the weakest.",
                 number::text(eigenvalues.len() as f64, Precision::Whole)
@@ -112,27 +109,29 @@ fn figure(source: &Source<'_>) -> Option<NamedFigure> {
         eigenvalue: Heading::new("eigenvalue", ""),
         eigenvalues: eigenvalues.to_vec(),
         own_label: "without penalty".to_owned(),
-        lifted: column("penalised eigenvalue"),
-        lifted_label: "with penalty".to_owned(),
+        lifted: table.numbers("penalised eigenvalue").to_vec(),
+        lifted_label: if is_lasso(chain) {
+            "with a ridge penalty".to_owned()
+        } else {
+            "with penalty".to_owned()
+        },
         factor: "share left".to_owned(),
-        factors: column("shrinkage factor"),
+        factors: table.numbers("shrinkage factor").to_vec(),
         tips: (0..eigenvalues.len()).map(tip).collect(),
     };
     Some(NamedFigure {
         name: "spectrum".to_owned(),
         figure: shape.figure(),
-        reading: Paragraph::of(if has_lift {
-            "How many independent directions the data really have, and which of them the penalty \
-             mutes."
-        } else {
-            "How many independent directions the data really have."
-        }),
+        reading: Paragraph::of(
+            "How many independent directions the data really have, and which of them a penalty \
+             mutes.",
+        ),
     })
 }
 
 /// The paragraphs of the methods.
 #[must_use]
-pub fn methods(source: &Source<'_>) -> Vec<Paragraph> {
+pub fn methods(chain: &Chain<'_>, source: &Source<'_>) -> Vec<Paragraph> {
     let mut telling = Telling::new();
     telling.say(source.say(
         "The cross-products of the centred and scaled predictors (⟨XᵀX⟩, {predictors} rows and \
@@ -141,17 +140,18 @@ pub fn methods(source: &Source<'_>) -> Vec<Paragraph> {
          rank.",
         &[],
     ));
-    telling.say(if lifts(source) {
+    telling.say(if is_lasso(chain) {
         source.say(
-            "Their condition number was {condition number}; with {penalty added} added to every \
-             eigenvalue by the squared part of the penalty at the chosen strength {chosen strength} \
-             it was {penalised condition number}.",
+            "Their condition number was {condition number}; that of the predictors alone that the \
+             lasso chose at the strength {chosen strength} was {penalised condition number}. A \
+             ridge penalty of the same strength would add {penalty added} to every eigenvalue.",
             &[],
         )
     } else {
         source.say(
-            "Their condition number was {condition number}; that of the predictors chosen at the \
-             strength {chosen strength} alone was {penalised condition number}.",
+            "Their condition number was {condition number}; with {penalty added} added to every \
+             eigenvalue by the squared part of the penalty at the chosen strength {chosen strength} \
+             it was {penalised condition number}.",
             &[],
         )
     });

@@ -263,7 +263,10 @@ fn predictors(telling: &mut Telling, source: &Source<'_>) {
         ));
     }
     if source.has("weight column") {
-        telling.say(source.say("Samples were weighted by the column “{weight column}”.", &[]));
+        telling.say(source.say(
+            "Samples were weighted by the column “{weight column}”.",
+            &[],
+        ));
     }
     if source.is_above_zero("missing values") {
         telling.say(source.say(

@@ -171,7 +171,9 @@ pub fn difference(old: &[(String, Digest)], new: &[(String, Digest)]) -> Differe
     let common_new = names(new, &|name| known.contains_key(name));
     Difference {
         changed: names(new, &|name| {
-            known.get(name).is_some_and(|digest| Some(digest) != current.get(name))
+            known
+                .get(name)
+                .is_some_and(|digest| Some(digest) != current.get(name))
         }),
         added: names(new, &|name| !known.contains_key(name)),
         removed: names(old, &|name| !current.contains_key(name)),

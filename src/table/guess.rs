@@ -80,7 +80,10 @@ pub fn roles(table: &Table) -> Proposals {
         blocks,
         ..Proposals::default()
     };
-    let samples = proposals.samples.as_ref().and_then(|p| table.position(&p.column));
+    let samples = proposals
+        .samples
+        .as_ref()
+        .and_then(|p| table.position(&p.column));
     proposals.unit = unit(table, samples);
     if proposals.unit.is_none() {
         proposals.units_from_names = samples.and_then(|at| {
@@ -91,10 +94,12 @@ pub fn roles(table: &Table) -> Proposals {
             Some(unlike.len())
         });
     }
-    let unit = proposals.unit.as_ref().map(|proposal| proposal.column.clone());
-    let is_taken = |at: usize| {
-        Some(at) == samples || Some(&table.columns()[at].name) == unit.as_ref()
-    };
+    let unit = proposals
+        .unit
+        .as_ref()
+        .map(|proposal| proposal.column.clone());
+    let is_taken =
+        |at: usize| Some(at) == samples || Some(&table.columns()[at].name) == unit.as_ref();
     let free: Vec<usize> = (0..in_block.len())
         .filter(|&at| !is_taken(at) && !in_block[at])
         .collect();
@@ -117,18 +122,67 @@ const SAMPLE: &[&str] = &[
     "sample", "samples", "sampleid", "id", "name", "specimen", "scan", "code", "label", "barcode",
 ];
 const UNIT: &[&str] = &[
-    "unit", "wheel", "plot", "animal", "plant", "tree", "batch_unit", "subject", "lot", "bay", "family",
-    "group", "individual", "field", "line", "cow", "well", "site_id",
+    "unit",
+    "wheel",
+    "plot",
+    "animal",
+    "plant",
+    "tree",
+    "batch_unit",
+    "subject",
+    "lot",
+    "bay",
+    "family",
+    "group",
+    "individual",
+    "field",
+    "line",
+    "cow",
+    "well",
+    "site_id",
 ];
 const BATCH: &[&str] = &[
-    "batch", "plate", "run", "cave", "site", "operator", "crew", "probe", "instrument", "week", "day",
-    "season", "laboratory", "lab", "lane", "block", "tray", "session",
+    "batch",
+    "plate",
+    "run",
+    "cave",
+    "site",
+    "operator",
+    "crew",
+    "probe",
+    "instrument",
+    "week",
+    "day",
+    "season",
+    "laboratory",
+    "lab",
+    "lane",
+    "block",
+    "tray",
+    "session",
 ];
 const ORDER: &[&str] = &[
-    "order", "injection", "sequence", "position", "time", "date", "timestamp", "acquired", "measured",
+    "order",
+    "injection",
+    "sequence",
+    "position",
+    "time",
+    "date",
+    "timestamp",
+    "acquired",
+    "measured",
 ];
 const OUTCOME: &[&str] = &[
-    "outcome", "response", "target", "y", "class", "result", "reference", "yield", "score", "status",
+    "outcome",
+    "response",
+    "target",
+    "y",
+    "class",
+    "result",
+    "reference",
+    "yield",
+    "score",
+    "status",
 ];
 
 fn says(name: &str, words: &[&str]) -> bool {
@@ -166,7 +220,9 @@ fn samples(table: &Table) -> Option<Proposal> {
         all * 10 >= table.n_rows() * 9 && unlike * 10 >= all * 9
     };
     let texts = || table.columns().iter().filter(|column| !column.is_numeric());
-    let by_word = texts().filter(is_own).find(|column| says(&column.name, SAMPLE));
+    let by_word = texts()
+        .filter(is_own)
+        .find(|column| says(&column.name, SAMPLE));
     if let Some(column) = by_word {
         return Some(by_name(column));
     }
@@ -191,10 +247,14 @@ fn unit(table: &Table, samples: Option<usize>) -> Option<Proposal> {
         names.as_ref().is_some_and(|names| {
             unlike > 2
                 && unlike < all
-                && column.labels().iter().zip(names).all(|(label, name)| match (label, name) {
-                    (Some(label), Some(name)) => name.starts_with(label.as_str()),
-                    _ => true,
-                })
+                && column
+                    .labels()
+                    .iter()
+                    .zip(names)
+                    .all(|(label, name)| match (label, name) {
+                        (Some(label), Some(name)) => name.starts_with(label.as_str()),
+                        _ => true,
+                    })
         })
     };
     if let Some(column) = labels().find(begins_names) {
@@ -233,7 +293,12 @@ fn blocks(table: &Table) -> Vec<Block> {
             columns,
         })
         .collect();
-    blocks.sort_by(|a, b| b.columns.len().cmp(&a.columns.len()).then(a.columns.cmp(&b.columns)));
+    blocks.sort_by(|a, b| {
+        b.columns
+            .len()
+            .cmp(&a.columns.len())
+            .then(a.columns.cmp(&b.columns))
+    });
     // Beside a large block, a handful of columns that happen to be numbered is none.
     let largest = blocks.first().map_or(0, |block| block.columns.len());
     blocks.retain(|block| block.columns.len() * 20 >= largest);
@@ -242,8 +307,14 @@ fn blocks(table: &Table) -> Vec<Block> {
 
 fn outcomes(table: &Table, free: &[usize], proposals: &Proposals) -> Vec<Proposal> {
     let is_other = |column: &Column| {
-        proposals.batches.iter().any(|batch| batch.column == column.name)
-            || proposals.order.as_ref().is_some_and(|order| order.column == column.name)
+        proposals
+            .batches
+            .iter()
+            .any(|batch| batch.column == column.name)
+            || proposals
+                .order
+                .as_ref()
+                .is_some_and(|order| order.column == column.name)
     };
     let can_be = |column: &&Column| {
         let (all, unlike) = variety(column);
@@ -262,7 +333,11 @@ fn outcomes(table: &Table, free: &[usize], proposals: &Proposals) -> Vec<Proposa
         .filter(can_be)
         .map(|column| Proposal {
             column: column.name.clone(),
-            reason: if says(&column.name, OUTCOME) { Reason::Name } else { Reason::OutsideBlock },
+            reason: if says(&column.name, OUTCOME) {
+                Reason::Name
+            } else {
+                Reason::OutsideBlock
+            },
         })
         .collect();
     candidates.sort_by_key(|proposal| proposal.reason != Reason::Name);
@@ -278,7 +353,10 @@ mod tests {
     use super::*;
 
     fn numbers(name: &str, n: usize) -> Column {
-        Column::numbers(name, (0..n).map(|row| (row * 7 % 11) as f64 + 0.5).collect())
+        Column::numbers(
+            name,
+            (0..n).map(|row| (row * 7 % 11) as f64 + 0.5).collect(),
+        )
     }
 
     fn texts(name: &str, n: usize, label: impl Fn(usize) -> String) -> Column {
@@ -299,15 +377,25 @@ mod tests {
         let proposals = roles(&Table::new(columns));
         assert_eq!(
             proposals.samples,
-            Some(Proposal { column: "scan".to_owned(), reason: Reason::Name })
+            Some(Proposal {
+                column: "scan".to_owned(),
+                reason: Reason::Name
+            })
         );
         assert_eq!(
             proposals.unit,
-            Some(Proposal { column: "wheel".to_owned(), reason: Reason::BeginsSampleNames })
+            Some(Proposal {
+                column: "wheel".to_owned(),
+                reason: Reason::BeginsSampleNames
+            })
         );
         assert_eq!(proposals.batches[0].column, "cave");
         assert_eq!(proposals.order.unwrap().column, "order");
-        let outcomes: Vec<_> = proposals.outcomes.iter().map(|p| p.column.as_str()).collect();
+        let outcomes: Vec<_> = proposals
+            .outcomes
+            .iter()
+            .map(|p| p.column.as_str())
+            .collect();
         assert_eq!(outcomes, ["salt in moisture"]);
         assert_eq!(proposals.blocks.len(), 1);
         assert_eq!(proposals.blocks[0].columns, (5..25).collect::<Vec<_>>());
@@ -317,10 +405,15 @@ mod tests {
     #[test]
     fn units_are_counted_from_the_names_where_no_column_has_them() {
         let n = 12;
-        let mut columns = vec![texts("name", n, |row| format!("B{:02}-n{}", row / 2, row % 2))];
+        let mut columns = vec![texts("name", n, |row| {
+            format!("B{:02}-n{}", row / 2, row % 2)
+        })];
         columns.extend((0..5).map(|at| numbers(&format!("x{at}"), n)));
         let proposals = roles(&Table::new(columns));
-        assert_eq!((proposals.unit, proposals.units_from_names), (None, Some(6)));
+        assert_eq!(
+            (proposals.unit, proposals.units_from_names),
+            (None, Some(6))
+        );
         assert!(proposals.outcomes.is_empty());
     }
 }

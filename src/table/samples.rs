@@ -66,7 +66,9 @@ fn without_zeros(key: &str) -> String {
         folded.push_str(&rest[..start]);
         let number = &rest[start..];
         let is_part = |letter: char| letter.is_ascii_digit() || letter == '.';
-        let length = number.find(|letter| !is_part(letter)).unwrap_or(number.len());
+        let length = number
+            .find(|letter| !is_part(letter))
+            .unwrap_or(number.len());
         let (number, behind) = number.split_at(length);
         let bare = number.trim_start_matches('0');
         if !bare.starts_with(|letter: char| letter.is_ascii_digit()) {
@@ -234,8 +236,14 @@ fn matches_under(left: &[Option<String>], right: &[Option<String>], rule: JoinRu
 
 fn all_equal(table: &Table, key: usize, rows: &[usize]) -> bool {
     rows.iter().skip(1).all(|&row| {
-        let others = table.columns().iter().enumerate().filter(|(at, _)| *at != key);
-        others.into_iter().all(|(_, column)| column.value(row) == column.value(rows[0]))
+        let others = table
+            .columns()
+            .iter()
+            .enumerate()
+            .filter(|(at, _)| *at != key);
+        others
+            .into_iter()
+            .all(|(_, column)| column.value(row) == column.value(rows[0]))
     })
 }
 
@@ -248,8 +256,15 @@ fn widened(
 ) -> Table {
     let mut table = left.clone();
     let first_origin = table.origins.len() as u16;
-    table.origins.extend(right.origins.iter().map(|origin| looked_up(origin, rows)));
-    for (at, column) in right.columns().iter().enumerate().filter(|(at, _)| *at != right_key) {
+    table
+        .origins
+        .extend(right.origins.iter().map(|origin| looked_up(origin, rows)));
+    for (at, column) in right
+        .columns()
+        .iter()
+        .enumerate()
+        .filter(|(at, _)| *at != right_key)
+    {
         let name = free_name(&table, right, &column.name);
         if name != column.name {
             report.renamed.push((column.name.clone(), name.clone()));
@@ -281,8 +296,16 @@ fn free_name(table: &Table, right: &Table, name: &str) -> String {
 
 fn looked_up(origin: &Origin, rows: &[Option<usize>]) -> Origin {
     let lines = match &origin.lines {
-        Lines::Unknown => Lines::Rows(rows.iter().map(|row| row.map_or(0, |row| row as u32 + 1)).collect()),
-        Lines::Rows(at) => Lines::Rows(rows.iter().map(|row| row.map_or(0, |row| at[row])).collect()),
+        Lines::Unknown => Lines::Rows(
+            rows.iter()
+                .map(|row| row.map_or(0, |row| row as u32 + 1))
+                .collect(),
+        ),
+        Lines::Rows(at) => Lines::Rows(
+            rows.iter()
+                .map(|row| row.map_or(0, |row| at[row]))
+                .collect(),
+        ),
         Lines::Columns(heads) => Lines::Columns(
             rows.iter()
                 .map(|row| row.map_or(String::new(), |row| heads[row].clone()))
@@ -297,9 +320,11 @@ fn looked_up(origin: &Origin, rows: &[Option<usize>]) -> Origin {
 
 fn values(column: &Column, rows: &[Option<usize>]) -> Values {
     match &column.values {
-        Values::Texts(texts) => {
-            Values::Texts(rows.iter().map(|row| row.and_then(|row| texts[row].clone())).collect())
-        }
+        Values::Texts(texts) => Values::Texts(
+            rows.iter()
+                .map(|row| row.and_then(|row| texts[row].clone()))
+                .collect(),
+        ),
         Values::Numbers(numbers) => {
             let values = rows
                 .iter()
@@ -326,8 +351,20 @@ mod tests {
 
     fn scans() -> Table {
         Table::new(vec![
-            Column::texts("scan", ["a-1", "a-2", "b-1", "c-1", "x-1"].map(Some).to_vec()),
-            Column::texts("wheel", vec![Some("K-01"), Some("K-01"), Some("k-02"), Some(" K-3 "), None]),
+            Column::texts(
+                "scan",
+                ["a-1", "a-2", "b-1", "c-1", "x-1"].map(Some).to_vec(),
+            ),
+            Column::texts(
+                "wheel",
+                vec![
+                    Some("K-01"),
+                    Some("K-01"),
+                    Some("k-02"),
+                    Some(" K-3 "),
+                    None,
+                ],
+            ),
             Column::numbers("fat", vec![1.0, 2.0, 3.0, 4.0, 5.0]),
         ])
     }
@@ -353,7 +390,10 @@ mod tests {
         assert_eq!((report.matched, report.unnamed_left), (4, 1));
         assert_eq!(report.only_right, ["K-9"]);
         assert!(report.only_left.is_empty());
-        assert_eq!(report.renamed, [("fat".to_owned(), "fat (joined)".to_owned())]);
+        assert_eq!(
+            report.renamed,
+            [("fat".to_owned(), "fat (joined)".to_owned())]
+        );
         let iron = table.column("iron").unwrap();
         let states: Vec<_> = (0..5).map(|row| iron.value(row)).collect();
         assert_eq!(
@@ -385,7 +425,10 @@ mod tests {
     #[test]
     fn keys_that_come_twice_with_differing_values_give_none() {
         let right = laboratory().take(&[0, 0, 1, 2]);
-        let left = Table::new(vec![Column::texts("wheel", vec![Some("K-1"), Some("K-02")])]);
+        let left = Table::new(vec![Column::texts(
+            "wheel",
+            vec![Some("K-1"), Some("K-02")],
+        )]);
         // The same row twice is no contradiction.
         let (table, report) = join(&left, "wheel", &right, "id", &JoinRule::default()).unwrap();
         assert_eq!(report.repeated_right, Vec::<String>::new());
@@ -394,7 +437,10 @@ mod tests {
         columns[2] = Column::numbers("fat", vec![30.0, 30.5, 31.0, 32.0]);
         let right = Table::new(columns);
         let (table, report) = join(&left, "wheel", &right, "id", &JoinRule::default()).unwrap();
-        assert_eq!((report.repeated_right, report.undecided), (vec!["K-1".to_owned()], 1));
+        assert_eq!(
+            (report.repeated_right, report.undecided),
+            (vec!["K-1".to_owned()], 1)
+        );
         assert_eq!(table.column("iron").unwrap().value(0), Value::Missing);
         assert_eq!(table.n_rows(), 2);
     }

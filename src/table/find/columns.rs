@@ -26,7 +26,10 @@ pub fn find(
     let mut empty = Finding::new(FindingKind::EmptyColumns, Treatment::Kept);
     let mut constant = Finding::new(FindingKind::ConstantColumns, Treatment::Kept);
     let mut equal = Finding::new(FindingKind::EqualColumns, Treatment::Kept);
-    let mut below = Finding::new(FindingKind::BelowLimitShare { largest: 0.0 }, Treatment::Kept);
+    let mut below = Finding::new(
+        FindingKind::BelowLimitShare { largest: 0.0 },
+        Treatment::Kept,
+    );
     let (mut missing, mut values, mut largest) = (0_usize, 0_usize, 0.0_f64);
     let mut by_hash: HashMap<u64, Vec<usize>> = HashMap::new();
     for (done, &at) in predictors.iter().enumerate() {
@@ -52,7 +55,10 @@ pub fn find(
             continue;
         }
         let known = by_hash.entry(hash(column)).or_default();
-        if let Some(&other) = known.iter().find(|&&other| are_equal(column, &table.columns()[other])) {
+        if let Some(&other) = known
+            .iter()
+            .find(|&&other| are_equal(column, &table.columns()[other]))
+        {
             equal.count += 1;
             equal.add_column(&column.name);
             equal.add_example(&table.columns()[other].name);
@@ -65,7 +71,10 @@ pub fn find(
     let mut shares = Finding::new(FindingKind::MissingShare { share }, Treatment::Kept);
     shares.count = if share >= MISSING { missing } else { 0 };
     let findings = [empty, constant, equal, shares, below];
-    Ok(findings.into_iter().filter(|finding| finding.count > 0).collect())
+    Ok(findings
+        .into_iter()
+        .filter(|finding| finding.count > 0)
+        .collect())
 }
 
 /// How many values are missing (one that is known by a limit is not).
@@ -73,7 +82,11 @@ pub fn find(
 pub fn n_missing(column: &Column) -> usize {
     match &column.values {
         Values::Numbers(numbers) => {
-            let nothing = numbers.values().iter().filter(|value| value.is_nan()).count();
+            let nothing = numbers
+                .values()
+                .iter()
+                .filter(|value| value.is_nan())
+                .count();
             nothing - numbers.censored().len()
         }
         Values::Texts(texts) => texts.iter().filter(|text| text.is_none()).count(),
@@ -106,7 +119,11 @@ fn hash(column: &Column) -> u64 {
         Values::Numbers(numbers) => {
             for value in numbers.values() {
                 // All that is no number hashes alike; equality is checked value by value.
-                let bits = if value.is_nan() { 1 } else { (value + 0.0).to_bits() };
+                let bits = if value.is_nan() {
+                    1
+                } else {
+                    (value + 0.0).to_bits()
+                };
                 bits.hash(&mut hasher);
             }
         }

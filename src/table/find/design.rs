@@ -43,7 +43,13 @@ pub fn batch(table: &Table, outcome: usize, batch: usize) -> Vec<Finding> {
                 // Many small batches give a large V by chance; the corrected one must agree.
                 if v >= V && corrected >= V / 2.0 {
                     let strength = Association::CramersV(v);
-                    report(FindingKind::BatchWithOutcome { batch: name.clone(), strength }, table.len());
+                    report(
+                        FindingKind::BatchWithOutcome {
+                            batch: name.clone(),
+                            strength,
+                        },
+                        table.len(),
+                    );
                 }
             }
             let sizes: Vec<(usize, bool)> = table
@@ -51,21 +57,40 @@ pub fn batch(table: &Table, outcome: usize, batch: usize) -> Vec<Finding> {
                 .map(|counts| (counts.values().sum(), counts.len() == 1))
                 .collect();
             let all: usize = sizes.iter().map(|(size, _)| size).sum();
-            let in_one: usize = sizes.iter().filter(|(_, one)| *one).map(|(size, _)| size).sum();
+            let in_one: usize = sizes
+                .iter()
+                .filter(|(_, one)| *one)
+                .map(|(size, _)| size)
+                .sum();
             let n_classes = classes.iter().flatten().collect::<BTreeSet<_>>().len();
             let share = in_one as f64 / all.max(1) as f64;
             let has_large = sizes.iter().any(|(size, one)| *one && *size >= LARGE);
             let are_batches = sizes.iter().any(|(size, _)| *size > 1);
-            if n_classes > 1 && table.len() > 1 && are_batches && (has_large || share >= ONE_CLASS) {
-                report(FindingKind::BatchOfOneClass { batch: name.clone(), share }, in_one);
+            if n_classes > 1 && table.len() > 1 && are_batches && (has_large || share >= ONE_CLASS)
+            {
+                report(
+                    FindingKind::BatchOfOneClass {
+                        batch: name.clone(),
+                        share,
+                    },
+                    in_one,
+                );
             }
         }
         None => {
-            let Some(numbers) = column.as_numbers() else { return findings };
+            let Some(numbers) = column.as_numbers() else {
+                return findings;
+            };
             if let Some((eta, corrected, count)) = eta_squared(numbers.values(), &batches) {
                 if eta >= ETA_SQUARED && corrected >= ETA_SQUARED / 2.0 {
                     let strength = Association::EtaSquared(eta);
-                    report(FindingKind::BatchWithOutcome { batch: name.clone(), strength }, count);
+                    report(
+                        FindingKind::BatchWithOutcome {
+                            batch: name.clone(),
+                            strength,
+                        },
+                        count,
+                    );
                 }
             }
         }
@@ -94,7 +119,11 @@ pub fn cross(classes: &[Option<String>], batches: &[Option<String>]) -> Cross {
     let mut cross = Cross::new();
     for (class, batch) in classes.iter().zip(batches) {
         if let (Some(class), Some(batch)) = (class, batch) {
-            *cross.entry(batch.clone()).or_default().entry(class.clone()).or_default() += 1;
+            *cross
+                .entry(batch.clone())
+                .or_default()
+                .entry(class.clone())
+                .or_default() += 1;
         }
     }
     cross
@@ -174,7 +203,9 @@ pub fn eta_squared(y: &[f64], batches: &[Option<String>]) -> Option<(f64, f64, u
 pub fn order(table: &Table, outcome: usize, order: usize) -> Option<Finding> {
     let y = in_numbers(&table.columns()[outcome])?;
     let x = in_numbers(&table.columns()[order])?;
-    let both: Vec<usize> = (0..y.len()).filter(|&at| !y[at].is_nan() && !x[at].is_nan()).collect();
+    let both: Vec<usize> = (0..y.len())
+        .filter(|&at| !y[at].is_nan() && !x[at].is_nan())
+        .collect();
     let pick = |values: &[f64]| ranks(&both.iter().map(|&at| values[at]).collect::<Vec<_>>());
     let (rank_correlation, n) = correlation(&pick(&y), &pick(&x))?;
     // Beyond 2.58 standard errors, so that a dozen samples do not cry wolf.
@@ -198,12 +229,16 @@ fn in_numbers(column: &Column) -> Option<Vec<f64>> {
     let mut unlike: Vec<&String> = texts.iter().flatten().collect();
     unlike.sort_unstable();
     unlike.dedup();
-    let are_dates = unlike.iter().all(|text| text.len() >= 10 && text.as_bytes()[4] == b'-');
+    let are_dates = unlike
+        .iter()
+        .all(|text| text.len() >= 10 && text.as_bytes()[4] == b'-');
     (unlike.len() == 2 || are_dates).then(|| {
         texts
             .iter()
             .map(|text| {
-                let at = text.as_ref().and_then(|text| unlike.binary_search(&text).ok());
+                let at = text
+                    .as_ref()
+                    .and_then(|text| unlike.binary_search(&text).ok());
                 at.map_or(f64::NAN, |at| at as f64)
             })
             .collect()

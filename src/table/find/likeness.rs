@@ -32,7 +32,11 @@ pub fn find(
 ) -> Result<Vec<Finding>, Cancelled> {
     let column = &table.columns()[outcome];
     let form = form(column);
-    let others: Vec<usize> = predictors.iter().copied().filter(|&at| at != outcome).collect();
+    let others: Vec<usize> = predictors
+        .iter()
+        .copied()
+        .filter(|&at| at != outcome)
+        .collect();
     let mut like: Vec<(f64, usize, Likeness)> = Vec::new();
     for (done, &at) in others.iter().enumerate() {
         work.step(done, others.len())?;
@@ -49,7 +53,10 @@ pub fn find(
     like.sort_by(|a, b| b.0.total_cmp(&a.0).then(a.1.cmp(&b.1)));
     if let Some(&(_, at, likeness)) = like.first() {
         let predictor = table.columns()[at].name.clone();
-        let kind = FindingKind::EqualsOutcome { predictor, likeness };
+        let kind = FindingKind::EqualsOutcome {
+            predictor,
+            likeness,
+        };
         let mut finding = Finding::new(kind, Treatment::Kept).counting(like.len());
         for (_, at, _) in &like {
             finding.add_column(&table.columns()[*at].name);

@@ -59,10 +59,23 @@ pub fn with_roles(
         }
     }
     findings.extend(near::find(table, roles, threads, &work.part(0.0..0.6))?);
-    findings.extend(columns::find(table, roles.predictors, &work.part(0.6..0.7))?);
-    findings.extend(normalized::find(table, roles.predictors, &work.part(0.7..0.8))?);
+    findings.extend(columns::find(
+        table,
+        roles.predictors,
+        &work.part(0.6..0.7),
+    )?);
+    findings.extend(normalized::find(
+        table,
+        roles.predictors,
+        &work.part(0.7..0.8),
+    )?);
     if let Some(outcome) = position(roles.outcome) {
-        findings.extend(likeness::find(table, outcome, roles.predictors, &work.part(0.8..1.0))?);
+        findings.extend(likeness::find(
+            table,
+            outcome,
+            roles.predictors,
+            &work.part(0.8..1.0),
+        )?);
         if let Some(batch) = position(roles.batch) {
             findings.extend(design::batch(table, outcome, batch));
         }

@@ -37,7 +37,11 @@ pub fn unnamed(table: &Table, samples: usize) -> Option<Finding> {
     let labels = table.columns()[samples].labels();
     let mut finding = Finding::new(FindingKind::UnnamedSamples, Treatment::Kept);
     finding.add_column(&table.columns()[samples].name);
-    for (row, _) in labels.iter().enumerate().filter(|(_, label)| label.is_none()) {
+    for (row, _) in labels
+        .iter()
+        .enumerate()
+        .filter(|(_, label)| label.is_none())
+    {
         finding.add(|| table.place(row, samples), "");
     }
     (finding.count > 0).then_some(finding)
@@ -78,7 +82,11 @@ pub fn repeats(table: &Table, samples: usize) -> Option<Finding> {
 pub fn stems(labels: &[Option<String>]) -> Option<Vec<Option<String>>> {
     let stems: Vec<Option<String>> = labels
         .iter()
-        .map(|label| label.as_ref().map(|label| stem(label).unwrap_or(label).to_owned()))
+        .map(|label| {
+            label
+                .as_ref()
+                .map(|label| stem(label).unwrap_or(label).to_owned())
+        })
         .collect();
     let mut members: BTreeMap<&str, Vec<&str>> = BTreeMap::new();
     for (label, stem) in labels.iter().zip(&stems) {
@@ -87,10 +95,11 @@ pub fn stems(labels: &[Option<String>]) -> Option<Vec<Option<String>>> {
         }
     }
     let named: usize = members.values().map(Vec::len).sum();
+    // The same name twice is a repeated name, not a repeat of a unit.
     let with_siblings: usize = members
         .values()
+        .filter(|labels| labels.iter().any(|label| label != &labels[0]))
         .map(Vec::len)
-        .filter(|&count| count > 1)
         .sum();
     // Fewer than three units: “K-1 … K-40” is a count of samples of one sort, not of repeats.
     // And a unit of more than half of all samples is a sort of samples, too.
@@ -105,8 +114,22 @@ pub fn stems(labels: &[Option<String>]) -> Option<Vec<Option<String>>> {
 /// A name without its last part, if that part counts repeats.
 fn stem(label: &str) -> Option<&str> {
     const WORDS: [&str; 16] = [
-        "rep", "replicate", "scan", "day", "night", "visit", "n", "r", "t", "d", "s", "run", "dup", "copy",
-        "tech", "v",
+        "rep",
+        "replicate",
+        "scan",
+        "day",
+        "night",
+        "visit",
+        "n",
+        "r",
+        "t",
+        "d",
+        "s",
+        "run",
+        "dup",
+        "copy",
+        "tech",
+        "v",
     ];
     let at = label.rfind(['_', '-', '.', ' ', '/', '#', ':'])?;
     let (stem, last) = (&label[..at], &label[at + 1..]);
@@ -144,7 +167,10 @@ mod tests {
     use super::*;
 
     fn of(labels: &[&str]) -> Option<Vec<String>> {
-        let labels: Vec<_> = labels.iter().map(|label| Some((*label).to_owned())).collect();
+        let labels: Vec<_> = labels
+            .iter()
+            .map(|label| Some((*label).to_owned()))
+            .collect();
         stems(&labels).map(|stems| stems.into_iter().flatten().collect())
     }
 
@@ -169,7 +195,12 @@ mod tests {
         let names: Vec<String> = (1..40).map(|k| format!("K-{k}")).collect();
         let names: Vec<&str> = names.iter().map(String::as_str).collect();
         assert_eq!(of(&names), None);
-        assert_eq!(of(&["north-1", "north-2", "north-3", "south-1", "south-2", "south-3"]), None);
+        assert_eq!(
+            of(&[
+                "north-1", "north-2", "north-3", "south-1", "south-2", "south-3"
+            ]),
+            None
+        );
         assert_eq!(of(&["K-001", "K-002", "L-001"]), None);
     }
 }

@@ -66,7 +66,11 @@ pub fn find(
         let mut finding = Finding::new(kind, Treatment::Kept).counting(pairs.len());
         for (one, other) in pairs.into_iter().take(KEPT) {
             finding.places.push(table.place(other, 0));
-            finding.examples.push(shortened(&format!("{} and {}", name_of(one), name_of(other))));
+            finding.examples.push(shortened(&format!(
+                "{} and {}",
+                name_of(one),
+                name_of(other)
+            )));
         }
         (finding.count > 0).then_some(finding)
     };
@@ -83,7 +87,10 @@ pub fn find(
             .into_iter()
             .filter(|pair| !known.contains(pair) && !are_one_unit(pair.0, pair.1))
             .collect();
-        findings.extend(report(FindingKind::NearIdenticalSamples { dimension }, pairs));
+        findings.extend(report(
+            FindingKind::NearIdenticalSamples { dimension },
+            pairs,
+        ));
     }
     Ok(findings)
 }
@@ -98,7 +105,9 @@ fn identical(
     let mut filled = vec![0_usize; table.n_rows()];
     for &at in predictors {
         work.check()?;
-        let Values::Numbers(numbers) = &table.columns()[at].values else { continue };
+        let Values::Numbers(numbers) = &table.columns()[at].values else {
+            continue;
+        };
         for (row, value) in numbers.values().iter().enumerate() {
             if value.is_nan() {
                 0_u64.hash(&mut hashers[row]);
@@ -159,7 +168,9 @@ fn near(
     drop(columns);
     // The Gram matrix holds both: distances and, through its norm, the effective dimension.
     let gram = in_order(threads, n, work, |one| {
-        Ok((0..=one).map(|other| dot(&rows[one], &rows[other])).collect::<Vec<f64>>())
+        Ok((0..=one)
+            .map(|other| dot(&rows[one], &rows[other]))
+            .collect::<Vec<f64>>())
     })?;
     let trace: f64 = (0..n).map(|row| gram[row][row]).sum();
     let squares: f64 = (0..n)
@@ -185,7 +196,11 @@ fn near(
         .collect();
     nearest.sort_by(f64::total_cmp);
     let median = nearest[n / 2];
-    let share = if dimension >= DIMENSION { NEAR } else { NEAR_IN_FEW };
+    let share = if dimension >= DIMENSION {
+        NEAR
+    } else {
+        NEAR_IN_FEW
+    };
     let mut pairs: BTreeMap<(usize, usize), f64> = BTreeMap::new();
     for one in 0..n {
         for other in one + 1..n {
@@ -211,7 +226,13 @@ fn standardized(values: &[f64]) -> Option<Vec<f64>> {
     (n > 1.0 && sd > 0.0 && sd.is_finite()).then(|| {
         values
             .iter()
-            .map(|value| if value.is_nan() { 0.0 } else { (value - mean) / sd })
+            .map(|value| {
+                if value.is_nan() {
+                    0.0
+                } else {
+                    (value - mean) / sd
+                }
+            })
             .collect()
     })
 }

@@ -49,7 +49,11 @@ pub fn find(
 
 /// Mean 0 within 1e-6 and standard deviation 1 within 1e-3, whichever divisor was used.
 fn is_standardized(column: &[f64]) -> bool {
-    let known: Vec<f64> = column.iter().copied().filter(|value| !value.is_nan()).collect();
+    let known: Vec<f64> = column
+        .iter()
+        .copied()
+        .filter(|value| !value.is_nan())
+        .collect();
     let n = known.len() as f64;
     if n < 3.0 {
         return false;
@@ -71,7 +75,9 @@ fn have_equal_sums(sums: &[(f64, f64)]) -> bool {
     let (first, size) = sums[0];
     // Rows that were centred sum to nothing, which says nothing about other rows.
     first.abs() > 1e-3 * size
-        && sums.iter().all(|(sum, _)| (sum - first).abs() <= 1e-6 * first.abs())
+        && sums
+            .iter()
+            .all(|(sum, _)| (sum - first).abs() <= 1e-6 * first.abs())
 }
 
 /// Whether every row holds the same values in another order, and enough unlike ones.

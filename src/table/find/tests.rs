@@ -63,7 +63,10 @@ fn ordinary_tables_give_no_finding() {
         let mut dice = Dice(seed * 7919);
         let mut columns = wide(&mut dice, 30, 200);
         columns.push(Column::numbers("order", (0..30).map(f64::from).collect()));
-        let roles = Roles { order: Some("order"), ..Roles::default() };
+        let roles = Roles {
+            order: Some("order"),
+            ..Roles::default()
+        };
         assert_eq!(codes(&find(columns, roles)), [] as [&str; 0], "seed {seed}");
     }
 }
@@ -80,10 +83,21 @@ fn idle_predictors_are_listed() {
     let values = columns[10].as_numbers().unwrap().values().to_vec();
     columns[10].values = Values::Numbers(Numbers::with_censored(values, limits));
     let findings = find(columns, Roles::default());
-    assert_eq!(codes(&findings), ["empty-columns", "constant-columns", "equal-columns", "below-limit-share"]);
+    assert_eq!(
+        codes(&findings),
+        [
+            "empty-columns",
+            "constant-columns",
+            "equal-columns",
+            "below-limit-share"
+        ]
+    );
     assert_eq!(findings[2].columns, ["x7"]);
     assert_eq!(findings[2].examples, ["x5"]);
-    assert_eq!(findings[3].kind, FindingKind::BelowLimitShare { largest: 0.4 });
+    assert_eq!(
+        findings[3].kind,
+        FindingKind::BelowLimitShare { largest: 0.4 }
+    );
 }
 
 #[test]
@@ -91,10 +105,19 @@ fn an_outcome_in_disguise_is_named() {
     let mut dice = Dice(11);
     let mut columns = wide(&mut dice, 40, 50);
     let y = columns[1].as_numbers().unwrap().values().to_vec();
-    columns[8] = Column::numbers("salt_calc", y.iter().map(|y| 3.0 - 2.0 * y + 0.01 * dice.normal()).collect());
+    columns[8] = Column::numbers(
+        "salt_calc",
+        y.iter()
+            .map(|y| 3.0 - 2.0 * y + 0.01 * dice.normal())
+            .collect(),
+    );
     let findings = find(columns, Roles::default());
     assert_eq!(codes(&findings), ["equals-outcome", "named-like-outcome"]);
-    let FindingKind::EqualsOutcome { predictor, likeness: Likeness::Correlation(r) } = &findings[0].kind else {
+    let FindingKind::EqualsOutcome {
+        predictor,
+        likeness: Likeness::Correlation(r),
+    } = &findings[0].kind
+    else {
         panic!("{findings:?}");
     };
     assert_eq!(predictor, "salt_calc");
@@ -102,10 +125,21 @@ fn an_outcome_in_disguise_is_named() {
 
     // A class: the area under the curve, turned to the right side.
     let mut columns = wide(&mut dice, 40, 50);
-    columns[1] = Column::texts("salt", (0..40).map(|row| Some(["no", "yes"][row % 2])).collect());
-    columns[8] = Column::numbers("later", (0..40).map(|row| f64::from(row % 2) * -5.0 + dice.uniform()).collect());
+    columns[1] = Column::texts(
+        "salt",
+        (0..40).map(|row| Some(["no", "yes"][row % 2])).collect(),
+    );
+    columns[8] = Column::numbers(
+        "later",
+        (0..40)
+            .map(|row| f64::from(row % 2) * -5.0 + dice.uniform())
+            .collect(),
+    );
     let findings = find(columns, Roles::default());
-    let expected = FindingKind::EqualsOutcome { predictor: "later".to_owned(), likeness: Likeness::Auc(1.0) };
+    let expected = FindingKind::EqualsOutcome {
+        predictor: "later".to_owned(),
+        likeness: Likeness::Auc(1.0),
+    };
     assert_eq!(findings[0].kind, expected);
 }
 
@@ -120,12 +154,35 @@ fn samples_that_are_alike_are_listed_unless_they_are_one_unit() {
         column.values = Values::Numbers(Numbers::new(values));
     }
     let findings = find(columns.clone(), Roles::default());
-    assert_eq!(codes(&findings), ["identical-samples", "near-identical-samples"]);
+    assert_eq!(
+        codes(&findings),
+        ["identical-samples", "near-identical-samples"]
+    );
     assert_eq!(findings[0].examples, ["S004x and S020x"]);
     assert_eq!(findings[1].examples, ["S006x and S021x"]);
-    let units = (0..30).map(|row| Some(format!("u{}", match row { 20 => 4, 21 => 6, _ => row }))).collect();
+    let units = (0..30)
+        .map(|row| {
+            Some(format!(
+                "u{}",
+                match row {
+                    20 => 4,
+                    21 => 6,
+                    _ => row,
+                }
+            ))
+        })
+        .collect();
     columns.push(Column::texts("unit", units));
-    assert!(find(columns, Roles { unit: Some("unit"), ..Roles::default() }).is_empty());
+    assert!(
+        find(
+            columns,
+            Roles {
+                unit: Some("unit"),
+                ..Roles::default()
+            }
+        )
+        .is_empty()
+    );
 }
 
 #[test]
@@ -138,10 +195,17 @@ fn excluded_samples_are_not_looked_at() {
     columns[0] = Column::texts("sample", names);
     let table = Table::new(columns);
     let found = |rows: &[usize]| {
-        let roles = Roles { rows, sample_name: Some("sample"), ..Roles::default() };
+        let roles = Roles {
+            rows,
+            sample_name: Some("sample"),
+            ..Roles::default()
+        };
         with_roles(&table, &roles, Threads::new(1), &Work::unattended()).unwrap()
     };
-    assert_eq!(codes(&found(&(0..12).collect::<Vec<_>>())), ["repeated-samples", "unnamed-samples"]);
+    assert_eq!(
+        codes(&found(&(0..12).collect::<Vec<_>>())),
+        ["repeated-samples", "unnamed-samples"]
+    );
     let without_three = found(&[0, 1, 2, 4, 5]);
     assert_eq!(codes(&without_three), ["repeated-samples"]);
     // Places are those of the whole table.
@@ -153,30 +217,69 @@ fn excluded_samples_are_not_looked_at() {
 fn names_of_samples_are_looked_at() {
     let mut dice = Dice(23);
     let mut columns = wide(&mut dice, 12, 6);
-    let mut names: Vec<Option<String>> = (0..12).map(|row| Some(format!("W{}-n{}", row / 2, row % 2))).collect();
+    let mut names: Vec<Option<String>> = (0..12)
+        .map(|row| Some(format!("W{}-n{}", row / 2, row % 2)))
+        .collect();
     names[3] = names[2].clone();
     names[7] = None;
     columns[0] = Column::texts("sample", names);
     let findings = find(columns, Roles::default());
-    assert_eq!(codes(&findings), ["repeated-samples", "unnamed-samples", "looks-like-repeats"]);
+    assert_eq!(
+        codes(&findings),
+        ["repeated-samples", "unnamed-samples", "looks-like-repeats"]
+    );
     assert_eq!((findings[0].count, findings[1].count), (2, 1));
-    assert_eq!(findings[2].kind, FindingKind::LooksLikeRepeats { n_units: 6 });
+    assert_eq!(
+        findings[2].kind,
+        FindingKind::LooksLikeRepeats { n_units: 6 }
+    );
 }
 
 #[test]
 fn batches_and_order_that_go_with_the_outcome_are_measured() {
     let mut dice = Dice(31);
     let mut columns = wide(&mut dice, 40, 6);
-    columns[1] = Column::numbers("salt", (0..40).map(|row| f64::from(row) * 0.1 + dice.normal()).collect());
-    columns.push(Column::texts("batch", (0..40).map(|row| Some(["a", "b"][row / 20])).collect()));
+    columns[1] = Column::numbers(
+        "salt",
+        (0..40)
+            .map(|row| f64::from(row) * 0.1 + dice.normal())
+            .collect(),
+    );
+    columns.push(Column::texts(
+        "batch",
+        (0..40).map(|row| Some(["a", "b"][row / 20])).collect(),
+    ));
     columns.push(Column::numbers("order", (0..40).map(f64::from).collect()));
-    let roles = Roles { batch: Some("batch"), order: Some("order"), ..Roles::default() };
-    assert_eq!(codes(&find(columns.clone(), roles.clone())), ["batch-with-outcome", "order-with-outcome"]);
-    columns[1] = Column::texts("salt", (0..40).map(|row| Some(["no", "yes"][row / 20])).collect());
+    let roles = Roles {
+        batch: Some("batch"),
+        order: Some("order"),
+        ..Roles::default()
+    };
+    assert_eq!(
+        codes(&find(columns.clone(), roles.clone())),
+        ["batch-with-outcome", "order-with-outcome"]
+    );
+    columns[1] = Column::texts(
+        "salt",
+        (0..40).map(|row| Some(["no", "yes"][row / 20])).collect(),
+    );
     let findings = find(columns, roles);
-    assert_eq!(codes(&findings), ["batch-with-outcome", "batch-of-one-class", "order-with-outcome"]);
+    assert_eq!(
+        codes(&findings),
+        [
+            "batch-with-outcome",
+            "batch-of-one-class",
+            "order-with-outcome"
+        ]
+    );
     let strength = Association::CramersV(1.0);
-    assert_eq!(findings[0].kind, FindingKind::BatchWithOutcome { batch: "batch".to_owned(), strength });
+    assert_eq!(
+        findings[0].kind,
+        FindingKind::BatchWithOutcome {
+            batch: "batch".to_owned(),
+            strength
+        }
+    );
 }
 
 #[test]
@@ -186,18 +289,28 @@ fn measures_of_association_agree_with_scipy() {
         counts
             .iter()
             .flat_map(|(batch, class, count)| {
-                std::iter::repeat_n((Some((*class).to_owned()), Some((*batch).to_owned())), *count)
+                std::iter::repeat_n(
+                    (Some((*class).to_owned()), Some((*batch).to_owned())),
+                    *count,
+                )
             })
             .unzip()
     };
     let (classes, batches) = labels(&[
-        ("a", "x", 10), ("a", "y", 4), ("a", "z", 3), ("b", "x", 2), ("b", "y", 9), ("b", "z", 8),
+        ("a", "x", 10),
+        ("a", "y", 4),
+        ("a", "z", 3),
+        ("b", "x", 2),
+        ("b", "y", 9),
+        ("b", "z", 8),
     ]);
     let (v, corrected) = design::cramers_v(&design::cross(&classes, &batches)).unwrap();
     assert!((v - 0.5122712062351136).abs() < 1e-12, "{v}");
     assert!((corrected - 0.459691795913153).abs() < 1e-12, "{corrected}");
     let y = [1.0, 2.0, 3.5, 2.5, 6.0, 5.0, 4.5];
-    let batches: Vec<_> = ["a", "a", "a", "b", "b", "c", "c"].map(|b| Some(b.to_owned())).to_vec();
+    let batches: Vec<_> = ["a", "a", "a", "b", "b", "c", "c"]
+        .map(|b| Some(b.to_owned()))
+        .to_vec();
     let (eta, _, groups) = design::eta_squared(&y, &batches).unwrap();
     assert!((eta - 0.5043859649122807).abs() < 1e-12, "{eta}");
     assert_eq!(groups, 3);
@@ -209,7 +322,10 @@ fn values_that_were_normalised_before_are_recognised() {
     let n = 12;
     let plain = wide(&mut dice, n, 20);
     let values = |columns: &[Column]| -> Vec<Vec<f64>> {
-        columns[2..].iter().map(|c| c.as_numbers().unwrap().values().to_vec()).collect()
+        columns[2..]
+            .iter()
+            .map(|c| c.as_numbers().unwrap().values().to_vec())
+            .collect()
     };
     let with = |changed: Vec<Vec<f64>>| {
         let mut columns = plain.clone();
@@ -223,17 +339,32 @@ fn values_that_were_normalised_before_are_recognised() {
         .iter()
         .map(|column| {
             let mean = column.iter().sum::<f64>() / n as f64;
-            let sd = (column.iter().map(|v| (v - mean).powi(2)).sum::<f64>() / (n - 1) as f64).sqrt();
+            let sd =
+                (column.iter().map(|v| (v - mean).powi(2)).sum::<f64>() / (n - 1) as f64).sqrt();
             column.iter().map(|v| (v - mean) / sd).collect()
         })
         .collect();
-    assert_eq!(with(standardized)[0].kind, FindingKind::AlreadyNormalized(Normalized::Columns));
-    let totals: Vec<f64> = (0..n).map(|row| x.iter().map(|column| column[row].abs()).sum()).collect();
+    assert_eq!(
+        with(standardized)[0].kind,
+        FindingKind::AlreadyNormalized(Normalized::Columns)
+    );
+    let totals: Vec<f64> = (0..n)
+        .map(|row| x.iter().map(|column| column[row].abs()).sum())
+        .collect();
     let closed = x
         .iter()
-        .map(|column| column.iter().zip(&totals).map(|(v, total)| v.abs() / total).collect())
+        .map(|column| {
+            column
+                .iter()
+                .zip(&totals)
+                .map(|(v, total)| v.abs() / total)
+                .collect()
+        })
         .collect();
-    assert_eq!(with(closed)[0].kind, FindingKind::AlreadyNormalized(Normalized::RowSums));
+    assert_eq!(
+        with(closed)[0].kind,
+        FindingKind::AlreadyNormalized(Normalized::RowSums)
+    );
     // The values of the first row, in the order that each row has.
     let mut first: Vec<f64> = x.iter().map(|column| column[0]).collect();
     first.sort_by(f64::total_cmp);
@@ -245,5 +376,8 @@ fn values_that_were_normalised_before_are_recognised() {
             ranked[at][row] = first[rank];
         }
     }
-    assert_eq!(with(ranked)[0].kind, FindingKind::AlreadyNormalized(Normalized::SortedRows));
+    assert_eq!(
+        with(ranked)[0].kind,
+        FindingKind::AlreadyNormalized(Normalized::SortedRows)
+    );
 }

@@ -132,9 +132,8 @@ pub fn evaluate(
 
 fn data(settings: &Data, inputs: &Inputs<'_>, work: &Work<'_>) -> Result<Outcome, Ended> {
     let joined = tables::read_and_join(settings, inputs, &work.part(0.0..0.8))?;
-    work.step(8, 10)?;
-    let roles = roles::assign(settings, joined)?;
-    work.step(9, 10)?;
+    let roles = roles::assign(settings, joined, inputs.threads, &work.part(0.8..0.95))?;
+    work.step(95, 100)?;
     let mut facts = Facts::new();
     facts::publish(&mut facts, settings, &roles);
     let caveats = design::caveats(&roles.dataset, &roles.findings, &facts);

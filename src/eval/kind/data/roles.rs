@@ -2,6 +2,8 @@
 
 use crate::base::number::{self, Precision};
 use crate::base::problem::{Place, Problem};
+use crate::base::thread::Threads;
+use crate::base::work::Work;
 use crate::eval::kind::Ended;
 use crate::eval::kind::data::Dataset;
 use crate::eval::kind::data::outcome::{self, Found};
@@ -46,8 +48,13 @@ const LEAST_SAMPLES: usize = 3;
 /// Gives columns their roles.
 ///
 /// # Errors
-/// When a column that has a role does not exist or cannot have it.
-pub fn assign(settings: &Data, joined: Joined) -> Result<Roles, Ended> {
+/// When a column that has a role does not exist or cannot have it, or the work was called off.
+pub fn assign(
+    settings: &Data,
+    joined: Joined,
+    threads: Threads,
+    work: &Work<'_>,
+) -> Result<Roles, Ended> {
     let Joined { mut table, n_first, mut findings, sources, joins } = joined;
     let file = sources[0].file.clone();
     let all_names = sample_names(settings, &table, &file)?;
@@ -141,7 +148,9 @@ pub fn assign(settings: &Data, joined: Joined) -> Result<Roles, Ended> {
             outcome: settings.outcome.as_ref().map(|outcome| outcome.column.as_str()),
             predictors: &columns,
         },
-    ));
+        threads,
+        work,
+    )?);
     let (batches, batch_names) =
         batches.map_or((None, Vec::new()), |(batches, names)| (Some(batches), names));
     let dataset = Dataset {

@@ -95,10 +95,11 @@ pub fn stems(labels: &[Option<String>]) -> Option<Vec<Option<String>>> {
         }
     }
     let named: usize = members.values().map(Vec::len).sum();
+    // The same name twice is a repeated name, not a repeat of a unit.
     let with_siblings: usize = members
         .values()
+        .filter(|labels| labels.iter().any(|label| label != &labels[0]))
         .map(Vec::len)
-        .filter(|&count| count > 1)
         .sum();
     // Fewer than three units: “K-1 … K-40” is a count of samples of one sort, not of repeats.
     // And a unit of more than half of all samples is a sort of samples, too.

@@ -182,13 +182,14 @@ fn tips(table: &FactTable) -> Vec<Tip> {
 pub fn methods(chain: &Chain<'_>, source: &Source<'_>) -> Vec<Paragraph> {
     let units = noun::unit(chain.settings()).many;
     let mut telling = Telling::new();
-    telling.say(source.say(
-        &format!(
-            "Agreement was examined on held-out predictions, each the mean over repeats, with \
-             {units} kept together."
-        ),
-        &[],
-    ));
+    let together = if chain.settings().is_some_and(|data| data.unit.is_some()) {
+        format!(", with {units} kept together")
+    } else {
+        String::new()
+    };
+    telling.say(Paragraph::of(format!(
+        "Agreement was examined on held-out predictions, each the mean over repeats{together}."
+    )));
     telling.say(source.say(
         "The average difference (predicted minus observed) was {bias}; the standard deviation of \
          the differences about it (standard error of prediction) was {sep}.",

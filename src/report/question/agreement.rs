@@ -1,6 +1,5 @@
 //! Do predictions match observations?
 
-use crate::base::number::{self, Precision};
 use crate::eval::fact::FactTable;
 use crate::figure::shape::agreement::Agreement;
 use crate::figure::shape::{Caption, Heading};
@@ -82,17 +81,9 @@ fn figure(chain: &Chain<'_>, source: &Source<'_>) -> Option<NamedFigure> {
     let unit = table
         .column("observed")
         .map_or_else(String::new, |column| column.unit.clone());
-    let two = |name: &str| {
-        source
-            .value(name)
-            .map(|value| number::text(value, Precision::Significant(2)))
-    };
+    // The slope stands among the numbers beside the figure, where nothing can cover it.
     let line = match (source.value("intercept"), source.value("slope")) {
-        (Some(intercept), Some(slope)) => Some((
-            intercept,
-            slope,
-            format!("slope {}", two("slope").unwrap_or_default()),
-        )),
+        (Some(intercept), Some(slope)) => Some((intercept, slope, String::new())),
         (Some(_) | None, None) | (None, Some(_)) => None,
     };
     let note = |name: &str, label: &str| {
@@ -120,6 +111,7 @@ fn figure(chain: &Chain<'_>, source: &Source<'_>) -> Option<NamedFigure> {
             note("nested rmse", "RMSE"),
             note("nested r²", "R²"),
             note("bias", "average difference"),
+            note("slope", "slope of the line"),
         ]
         .into_iter()
         .flatten()

@@ -22,7 +22,11 @@ fn codes(reading: &Reading) -> Vec<&'static str> {
 
 fn labels(reading: &Reading, column: &str) -> Vec<String> {
     let column = reading.table.column(column).unwrap();
-    column.labels().into_iter().map(Option::unwrap_or_default).collect()
+    column
+        .labels()
+        .into_iter()
+        .map(Option::unwrap_or_default)
+        .collect()
 }
 
 #[test]
@@ -53,13 +57,21 @@ fn broken_letters_are_kept_and_said() {
 fn sideways_tables_keep_units_and_places() {
     let text = "peak,unit,L001,L002,L003\nclass,,yes,no,yes\nmz 204.12,ppm,1.5,<0.05,2.5\nmz 310.2,ppb,2,3,4\n";
     let reading = reading(text);
-    assert_eq!(reading.used.orientation, Some(Orientation::SamplesInColumns));
+    assert_eq!(
+        reading.used.orientation,
+        Some(Orientation::SamplesInColumns)
+    );
     assert_eq!(labels(&reading, "sample"), ["L001", "L002", "L003"]);
     let peak = reading.table.column("mz 204.12").unwrap();
     assert_eq!(peak.unit.as_deref(), Some("ppm"));
     assert_eq!(peak.value(1), Value::BelowLimit(0.05));
-    let place = reading.table.place(1, reading.table.position("mz 204.12").unwrap());
-    assert_eq!((place.row, place.column.as_deref()), (Some(3), Some("L002")));
+    let place = reading
+        .table
+        .place(1, reading.table.position("mz 204.12").unwrap());
+    assert_eq!(
+        (place.row, place.column.as_deref()),
+        (Some(3), Some("L002"))
+    );
 }
 
 #[test]
@@ -82,17 +94,32 @@ fn columns_are_text_or_numbers_as_asked() {
         ..Options::default()
     };
     let reading = outcome(text, &options).unwrap();
-    assert_eq!(reading.table.column("dose").unwrap().value(0), Value::Text("10"));
-    assert_eq!(reading.table.column("lot").unwrap().value(0), Value::Number(1.0));
-    assert_eq!(reading.table.column("grade").unwrap().value(0), Value::Number(7.0));
-    assert_eq!(reading.table.column("grade").unwrap().value(1), Value::Missing);
+    assert_eq!(
+        reading.table.column("dose").unwrap().value(0),
+        Value::Text("10")
+    );
+    assert_eq!(
+        reading.table.column("lot").unwrap().value(0),
+        Value::Number(1.0)
+    );
+    assert_eq!(
+        reading.table.column("grade").unwrap().value(0),
+        Value::Number(7.0)
+    );
+    assert_eq!(
+        reading.table.column("grade").unwrap().value(1),
+        Value::Missing
+    );
 }
 
 #[test]
 fn a_header_can_be_named_or_denied() {
     let text = "made in March\nid,a\nx,1\ny,2\n";
     let with = |header_row| {
-        let options = Options { header_row: Some(header_row), ..Options::default() };
+        let options = Options {
+            header_row: Some(header_row),
+            ..Options::default()
+        };
         outcome(text, &options).unwrap()
     };
     assert_eq!(labels(&with(2), "id"), ["x", "y"]);
@@ -103,9 +130,14 @@ fn a_header_can_be_named_or_denied() {
 #[test]
 fn a_stated_encoding_is_followed_and_what_it_cannot_read_is_said() {
     let bytes = b"id,place\nx,K\xe4se\ny,north\nz,south\n";
-    let options = Options { encoding: Some(Encoding::Utf8), ..Options::default() };
+    let options = Options {
+        encoding: Some(Encoding::Utf8),
+        ..Options::default()
+    };
     let work = Work::unattended();
-    let reading = read(bytes, "x", &options, Threads::new(1), &work).unwrap().unwrap();
+    let reading = read(bytes, "x", &options, Threads::new(1), &work)
+        .unwrap()
+        .unwrap();
     assert_eq!(codes(&reading), ["broken-letters"]);
     assert_eq!(labels(&reading, "place")[0], "K\u{fffd}se");
 }
@@ -129,7 +161,13 @@ fn reading_reports_its_steps_and_stops_when_called_off() {
         let _ = steps.fetch_add(1, Ordering::Relaxed);
     };
     let work = Work::new(source.token(), &count);
-    let whole = read(text.as_bytes(), "x", &Options::default(), Threads::new(2), &work);
+    let whole = read(
+        text.as_bytes(),
+        "x",
+        &Options::default(),
+        Threads::new(2),
+        &work,
+    );
     assert_eq!(whole.unwrap().unwrap().table.n_rows(), 60_000);
     let all = steps.load(Ordering::Relaxed);
     assert!(all > 10, "{all} steps");
@@ -143,8 +181,17 @@ fn reading_reports_its_steps_and_stops_when_called_off() {
             }
         };
         let work = Work::new(source.token(), &stop);
-        let stopped = read(text.as_bytes(), "x", &Options::default(), Threads::new(2), &work);
-        assert!(matches!(stopped, Err(Cancelled)), "at step {stop_at} of {all}");
+        let stopped = read(
+            text.as_bytes(),
+            "x",
+            &Options::default(),
+            Threads::new(2),
+            &work,
+        );
+        assert!(
+            matches!(stopped, Err(Cancelled)),
+            "at step {stop_at} of {all}"
+        );
     }
 }
 
@@ -154,10 +201,21 @@ fn progress_never_runs_backwards() {
     let last = std::sync::Mutex::new(0.0_f32);
     let report = |share: f32| {
         let mut last = last.lock().unwrap();
-        assert!(share >= *last - 1e-6 && share <= 1.0, "{share} after {last}");
+        assert!(
+            share >= *last - 1e-6 && share <= 1.0,
+            "{share} after {last}"
+        );
         *last = share;
     };
     let source = CancelSource::new();
     let work = Work::new(source.token(), &report);
-    let _ = read(text.as_bytes(), "x", &Options::default(), Threads::new(1), &work).unwrap().unwrap();
+    let _ = read(
+        text.as_bytes(),
+        "x",
+        &Options::default(),
+        Threads::new(1),
+        &work,
+    )
+    .unwrap()
+    .unwrap();
 }

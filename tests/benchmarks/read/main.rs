@@ -14,13 +14,17 @@ use widefold::table::read::{Options, read};
     reason = "a benchmark reads files, takes time and prints"
 )]
 fn main() {
-    let mut arguments = std::env::args().skip(1).filter(|argument| argument != "--bench");
+    let mut arguments = std::env::args()
+        .skip(1)
+        .filter(|argument| argument != "--bench");
     let Some(path) = arguments.next() else {
         println!("usage: read FILE [THREADS] [TIMES]");
         return;
     };
     let mut number = |otherwise: usize| {
-        arguments.next().map_or(otherwise, |text| text.parse().expect("a number was given"))
+        arguments
+            .next()
+            .map_or(otherwise, |text| text.parse().expect("a number was given"))
     };
     let threads = Threads::new(number(2));
     let times = number(1);
@@ -30,15 +34,25 @@ fn main() {
         let start = Instant::now();
         let bytes = std::fs::read(&path).expect("the file can be read");
         size = bytes.len();
-        let reading = read(&bytes, "table", &Options::default(), threads, &Work::unattended())
-            .expect("nobody calls off")
-            .expect("the file holds a table");
+        let reading = read(
+            &bytes,
+            "table",
+            &Options::default(),
+            threads,
+            &Work::unattended(),
+        )
+        .expect("nobody calls off")
+        .expect("the file holds a table");
         best = best.min(start.elapsed().as_secs_f64());
         (sum, values) = (0.0, 0);
         for column in reading.table.columns() {
             if let Values::Numbers(numbers) = &column.values {
                 values += numbers.values().len();
-                sum += numbers.values().iter().filter(|value| !value.is_nan()).sum::<f64>();
+                sum += numbers
+                    .values()
+                    .iter()
+                    .filter(|value| !value.is_nan())
+                    .sum::<f64>();
             }
         }
     }

@@ -1,0 +1,3 @@
+//! Floor 4. Blocks into files.
+
+pub mod picture;

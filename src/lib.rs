@@ -12,7 +12,7 @@
 //! | 4 | [`export`], [`store`] | blocks into files; studies on disk |
 //! | 5 | [`app`], [`cli`] | the window; commands without a window |
 
-
+pub mod app;
 pub mod base;
 pub mod eval;
 pub mod export;

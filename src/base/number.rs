@@ -110,6 +110,12 @@ fn superscript(exponent: i32) -> String {
         .collect()
 }
 
+/// A power of ten as it stands at the decades of an axis: “10⁻³”.
+#[must_use]
+pub fn power_of_ten(exponent: i32) -> String {
+    format!("10{}", superscript(exponent))
+}
+
 /// Puts commas between groups of three digits before the decimal point, from 10,000 on.
 fn grouped(plain: &str) -> String {
     let (sign, plain) = plain
@@ -179,6 +185,12 @@ mod tests {
     fn what_is_no_number_is_said_in_words() {
         assert_eq!(text(f64::NAN, Precision::Whole), "not known");
         assert_eq!(text(f64::INFINITY, Precision::Whole), "without limit");
+    }
+
+    #[test]
+    fn powers_of_ten_have_raised_exponents() {
+        assert_eq!(power_of_ten(-12), "10⁻¹²");
+        assert_eq!(power_of_ten(3), "10³");
     }
 
     #[test]

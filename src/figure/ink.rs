@@ -39,6 +39,8 @@ pub enum Ink {
     Caution,
     /// Present, but not looked at.
     Quiet,
+    /// A bar of the same: paler, because it covers more.
+    QuietBar,
     /// A band of the same: see-through.
     QuietBand,
     /// A line to compare with.
@@ -197,6 +199,7 @@ impl Palette {
             Ink::ChosenDot => self.chosen.with_opacity(DOT),
             Ink::Caution => self.caution,
             Ink::Quiet => self.quiet,
+            Ink::QuietBar => self.ground.towards(self.quiet, 0.55),
             Ink::QuietBand => self.quiet.with_opacity(self.band + 0.05),
             Ink::Reference => self.quiet_text,
             Ink::Heat(level) => self.heat(level),

@@ -72,6 +72,8 @@ pub enum Height {
     /// A thin strip under the panel above, whose horizontal axis it shares. Its vertical axis has
     /// no ticks; its label stands to the left of it.
     Strip,
+    /// The same, as high as one line of text: for numbers below a panel.
+    Line,
     /// As high as wide, as far as there is room: for axes in the same unit.
     Square,
 }
@@ -266,6 +268,14 @@ pub enum Layer {
         /// Horizontal positions.
         x: Vec<f64>,
         /// What the pointer is told; empty, or as many.
+        tips: Vec<Tip>,
+    },
+    /// Nothing to be seen: upright regions, each from the middle of its neighbours, that tell
+    /// the pointer about a horizontal position.
+    Columns {
+        /// Horizontal positions, increasing.
+        x: Vec<f64>,
+        /// What the pointer is told, as many.
         tips: Vec<Tip>,
     },
     /// A word at a place, such as the number of predictors over its bar.

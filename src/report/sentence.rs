@@ -8,6 +8,18 @@ use crate::study::settings::slot::{Slot, Value};
 pub struct Sentence {
     /// The pieces in reading order.
     pub pieces: Vec<Piece>,
+    /// Whether it is one of the first that a reader needs.
+    pub rank: Rank,
+}
+
+/// Whether a sentence is one of the first that a reader needs.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
+pub enum Rank {
+    /// Always shown.
+    #[default]
+    Main,
+    /// How the finer points are set; may be folded away.
+    Detail,
 }
 
 /// A piece of a sentence.
@@ -50,6 +62,8 @@ pub enum Editor {
     Column,
     /// Ranges of columns, with search.
     Columns,
+    /// Several columns, one by one, with search.
+    Names,
     /// A cell of one of these kinds.
     Cell(Vec<Kind>),
     /// A file.
@@ -103,6 +117,21 @@ impl Sentence {
             editor,
         }));
         self
+    }
+
+    /// The same sentence as a detail.
+    #[must_use]
+    pub fn detail(mut self) -> Self {
+        self.rank = Rank::Detail;
+        self
+    }
+
+    /// The words that can be edited.
+    pub fn words(&self) -> impl Iterator<Item = &Word> {
+        self.pieces.iter().filter_map(|piece| match piece {
+            Piece::Word(word) => Some(word),
+            Piece::Text(_) => None,
+        })
     }
 
     /// How the sentence reads.

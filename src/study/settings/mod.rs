@@ -7,6 +7,8 @@ pub mod prepare;
 pub mod question;
 pub mod score;
 pub mod slot;
+#[cfg(test)]
+pub mod spread;
 
 use crate::study::cell::{CellId, Kind};
 use crate::study::link::Link;

@@ -1,0 +1,119 @@
+//! Thinning: detail that cannot be seen is left out, so that large figures stay fast.
+
+use crate::figure::picture::Point;
+
+/// Points of a line nearer than this to the straight way past them are not seen, in pixels.
+const UNSEEN: f64 = 0.12;
+
+/// Splits a line where a place is missing, and thins each piece.
+pub(super) fn pieces(points: impl Iterator<Item = Option<Point>>) -> Vec<Vec<Point>> {
+    let mut pieces = vec![Vec::new()];
+    for point in points {
+        match (point, pieces.last_mut()) {
+            (Some(point), Some(piece)) => piece.push(point),
+            (Some(point), None) => pieces.push(vec![point]),
+            (None, _) => pieces.push(Vec::new()),
+        }
+    }
+    pieces
+        .into_iter()
+        .filter(|piece| !piece.is_empty())
+        .map(line)
+        .collect()
+}
+
+/// A line with as few points as look the same.
+pub(super) fn line(points: Vec<Point>) -> Vec<Point> {
+    simplified(&columns(points))
+}
+
+/// Of a line with many points to a pixel, the first, lowest, highest and last of each column.
+fn columns(points: Vec<Point>) -> Vec<Point> {
+    let width = points
+        .last()
+        .map_or(0.0, |last| (last.x - points[0].x).abs());
+    if (points.len() as f64) < 4.0 * width.max(100.0) {
+        return points;
+    }
+    let mut kept = Vec::new();
+    let mut start = 0;
+    while start < points.len() {
+        let column = points[start].x.floor();
+        let length = points[start..]
+            .iter()
+            .take_while(|point| point.x.floor() == column)
+            .count()
+            .max(1);
+        let run = &points[start..start + length];
+        let by_height = |a: &&Point, b: &&Point| a.y.total_cmp(&b.y);
+        let mut chosen = vec![run[0], run[length - 1]];
+        chosen.extend(run.iter().min_by(by_height));
+        chosen.extend(run.iter().max_by(by_height));
+        chosen.sort_by(|a, b| a.x.total_cmp(&b.x));
+        chosen.dedup();
+        kept.extend(chosen);
+        start += length;
+    }
+    kept
+}
+
+/// Douglas and Peucker (1973), "Algorithms for the reduction of the number of points required
+/// to represent a digitized line or its caricature".
+fn simplified(points: &[Point]) -> Vec<Point> {
+    if points.len() < 3 {
+        return points.to_vec();
+    }
+    let mut keep = vec![false; points.len()];
+    keep[0] = true;
+    keep[points.len() - 1] = true;
+    let mut spans = vec![(0, points.len() - 1)];
+    while let Some((from, to)) = spans.pop() {
+        let farthest = (from + 1..to)
+            .map(|at| (at, distance(points[at], points[from], points[to])))
+            .max_by(|a, b| a.1.total_cmp(&b.1));
+        if let Some((at, distance)) = farthest
+            && distance > UNSEEN
+        {
+            keep[at] = true;
+            spans.push((from, at));
+            spans.push((at, to));
+        }
+    }
+    points
+        .iter()
+        .zip(keep)
+        .filter(|(_, keep)| *keep)
+        .map(|(point, _)| *point)
+        .collect()
+}
+
+fn distance(at: Point, from: Point, to: Point) -> f64 {
+    let (dx, dy) = (to.x - from.x, to.y - from.y);
+    let length = dx.hypot(dy);
+    if length == 0.0 {
+        return (at.x - from.x).hypot(at.y - from.y);
+    }
+    ((at.x - from.x) * dy - (at.y - from.y) * dx).abs() / length
+}
+
+/// Of dots that would lie on each other, those that are seen: one for each cell of a grid as
+/// fine as `cell` pixels. Gives the indices, in order.
+pub(super) fn dots(points: &[Option<Point>], cell: f64) -> Vec<usize> {
+    let mut cells: Vec<(i64, i64, usize)> = points
+        .iter()
+        .enumerate()
+        .filter_map(|(at, point)| {
+            let point = (*point)?;
+            Some((
+                (point.x / cell).floor() as i64,
+                (point.y / cell).floor() as i64,
+                at,
+            ))
+        })
+        .collect();
+    cells.sort_unstable();
+    cells.dedup_by_key(|(x, y, _)| (*x, *y));
+    let mut kept: Vec<usize> = cells.into_iter().map(|(_, _, at)| at).collect();
+    kept.sort_unstable();
+    kept
+}

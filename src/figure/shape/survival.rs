@@ -1,0 +1,108 @@
+//! The share without an event over time, a stepped line for each group.
+
+use crate::figure::shape::{Caption, Heading};
+use crate::figure::{Axis, Body, End, Figure, Label, Layer, Panel, Role, Scale, Weight, Zero};
+
+/// What survival curves are built from.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct Survival {
+    /// The texts.
+    pub caption: Caption,
+    /// The horizontal axis.
+    pub time: Heading,
+    /// The vertical axis.
+    pub share: Heading,
+    /// The groups, from the lowest risk to the highest.
+    pub groups: Vec<Group>,
+    /// The times at which the numbers at risk are written.
+    pub times: Vec<f64>,
+    /// What the numbers below are; stands at the head of each of their lines, before the name.
+    pub at_risk: String,
+}
+
+/// One group.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct Group {
+    /// Its name.
+    pub name: String,
+    /// Times of the steps, increasing, from 0 on.
+    pub times: Vec<f64>,
+    /// The share without an event from each time on.
+    pub shares: Vec<f64>,
+    /// The lower end of its band; empty for none.
+    pub low: Vec<f64>,
+    /// The upper end.
+    pub high: Vec<f64>,
+    /// How many are at risk at each of the written times, as text; may be empty.
+    pub at_risk: Vec<String>,
+}
+
+impl Survival {
+    /// The figure: the curves, and a line with the numbers at risk for each group.
+    #[must_use]
+    pub fn figure(&self) -> Figure {
+        let mut layers = Vec::new();
+        for (nth, group) in self.groups.iter().enumerate() {
+            let role = Role::Series((nth % 250) as u8);
+            let (x, low) = stairs(&group.times, &group.low);
+            let (_, high) = stairs(&group.times, &group.high);
+            layers.push(Layer::Band { role, x, low, high });
+        }
+        for (nth, group) in self.groups.iter().enumerate() {
+            let (x, y) = stairs(&group.times, &group.shares);
+            layers.push(Layer::Line {
+                role: Role::Series((nth % 250) as u8),
+                x,
+                y,
+                weight: Weight::Strong,
+                label: Some(Label {
+                    text: group.name.clone(),
+                    end: End::Right,
+                })
+                .filter(|label| !label.text.is_empty()),
+                tip: None,
+            });
+        }
+        let y =
+            Axis::scaled(&self.share.label, &self.share.unit, Scale::Percent).with_range(0.0, 1.0);
+        let mut panels = vec![Panel::new(
+            self.time.linear().with_zero(Zero::Shown),
+            y,
+            layers,
+        )];
+        for (nth, group) in self.groups.iter().enumerate() {
+            if group.at_risk.is_empty() {
+                continue;
+            }
+            let numbers = self.times.iter().zip(&group.at_risk);
+            let text = |(at, text): (&f64, &String)| Layer::Text {
+                role: Role::Series((nth % 250) as u8),
+                x: *at,
+                y: 0.0,
+                text: text.clone(),
+            };
+            let label = format!("{} {}", self.at_risk, group.name);
+            let mut line = Panel::strip(label.trim(), Zero::Free, numbers.map(text).collect());
+            line.y.range = Some((0.0, 1.0));
+            line.height = crate::figure::Height::Line;
+            panels.push(line);
+        }
+        self.caption.figure(Body::Panels(panels))
+    }
+}
+
+/// The corners of a stepped line that keeps each value until the next time.
+fn stairs(times: &[f64], values: &[f64]) -> (Vec<f64>, Vec<f64>) {
+    let (mut x, mut y) = (Vec::new(), Vec::new());
+    let mut before = None;
+    for (time, value) in times.iter().zip(values) {
+        if let Some(before) = before {
+            x.push(*time);
+            y.push(before);
+        }
+        x.push(*time);
+        y.push(*value);
+        before = Some(*value);
+    }
+    (x, y)
+}

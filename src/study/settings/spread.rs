@@ -1,0 +1,318 @@
+//! Settings of every kind with every choice at least once, for tests.
+
+use crate::base::layout::{DecimalMark, Delimiter, Encoding, Orientation, UnitsRow};
+use crate::base::real::Real;
+use crate::study::cell::CellId;
+use crate::study::link::Link;
+use crate::study::settings::Settings;
+use crate::study::settings::compare::Compare;
+use crate::study::settings::data::{
+    ColumnRange, Correction, Data, Exclusion, Join, LeadingZeros, LetterCase, Outcome, OutcomeKind,
+    OutcomeSeen, Sealed, Subject, TableSource,
+};
+use crate::study::settings::fit::{
+    Fit, Judge, Penalty, PenaltyRange, Plan, Rule, Scaling, Scheme, Strength,
+};
+use crate::study::settings::prepare::{Prepare, Step};
+use crate::study::settings::question::{Ask, Question, Seal};
+use crate::study::settings::score::Score;
+use crate::study::source::SourceId;
+use std::sync::Arc;
+
+/// The cell whose samples are taken.
+pub const DATA: CellId = CellId::new(1);
+/// The cell that prepares them.
+pub const PREPARE: CellId = CellId::new(2);
+/// The fit.
+pub const FIT: CellId = CellId::new(3);
+/// A second fit.
+pub const OTHER_FIT: CellId = CellId::new(4);
+
+/// Scans of cheeses with laboratory values, as in the demo study.
+pub fn cellar() -> Data {
+    let mut scans = TableSource::new(SourceId::of(b"scans"), "cellar-scans.csv");
+    scans.orientation = Some(Orientation::SamplesInRows);
+    scans.delimiter = Some(Delimiter::Semicolon);
+    scans.decimal = Some(DecimalMark::Comma);
+    scans.encoding = Some(Encoding::Utf8);
+    scans.header_row = Some(1);
+    scans.units_row = Some(UnitsRow::BelowHeader);
+    scans.missing_codes = vec!["-999".to_owned(), "NA".to_owned()];
+    let mut lab = TableSource::new(SourceId::of(b"lab"), "cellar-lab.xlsx");
+    lab.sheet = Some("Wet chemistry".to_owned());
+    lab.orientation = Some(Orientation::SamplesInRows);
+    lab.join = Some(Join {
+        left: "wheel".to_owned(),
+        right: "wheel".to_owned(),
+        case: LetterCase::Distinct,
+        zeros: LeadingZeros::Kept,
+    });
+    Data {
+        tables: vec![scans, lab],
+        outcome: Some(Outcome {
+            column: "salt in moisture".to_owned(),
+            kind: OutcomeKind::Measured,
+            unit: Some("g/100 g".to_owned()),
+            reference_error: Some(Real::constant(0.12)),
+        }),
+        predictors: vec![ColumnRange {
+            first: "900 nm".to_owned(),
+            last: "1700 nm".to_owned(),
+        }],
+        sample_name: Some("scan".to_owned()),
+        unit: Some("wheel".to_owned()),
+        batch: Some("cave".to_owned()),
+        sealed: Sealed::Where {
+            column: "season".to_owned(),
+            values: vec!["next".to_owned()],
+        },
+        ..Data::default()
+    }
+}
+
+/// Data settings with every choice at least once.
+pub fn data() -> Vec<Data> {
+    let with_kind = |kind: OutcomeKind| {
+        let mut data = cellar();
+        data.outcome = Some(Outcome {
+            column: "leaf spot".to_owned(),
+            kind,
+            unit: None,
+            reference_error: None,
+        });
+        data
+    };
+    let mut busy = cellar();
+    busy.tables[1].join = Some(Join {
+        left: "wheel".to_owned(),
+        right: "Wheel no. 2".to_owned(),
+        case: LetterCase::Folded,
+        zeros: LeadingZeros::Ignored,
+    });
+    busy.tables[0].orientation = Some(Orientation::SamplesInColumns);
+    busy.tables[0].units_row = Some(UnitsRow::Absent);
+    busy.covariates = vec!["age".to_owned(), "cellar temperature".to_owned()];
+    busy.ignored = vec!["salt_calc".to_owned()];
+    busy.order = Some("minute".to_owned());
+    busy.weight = Some("scans averaged".to_owned());
+    busy.predictors.push(ColumnRange {
+        first: "2100 nm".to_owned(),
+        last: "2100 nm".to_owned(),
+    });
+    busy.sealed = Sealed::Listed(["W101", "W102", "W103", "W104"].map(str::to_owned).to_vec());
+    busy.subject = Subject::Safety;
+    busy.corrections = Arc::new(vec![Correction {
+        sample: "W012-a".to_owned(),
+        column: "salt in moisture".to_owned(),
+        from: "31.2".to_owned(),
+        to: "3.12".to_owned(),
+        reason: "decimal point lost in the laboratory book".to_owned(),
+        outcome: OutcomeSeen::Before,
+    }]);
+    busy.exclusions = Arc::new(
+        ["W007-b", "W044-c"]
+            .map(|sample| Exclusion {
+                sample: sample.to_owned(),
+                reason: "probe touched the rind".to_owned(),
+                outcome: OutcomeSeen::After,
+            })
+            .to_vec(),
+    );
+    let mut few = cellar();
+    few.tables = vec![TableSource::new(SourceId::of(b"x"), "panel.txt")];
+    few.sample_name = None;
+    few.unit = None;
+    few.batch = None;
+    few.predictors = Vec::new();
+    few.sealed = Sealed::Listed(Vec::new());
+    few.subject = Subject::Health;
+    few.covariates = vec!["age".to_owned()];
+    if let Some(outcome) = &mut few.outcome {
+        outcome.unit = None;
+        outcome.reference_error = None;
+    }
+    vec![
+        Data::default(),
+        cellar(),
+        busy,
+        few,
+        with_kind(OutcomeKind::YesNo { event: None }),
+        with_kind(OutcomeKind::YesNo {
+            event: Some("spotted".to_owned()),
+        }),
+        with_kind(OutcomeKind::Classes),
+        with_kind(OutcomeKind::Count { exposure: None }),
+        with_kind(OutcomeKind::Count {
+            exposure: Some("trap nights".to_owned()),
+        }),
+        with_kind(OutcomeKind::Time {
+            event: "failed".to_owned(),
+        }),
+    ]
+}
+
+/// Preparations with every step at least once.
+pub fn prepare() -> Vec<Prepare> {
+    let of = |steps: Vec<Step>| Prepare {
+        input: Link::to(DATA),
+        steps,
+    };
+    vec![
+        Prepare::default(),
+        of(Vec::new()),
+        of(vec![Step::Center]),
+        of(vec![
+            Step::StandardNormalVariate,
+            Step::SavitzkyGolay {
+                window: 15,
+                degree: 2,
+                derivative: 1,
+            },
+            Step::Center,
+            Step::UnitVariance,
+        ]),
+        of(vec![
+            Step::SavitzkyGolay {
+                window: 11,
+                degree: 3,
+                derivative: 0,
+            },
+            Step::ScatterCorrection,
+            Step::SavitzkyGolay {
+                window: 21,
+                degree: 2,
+                derivative: 2,
+            },
+        ]),
+        of(Step::catalogue()),
+    ]
+}
+
+/// A plan of parts.
+pub const fn plan(scheme: Scheme, parts: u32, repeats: u32) -> Plan {
+    Plan {
+        scheme,
+        parts,
+        repeats,
+    }
+}
+
+/// Fits with every choice at least once.
+pub fn fit() -> Vec<Fit> {
+    let usual = || Fit {
+        input: Link::to(PREPARE),
+        ..Fit::default()
+    };
+    let net = |shares: &[f64]| Penalty::ElasticNet {
+        shares: shares
+            .iter()
+            .filter_map(|share| Real::new(*share))
+            .collect(),
+    };
+    let chosen = |rule: Rule, inner: Plan| Strength::Chosen {
+        rule,
+        range: PenaltyRange {
+            count: 60,
+            ratio: Some(Real::constant(0.001)),
+        },
+        inner,
+    };
+    let mut fits = vec![usual()];
+    for (penalty, scaling) in [
+        (Penalty::Ridge, Scaling::UnitVariance),
+        (net(&[0.5]), Scaling::AsPrepared),
+        (net(&[0.2, 0.5, 0.8]), Scaling::UnitVariance),
+    ] {
+        fits.push(Fit {
+            penalty,
+            scaling,
+            ..usual()
+        });
+    }
+    for (rule, scheme, repeats) in [
+        (Rule::OneStandardError, Scheme::Balanced, 1),
+        (Rule::LowestError, Scheme::WholeBatches, 1),
+        (Rule::LowestError, Scheme::LeaveOneUnitOut, 1),
+        (Rule::OneStandardError, Scheme::Blocks, 1),
+        (Rule::GeneralisedCrossValidation, Scheme::Units, 2),
+        (
+            Rule::ExtendedBic {
+                gamma: Real::constant(0.5),
+            },
+            Scheme::Units,
+            2,
+        ),
+    ] {
+        fits.push(Fit {
+            strength: chosen(rule, plan(scheme, 10, repeats)),
+            judge: Judge::Nested(plan(scheme, 5, repeats)),
+            ..usual()
+        });
+    }
+    fits.push(Fit {
+        strength: Strength::ByHand(Real::constant(0.03)),
+        judge: Judge::Declined,
+        ..usual()
+    });
+    fits.push(Fit::default());
+    fits
+}
+
+/// Every question, and the choices within them.
+pub fn question() -> Vec<Question> {
+    let mut asks = Ask::catalogue();
+    asks.push(Ask::Ladder { seal: Seal::Opened });
+    let mut questions: Vec<Question> = asks
+        .into_iter()
+        .map(|ask| Question {
+            fit: Link::to(FIT),
+            ask,
+        })
+        .collect();
+    questions.push(Question {
+        fit: Link::open(),
+        ask: Ask::Agreement,
+    });
+    questions
+}
+
+/// Comparisons of none, one, two and three fits.
+pub fn compare() -> Vec<Compare> {
+    [
+        Vec::new(),
+        vec![Link::to(FIT)],
+        vec![Link::to(FIT), Link::to(OTHER_FIT)],
+        vec![
+            Link::to(FIT),
+            Link::to(OTHER_FIT),
+            Link::to(CellId::new(99)),
+        ],
+    ]
+    .map(|fits| Compare { fits })
+    .to_vec()
+}
+
+/// Scores without a table, with a text and with a workbook.
+pub fn score() -> Vec<Score> {
+    let of = |table: Option<&str>| Score {
+        fit: Link::to(FIT),
+        table: table.map(|name| TableSource::new(SourceId::of(b"new"), name)),
+    };
+    vec![
+        Score::default(),
+        of(None),
+        of(Some("new-wheels.csv")),
+        of(Some("new-wheels.ods")),
+    ]
+}
+
+/// All of them, with the kinds in their order.
+pub fn all() -> Vec<Settings> {
+    let mut all: Vec<Settings> = data().into_iter().map(Settings::Data).collect();
+    all.extend(prepare().into_iter().map(Settings::Prepare));
+    all.extend(fit().into_iter().map(Settings::Fit));
+    all.extend(question().into_iter().map(Settings::Question));
+    all.extend(compare().into_iter().map(Settings::Compare));
+    all.extend(score().into_iter().map(Settings::Score));
+    all
+}

@@ -15,8 +15,8 @@
 pub mod app;
 pub mod base;
 pub mod eval;
-pub mod export;
 pub mod figure;
 pub mod numeric;
 pub mod report;
 pub mod study;
+pub mod table;

@@ -54,3 +54,13 @@ pub enum UnitsRow {
     /// The first row below the header holds the units.
     BelowHeader,
 }
+
+/// Marks between groups of three digits, as in 1,234,567.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash, PartialOrd, Ord)]
+pub enum Grouping {
+    /// There are none; a value that has them is listed and counts as missing.
+    Absent,
+    /// Well-formed groups of three are read, whichever of comma, point, blank or apostrophe
+    /// (but not the decimal mark) stands between them.
+    Read,
+}

@@ -1,1 +1,36 @@
 //! Floor 1: mathematics on numbers only: no names, no text, no tables.
+
+pub mod active_set;
+pub mod basis;
+pub mod certificate;
+pub mod choose;
+pub mod descent;
+pub mod error;
+pub mod factor;
+pub mod freedom;
+pub mod gaussian;
+pub mod ground;
+pub mod halves;
+pub mod lanes;
+pub mod matrix;
+pub mod measure;
+pub mod panels;
+pub mod parts;
+pub mod path;
+pub mod penalty;
+pub mod predictors;
+pub mod procedure;
+pub mod proof;
+pub mod quadratic;
+pub mod random;
+pub mod range;
+pub mod response;
+pub mod ridge;
+pub mod samples;
+pub mod scan;
+pub mod shortcut;
+pub mod spectrum;
+pub mod stability;
+pub mod step;
+pub mod task;
+pub mod working;

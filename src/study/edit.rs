@@ -83,6 +83,15 @@ pub enum EditError {
     },
 }
 
+/// Whether an edit may close a circle.
+#[derive(Clone, Copy, PartialEq, Eq)]
+enum Circles {
+    /// It may not.
+    Refused,
+    /// It only brings back what has been.
+    AsTheyWere,
+}
+
 impl Study {
     /// Applies an edit and returns the edit that takes it back.
     ///
@@ -91,8 +100,12 @@ impl Study {
     /// # Errors
     /// An [`EditError`] that says why the edit was refused.
     pub fn apply(&mut self, edit: Edit) -> Result<Edit, EditError> {
+        self.apply_with(edit, Circles::Refused)
+    }
+
+    fn apply_with(&mut self, edit: Edit, circles: Circles) -> Result<Edit, EditError> {
         match edit {
-            Edit::Insert { at, cell } => self.insert(at, cell),
+            Edit::Insert { at, cell } => self.insert(at, cell, circles),
             Edit::Remove { id } => {
                 let at = self.find(id)?;
                 let cell = self.cells.remove(at);
@@ -139,7 +152,9 @@ impl Study {
                 if settings.kind() != self.cells[at].settings.kind() {
                     return Err(EditError::OtherKind(id));
                 }
-                self.closes_no_circle(id, &self.cells[at].title, &settings)?;
+                if circles == Circles::Refused {
+                    self.closes_no_circle(id, &self.cells[at].title, &settings)?;
+                }
                 let settings = std::mem::replace(&mut self.cells[at].settings, settings);
                 Ok(Edit::Configure { id, settings })
             }
@@ -156,26 +171,40 @@ impl Study {
         let next_id = self.next_id;
         for edit in edits {
             match self.apply(edit) {
-                Ok(inverse) => back.insert(0, inverse),
+                Ok(inverse) => back.push(inverse),
                 Err(error) => {
-                    for inverse in back {
-                        let _ = self
-                            .apply(inverse)
-                            .expect("the inverse of an applied edit applies");
-                    }
+                    back.reverse();
+                    drop(self.take_back(back));
                     self.next_id = next_id;
                     return Err(error);
                 }
             }
         }
+        back.reverse();
         Ok(back)
+    }
+
+    /// Brings back a state that the study has been in, and returns the edits that leave it again.
+    ///
+    /// A file can be written by hand and hold a circle; mending the circle can then be undone,
+    /// although no edit may close one.
+    pub(in crate::study) fn take_back(&mut self, edits: Vec<Edit>) -> Vec<Edit> {
+        let mut again: Vec<Edit> = edits
+            .into_iter()
+            .map(|edit| {
+                self.apply_with(edit, Circles::AsTheyWere)
+                    .expect("the study has been in this state before")
+            })
+            .collect();
+        again.reverse();
+        again
     }
 
     fn find(&self, id: CellId) -> Result<usize, EditError> {
         self.position(id).ok_or(EditError::NoSuchCell(id))
     }
 
-    fn insert(&mut self, at: usize, mut cell: Cell) -> Result<Edit, EditError> {
+    fn insert(&mut self, at: usize, mut cell: Cell, circles: Circles) -> Result<Edit, EditError> {
         let id = cell.id;
         if self.cell(id).is_some() {
             return Err(EditError::Twice(id));
@@ -188,8 +217,10 @@ impl Study {
         }
         cell.title = lawful_title(&cell.title)?;
         self.title_is_free(&cell.title, id)?;
-        self.closes_no_circle(id, &cell.title, &cell.settings)?;
-        self.next_id = self.next_id.max(id.number() + 1);
+        if circles == Circles::Refused {
+            self.closes_no_circle(id, &cell.title, &cell.settings)?;
+        }
+        self.next_id = self.next_id.max(id.number().saturating_add(1));
         self.cells.insert(at, cell);
         Ok(Edit::Remove { id })
     }
@@ -242,16 +273,17 @@ impl Study {
     }
 }
 
-fn lawful_title(title: &str) -> Result<String, EditError> {
-    // A title is named in prose as {title: fact}, so that braces and colons cannot be part of it.
+/// A title as it is kept: one line, without the signs by which prose names a fact.
+///
+/// # Errors
+/// [`EditError::BlankTitle`] when nothing is left.
+pub(in crate::study) fn lawful_title(title: &str) -> Result<String, EditError> {
+    // A title is named in prose as {title: fact | format}.
     let clean: String = title
         .chars()
         .map(|letter| {
-            if matches!(letter, '{' | '}' | ':' | '|' | '\n' | '\r') {
-                ' '
-            } else {
-                letter
-            }
+            let sign = matches!(letter, '{' | '}' | ':' | '|') || letter.is_control();
+            if sign { ' ' } else { letter }
         })
         .collect();
     let clean = clean.split_whitespace().collect::<Vec<_>>().join(" ");
@@ -261,3 +293,6 @@ fn lawful_title(title: &str) -> Result<String, EditError> {
         Ok(clean)
     }
 }
+
+#[cfg(test)]
+mod tests;

@@ -31,7 +31,8 @@ impl History {
         Self::default()
     }
 
-    /// Applies edits to the study as one step.
+    /// Applies edits to the study as one step. Edits that change nothing make no step, so that
+    /// leaving a word as it was neither forgets the future nor asks for saving.
     ///
     /// # Errors
     /// The first refusal; study and history are then as they were.
@@ -41,7 +42,11 @@ impl History {
         label: &str,
         edits: Vec<Edit>,
     ) -> Result<(), EditError> {
+        let before = study.clone();
         let back = study.apply_all(edits)?;
+        if *study == before {
+            return Ok(());
+        }
         self.last_serial += 1;
         self.past.push(Step {
             label: label.to_owned(),
@@ -55,9 +60,7 @@ impl History {
     /// Takes the last step back. Returns its label, or `None` when there is no past.
     pub fn undo(&mut self, study: &mut Study) -> Option<String> {
         let step = self.past.pop()?;
-        let again = study
-            .apply_all(step.edits)
-            .expect("a step of the past can be taken back");
+        let again = study.take_back(step.edits);
         self.future.push(Step {
             label: step.label.clone(),
             edits: again,
@@ -69,9 +72,7 @@ impl History {
     /// Does the step again that was last taken back. Returns its label, or `None`.
     pub fn redo(&mut self, study: &mut Study) -> Option<String> {
         let step = self.future.pop()?;
-        let back = study
-            .apply_all(step.edits)
-            .expect("a step of the future can be done again");
+        let back = study.take_back(step.edits);
         self.past.push(Step {
             label: step.label.clone(),
             edits: back,

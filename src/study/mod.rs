@@ -3,6 +3,7 @@
 pub mod cell;
 pub mod edit;
 pub mod history;
+pub mod kept;
 pub mod ledger;
 pub mod link;
 pub mod prose;
@@ -10,42 +11,81 @@ pub mod settings;
 pub mod source;
 
 use crate::study::cell::{Cell, CellId};
+use crate::study::edit::lawful_title;
+use crate::study::kept::Kept;
+use std::collections::BTreeSet;
 
 /// An ordered list of cells with a title. Every change is an [`edit::Edit`].
 ///
 /// The order is for reading; what a cell draws on is in its settings.
-#[derive(Clone, Debug, Default, PartialEq, Eq)]
+///
+/// Always true: ids and titles are unique, and every title is one that prose can name. Circles
+/// are refused by edits, but a file can hold one, because files can be written by hand.
+#[derive(Clone, Debug, PartialEq, Eq)]
 pub struct Study {
     title: String,
     cells: Vec<Cell>,
     next_id: u32,
+    kept: Kept,
 }
 
+impl Default for Study {
+    fn default() -> Self {
+        Self::new(UNTITLED)
+    }
+}
+
+/// The title of a study to which nobody has given one.
+const UNTITLED: &str = "Untitled study";
+
 impl Study {
-    /// A study without cells.
+    /// A study without cells. A blank title becomes “Untitled study”.
     #[must_use]
     pub fn new(title: &str) -> Self {
         Self {
-            title: title.to_owned(),
+            title: lawful_title(title).unwrap_or_else(|_| UNTITLED.to_owned()),
             cells: Vec::new(),
             next_id: 1,
+            kept: Kept::default(),
         }
     }
 
-    /// A study as it was written down. `next_id` is raised above every id in use, so that no id
-    /// is ever given out twice.
+    /// A study as it was written down.
+    ///
+    /// What no edit could have led to is mended, because a file can be written by hand: a title
+    /// that is blank or taken gets a number, an id that is taken is replaced by a new one, and
+    /// `next_id` is raised above every id in use, so that no id is ever given out twice.
     #[must_use]
     pub fn restored(title: &str, cells: Vec<Cell>, next_id: u32) -> Self {
-        let above = cells
-            .iter()
-            .map(|cell| cell.id.number() + 1)
-            .max()
-            .unwrap_or(1);
-        Self {
-            title: title.to_owned(),
-            cells,
-            next_id: next_id.max(above),
+        let above = cells.iter().map(|cell| cell.id.number().saturating_add(1));
+        let mut study = Self::new(title);
+        study.next_id = above.max().unwrap_or(1).max(next_id).max(1);
+        let mut used = BTreeSet::new();
+        for mut cell in cells {
+            if !used.insert(cell.id) {
+                cell.id = study.next_id();
+                study.next_id = study.next_id.saturating_add(1);
+                let _ = used.insert(cell.id);
+            }
+            let wish = lawful_title(&cell.title)
+                .unwrap_or_else(|_| cell.settings.kind().name().to_owned());
+            cell.title = study.free_title(&wish);
+            study.cells.push(cell);
         }
+        study
+    }
+
+    /// The same study, with what its file holds beyond what this version knows.
+    #[must_use]
+    pub fn with_kept(mut self, kept: Kept) -> Self {
+        self.kept = kept;
+        self
+    }
+
+    /// What its file holds beyond what this version knows.
+    #[must_use]
+    pub fn kept(&self) -> &Kept {
+        &self.kept
     }
 
     /// The title of the study.
@@ -72,13 +112,15 @@ impl Study {
         self.cells.iter().position(|cell| cell.id == id)
     }
 
-    /// The first cell with this title; blanks around it and case do not count.
+    /// The cell with this title; extra blanks and case do not count.
     #[must_use]
     pub fn titled(&self, title: &str) -> Option<&Cell> {
-        let wanted = title.trim().to_lowercase();
-        self.cells
-            .iter()
-            .find(|cell| cell.title.trim().to_lowercase() == wanted)
+        let folded = |title: &str| {
+            let words: Vec<_> = title.split_whitespace().collect();
+            words.join(" ").to_lowercase()
+        };
+        let wanted = folded(title);
+        self.cells.iter().find(|cell| folded(&cell.title) == wanted)
     }
 
     /// The id that the next new cell gets.
@@ -90,8 +132,9 @@ impl Study {
     /// A title for a new cell that no other cell has: the wish itself, or the wish and a number.
     #[must_use]
     pub fn free_title(&self, wish: &str) -> String {
-        if self.titled(wish).is_none() {
-            return wish.to_owned();
+        let wish = lawful_title(wish).unwrap_or_else(|_| "Cell".to_owned());
+        if self.titled(&wish).is_none() {
+            return wish;
         }
         let mut number = 2;
         loop {

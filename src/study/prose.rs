@@ -38,21 +38,32 @@ impl Prose {
     /// Reads what was typed. A cell is found by its title.
     #[must_use]
     pub fn parse(text: &str, study: &Study) -> Self {
+        Self::parse_with(text, |title| {
+            let cell = study.titled(title).map(|cell| cell.id);
+            cell.or_else(|| removed(title, study))
+        })
+    }
+
+    /// Reads what was typed, where `find` knows the cell that a name in braces means.
+    pub fn parse_with(text: &str, find: impl Fn(&str) -> Option<CellId>) -> Self {
         let mut pieces = Vec::new();
         let mut rest = text;
-        while let Some(open) = rest.find('{') {
-            let Some(length) = rest[open..].find('}') else {
+        while let Some(first) = rest.find('{') {
+            let Some(length) = rest[first..].find('}') else {
                 break;
             };
+            // The brace that is closed, so that a stray one before it hides no reference.
+            let close = first + length;
+            let open = rest[..close].rfind('{').unwrap_or(first);
             if open > 0 {
                 pieces.push(Piece::Text(rest[..open].to_owned()));
             }
-            let inside = &rest[open + 1..open + length];
-            pieces.push(match parse_reference(inside, study) {
+            let inside = &rest[open + 1..close];
+            pieces.push(match parse_reference(inside, &find) {
                 Some(reference) => Piece::Fact(reference),
                 None => Piece::Unknown(inside.to_owned()),
             });
-            rest = &rest[open + length + 1..];
+            rest = &rest[close + 1..];
         }
         if !rest.is_empty() {
             pieces.push(Piece::Text(rest.to_owned()));
@@ -63,16 +74,22 @@ impl Prose {
     /// The text as it would be typed today, with the cells' present titles.
     #[must_use]
     pub fn typed(&self, study: &Study) -> String {
+        self.typed_with(|id| {
+            study.cell(id).map_or_else(
+                || format!("{REMOVED}{}", id.number()),
+                |cell| cell.title.clone(),
+            )
+        })
+    }
+
+    /// The text as it would be typed where cells are called by `name`.
+    pub fn typed_with(&self, name: impl Fn(CellId) -> String) -> String {
         let mut text = String::new();
         for piece in &self.pieces {
             match piece {
                 Piece::Text(words) => text.push_str(words),
                 Piece::Fact(reference) => {
-                    let title = study.cell(reference.cell).map_or_else(
-                        || format!("removed cell {}", reference.cell.number()),
-                        |cell| cell.title.clone(),
-                    );
-                    text.push_str(&format!("{{{title}: {}", reference.fact));
+                    text.push_str(&format!("{{{}: {}", name(reference.cell), reference.fact));
                     if let Some(decimals) = reference.decimals {
                         text.push_str(&format!(" | {decimals} decimals"));
                     }
@@ -99,12 +116,12 @@ impl Prose {
     }
 }
 
-fn parse_reference(inside: &str, study: &Study) -> Option<FactReference> {
+fn parse_reference(inside: &str, find: impl Fn(&str) -> Option<CellId>) -> Option<FactReference> {
     let (reference, format) = inside
         .split_once('|')
         .map_or((inside, None), |(r, f)| (r, Some(f)));
     let (title, fact) = reference.split_once(':')?;
-    let cell = study.titled(title)?.id;
+    let cell = find(title)?;
     let decimals = match format {
         None => None,
         Some(format) => {
@@ -122,6 +139,16 @@ fn parse_reference(inside: &str, study: &Study) -> Option<FactReference> {
         fact,
         decimals,
     })
+}
+
+/// How a reference to a cell that has been removed reads, before the cell's number.
+const REMOVED: &str = "removed cell ";
+
+/// The removed cell that a reference names, so that editing the text around it does not lose it.
+fn removed(title: &str, study: &Study) -> Option<CellId> {
+    let number = title.trim().strip_prefix(REMOVED)?.parse().ok()?;
+    let id = CellId::new(number);
+    (id < study.next_id()).then_some(id)
 }
 
 #[cfg(test)]
@@ -161,6 +188,30 @@ mod tests {
             prose.typed(&study),
             "The error was {salt lasso: nested error | 2 decimals}."
         );
+    }
+
+    #[test]
+    fn a_reference_to_a_removed_cell_survives_editing_the_text_around_it() {
+        let mut study = study_with("cheese lasso");
+        let prose = Prose::parse("{cheese lasso: nested rmse}", &study);
+        let id = study.cells()[0].id;
+        let back = study.apply(Edit::Remove { id }).unwrap();
+        let edited = format!("The error: {}", prose.typed(&study));
+        let again = Prose::parse(&edited, &study);
+        let _ = study.apply(back).unwrap();
+        assert_eq!(
+            again.typed(&study),
+            "The error: {cheese lasso: nested rmse}"
+        );
+    }
+
+    #[test]
+    fn a_stray_brace_hides_no_reference() {
+        let study = study_with("cheese lasso");
+        let typed = "the set {1, 2 gave {cheese lasso: nested rmse}";
+        let prose = Prose::parse(typed, &study);
+        assert_eq!(prose.cells(), [study.cells()[0].id]);
+        assert_eq!(prose.typed(&study), typed);
     }
 
     #[test]

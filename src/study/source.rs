@@ -2,6 +2,7 @@
 
 use sha2::{Digest, Sha256};
 use std::collections::BTreeMap;
+use std::path::{Path, PathBuf};
 use std::sync::Arc;
 
 /// The SHA-256 of a source's bytes, in hexadecimal. It is on disk, so it is a published hash.
@@ -20,6 +21,18 @@ impl SourceId {
     pub fn parse(text: &str) -> Option<Self> {
         let lawful = text.len() == 64 && text.bytes().all(|b| b.is_ascii_hexdigit());
         lawful.then(|| Self(text.to_ascii_lowercase()))
+    }
+
+    /// The id of bytes that nobody has seen: a table that is named in a file but was not found.
+    #[must_use]
+    pub fn unknown() -> Self {
+        Self("0".repeat(64))
+    }
+
+    /// Whether the bytes have been seen.
+    #[must_use]
+    pub fn is_known(&self) -> bool {
+        self.0.bytes().any(|digit| digit != b'0')
     }
 
     /// The 64 hexadecimal digits.
@@ -45,6 +58,7 @@ pub fn fingerprint(bytes: &[u8]) -> String {
 #[derive(Clone, Debug, Default)]
 pub struct Shelf {
     sources: BTreeMap<SourceId, Arc<[u8]>>,
+    origins: BTreeMap<(SourceId, String), PathBuf>,
 }
 
 impl Shelf {
@@ -54,6 +68,20 @@ impl Shelf {
         let id = SourceId::of(&bytes);
         let _ = self.sources.entry(id.clone()).or_insert(bytes);
         id
+    }
+
+    /// Notes where a table with this file name was found. Paths are not part of the document; the
+    /// shelf remembers them for a study that is saved in the form that names its tables by path.
+    pub fn came_from(&mut self, id: &SourceId, file: &str, path: &Path) {
+        let key = (id.clone(), file.to_owned());
+        let _ = self.origins.insert(key, path.to_owned());
+    }
+
+    /// Where a table was found, if it was found outside a study.
+    #[must_use]
+    pub fn origin(&self, id: &SourceId, file: &str) -> Option<&Path> {
+        let key = (id.clone(), file.to_owned());
+        self.origins.get(&key).map(PathBuf::as_path)
     }
 
     /// The bytes with this name.

@@ -1,5 +1,33 @@
 //! Remarks computed from outcomes: one rule, one file.
 
+pub mod agreement_slope;
+pub mod batches_are_harder;
+pub mod declined_judgement;
+pub mod design;
+pub mod few_units;
+pub mod flat_curve;
+pub mod health;
+pub mod interval_is_about_the_procedure;
+pub mod judgement;
+pub mod leave_one_out;
+pub mod list_as_long;
+pub mod looks;
+pub mod no_better_than_the_mean;
+pub mod not_settled;
+pub mod one_standard_error;
+pub mod optimism;
+pub mod order;
+pub mod selection_unstable;
+pub mod shrunken_weights;
+pub mod stand_ins;
+pub mod strength_at_edge;
+pub mod strength_unstable;
+pub mod too_good;
+pub mod ungrouped_flatters;
+pub mod wide_interval;
+
+use crate::base::number::{self, Precision};
+
 /// How much a caveat weighs.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]
 pub enum Severity {
@@ -65,4 +93,41 @@ pub struct Caveat {
     pub threshold: String,
     /// Where the threshold comes from.
     pub origin: Origin,
+}
+
+impl Caveat {
+    /// A caveat that always applies, a convention until said otherwise.
+    #[must_use]
+    pub fn new(id: &str, severity: Severity, heading: &str, text: impl Into<String>) -> Self {
+        Self {
+            id: id.to_owned(),
+            severity,
+            heading: heading.to_owned(),
+            text: text.into(),
+            trigger: Vec::new(),
+            threshold: String::new(),
+            origin: Origin::Convention,
+        }
+    }
+
+    /// The same caveat, with a quantity that set it off.
+    #[must_use]
+    pub fn because(mut self, quantity: &str, value: f64, precision: Precision) -> Self {
+        self.trigger.push((quantity.to_owned(), number::text(value, precision)));
+        self
+    }
+
+    /// The same caveat, with its threshold in words.
+    #[must_use]
+    pub fn threshold(mut self, words: &str) -> Self {
+        words.clone_into(&mut self.threshold);
+        self
+    }
+
+    /// The same caveat, with the origin of its threshold.
+    #[must_use]
+    pub fn origin(mut self, origin: Origin) -> Self {
+        self.origin = origin;
+        self
+    }
 }

@@ -53,24 +53,18 @@ pub(super) fn lay(panels: &[Panel], figure: &Figure, room: Rect, sheet: &mut She
         .map(|((panel, map), row)| y_ticks(panel, map, row.height))
         .collect();
     let margins = margins(panels, &y_ticks, &x_maps, room.width);
+    let widths = widths(panels, &rows, room.width - margins.left - margins.right);
     let frames: Vec<Frame> = rows
         .iter()
+        .zip(widths)
         .zip(x_maps)
         .zip(y_maps)
         .zip(y_ticks)
-        .zip(panels)
-        .map(|((((row, x), y), y_ticks), panel)| {
-            let width = (room.width - margins.left - margins.right).max(1.0);
-            let width = match panel.height {
-                Height::Square => width.min(row.height),
-                Height::Share(_) | Height::Strip | Height::Line => width,
-            };
-            Frame {
-                plot: Rect::new(room.x + margins.left, row.top, width, row.height),
-                x,
-                y,
-                y_ticks,
-            }
+        .map(|((((row, width), x), y), y_ticks)| Frame {
+            plot: Rect::new(room.x + margins.left, row.top, width, row.height),
+            x,
+            y,
+            y_ticks,
         })
         .collect();
 
@@ -251,6 +245,21 @@ fn rows(panels: &[Panel], room: Rect) -> Vec<Row> {
         .collect()
 }
 
+/// The width of each panel's area of data: as wide as there is room, except below and in a
+/// square one.
+fn widths(panels: &[Panel], rows: &[Row], room: f64) -> Vec<f64> {
+    let room = room.max(1.0);
+    let mut widths = Vec::new();
+    for group in groups(panels) {
+        let width = match panels[group.start].height {
+            Height::Square => room.min(rows[group.start].height),
+            Height::Share(_) | Height::Strip | Height::Line => room,
+        };
+        widths.extend(group.map(|_| width));
+    }
+    widths
+}
+
 fn x_mappings(panels: &[Panel]) -> Vec<Mapping> {
     let default = Axis::linear("", "");
     let mut maps = Vec::new();
@@ -264,7 +273,8 @@ fn x_mappings(panels: &[Panel]) -> Vec<Mapping> {
             }
         }
         if members[0].height == Height::Square {
-            maps.push(square_mapping(&members[0], axis));
+            let map = square_mapping(&members[0], axis);
+            maps.extend(group.map(|_| map.clone()));
             continue;
         }
         let has_dots = members

@@ -1,0 +1,62 @@
+//! The remarks on a fit, gathered from its rules.
+
+use crate::eval::caveat::{
+    Caveat, declined_judgement, few_units, flat_curve, health, interval_is_about_the_procedure,
+    leave_one_out, list_as_long, no_better_than_the_mean, not_settled, one_standard_error,
+    optimism, shrunken_weights, strength_at_edge, strength_unstable, too_good, wide_interval,
+};
+use crate::eval::fact::Facts;
+use crate::eval::kind::fit::Fitted;
+use crate::study::settings::fit::{Judge, Rule, Scheme, Strength};
+
+/// All remarks on a fit, the gravest first.
+#[must_use]
+pub fn caveats(fitted: &Fitted, facts: &Facts) -> Vec<Caveat> {
+    let data = &fitted.prepared.data;
+    let value = |name: &str| facts.value(name).unwrap_or(f64::NAN);
+    let chosen = fitted.last.path.info(fitted.last.strength_at).n_chosen;
+    let mut found = vec![
+        few_units::check(data.count_units(&data.analysed)),
+        strength_at_edge::check(fitted),
+        flat_curve::check(fitted),
+        strength_unstable::check(fitted),
+        list_as_long::check(fitted.last.share, chosen, data.analysed.len()),
+        not_settled::check(fitted.tally.unsettled, fitted.tally.worst_gap),
+        health::check(data.subject),
+        Some(shrunken_weights::always()),
+    ];
+    let (mut one_se, mut one_out) = (false, false);
+    if let Strength::Chosen { rule, inner, .. } = &fitted.settings.strength {
+        one_se = *rule == Rule::OneStandardError;
+        one_out |= rule.needs_parts() && inner.scheme == Scheme::LeaveOneUnitOut;
+    }
+    match fitted.settings.judge {
+        Judge::Declined => found.push(Some(declined_judgement::always())),
+        Judge::Nested(plan) => {
+            one_out |= plan.scheme == Scheme::LeaveOneUnitOut;
+            found.push(Some(interval_is_about_the_procedure::always()));
+            found.push(optimism::check(
+                value("apparent r²"),
+                value("nested r²"),
+                value("apparent rmse"),
+                value("nested rmse"),
+            ));
+            found.push(no_better_than_the_mean::check(
+                value("improvement over the mean"),
+                value("improvement low"),
+            ));
+            found.push(wide_interval::check(value("nested r² low"), value("nested r² high")));
+            found.push(too_good::check(
+                value("nested r²"),
+                value("nested rmse"),
+                data.outcome.reference_error,
+                &data.outcome.unit,
+            ));
+        }
+    }
+    found.push(one_se.then(one_standard_error::always));
+    found.push(one_out.then(leave_one_out::always));
+    let mut caveats: Vec<Caveat> = found.into_iter().flatten().collect();
+    caveats.sort_by_key(|caveat| std::cmp::Reverse(caveat.severity));
+    caveats
+}

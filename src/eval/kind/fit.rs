@@ -1,5 +1,0 @@
-//! Evaluates a fit cell.
-
-/// What the cell gives to those that draw on it.
-#[derive(Clone, Debug, Default)]
-pub struct Fitted {}

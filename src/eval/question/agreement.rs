@@ -1,0 +1,104 @@
+//! Do predictions match observations?
+
+use crate::base::number::Precision;
+use crate::base::problem::Problem;
+use crate::eval::caveat::agreement_slope;
+use crate::eval::fact::{Fact, FactColumn, Facts};
+use crate::eval::kind::Ended;
+use crate::eval::kind::fit::{Fitted, error_digits, performance};
+use crate::eval::outcome::{Gives, Outcome};
+
+/// Answers from the held-out predictions of the outer parts.
+pub fn answer(fitted: &Fitted) -> Result<Outcome, Ended> {
+    let Some(judged) = &fitted.judged else {
+        return Err(not_judged().into());
+    };
+    let data = &fitted.prepared.data;
+    let rows = &data.analysed;
+    let held_out = performance(&judged.held_out, data, rows, fitted.observed());
+    let observed: Vec<f64> = rows.iter().map(|&row| fitted.observed()[row]).collect();
+    let unit = data.outcome.unit.clone();
+    let digits = error_digits(fitted);
+    let mean = &held_out.mean;
+    let mut facts = Facts::new();
+    let mut push = |name: &str, value: f64, unit: &str, precision: Precision, meaning: &str| {
+        facts.push(Fact::number(name, value, unit, precision, meaning));
+    };
+    let share = Precision::Decimals(3);
+    push("nested rmse", mean.rmse, &unit, digits, "Root mean squared error on outer held-out samples.");
+    push("nested mae", mean.mae, &unit, digits, "Mean absolute error on outer held-out samples.");
+    push("nested r²", mean.r2, "", share, "R² on outer held-out samples: 1 − SSE/SST, SST about the mean of the analysed samples.");
+    push("bias", mean.bias, &unit, digits, "Mean of held-out predicted minus observed values.");
+    push("sep", mean.sep, &unit, digits, "Standard deviation of the held-out errors about the bias (divisor n − 1).");
+    push("slope", mean.slope, "", share, "Slope of the line of observed on held-out predicted values: below 1 predictions are too extreme, above 1 too timid.");
+    push("intercept", mean.intercept, &unit, digits, "Intercept of the same line.");
+    push("correlation", mean.correlation, "", share, "Correlation of observed and held-out predicted values.");
+    let error = slope_error(&held_out.predicted, &observed, &rows.iter().map(|&row| data.units[row]).collect::<Vec<_>>());
+    push("slope low", mean.slope - 1.96 * error, "", share, "Lower end of a 95 % interval of the slope, with units as the independent observations.");
+    push("slope high", mean.slope + 1.96 * error, "", share, "Upper end of the same interval.");
+    if let Some(error) = data.outcome.reference_error {
+        push("reference error", error, &unit, Precision::Significant(3), "The standard deviation of the reference method's own error, as stated by the user.");
+    }
+    let mut columns = vec![
+        FactColumn::texts("sample", rows.iter().map(|&row| data.names[row].clone()).collect(), "The sample."),
+        FactColumn::texts("unit", rows.iter().map(|&row| data.unit_names[data.units[row]].clone()).collect(), "The unit that it belongs to."),
+    ];
+    if let Some(batches) = &data.batches {
+        columns.push(FactColumn::texts("batch", rows.iter().map(|&row| data.batch_names[batches[row]].clone()).collect(), "The batch that it belongs to."));
+    }
+    let residual = held_out.predicted.iter().zip(&observed).map(|(p, o)| p - o).collect();
+    columns.push(FactColumn::numbers("observed", observed, &unit, digits, "The observed outcome."));
+    columns.push(FactColumn::numbers("predicted", held_out.predicted.clone(), &unit, digits, "The held-out prediction, the mean over repeats."));
+    columns.push(FactColumn::numbers("residual", residual, &unit, digits, "Predicted less observed."));
+    facts.push(Fact::table("held-out predictions", columns, "The predictions of samples by fits that had not seen them."));
+    let caveats = agreement_slope::check(mean.slope, mean.slope - 1.96 * error, mean.slope + 1.96 * error);
+    Ok(Outcome { gives: Gives::Facts, facts, caveats: caveats.into_iter().collect() })
+}
+
+/// The problem of a fit whose judgement was declined.
+pub(super) fn not_judged() -> Problem {
+    Problem::new(
+        "not-judged",
+        "The fit was not judged on parts that it had not seen, so there are no held-out predictions.",
+    )
+    .mend("Let the fit be judged by nested cross-validation.")
+}
+
+/// The standard error of the slope of observed on predicted values, with the samples of a unit as
+/// one independent observation (the sandwich estimator for clusters, Liang & Zeger 1986, with the
+/// factor m/(m − 1) for m units).
+fn slope_error(predicted: &[f64], observed: &[f64], units: &[usize]) -> f64 {
+    let n = predicted.len() as f64;
+    let (mean_p, mean_o) = (predicted.iter().sum::<f64>() / n, observed.iter().sum::<f64>() / n);
+    let sxx: f64 = predicted.iter().map(|p| (p - mean_p).powi(2)).sum();
+    if sxx <= 0.0 {
+        return f64::NAN;
+    }
+    let sxy: f64 = predicted.iter().zip(observed).map(|(p, o)| (p - mean_p) * (o - mean_o)).sum();
+    let slope = sxy / sxx;
+    let mut scores = std::collections::BTreeMap::new();
+    for ((p, o), unit) in predicted.iter().zip(observed).zip(units) {
+        let residual = (o - mean_o) - slope * (p - mean_p);
+        *scores.entry(*unit).or_insert(0.0) += (p - mean_p) * residual;
+    }
+    let m = scores.len() as f64;
+    let square: f64 = scores.values().map(|score: &f64| score * score).sum();
+    if m > 1.0 { (square * m / (m - 1.0)).sqrt() / sxx } else { f64::NAN }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn the_slope_error_agrees_with_a_general_library() {
+        // statsmodels 0.15 OLS(o, [1, p]).fit(cov_type="cluster", groups, use_correction=False),
+        // bse[1] times √(m/(m−1)) with m = 4 units.
+        let p = [1.0, 2.0, 3.0, 4.0, 5.0, 6.0, 7.0, 8.0];
+        let o = [1.2, 1.9, 3.3, 3.8, 5.5, 5.7, 7.4, 7.6];
+        let units = [0, 0, 1, 1, 2, 2, 3, 3];
+        assert!((slope_error(&p, &o, &units) - 0.015_044_515_564_140_588).abs() < 1e-9);
+    }
+
+
+}

@@ -1,0 +1,187 @@
+//! One training part: preparation learnt from it, and a path of fits on it.
+
+use crate::base::work::Work;
+use crate::numeric::matrix::Matrix;
+use crate::numeric::parts::Split;
+use crate::numeric::path::{Params, Path, fit_path};
+use crate::numeric::predictors::Predictors;
+use crate::numeric::procedure::{Halt, Material, Procedure, ProcedureError, Tally};
+use crate::numeric::range::{RangeParams, strength_range};
+use crate::numeric::samples::Samples;
+use crate::numeric::step::{LearnedChain, Prepared, TrailingScale};
+use crate::numeric::task::{Scaling, Task};
+use std::borrow::Cow;
+use std::sync::Arc;
+
+/// The preparation that was learnt from a training part, and all samples prepared with it.
+#[derive(Debug)]
+pub struct Learnt<'a> {
+    /// What was learnt.
+    pub chain: LearnedChain,
+    /// All samples, prepared.
+    pub samples: Cow<'a, Samples>,
+    predictors: PartPredictors<'a>,
+    scaling: Scaling,
+}
+
+/// The predictor matrix of a part: the shared one wherever preparation left it as it was.
+#[derive(Debug)]
+enum PartPredictors<'a> {
+    Shared(&'a Predictors),
+    Own(Box<Predictors>),
+}
+
+/// A path of fits on one training part.
+#[derive(Debug)]
+pub struct PartFit<'a> {
+    /// The preparation.
+    pub learnt: Learnt<'a>,
+    /// The fits.
+    pub path: Path,
+}
+
+/// Learns the preparation from the training rows of a split, and proves that it did so.
+///
+/// # Errors
+/// When a step cannot be learnt, a value is still missing afterwards, the proof fails, or the
+/// work was called off.
+pub fn learn_part<'a>(
+    material: &Material<'a>,
+    procedure: &Procedure<'_>,
+    split: &Split,
+    tally: &mut Tally,
+    work: &Work<'_>,
+) -> Result<Learnt<'a>, Halt> {
+    let outcome = material.response.values();
+    let Prepared { chain, samples } =
+        procedure.chain.prepare(split, material.samples, outcome, work)?;
+    tally.proof.check(&chain, split);
+    if !tally.proof.holds() {
+        return Err(ProcedureError::Leak.into());
+    }
+    if !samples.active.contains(&true) {
+        return Err(ProcedureError::NoPredictors.into());
+    }
+    let predictors = if Arc::ptr_eq(&samples.x, &material.samples.x) {
+        PartPredictors::Shared(material.predictors)
+    } else {
+        PartPredictors::Own(Box::new(Predictors::new(Arc::clone(&samples.x))))
+    };
+    let rows = split.training().iter().chain(split.held_out()).copied();
+    nothing_missing(&samples, rows)?;
+    let scaling = match chain.trailing().scale {
+        TrailingScale::UnitVariance => Scaling::UnitVariance,
+        TrailingScale::Leave => procedure.scaling,
+    };
+    Ok(Learnt { chain, samples, predictors, scaling })
+}
+
+fn nothing_missing(
+    samples: &Samples,
+    rows: impl Iterator<Item = usize> + Clone,
+) -> Result<(), ProcedureError> {
+    let mut first = None;
+    let mut count = 0;
+    for column in samples.active_columns() {
+        let values = samples.column(column);
+        for row in rows.clone() {
+            if values[row].is_nan() {
+                first = first.or(Some((row, column)));
+                count += 1;
+            }
+        }
+    }
+    match first {
+        Some((row, column)) => Err(ProcedureError::Missing { row, column, count }),
+        None => Ok(()),
+    }
+}
+
+impl Learnt<'_> {
+    /// The predictor matrix of this part, all samples.
+    #[must_use]
+    pub fn predictors(&self) -> &Predictors {
+        match &self.predictors {
+            PartPredictors::Shared(predictors) => predictors,
+            PartPredictors::Own(predictors) => predictors,
+        }
+    }
+
+    /// The fitting problem of this part.
+    #[must_use]
+    pub fn task<'t>(&'t self, material: &'t Material<'_>, rows: &'t [usize]) -> Task<'t> {
+        Task {
+            predictors: self.predictors(),
+            response: material.response,
+            rows,
+            columns: Some(&self.samples.active),
+            covariates: material.covariates,
+            weights: material.weights,
+            factors: None,
+            scaling: self.scaling,
+        }
+    }
+
+    /// The strengths of a range for this part, falling from its all-zero point.
+    ///
+    /// # Errors
+    /// When the outcome cannot be fitted.
+    pub fn strengths(
+        &self,
+        material: &Material<'_>,
+        rows: &[usize],
+        share: f64,
+        params: RangeParams,
+    ) -> Result<Vec<f64>, ProcedureError> {
+        strength_range(&self.task(material, rows), share, params).map_err(ProcedureError::Fit)
+    }
+}
+
+/// Fits a path on the training rows of a split with preparation that was learnt from them.
+///
+/// # Errors
+/// When the fit cannot be made, or was called off.
+pub fn fit_learnt<'a>(
+    material: &Material<'_>,
+    learnt: Learnt<'a>,
+    split: &Split,
+    share: f64,
+    strengths: &[f64],
+    tally: &mut Tally,
+    work: &Work<'_>,
+) -> Result<PartFit<'a>, Halt> {
+    let path = fit_path(
+        &learnt.task(material, split.training()),
+        share,
+        strengths,
+        &Params::default(),
+        work,
+    )?;
+    tally.count(&path);
+    Ok(PartFit { learnt, path })
+}
+
+/// Learns the preparation from the training rows of a split and fits a path on them.
+///
+/// # Errors
+/// When preparation or fit cannot be made, or the work was called off.
+pub fn fit_part<'a>(
+    material: &Material<'a>,
+    procedure: &Procedure<'_>,
+    split: &Split,
+    share: f64,
+    strengths: &[f64],
+    tally: &mut Tally,
+    work: &Work<'_>,
+) -> Result<PartFit<'a>, Halt> {
+    let learnt = learn_part(material, procedure, split, tally, work)?;
+    fit_learnt(material, learnt, split, share, strengths, tally, work)
+}
+
+impl PartFit<'_> {
+    /// The linear predictor of some samples at every strength: rows × strengths.
+    #[must_use]
+    pub fn predict(&self, material: &Material<'_>, rows: &[usize]) -> Matrix {
+        self.path.predict(&self.learnt.task(material, &[]), rows)
+    }
+}

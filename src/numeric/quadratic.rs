@@ -1,0 +1,74 @@
+//! The quadratic problem that stands inside every fit: a least-squares part and the penalty, on the
+//! few predictors of the working set.
+
+use crate::numeric::lanes;
+use crate::numeric::penalty::Sign;
+
+/// Minimise, over the coefficients b of the columns in use,
+///
+/// ```text
+/// ½ (b − 0)'X'HX (b − 0) − b'X't + Σⱼ ( lassoⱼ |bⱼ| + ½ ridgeⱼ bⱼ² )      bⱼ within its sign rule
+/// ```
+///
+/// X has columns of length N in numbered slots. H is given by the columns HX where it is not the
+/// identity. Columns are thought of as free of everything unpenalised.
+#[derive(Default)]
+pub(crate) struct Quadratic {
+    /// N.
+    pub(crate) length: usize,
+    /// The slots' columns, one after the other.
+    pub(crate) x: Vec<f64>,
+    /// The slots' columns times H; empty when H is the identity.
+    pub(crate) hx: Vec<f64>,
+    /// t, of length N.
+    pub(crate) target: Vec<f64>,
+    /// xⱼ't.
+    pub(crate) along: Vec<f64>,
+    /// xⱼ'Hxⱼ.
+    pub(crate) square: Vec<f64>,
+    /// The weight of |bⱼ|.
+    pub(crate) lasso: Vec<f64>,
+    /// The weight of ½ bⱼ².
+    pub(crate) ridge: Vec<f64>,
+    /// The signs that bⱼ may have.
+    pub(crate) sign: Vec<Sign>,
+    /// The slots in use, rising.
+    pub(crate) used: Vec<usize>,
+}
+
+impl Quadratic {
+    /// The number of slots there are, used or not.
+    pub(crate) fn n_slots(&self) -> usize {
+        self.lasso.len()
+    }
+
+    /// The columns that stand for HX.
+    pub(crate) fn h_columns(&self) -> &[f64] {
+        if self.hx.is_empty() { &self.x } else { &self.hx }
+    }
+
+    /// A slot's column of X.
+    pub(crate) fn column(&self, slot: usize) -> &[f64] {
+        &self.x[slot * self.length..(slot + 1) * self.length]
+    }
+
+    /// A slot's column of HX.
+    pub(crate) fn h_column(&self, slot: usize) -> &[f64] {
+        &self.h_columns()[slot * self.length..(slot + 1) * self.length]
+    }
+
+    /// t − Σ bⱼ Hxⱼ over the given slots.
+    pub(crate) fn residual(&self, slots: &[usize], b: &[f64], out: &mut Vec<f64>) {
+        out.clear();
+        out.extend_from_slice(&self.target);
+        lanes::subtract_columns(self.h_columns(), slots, b, out);
+    }
+
+    /// The excess of a slot's correlation c over what the penalty holds down, and the sign with
+    /// which it would enter: `None` when its sign rule forbids that sign.
+    pub(crate) fn excess(&self, slot: usize, c: f64) -> Option<f64> {
+        self.sign[slot]
+            .allows(c)
+            .then(|| c.abs() - self.lasso[slot])
+    }
+}

@@ -1,0 +1,154 @@
+//! The range of penalty strengths: from where the penalty empties the model, downwards.
+
+use crate::base::work::Work;
+use crate::numeric::error::{FitError, Stop, Unsupported};
+use crate::numeric::ground::{Ground, Penalised};
+use crate::numeric::lanes;
+use crate::numeric::response::Response;
+use crate::numeric::ridge::Spectrum;
+use crate::numeric::scan::Sieve;
+use crate::numeric::task::Task;
+
+/// How a range of strengths is laid out.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct RangeParams {
+    /// How many strengths, evenly spaced in the logarithm.
+    pub count: usize,
+    /// The last strength as a share of the first (for ridge see [`strength_range`]).
+    pub ratio: f64,
+}
+
+impl Default for RangeParams {
+    /// 100 strengths down to 1 % of the first.
+    fn default() -> Self {
+        Self {
+            count: 100,
+            ratio: 0.01,
+        }
+    }
+}
+
+/// No range goes below this share of the largest eigenvalue: in double precision there is nothing
+/// left to tell apart there.
+const LOWEST: f64 = 1e-10;
+
+/// Falling strengths for a task.
+///
+/// With a lasso share above 0: from the all-zero point down to `ratio` times it. For ridge there is
+/// no all-zero point. There the range starts at the sum of the eigenvalues of K = ZZ'/n, where the
+/// penalised predictors have less than one degree of freedom together, and ends at `ratio` times the
+/// smallest eigenvalue that is not zero, where nearly all of them are free; but never below 1e-10 of
+/// the largest.
+///
+/// Gives an empty list when no predictor can enter.
+///
+/// # Errors
+/// What is wrong with the task.
+pub fn strength_range(
+    task: &Task<'_>,
+    share: f64,
+    params: RangeParams,
+) -> Result<Vec<f64>, FitError> {
+    let (first, last) = if share == 0.0 {
+        ridge_ends(task, params.ratio)?
+    } else {
+        let first = all_zero_point(task, share)?;
+        (first, first * params.ratio)
+    };
+    if first <= 0.0 || params.count == 0 {
+        return Ok(Vec::new());
+    }
+    let steps = (params.count - 1).max(1) as f64;
+    Ok((0..params.count)
+        .map(|at| match at {
+            0 => first,
+            _ => first * (last / first).powf(at as f64 / steps),
+        })
+        .collect())
+}
+
+fn ridge_ends(task: &Task<'_>, ratio: f64) -> Result<(f64, f64), FitError> {
+    let work = Work::unattended();
+    let ground = never_cancelled(Ground::new(task, Penalised::ByWeight, &work))?;
+    let spectrum = never_cancelled(Spectrum::new(&ground, &ground.basis(), &work))?;
+    let top = spectrum.values.first().copied().unwrap_or(0.0);
+    let sum: f64 = spectrum.values.iter().sum();
+    let smallest = spectrum
+        .values
+        .iter()
+        .copied()
+        .filter(|d| *d > 1e-12 * top)
+        .fold(top, f64::min);
+    Ok((sum, (ratio * smallest).max(LOWEST * top)))
+}
+
+/// The smallest strength at which no penalised predictor is in the model:
+/// `max_j |gradient_j| / (share · f_j)` at the model of intercept, covariates and predictors without
+/// a penalty. Infinite for a share of 0 unless nothing is left to explain; 0 when no predictor can enter.
+///
+/// # Errors
+/// What is wrong with the task.
+pub fn all_zero_point(task: &Task<'_>, share: f64) -> Result<f64, FitError> {
+    if !(0.0..=1.0).contains(&share) {
+        return Err(FitError::Share(share));
+    }
+    let work = Work::unattended();
+    let ground = never_cancelled(Ground::new(task, Penalised::ByWeight, &work))?;
+    match task.response {
+        Response::Measured(y) => {
+            let basis = ground.basis();
+            let outcome: Vec<f64> = ground
+                .rows
+                .iter()
+                .zip(&ground.root)
+                .map(|(&row, root)| y[row] * root)
+                .collect();
+            let mut residual = outcome.clone();
+            basis.project(&mut residual);
+            basis.project(&mut residual);
+            if lanes::norm(&residual) <= 1e-13 * lanes::norm(&outcome) {
+                return Ok(0.0);
+            }
+            for (r, root) in residual.iter_mut().zip(&ground.root) {
+                *r *= root;
+            }
+            let mut g = Vec::new();
+            ground.spread(&residual, &mut g);
+            let top = largest(&ground, &g);
+            Ok(if top > 0.0 { top / share } else { 0.0 })
+        }
+        Response::YesNo(_)
+        | Response::Classes { .. }
+        | Response::Count { .. }
+        | Response::Time { .. } => Err(FitError::Unsupported(Unsupported::Outcome)),
+    }
+}
+
+/// The largest |zⱼ'g|/fⱼ over the penalised predictors, exactly: bounds for all, then the contenders
+/// in full.
+pub(crate) fn largest(ground: &Ground<'_>, g: &[f64]) -> f64 {
+    let sieve = Sieve::new(ground);
+    let mut bounds = [Vec::new()];
+    sieve.bounds(ground.predictors.panels(), &[g], &mut bounds);
+    let length = lanes::norm(g);
+    let mut order: Vec<usize> = (0..ground.predictors.n_predictors())
+        .filter(|&j| bounds[0][j] > 0.0)
+        .collect();
+    order.sort_by(|&a, &b| bounds[0][b].total_cmp(&bounds[0][a]).then(a.cmp(&b)));
+    let mut top = 0.0_f64;
+    for j in order {
+        if f64::from(bounds[0][j]) * length < top {
+            break;
+        }
+        top = top.max(ground.correlation(j, g).abs() / ground.factor(j));
+    }
+    top
+}
+
+/// Work that nobody watches cannot be called off.
+pub(crate) fn never_cancelled<T>(result: Result<T, Stop>) -> Result<T, FitError> {
+    result.map_err(|stop| match stop {
+        Stop::Failed(error) => error,
+        Stop::Cancelled => unreachable!("unattended work cannot be called off"),
+    })
+}

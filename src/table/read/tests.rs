@@ -1,0 +1,2 @@
+//! Tests of reading.
+

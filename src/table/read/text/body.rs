@@ -1,0 +1,613 @@
+//! The values of a delimited text: numbers straight into columns, all others listed.
+
+use crate::base::layout::Orientation;
+use crate::base::problem::Place;
+use crate::base::thread::{Threads, in_order};
+use crate::base::work::{Cancelled, Work};
+use crate::table::finding::{Finding, FindingKind, Treatment};
+use crate::table::read::cell::{Sort, sort, trimmed};
+use crate::table::read::decide;
+use crate::table::read::error::ReadError;
+use crate::table::read::layout::names_samples;
+use crate::table::read::names;
+use crate::table::read::number;
+use crate::table::read::raw::{Odd, Plan, Raw, RawLines, RawTable, Stored};
+use crate::table::read::split::{self, Field, Record};
+use crate::table::read::text::{Found, Manner, are_labels, row_lines};
+use crate::table::read::Options;
+use std::borrow::Cow;
+use std::sync::Mutex;
+
+/// How many rows are looked at to see what a column holds.
+const LOOK: usize = 5;
+
+/// How many bytes of text one piece of work reads, about: some milliseconds.
+const PIECE: usize = 1 << 20;
+
+/// Rows are shared out by eights, so that no two threads write into one line of the cache.
+const EIGHT: usize = 8;
+
+/// What is known before the values are read.
+pub struct Body<'a> {
+    /// How the text is read.
+    pub manner: Manner<'a>,
+    /// The rows of values.
+    pub records: Vec<Record>,
+    /// The names of the columns from `left` on; sideways: the whole header.
+    pub names: Vec<String>,
+    /// The heads of all columns as they stand in the file.
+    pub heads: Vec<String>,
+    /// The units of all columns, or none.
+    pub units: Vec<String>,
+    /// The first column that is filled.
+    pub left: usize,
+    /// How many values a row has.
+    pub width: usize,
+    /// The column of units in a sideways file.
+    pub unit_column: Option<usize>,
+    /// The row of the header; 0 if there is none.
+    pub header_line: u32,
+    /// The file's name.
+    pub file_name: String,
+    /// What was noticed so far.
+    pub findings: Vec<Finding>,
+}
+
+/// Rows of unusual length.
+#[derive(Default)]
+struct Uneven {
+    short: Vec<u32>,
+    long: Vec<u32>,
+}
+
+/// Reads the values.
+pub fn read<'a>(
+    body: &Body<'a>,
+    options: &Options,
+    threads: Threads,
+    work: &Work<'_>,
+) -> Result<Found<'a>, Cancelled> {
+    if body.records.is_empty() {
+        return Ok(Err(ReadError::HeaderOnly {
+            columns: body.names.len(),
+        }));
+    }
+    match options.orientation {
+        Some(Orientation::SamplesInColumns) => sideways(body, options, threads, work),
+        Some(Orientation::SamplesInRows) | None => upright(body, options, threads, work),
+    }
+}
+
+/// One value of a row.
+enum Hit {
+    Number { value: f64, start: usize, end: usize },
+    Other(Field),
+}
+
+/// Calls `hit` with every value of a record and its position; returns how many there are.
+#[inline]
+fn scan(manner: Manner<'_>, record: Record, mut hit: impl FnMut(usize, Hit)) -> usize {
+    let bytes = manner.text.as_bytes();
+    let delimiter = manner.dialect.byte();
+    let end = record.end;
+    let mut at = split::beginning(bytes, record.start, end, manner.dialect);
+    let mut index = 0;
+    loop {
+        let mut next = None;
+        if let Some((value, length)) = number::leading(&bytes[at..end], manner.mark) {
+            let stop = at + length;
+            if (stop == end || bytes[stop] == delimiter) && !loses_digits(&bytes[at..stop], value) {
+                hit(index, Hit::Number { value, start: at, end: stop });
+                next = Some(stop);
+            }
+        }
+        let next = next.unwrap_or_else(|| {
+            let field = split::field(bytes, at, end, manner.dialect);
+            hit(index, Hit::Other(field));
+            field.next
+        });
+        index += 1;
+        match split::following(bytes, next, end, manner.dialect) {
+            Some(following) => at = following,
+            None => return index,
+        }
+    }
+}
+
+/// Whether a number as written holds more than its value: leading zeros, too many digits.
+#[inline]
+fn loses_digits(written: &[u8], value: f64) -> bool {
+    (written[0] == b'0' && written.len() > 1 && written[1].is_ascii_digit())
+        || (written.len() > 15 && written.iter().all(u8::is_ascii_digit))
+        || value.is_infinite()
+}
+
+fn slice(text: &str, start: usize, end: usize) -> &str {
+    text.get(start..end).unwrap_or("")
+}
+
+fn trimmed_field<'a>(text: &'a str, field: &Field) -> Cow<'a, str> {
+    match field.text(text) {
+        Cow::Borrowed(text) => Cow::Borrowed(text),
+        Cow::Owned(text) => Cow::Owned(text),
+    }
+}
+
+/// What each column is taken for, by its name and its first values.
+fn plans(body: &Body<'_>, options: &Options) -> Vec<Plan> {
+    let manner = body.manner;
+    let n_columns = body.names.len();
+    let mut sorts: Vec<Vec<Sort>> = vec![Vec::new(); n_columns];
+    for &record in body.records.iter().take(LOOK) {
+        let _ = scan(manner, record, |index, hit| {
+            let Some(sorts) = index.checked_sub(body.left).and_then(|at| sorts.get_mut(at)) else {
+                return;
+            };
+            sorts.push(match hit {
+                Hit::Number { value, .. } => Sort::Number(value),
+                Hit::Other(field) => sort(&field.text(manner.text), manner.mark, manner.grouping),
+            });
+        });
+    }
+    let as_text = decide::set(&options.as_text);
+    let as_numbers = decide::set(&options.as_numbers);
+    body.names
+        .iter()
+        .zip(&sorts)
+        .map(|(name, sorts)| {
+            if as_text.contains(name.as_str()) {
+                Plan::Labels
+            } else if as_numbers.contains(name.as_str()) {
+                Plan::SurelyNumbers
+            } else if names_samples(name) {
+                Plan::Names
+            } else if are_labels(sorts.iter().copied()) {
+                Plan::PerhapsLabels
+            } else {
+                Plan::Numbers
+            }
+        })
+        .collect()
+}
+
+type Strip<'s> = Mutex<Option<Vec<&'s mut [f64]>>>;
+
+/// Samples in rows.
+fn upright<'a>(
+    body: &Body<'a>,
+    options: &Options,
+    threads: Threads,
+    work: &Work<'_>,
+) -> Result<Found<'a>, Cancelled> {
+    let (n_rows, n_columns) = (body.records.len(), body.names.len());
+    let plans = plans(body, options);
+    let mut values: Vec<Vec<f64>> = plans
+        .iter()
+        .map(|plan| if plan.keeps_text() { Vec::new() } else { vec![0.0; n_rows] })
+        .collect();
+    let rows_each = rows_each(body);
+    let n_pieces = n_rows.div_ceil(rows_each);
+    let mut shares: Vec<Vec<&mut [f64]>> = (0..n_pieces).map(|_| Vec::with_capacity(n_columns)).collect();
+    for column in &mut values {
+        let mut pieces = column.chunks_mut(rows_each);
+        for share in &mut shares {
+            share.push(pieces.next().unwrap_or(&mut []));
+        }
+    }
+    let shares: Vec<Strip<'_>> = shares.into_iter().map(|share| Mutex::new(Some(share))).collect();
+    let pieces = in_order(threads, n_pieces, &work.part(0.0..0.9), |piece| {
+        let mut share = shares[piece]
+            .lock()
+            .expect("nobody panics while holding a share")
+            .take()
+            .expect("every piece is read once");
+        let first = piece * rows_each;
+        let records = &body.records[first..n_rows.min(first + rows_each)];
+        strip(body, records, first, &mut share, work)
+    })?;
+    drop(shares);
+    let mut odd: Vec<Vec<Odd<'a>>> = plans.iter().map(|_| Vec::new()).collect();
+    let mut uneven = Uneven::default();
+    for (pieces, lines) in pieces {
+        for (column, value) in pieces {
+            odd[column as usize].push(value);
+        }
+        uneven.short.extend(lines.short);
+        uneven.long.extend(lines.long);
+    }
+    let mut columns: Vec<Raw<'a>> = Vec::with_capacity(n_columns);
+    for (at, ((plan, values), odd)) in plans.into_iter().zip(values).zip(odd).enumerate() {
+        columns.push(Raw {
+            name: body.names[at].clone(),
+            is_unnamed: body.heads.get(at + body.left).is_none_or(String::is_empty),
+            unit: body.units.get(at + body.left).filter(|unit| !unit.is_empty()).cloned(),
+            line: 0,
+            plan,
+            values,
+            odd,
+        });
+    }
+    retext(body, &mut columns, threads, &work.part(0.9..1.0))?;
+    let mut findings = body.findings.clone();
+    findings.extend(uneven_rows(body, uneven));
+    Ok(Ok(RawTable {
+        sheet: None,
+        is_typed: false,
+        columns,
+        n_rows,
+        lines: row_lines(&body.records),
+        header_line: body.header_line,
+        findings,
+    }))
+}
+
+fn rows_each(body: &Body<'_>) -> usize {
+    let first = body.records.first().map_or(0, |record| record.start);
+    let last = body.records.last().map_or(0, |record| record.end);
+    let per_row = ((last - first) / body.records.len().max(1)).max(1);
+    (PIECE / per_row).max(1).next_multiple_of(EIGHT)
+}
+
+type Strays<'a> = (Vec<(u32, Odd<'a>)>, Uneven);
+
+/// Reads some rows into their shares of the columns.
+fn strip<'a>(
+    body: &Body<'a>,
+    records: &[Record],
+    first: usize,
+    share: &mut [&mut [f64]],
+    work: &Work<'_>,
+) -> Result<Strays<'a>, Cancelled> {
+    let manner = body.manner;
+    let n_columns = share.len();
+    let mut odd = Vec::new();
+    let mut uneven = Uneven::default();
+    for (at, &record) in records.iter().enumerate() {
+        work.check()?;
+        let mut is_long = false;
+        let found = scan(manner, record, |index, hit| {
+            let Some(slot) = index.checked_sub(body.left) else {
+                return;
+            };
+            let Some(values) = share.get_mut(slot) else {
+                // More values than names: blanks behind the last delimiter are no values.
+                is_long = is_long || match hit {
+                    Hit::Number { .. } => true,
+                    Hit::Other(field) => !trimmed(&field.text(manner.text)).is_empty(),
+                };
+                return;
+            };
+            let (text, sort) = match hit {
+                Hit::Number { value, start, end } => {
+                    if let Some(place) = values.get_mut(at) {
+                        *place = value;
+                        return;
+                    }
+                    (Cow::Borrowed(slice(manner.text, start, end)), Sort::Number(value))
+                }
+                Hit::Other(field) => {
+                    let text = trimmed_field(manner.text, &field);
+                    let Some(place) = values.get_mut(at) else {
+                        if !trimmed(&text).is_empty() {
+                            odd.push((slot as u32, label((first + at) as u32, text)));
+                        }
+                        return;
+                    };
+                    let sort = sort(&text, manner.mark, manner.grouping);
+                    *place = f64::NAN;
+                    match sort {
+                        Sort::Blank => return,
+                        Sort::Number(value) => {
+                            *place = value;
+                            return;
+                        }
+                        _ => (text, sort),
+                    }
+                }
+            };
+            let row = (first + at) as u32;
+            odd.push((slot as u32, Odd { row, sort, stored: Stored::Text, text }));
+        });
+        for values in share.iter_mut().skip(found.saturating_sub(body.left)) {
+            if let Some(place) = values.get_mut(at) {
+                *place = f64::NAN;
+            }
+        }
+        if found < body.left + n_columns {
+            uneven.short.push(record.line);
+        }
+        if is_long {
+            uneven.long.push(record.line);
+            // A value too many somewhere: nobody knows which column the others belong to.
+            for values in share.iter_mut().skip(1) {
+                if let Some(place) = values.get_mut(at) {
+                    *place = f64::NAN;
+                }
+            }
+            let row = (first + at) as u32;
+            odd.retain(|(slot, odd): &(u32, Odd<'a>)| {
+                odd.row != row || *slot == 0 || share[*slot as usize].is_empty()
+            });
+        }
+    }
+    Ok((odd, uneven))
+}
+
+/// A value of a column that keeps its text.
+fn label(row: u32, text: Cow<'_, str>) -> Odd<'_> {
+    Odd {
+        row,
+        sort: Sort::Text,
+        stored: Stored::Text,
+        text,
+    }
+}
+
+/// Reads once more, as text, the columns that were taken for numbers and hold labels.
+fn retext<'a>(
+    body: &Body<'a>,
+    columns: &mut [Raw<'a>],
+    threads: Threads,
+    work: &Work<'_>,
+) -> Result<(), Cancelled> {
+    let wanted: Vec<bool> = columns
+        .iter()
+        .enumerate()
+        .map(|(at, raw)| !raw.plan.keeps_text() && decide::is_labels(raw, at == 0))
+        .collect();
+    let Some(last) = wanted.iter().rposition(|&is_wanted| is_wanted) else {
+        return Ok(());
+    };
+    let rows_each = rows_each(body);
+    let pieces = in_order(threads, body.records.len().div_ceil(rows_each), work, |piece| {
+        let first = piece * rows_each;
+        let mut texts = Vec::new();
+        for (at, &record) in body.records.iter().enumerate().skip(first).take(rows_each) {
+            work.check()?;
+            let mut index = 0;
+            split::fields(body.manner.text.as_bytes(), record, body.manner.dialect, |field| {
+                if let Some(slot) = usize::checked_sub(index, body.left) {
+                    let text = trimmed_field(body.manner.text, &field);
+                    if wanted.get(slot) == Some(&true) && !trimmed(&text).is_empty() {
+                        texts.push((slot, label(at as u32, text)));
+                    }
+                }
+                index += 1;
+                if index > last + body.left {
+                    std::ops::ControlFlow::Break(())
+                } else {
+                    std::ops::ControlFlow::Continue(())
+                }
+            });
+        }
+        Ok(texts)
+    })?;
+    for (raw, _) in columns.iter_mut().zip(&wanted).filter(|(_, is_wanted)| **is_wanted) {
+        raw.values = Vec::new();
+        raw.odd = Vec::new();
+        raw.plan = Plan::Labels;
+    }
+    for (slot, odd) in pieces.into_iter().flatten() {
+        columns[slot].odd.push(odd);
+    }
+    Ok(())
+}
+
+fn uneven_rows(body: &Body<'_>, uneven: Uneven) -> Vec<Finding> {
+    let expected = body.left + body.names.len();
+    let place = |line: u32| Place::file(&body.file_name).with_row(line as usize);
+    let mut short = Finding::new(FindingKind::ShortRows { expected }, Treatment::CountedAsMissing);
+    for line in uneven.short {
+        short.add(|| place(line), "");
+    }
+    let mut long = Finding::new(FindingKind::LongRows { expected }, Treatment::CountedAsMissing);
+    for line in uneven.long {
+        long.add(|| place(line), "");
+    }
+    [short, long].into_iter().filter(|finding| finding.count > 0).collect()
+}
+
+/// Samples in columns: every row of the file is a column of the table.
+fn sideways<'a>(
+    body: &Body<'a>,
+    options: &Options,
+    threads: Threads,
+    work: &Work<'_>,
+) -> Result<Found<'a>, Cancelled> {
+    let manner = body.manner;
+    let first_sample = body.unit_column.map_or(body.left, |units| units.max(body.left)) + 1;
+    let mut n_samples = body.width.saturating_sub(first_sample);
+    // Blank heads at the end are delimiters at the end of lines, unless values stand below.
+    while n_samples > 0 && body.names[first_sample + n_samples - 1].is_empty() && is_blank_column(body, first_sample + n_samples - 1) {
+        n_samples -= 1;
+    }
+    if n_samples == 0 {
+        return Ok(Err(ReadError::HeaderOnly { columns: body.records.len() }));
+    }
+    let heads: Vec<String> = body
+        .records
+        .iter()
+        .map(|&record| {
+            let mut head = String::new();
+            let mut index = 0;
+            split::fields(manner.text.as_bytes(), record, manner.dialect, |field| {
+                if index == body.left {
+                    trimmed(&field.text(manner.text)).clone_into(&mut head);
+                    return std::ops::ControlFlow::Break(());
+                }
+                index += 1;
+                std::ops::ControlFlow::Continue(())
+            });
+            head
+        })
+        .collect();
+    let corner = body.names.get(body.left).filter(|name| names_samples(name));
+    let mut all = vec![corner.cloned().unwrap_or_else(|| "sample".to_owned())];
+    all.extend(heads);
+    let (names, of_names) = names::unlike(&all, 0, |at| {
+        let record = body.records.get(at.wrapping_sub(1));
+        let line = record.map_or(body.header_line, |record| record.line);
+        Place::file(&body.file_name).with_row(line as usize)
+    });
+    let as_text = decide::set(&options.as_text);
+    let as_numbers = decide::set(&options.as_numbers);
+    let read = in_order(threads, body.records.len(), work, |at| {
+        let name = &names[at + 1];
+        let plan = if as_text.contains(name.as_str()) {
+            Plan::Labels
+        } else if as_numbers.contains(name.as_str()) {
+            Plan::SurelyNumbers
+        } else {
+            Plan::Numbers
+        };
+        let mut across = across(body, at, plan, first_sample, n_samples);
+        across.raw.name.clone_from(name);
+        let is_unnamed = all[at + 1].is_empty();
+        across.raw.is_unnamed = is_unnamed;
+        if !plan.keeps_text() && decide::is_labels(&across.raw, false) {
+            let unit = across.raw.unit.take();
+            across.raw = self::across(body, at, Plan::Labels, first_sample, n_samples).raw;
+            across.raw.unit = unit;
+            across.raw.is_unnamed = is_unnamed;
+            across.raw.name.clone_from(name);
+        }
+        Ok(across)
+    })?;
+    let heads = &body.names[first_sample..first_sample + n_samples];
+    let mut columns = vec![Raw {
+        name: names[0].clone(),
+        is_unnamed: false,
+        unit: None,
+        line: body.header_line,
+        plan: Plan::Labels,
+        values: Vec::new(),
+        odd: heads
+            .iter()
+            .enumerate()
+            .filter(|(_, head)| !head.is_empty())
+            .map(|(row, head)| label(row as u32, Cow::Owned(head.clone())))
+            .collect(),
+    }];
+    let mut uneven = Uneven::default();
+    for across in read {
+        if across.is_short {
+            uneven.short.push(across.raw.line);
+        }
+        if across.is_long {
+            uneven.long.push(across.raw.line);
+        }
+        columns.push(across.raw);
+    }
+    let mut findings = body.findings.clone();
+    findings.extend(of_names);
+    findings.extend(uneven_rows(body, uneven));
+    let lines = heads
+        .iter()
+        .enumerate()
+        .map(|(at, head)| {
+            if head.is_empty() {
+                (first_sample + at + 1).to_string()
+            } else {
+                head.clone()
+            }
+        })
+        .collect();
+    Ok(Ok(RawTable {
+        sheet: None,
+        is_typed: false,
+        columns,
+        n_rows: n_samples,
+        lines: RawLines::Columns(lines),
+        header_line: body.header_line,
+        findings,
+    }))
+}
+
+fn is_blank_column(body: &Body<'_>, column: usize) -> bool {
+    body.records.iter().take(layout_rows()).all(|&record| {
+        let mut is_blank = true;
+        let _ = scan(body.manner, record, |index, hit| {
+            if index == column {
+                is_blank = match hit {
+                    Hit::Number { .. } => false,
+                    Hit::Other(field) => trimmed(&field.text(body.manner.text)).is_empty(),
+                };
+            }
+        });
+        is_blank
+    })
+}
+
+fn layout_rows() -> usize {
+    crate::table::read::layout::ROWS
+}
+
+/// A row of a sideways file.
+struct Across<'a> {
+    raw: Raw<'a>,
+    is_short: bool,
+    is_long: bool,
+}
+
+fn across<'a>(
+    body: &Body<'a>,
+    at: usize,
+    plan: Plan,
+    first_sample: usize,
+    n_samples: usize,
+) -> Across<'a> {
+    let manner = body.manner;
+    let record = body.records[at];
+    let mut raw = Raw {
+        name: String::new(),
+        is_unnamed: false,
+        unit: None,
+        line: record.line,
+        plan,
+        values: if plan.keeps_text() { Vec::new() } else { vec![f64::NAN; n_samples] },
+        odd: Vec::new(),
+    };
+    let mut is_long = false;
+    let found = scan(manner, record, |index, hit| {
+        let Some(row) = index.checked_sub(first_sample) else {
+            if Some(index) == body.unit_column {
+                if let Hit::Other(field) = hit {
+                    let unit = field.text(manner.text);
+                    let unit = trimmed(&unit);
+                    raw.unit = (!unit.is_empty()).then(|| unit.to_owned());
+                }
+            }
+            return;
+        };
+        let (text, sort) = match hit {
+            Hit::Number { value, start, end } => {
+                (Cow::Borrowed(slice(manner.text, start, end)), Sort::Number(value))
+            }
+            Hit::Other(field) => {
+                let text = trimmed_field(manner.text, &field);
+                let sort = sort(&text, manner.mark, manner.grouping);
+                (text, sort)
+            }
+        };
+        if sort == Sort::Blank {
+            return;
+        }
+        if row >= n_samples {
+            is_long = true;
+            return;
+        }
+        match (raw.values.get_mut(row), sort) {
+            (Some(place), Sort::Number(value)) => *place = value,
+            _ => raw.odd.push(Odd { row: row as u32, sort, stored: Stored::Text, text }),
+        }
+    });
+    if is_long {
+        raw.values.fill(f64::NAN);
+        raw.odd.clear();
+    }
+    Across {
+        raw,
+        is_short: found < first_sample + n_samples,
+        is_long,
+    }
+}

@@ -1,0 +1,8 @@
+//! Preparation steps, measures and stability against reference values, and the laws of steps.
+
+mod class; // the class of every step, and that nothing is learnt from held-out samples
+mod measure; // measures against reference values
+mod preprocess; // steps against reference values
+mod proof; // chains, plans and the run-time proof together
+mod stability; // stability index and bounds against reference values
+mod support; // reading reference values; comparing numbers

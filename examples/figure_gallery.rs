@@ -26,7 +26,7 @@ fn main() -> std::io::Result<()> {
         ("paper", Palette::paper()),
     ];
     for (name, figure) in sample::all() {
-        let picture = layout(&figure, natural_size(&figure, 660.0));
+        let picture = layout(&figure, natural_size(&figure, 660.0)).with_margin(16.0);
         for (look, palette) in &palettes {
             let text = svg(&picture, palette);
             std::fs::write(format!("{folder}/{name}-{look}.svg"), &text)?;

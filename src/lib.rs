@@ -14,9 +14,12 @@
 
 pub mod app;
 pub mod base;
+pub mod cli;
 pub mod eval;
+pub mod export;
 pub mod figure;
 pub mod numeric;
 pub mod report;
+pub mod store;
 pub mod study;
 pub mod table;

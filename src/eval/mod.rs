@@ -10,3 +10,4 @@ pub mod outcome;
 pub mod plan;
 pub mod question;
 pub mod standing;
+pub mod start;

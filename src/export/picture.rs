@@ -4,7 +4,7 @@ use std::sync::{Arc, LazyLock};
 
 use crate::figure::font::Face;
 use resvg::tiny_skia::{Pixmap, Transform};
-use resvg::usvg::{Options, Tree, fontdb};
+use resvg::usvg::{FontResolver, Options, Tree, fontdb};
 
 /// The most pixels that are made: about a page of A3 at 600 dots per inch.
 const MOST_PIXELS: f64 = 70e6;
@@ -36,10 +36,18 @@ static FONTS: LazyLock<Arc<fontdb::Database>> = LazyLock::new(|| {
     Arc::new(fonts)
 });
 
-fn options() -> Options<'static> {
+/// How our SVG is read: with the bundled fonts, and each text in the fonts that it names. Left to
+/// itself the reader sets a whole text in another font if one sign of it is missing; our painter
+/// has named the font of each sign.
+#[must_use]
+pub fn options() -> Options<'static> {
     Options {
         font_family: Face::Sans.family().to_owned(),
         fontdb: Arc::clone(&FONTS),
+        font_resolver: FontResolver {
+            select_font: FontResolver::default_font_selector(),
+            select_fallback: Box::new(|_, _, _| None),
+        },
         ..Options::default()
     }
 }

@@ -25,6 +25,8 @@ pub struct Mapping {
     /// The ends, in the units in which the axis is even (logarithms for ratios).
     low: f64,
     high: f64,
+    /// The numbers to write, if they are not chosen here.
+    given: Vec<f64>,
 }
 
 #[derive(Clone, Debug, PartialEq)]
@@ -73,12 +75,14 @@ impl Mapping {
                 kind,
                 low: -0.5,
                 high,
+                given: Vec::new(),
             };
         }
         let mut mapping = Self {
             kind,
             low: f64::INFINITY,
             high: f64::NEG_INFINITY,
+            given: axis.ticks.clone(),
         };
         let fixed = axis.range.and_then(|(low, high)| {
             let ends = (mapping.even(low)?, mapping.even(high)?);
@@ -130,7 +134,7 @@ impl Mapping {
         match (ends, &self.kind) {
             (Ends::Exact, _) => {}
             (Ends::Rounded, Kind::Even | Kind::Share) => {
-                let step = nice_step(span / 4.0);
+                let step = nice_step(span / 6.0);
                 // A hair inwards first, so that an end that is a multiple stays where it is.
                 self.low = ((self.low + 1e-9 * span) / step).floor() * step;
                 self.high = ((self.high - 1e-9 * span) / step).ceil() * step;
@@ -210,7 +214,7 @@ impl Mapping {
 
     /// The power of ten that is taken out of the written numbers, in steps of three.
     fn exponent(&self) -> i32 {
-        if self.kind != Kind::Even {
+        if self.kind != Kind::Even || !self.given.is_empty() {
             return 0;
         }
         let size = self.low.abs().max(self.high.abs());
@@ -225,6 +229,9 @@ impl Mapping {
     #[must_use]
     pub fn ticks(&self, most: usize) -> Vec<Tick> {
         let most = most.max(2);
+        if !self.given.is_empty() {
+            return self.given_ticks();
+        }
         match &self.kind {
             Kind::Even => self.even_ticks(most),
             Kind::Share => self.share_ticks(most),
@@ -249,6 +256,29 @@ impl Mapping {
                 })
                 .collect(),
         }
+    }
+
+    /// The given numbers that lie on the axis, with as many decimals as they need.
+    fn given_ticks(&self) -> Vec<Tick> {
+        let needs = |value: &f64| {
+            (0..6_u8)
+                .find(|places| {
+                    let scaled = value * 10f64.powi(i32::from(*places));
+                    (scaled - scaled.round()).abs() < 1e-6
+                })
+                .unwrap_or(6)
+        };
+        let places = self.given.iter().map(needs).max().unwrap_or(0);
+        self.given
+            .iter()
+            .filter_map(|value| {
+                let share = self.share(*value)?;
+                (-1e-9..=1.0 + 1e-9).contains(&share).then(|| Tick {
+                    share: share.clamp(0.0, 1.0),
+                    text: number::text(*value, Precision::Decimals(places)),
+                })
+            })
+            .collect()
     }
 
     fn even_ticks(&self, most: usize) -> Vec<Tick> {

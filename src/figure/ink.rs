@@ -89,6 +89,9 @@ pub struct Palette {
 /// How many series have colours of their own; further ones begin anew.
 pub const SERIES: usize = 7;
 
+/// The least contrast of a text: Web Content Accessibility Guidelines 2.1, level AA.
+const READABLE: f64 = 4.5;
+
 /// How much one dot of many covers.
 const DOT: f32 = 0.62;
 
@@ -117,8 +120,8 @@ const LIGHT_SERIES_TEXT: [Color; SERIES] = [
 
 const DARK_SERIES: [Color; SERIES] = [
     rgb(0x5F_BE_CC),
-    rgb(0xD8_8F_B8),
-    rgb(0x66_A9_E0),
+    rgb(0xC9_68_9F),
+    rgb(0x7F_A8_F0),
     rgb(0xE6_A8_2E),
     rgb(0x2F_B8_90),
     rgb(0xEE_83_3A),
@@ -228,14 +231,20 @@ impl Palette {
             .towards(end, f32::from(level.unsigned_abs().min(100)) / 100.0)
     }
 
-    /// Whichever of text and ground is easier to read on the tile.
+    /// Text or ground if either can be read on the tile, else black or white: one of them always
+    /// can.
     fn heat_text(&self, level: i8) -> Color {
         let tile = self.heat(level);
-        if contrast(self.text, tile) >= contrast(self.ground, tile) {
-            self.text
+        let [black, white] = [rgb(0x00_00_00), rgb(0xFF_FF_FF)];
+        let last = if contrast(black, tile) >= contrast(white, tile) {
+            black
         } else {
-            self.ground
-        }
+            white
+        };
+        [self.text, self.ground]
+            .into_iter()
+            .find(|color| contrast(*color, tile) >= READABLE)
+            .unwrap_or(last)
     }
 }
 
@@ -318,7 +327,7 @@ mod tests {
             inks.extend((0..SERIES as u8).map(Ink::SeriesText));
             for ink in inks {
                 let ratio = contrast(palette.color(ink), palette.color(Ink::Ground));
-                assert!(ratio >= 4.5, "{name} {ink:?} {ratio:.2}");
+                assert!(ratio >= READABLE, "{name} {ink:?} {ratio:.2}");
             }
         }
     }
@@ -331,7 +340,7 @@ mod tests {
                     palette.color(Ink::HeatText(level)),
                     palette.color(Ink::Heat(level)),
                 );
-                assert!(ratio >= 4.0, "{name} {level} {ratio:.2}");
+                assert!(ratio >= READABLE, "{name} {level} {ratio:.2}");
             }
         }
     }

@@ -62,6 +62,36 @@ pub fn has(letter: char, face: Face) -> bool {
     look_up(u32::from(letter), face).is_some()
 }
 
+/// A text in pieces that each need one font: the face itself, or the one for symbols where that
+/// has the letters and the face has not. Left to themselves, programs that set text choose the
+/// font for symbols for the whole text.
+#[must_use]
+pub fn runs(text: &str, face: Face) -> Vec<(Face, &str)> {
+    let font = |letter: char| {
+        if !has(letter, face) && has(letter, Face::Symbols) {
+            Face::Symbols
+        } else {
+            face
+        }
+    };
+    let mut runs = Vec::new();
+    let mut start = 0;
+    let mut current = None;
+    for (at, letter) in text.char_indices() {
+        let next = font(letter);
+        match current {
+            Some(before) if before != next => {
+                runs.push((before, &text[start..at]));
+                start = at;
+            }
+            Some(_) | None => {}
+        }
+        current = Some(next);
+    }
+    runs.extend(current.map(|last| (last, &text[start..])));
+    runs
+}
+
 fn look_up(code: u32, face: Face) -> Option<u16> {
     let runs = match face {
         Face::Sans => table::SANS,
@@ -102,6 +132,18 @@ mod tests {
         assert!(width(&cut, Face::Sans, 12.0) <= 80.0);
         assert_eq!(fitted(name, Face::Sans, 12.0, 800.0), name);
         assert_eq!(fitted(name, Face::Sans, 12.0, 3.0), "");
+    }
+
+    #[test]
+    fn a_text_is_cut_where_it_needs_another_font() {
+        let runs = runs("R² ≤ 0.8", Face::SansStrong);
+        let expected = [
+            (Face::SansStrong, "R² "),
+            (Face::Symbols, "≤"),
+            (Face::SansStrong, " 0.8"),
+        ];
+        assert_eq!(runs, expected);
+        assert!(super::runs("", Face::Sans).is_empty());
     }
 
     #[test]

@@ -72,7 +72,7 @@ pub enum Height {
     /// A thin strip under the panel above, whose horizontal axis it shares. Its vertical axis has
     /// no ticks; its label stands to the left of it.
     Strip,
-    /// The same, as high as one line of text: for numbers below a panel.
+    /// The same, as high as one line of text: for numbers below the horizontal axis.
     Line,
     /// As high as wide, as far as there is room: for axes in the same unit.
     Square,
@@ -91,6 +91,8 @@ pub struct Axis {
     pub range: Option<(f64, f64)>,
     /// Whether zero is always on the axis.
     pub zero: Zero,
+    /// The numbers to write along it; empty leaves the choice to layout.
+    pub ticks: Vec<f64>,
     /// What the numbers mean, so that the window can turn a place back into a number.
     pub quantity: Quantity,
 }
@@ -595,6 +597,7 @@ impl Axis {
             scale,
             range: None,
             zero: Zero::Free,
+            ticks: Vec::new(),
             quantity: Quantity::Plain,
         }
     }
@@ -610,6 +613,13 @@ impl Axis {
     #[must_use]
     pub fn with_zero(mut self, zero: Zero) -> Self {
         self.zero = zero;
+        self
+    }
+
+    /// The same axis with the numbers that are to be written.
+    #[must_use]
+    pub fn with_ticks(mut self, ticks: &[f64]) -> Self {
+        self.ticks = ticks.to_vec();
         self
     }
 

@@ -263,6 +263,32 @@ impl Picture {
             .collect()
     }
 
+    /// The same picture with a margin around it: for files, where no page surrounds it.
+    #[must_use]
+    pub fn with_margin(mut self, margin: f64) -> Self {
+        self.size = Size::new(
+            self.size.width + 2.0 * margin,
+            self.size.height + 2.0 * margin,
+        );
+        for mark in &mut self.marks {
+            mark.shift(margin);
+        }
+        for word in &mut self.words {
+            word.at.shift(margin);
+        }
+        for spot in &mut self.spots {
+            match &mut spot.region {
+                Region::Rect(rect) => rect.shift(margin),
+                Region::Disc { center, .. } => center.shift(margin),
+                Region::Line(points) => points.iter_mut().for_each(|point| point.shift(margin)),
+            }
+        }
+        for ruler in &mut self.rulers {
+            ruler.rect.shift(margin);
+        }
+        self
+    }
+
     /// The ruler under a place, if there is one.
     #[must_use]
     pub fn ruler_at(&self, at: Point) -> Option<&Ruler> {
@@ -294,6 +320,11 @@ impl Point {
         Self { x, y }
     }
 
+    fn shift(&mut self, by: f64) {
+        self.x += by;
+        self.y += by;
+    }
+
     fn distance(self, other: Self) -> f64 {
         (self.x - other.x).hypot(self.y - other.y)
     }
@@ -317,6 +348,11 @@ impl Rect {
             width,
             height,
         }
+    }
+
+    fn shift(&mut self, by: f64) {
+        self.x += by;
+        self.y += by;
     }
 
     /// The right side.
@@ -344,6 +380,22 @@ impl Rect {
             && other.x < self.right()
             && self.y < other.bottom()
             && other.y < self.bottom()
+    }
+
+    /// Whether another rectangle lies in it.
+    #[must_use]
+    pub fn covers(&self, other: &Self) -> bool {
+        self.holds(Point::new(other.x, other.y))
+            && self.holds(Point::new(other.right(), other.bottom()))
+    }
+
+    /// What it has in common with another one.
+    #[must_use]
+    pub fn common(&self, other: &Self) -> Option<Self> {
+        let (left, top) = (self.x.max(other.x), self.y.max(other.y));
+        let right = self.right().min(other.right());
+        let bottom = self.bottom().min(other.bottom());
+        (left < right && top < bottom).then(|| Self::new(left, top, right - left, bottom - top))
     }
 
     /// The same rectangle, larger by a margin on each side.
@@ -381,6 +433,22 @@ fn distance_to(at: Point, from: Point, to: Point) -> f64 {
         0.0
     };
     at.distance(Point::new(from.x + share * dx, from.y + share * dy))
+}
+
+impl Mark {
+    fn shift(&mut self, by: f64) {
+        match self {
+            Self::Line { points, .. } | Self::Area { points, .. } => {
+                points.iter_mut().for_each(|point| point.shift(by));
+            }
+            Self::Disc { center, .. } => center.shift(by),
+            Self::Rect { rect, .. } => rect.shift(by),
+            Self::Clip { rect, marks } => {
+                rect.shift(by);
+                marks.iter_mut().for_each(|mark| mark.shift(by));
+            }
+        }
+    }
 }
 
 impl Stroke {

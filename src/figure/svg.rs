@@ -4,6 +4,7 @@ use std::fmt::Write as _;
 
 use crate::figure::font::Face;
 use crate::figure::ink::{Color, Ink, Palette};
+use crate::figure::metrics;
 use crate::figure::picture::{
     Anchor, Dash, Mark, Picture, Point, REACH, Rect, Region, Spot, Stroke, Telling, Turn, Word,
 };
@@ -197,7 +198,7 @@ impl Writer<'_> {
             font(word.face),
             num(word.size),
             self.paint("fill", word.ink),
-            escaped(&word.text),
+            letters(word),
         ));
     }
 
@@ -216,6 +217,24 @@ impl Writer<'_> {
             )),
         }
     }
+}
+
+/// The text of a word, with signs that its font lacks set in the one for symbols.
+fn letters(word: &Word) -> String {
+    let mut out = String::new();
+    for (face, run) in metrics::runs(&word.text, word.face) {
+        if face == word.face {
+            out.push_str(&escaped(run));
+        } else {
+            let _ = write!(
+                out,
+                "<tspan font-family=\"{}\">{}</tspan>",
+                face.family(),
+                escaped(run)
+            );
+        }
+    }
+    out
 }
 
 fn font(face: Face) -> String {

@@ -18,6 +18,9 @@ const SPANNED: f64 = 1e-11;
 /// The active equations are refined until they hold to this share of the penalty.
 const EQUATIONS: f64 = 1e-12;
 
+/// A violation up to this share of the threshold that cannot be lowered is put down to rounding.
+const ROUNDING: f64 = 1e-8;
+
 /// Inactive members whose correlation was below this share of their threshold are looked at only
 /// when nothing else is left to do.
 const HOT: f64 = 0.9;
@@ -88,7 +91,7 @@ impl ActiveSet {
             }
             let entrants = self.violators(problem, floor, &barred);
             if entrants.is_empty() {
-                return Ok(Ended::Settled);
+                return Ok(self.judge(problem, floor, &barred));
             }
             let limit = (1 + self.members.len() / 20).min(batch);
             newest.clear();
@@ -99,6 +102,21 @@ impl ActiveSet {
                 }
             }
         }
+    }
+
+    /// Whether what was barred for not lowering the objective violates by rounding only.
+    fn judge(&mut self, problem: &Quadratic, floor: f64, barred: &[usize]) -> Ended {
+        for &slot in barred {
+            let c = lanes::dot(problem.column(slot), &self.residual);
+            self.correlation[slot] = c;
+            if let Some(excess) = problem.excess(slot, c)
+                && excess > ROUNDING * problem.lasso[slot] + 100.0 * floor
+                && !self.members.contains(&slot)
+            {
+                return Ended::Stalled;
+            }
+        }
+        Ended::Settled
     }
 
     /// Moves to the solution of the active equations, dropping what changes its sign on the way.
@@ -182,10 +200,11 @@ impl ActiveSet {
         for &slot in self.members.iter().chain(barred) {
             is_out[slot] = false;
         }
-        let (hot, cold): (Vec<usize>, Vec<usize>) =
-            problem.used.iter().filter(|&&slot| is_out[slot]).partition(|&&slot| {
-                self.correlation[slot].abs() >= HOT * problem.lasso[slot]
-            });
+        let (hot, cold): (Vec<usize>, Vec<usize>) = problem
+            .used
+            .iter()
+            .filter(|&&slot| is_out[slot])
+            .partition(|&&slot| self.correlation[slot].abs() >= HOT * problem.lasso[slot]);
         for slots in [hot, cold] {
             lanes::chosen_dots(&problem.x, &slots, &self.residual, &mut self.scratch);
             let mut found: Vec<(f64, usize)> = Vec::new();
@@ -231,8 +250,9 @@ impl ActiveSet {
             let mut step = f64::INFINITY;
             let mut leaves = None;
             for (at, u) in cross.iter().enumerate() {
-                let shrinks = direction * u * self.b[at] > 0.0;
-                if self.signs[at] != 0.0 && shrinks {
+                // By the sign, not the coefficient: one that has only just entered is zero, and
+                // must leave rather than take the wrong sign.
+                if direction * u * self.signs[at] > 0.0 {
                     let reach = self.b[at].abs() / u.abs();
                     if reach < step {
                         step = reach;

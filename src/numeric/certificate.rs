@@ -11,8 +11,9 @@ pub struct Certificate {
     /// The duality gap over the loss of the model with an intercept only.
     pub gap: f64,
     /// The largest violation of the optimality conditions over all candidates, in units of the
-    /// penalty strength: |gradient| beyond what the penalty holds, or off the equation it must
-    /// satisfy. Predictors and covariates without a penalty are checked too.
+    /// steepest slope of the penalty, λ (share + (1 − share) max|b|): |gradient| beyond what the
+    /// penalty holds, or off the equation it must satisfy. Predictors and covariates without a
+    /// penalty are checked too.
     pub worst_violation: f64,
     /// Where it is; `None` when it is at the intercept or a covariate.
     pub worst_predictor: Option<usize>,
@@ -104,6 +105,15 @@ impl<'a> Part<'a> {
         })
     }
 
+    /// The largest coefficient in the scale of the penalty.
+    fn largest(&self, solution: &Coefficients) -> f64 {
+        solution
+            .predictors
+            .iter()
+            .filter_map(|&(j, raw)| Some(raw.abs() * self.column(j)?.scale))
+            .fold(0.0, f64::max)
+    }
+
     /// The linear predictor of the training rows.
     fn linear(&self, solution: &Coefficients) -> Vec<f64> {
         self.rows
@@ -150,7 +160,11 @@ fn measured(
     let r: Vec<f64> = y.iter().zip(&fitted).map(|(y, f)| y - f).collect();
     let v = &part.v;
     let mean: f64 = y.iter().zip(v).map(|(y, v)| y * v).sum();
-    let null: f64 = y.iter().zip(v).map(|(y, v)| 0.5 * v * (y - mean) * (y - mean)).sum();
+    let null: f64 = y
+        .iter()
+        .zip(v)
+        .map(|(y, v)| 0.5 * v * (y - mean) * (y - mean))
+        .sum();
     let product = |column: &[f64]| -> f64 {
         column
             .iter()
@@ -160,8 +174,13 @@ fn measured(
             .sum()
     };
     let size: f64 = r.iter().zip(v).map(|(r, v)| v * r * r).sum();
-    // Violations are in units of the strength; without one, of the residual.
-    let unit = if strength > 0.0 { strength } else { size.sqrt().max(f64::MIN_POSITIVE) };
+    // Violations are in units of the penalty's slope; without a penalty, of the residual.
+    let unit = if strength > 0.0 {
+        strength * (share + (1.0 - share) * part.largest(solution))
+    } else {
+        size.sqrt()
+    };
+    let unit = if unit > 0.0 { unit } else { 1.0 };
     let mut worst = Worst {
         violation: 0.0,
         predictor: None,

@@ -138,3 +138,49 @@ fn extrapolate(trail: &[Vec<f64>]) -> Option<Vec<f64>> {
     }
     Some(mixed)
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::numeric::active_set::{ActiveSet, Ended};
+    use crate::numeric::designs::Dice;
+    use crate::numeric::penalty::Sign;
+
+    #[test]
+    fn descent_and_the_exact_search_find_the_same_solution() {
+        let mut dice = Dice::new(4);
+        for (round, rule) in [Sign::Any, Sign::NotNegative].into_iter().enumerate() {
+            let (length, count) = (15, 40);
+            let x: Vec<f64> = (0..length * count).map(|_| dice.normal()).collect();
+            let target: Vec<f64> = (0..length).map(|_| dice.normal()).collect();
+            let column = |k: usize| &x[k * length..(k + 1) * length];
+            let problem = Quadratic {
+                length,
+                along: (0..count).map(|k| lanes::dot(column(k), &target)).collect(),
+                square: (0..count)
+                    .map(|k| lanes::dot(column(k), column(k)))
+                    .collect(),
+                lasso: vec![1.5; count],
+                ridge: vec![0.2 * round as f64; count],
+                sign: vec![rule; count],
+                used: (0..count).collect(),
+                hx: Vec::new(),
+                target: target.clone(),
+                x: x.clone(),
+            };
+            let work = Work::unattended();
+            let mut search = ActiveSet::default();
+            assert_eq!(search.solve(&problem, 1e-14, &work), Ok(Ended::Settled));
+            let mut b = vec![0.0; count];
+            assert_eq!(descend(&problem, &mut b, 1e-12, &work), Ok(true));
+            let mut exact = vec![0.0; count];
+            for (slot, value) in search.solution() {
+                exact[slot] = value;
+            }
+            assert!(exact.iter().any(|b| *b != 0.0));
+            for k in 0..count {
+                assert!((exact[k] - b[k]).abs() < 1e-9);
+            }
+        }
+    }
+}

@@ -144,9 +144,9 @@ mod tests {
             let wanted: Vec<f64> = (0..5).map(|k| 1.0 + k as f64).collect();
             let mut solution = wanted.clone();
             factor.solve(&mut solution);
-            for i in 0..5 {
+            for (i, wanted) in wanted.iter().enumerate() {
                 let product: f64 = (0..5).map(|j| gram(&columns, i, j) * solution[j]).sum();
-                assert!((product - wanted[i]).abs() < 1e-10, "row {i} without {gone}");
+                assert!((product - wanted).abs() < 1e-10, "row {i} without {gone}");
             }
         }
     }
@@ -154,7 +154,9 @@ mod tests {
     #[test]
     fn a_dependent_column_is_told_by_its_pivot_and_not_appended() {
         let mut columns = some_columns(3);
-        let sum = (0..12).map(|i| columns[0][i] - 2.0 * columns[2][i]).collect();
+        let sum = (0..12)
+            .map(|i| columns[0][i] - 2.0 * columns[2][i])
+            .collect();
         columns.push(sum);
         let mut factor = grown(&columns[..3]);
         let mut cross: Vec<f64> = (0..3).map(|i| gram(&columns, i, 3)).collect();

@@ -69,7 +69,10 @@ impl Freedom {
         }
         let ridge = strength * (1.0 - self.share);
         let trace = match matrix::symmetric_eigen(&gram) {
-            Ok((values, _)) => values.iter().map(|d| d.max(0.0) / (d.max(0.0) + ridge)).sum(),
+            Ok((values, _)) => values
+                .iter()
+                .map(|d| d.max(0.0) / (d.max(0.0) + ridge))
+                .sum(),
             Err(_) => f64::NAN,
         };
         self.basis.rank() as f64 + trace

@@ -28,7 +28,7 @@ const FLOOR: f64 = 2e-15;
 const SLACK: f64 = 1e-11;
 
 /// The residual of the null model counts as zero below this share of the outcome's length.
-const NOTHING_LEFT: f64 = 1e-13;
+pub(crate) const NOTHING_LEFT: f64 = 1e-13;
 
 /// One solved strength that waits for its proof.
 struct Trial {
@@ -86,7 +86,15 @@ pub(crate) fn walk(
     if scale <= NOTHING_LEFT * lanes::norm(outcome) {
         return Ok(strengths
             .iter()
-            .map(|_| point(ground, basis, outcome, Vec::new(), Info::exact(basis.rank())))
+            .map(|_| {
+                point(
+                    ground,
+                    basis,
+                    outcome,
+                    Vec::new(),
+                    Info::exact(basis.rank()),
+                )
+            })
             .collect());
     }
     for value in &mut target {

@@ -165,10 +165,7 @@ mod tests {
             let b: Vec<f64> = (0..n).map(|i| 0.5 * f64::from(i)).collect();
             assert_eq!(dot(&a, &b), plain(&a, &b), "these sums are exact in binary");
             let off: Vec<f64> = a.iter().map(|x| x - 2.0).collect();
-            assert_eq!(
-                dispatch(|| shifted_dot_body(&a, 2.0, &b)),
-                plain(&off, &b)
-            );
+            assert_eq!(dispatch(|| shifted_dot_body(&a, 2.0, &b)), plain(&off, &b));
         }
     }
 
@@ -181,7 +178,7 @@ mod tests {
 
     #[test]
     fn lengths_neither_overflow_nor_vanish() {
-        assert_eq!(norm(&[3e200, 4e200]), 5e200);
-        assert_eq!(norm(&[3e-200, 4e-200]), 5e-200);
+        assert!((norm(&[3e200, 4e200]) / 5e200 - 1.0).abs() < 1e-15);
+        assert!((norm(&[3e-200, 4e-200]) / 5e-200 - 1.0).abs() < 1e-15);
     }
 }

@@ -4,10 +4,10 @@
 //! that results do not depend on the number of threads.
 
 use crate::numeric::error::FitError;
+use faer::diag::Diag;
 use faer::dyn_stack::{MemBuffer, MemStack};
 use faer::linalg::matmul::{matmul, triangular};
 use faer::linalg::{evd, svd};
-use faer::diag::Diag;
 use faer::{Accum, Mat, MatMut, MatRef, Par};
 
 /// A matrix, stored by columns; samples go down the rows.

@@ -34,3 +34,6 @@ pub mod stability;
 pub mod step;
 pub mod task;
 pub mod working;
+
+#[cfg(test)]
+pub(crate) mod designs;

@@ -434,3 +434,6 @@ impl Path {
         self.shortcuts.as_ref()
     }
 }
+
+#[cfg(test)]
+mod tests;

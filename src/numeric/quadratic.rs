@@ -44,7 +44,11 @@ impl Quadratic {
 
     /// The columns that stand for HX.
     pub(crate) fn h_columns(&self) -> &[f64] {
-        if self.hx.is_empty() { &self.x } else { &self.hx }
+        if self.hx.is_empty() {
+            &self.x
+        } else {
+            &self.hx
+        }
     }
 
     /// A slot's column of X.

@@ -2,6 +2,7 @@
 
 use crate::base::work::Work;
 use crate::numeric::error::{FitError, Stop, Unsupported};
+use crate::numeric::gaussian::NOTHING_LEFT;
 use crate::numeric::ground::{Ground, Penalised};
 use crate::numeric::lanes;
 use crate::numeric::response::Response;
@@ -106,7 +107,7 @@ pub fn all_zero_point(task: &Task<'_>, share: f64) -> Result<f64, FitError> {
             let mut residual = outcome.clone();
             basis.project(&mut residual);
             basis.project(&mut residual);
-            if lanes::norm(&residual) <= 1e-13 * lanes::norm(&outcome) {
+            if lanes::norm(&residual) <= NOTHING_LEFT * lanes::norm(&outcome) {
                 return Ok(0.0);
             }
             for (r, root) in residual.iter_mut().zip(&ground.root) {

@@ -6,13 +6,14 @@
 //! ```
 //!
 //! Wide data: K is one Gram matrix over blocks of columns (m × m), with one eigendecomposition; the
-//! coefficients stay in the space of the samples. Narrow data (p ≤ 4m): the singular value
+//! coefficients stay in the space of the samples. Narrow or small data: the singular value
 //! decomposition of Z̃ itself, which keeps the digits that squaring loses when columns are nearly
 //! dependent.
 
 use crate::base::work::Work;
 use crate::numeric::basis::Basis;
 use crate::numeric::error::Stop;
+use crate::numeric::gaussian::NOTHING_LEFT;
 use crate::numeric::ground::Ground;
 use crate::numeric::lanes;
 use crate::numeric::matrix::{self, Matrix};
@@ -26,6 +27,10 @@ const BLOCK: usize = 1024;
 
 /// Up to this many predictors a training row, the columns themselves are decomposed.
 const NARROW: usize = 4;
+
+/// And so they are up to this many numbers, whatever the shape: spectra are of this size, and their
+/// Gram matrix has lost the small directions that count at weak penalties.
+const SMALL: usize = 250_000;
 
 /// A singular value below this share of the largest is rounding.
 const NO_DIRECTION: f64 = 1e-14;
@@ -75,7 +80,8 @@ impl Spectrum {
         let penalised: Vec<usize> = (0..ground.predictors.n_predictors())
             .filter(|&j| ground.reach(j) > 0.0)
             .collect();
-        if penalised.len() <= NARROW * ground.n_rows() {
+        let m = ground.n_rows();
+        if penalised.len() <= NARROW * m || penalised.len() * m <= SMALL {
             Self::narrow(ground, basis, penalised)
         } else {
             Self::wide(ground, basis, &penalised, work)
@@ -144,9 +150,7 @@ impl Spectrum {
         let mut turned = gram.clone();
         turns.turn_both_sides(&mut turned);
         let rank = basis.rank();
-        let inner = turned
-            .view((rank, rank), (m - rank, m - rank))
-            .into_owned();
+        let inner = turned.view((rank, rank), (m - rank, m - rank)).into_owned();
         let (values, vectors) = matrix::symmetric_eigen(&inner)?;
         work.check()?;
         let size = values.len();
@@ -184,6 +188,26 @@ impl Spectrum {
             apart.norm_squared() / (2.0 * strength)
         };
         strengths.iter().enumerate().map(gap).collect()
+    }
+
+    /// One step of iterative refinement of (K + λI) α = ỹ, which makes good what the decomposition
+    /// has lost when the spectrum is wide.
+    fn refine(&self, target: &Matrix, alpha: &mut Matrix, strengths: &[f64]) {
+        let fitted = matrix::product(&self.whole, alpha);
+        let mut off = Matrix::from_fn(alpha.nrows(), alpha.ncols(), |i, at| {
+            target[(i, 0)] - fitted[(i, at)] - strengths[at] * alpha[(i, at)]
+        });
+        off = matrix::transposed_product(&self.vectors, &off);
+        for (mut column, &strength) in off.column_iter_mut().zip(strengths) {
+            for (value, d) in column.iter_mut().zip(&self.values) {
+                *value = if strength > 0.0 {
+                    *value / (d + strength)
+                } else {
+                    0.0
+                };
+            }
+        }
+        *alpha += matrix::product(&self.vectors, &off);
     }
 
     /// The duality gaps of coefficients Z̃'α: ½‖ỹ − Kα − λα‖², the dual point being λα.
@@ -265,6 +289,9 @@ pub(crate) fn fit(
     let mut centered = outcome.to_vec();
     basis.project(&mut centered);
     basis.project(&mut centered);
+    if lanes::norm(&centered) <= NOTHING_LEFT * lanes::norm(outcome) {
+        centered.fill(0.0);
+    }
     let null = 0.5 * lanes::dot(&centered, &centered);
     let target = Matrix::from_column_slice(m, 1, &centered);
     let along = matrix::transposed_product(&spectrum.vectors, &target);
@@ -299,7 +326,10 @@ pub(crate) fn fit(
     }
     let slack = slack(&spectrum, basis, &kept);
     let mut points = Vec::with_capacity(strengths.len());
-    let alpha = matrix::product(&spectrum.vectors, &scaled);
+    let mut alpha = matrix::product(&spectrum.vectors, &scaled);
+    if spectrum.right.is_none() {
+        spectrum.refine(&target, &mut alpha, strengths);
+    }
     let unprojected = spectrum
         .raw
         .as_ref()
@@ -376,9 +406,7 @@ pub(crate) fn fit(
             *e /= root;
         }
     }
-    let dual = direct
-        .is_none()
-        .then(|| Dual::new(ground, alpha.clone()));
+    let dual = direct.is_none().then(|| Dual::new(ground, alpha.clone()));
     Ok(Fits {
         points,
         dual,

@@ -252,3 +252,6 @@ fn wide_sums<const B: usize>(
     }
     std::array::from_fn(|k| pulp::cast(sums[k]))
 }
+
+#[cfg(test)]
+mod tests;

@@ -66,7 +66,11 @@ impl Task<'_> {
         }
         if let Some(factors) = self.factors {
             length(Ingredient::Factors, factors.len(), p)?;
-            numbers(Ingredient::Factors, factors.iter().copied().enumerate(), 0.0)?;
+            numbers(
+                Ingredient::Factors,
+                factors.iter().copied().enumerate(),
+                0.0,
+            )?;
         }
         if let Some(weights) = self.weights {
             length(Ingredient::Weights, weights.len(), n)?;

@@ -29,11 +29,15 @@ impl Axis {
     pub fn is_physical(&self) -> bool {
         let is_count = self.positions.first().is_some_and(|&first| {
             (first == 0.0 || first == 1.0)
-                && self.positions.windows(2).all(|pair| pair[1] - pair[0] == 1.0)
+                && self
+                    .positions
+                    .windows(2)
+                    .all(|pair| pair[1] - pair[0] == 1.0)
         });
         self.is_monotone()
             && !is_count
-            && (self.unit.is_some() || (self.prefix.is_empty() && self.suffix.is_empty() && self.positions.len() >= 4))
+            && (self.unit.is_some()
+                || (self.prefix.is_empty() && self.suffix.is_empty() && self.positions.len() >= 4))
     }
 }
 
@@ -46,7 +50,10 @@ fn parts(name: &str) -> Option<(&str, f64, &str)> {
         .iter()
         .find(|unit| name.ends_with(**unit))
         .map_or(name.len(), |unit| name.len() - unit.len());
-    let end = bytes[..unit_at].iter().rposition(|byte| byte.is_ascii_digit())? + 1;
+    let end = bytes[..unit_at]
+        .iter()
+        .rposition(|byte| byte.is_ascii_digit())?
+        + 1;
     let mut start = bytes[..end]
         .iter()
         .rposition(|&byte| !is_part(byte))
@@ -54,9 +61,8 @@ fn parts(name: &str) -> Option<(&str, f64, &str)> {
     while bytes[start] == b'.' && start + 1 < end && bytes[start + 1..end].contains(&b'.') {
         start += 1;
     }
-    let is_negative = start > 0
-        && bytes[start - 1] == b'-'
-        && (start == 1 || bytes[start - 2] == b' ');
+    let is_negative =
+        start > 0 && bytes[start - 1] == b'-' && (start == 1 || bytes[start - 2] == b' ');
     let start = start - usize::from(is_negative);
     let number: f64 = name.get(start..end)?.parse().ok()?;
     Some((&name[..start], number, &name[end..]))
@@ -84,8 +90,10 @@ fn unit(prefix: &str, suffix: &str) -> Option<String> {
         ("da", "Da"),
     ];
     let bare = |text: &str| {
-        text.trim_matches(|letter: char| !letter.is_alphanumeric() && letter != '⁻' && letter != '¹')
-            .to_lowercase()
+        text.trim_matches(|letter: char| {
+            !letter.is_alphanumeric() && letter != '⁻' && letter != '¹'
+        })
+        .to_lowercase()
     };
     let of = |text: &str| {
         let bare = bare(text);
@@ -248,15 +256,34 @@ mod tests {
     #[test]
     fn names_around_a_number_are_an_axis_with_its_unit() {
         for (names, unit, positions) in [
-            (["900 nm", "902 nm", "904 nm"], Some("nm"), [900.0, 902.0, 904.0]),
-            (["mz 204.12", "mz 204.9", "mz 310"], Some("m/z"), [204.12, 204.9, 310.0]),
+            (
+                ["900 nm", "902 nm", "904 nm"],
+                Some("nm"),
+                [900.0, 902.0, 904.0],
+            ),
+            (
+                ["mz 204.12", "mz 204.9", "mz 310"],
+                Some("m/z"),
+                [204.12, 204.9, 310.0],
+            ),
             (["x_001", "x_002", "x_010"], None, [1.0, 2.0, 10.0]),
-            (["1150.5", "1148.5", "1146.5"], None, [1150.5, 1148.5, 1146.5]),
-            (["400 cm-1", "402 cm-1", "404 cm-1"], Some("cm⁻¹"), [400.0, 402.0, 404.0]),
+            (
+                ["1150.5", "1148.5", "1146.5"],
+                None,
+                [1150.5, 1148.5, 1146.5],
+            ),
+            (
+                ["400 cm-1", "402 cm-1", "404 cm-1"],
+                Some("cm⁻¹"),
+                [400.0, 402.0, 404.0],
+            ),
             (["S2_T1", "S2_T2", "S2_T3"], None, [1.0, 2.0, 3.0]),
         ] {
             let axis = of_names(&names).unwrap();
-            assert_eq!((axis.unit.as_deref(), &axis.positions[..]), (unit, &positions[..]));
+            assert_eq!(
+                (axis.unit.as_deref(), &axis.positions[..]),
+                (unit, &positions[..])
+            );
         }
         assert_eq!(of_names(&["salt", "fat", "pH"]), None);
         assert_eq!(of_names(&["a1", "b2", "c3"]), None);
@@ -265,14 +292,23 @@ mod tests {
 
     #[test]
     fn a_count_is_no_physical_axis() {
-        assert!(of_names(&["900", "902", "904", "906"]).unwrap().is_physical());
+        assert!(
+            of_names(&["900", "902", "904", "906"])
+                .unwrap()
+                .is_physical()
+        );
         assert!(!of_names(&["x1", "x2", "x3"]).unwrap().is_physical());
         assert!(!of_names(&["1", "2", "3", "4"]).unwrap().is_physical());
     }
 
     fn table() -> Table {
         let names = ["id", "salt, g/100 g", "900 nm", "902 nm", "904 nm", "note"];
-        Table::new(names.iter().map(|name| Column::numbers(name, vec![1.0])).collect())
+        Table::new(
+            names
+                .iter()
+                .map(|name| Column::numbers(name, vec![1.0]))
+                .collect(),
+        )
     }
 
     #[test]
@@ -281,8 +317,14 @@ mod tests {
         let columns = [1, 2, 3, 4];
         let ranges = ranges(&table, &columns);
         assert_eq!(ranges[0].to_string(), "salt, g/100 g … 904 nm (4)");
-        assert_eq!(positions(&table, &ranges[0].to_string()), Ok(columns.to_vec()));
-        assert_eq!(positions(&table, "note, salt, g/100 g; 900 nm ... 904 nm"), Ok(vec![5, 1, 2, 3, 4]));
+        assert_eq!(
+            positions(&table, &ranges[0].to_string()),
+            Ok(columns.to_vec())
+        );
+        assert_eq!(
+            positions(&table, "note, salt, g/100 g; 900 nm ... 904 nm"),
+            Ok(vec![5, 1, 2, 3, 4])
+        );
         assert_eq!(positions(&table, ""), Ok(vec![]));
     }
 
@@ -295,7 +337,10 @@ mod tests {
         );
         assert_eq!(
             positions(&table, "904 nm … 900 nm (3)"),
-            Err(RangeError::Backwards { first: "904 nm".to_owned(), last: "900 nm".to_owned() })
+            Err(RangeError::Backwards {
+                first: "904 nm".to_owned(),
+                last: "900 nm".to_owned()
+            })
         );
     }
 }

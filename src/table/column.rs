@@ -148,7 +148,12 @@ impl Column {
         Self {
             name: name.to_owned(),
             unit: None,
-            values: Values::Texts(values.into_iter().map(|text| text.map(Into::into)).collect()),
+            values: Values::Texts(
+                values
+                    .into_iter()
+                    .map(|text| text.map(Into::into))
+                    .collect(),
+            ),
         }
     }
 
@@ -231,7 +236,7 @@ impl Column {
 /// The shortest digits that read back as the same number: a label, not a number shown to people.
 pub(crate) fn plain(number: f64) -> String {
     let size = number.abs();
-    if size != 0.0 && !(1e-5..1e16).contains(&size) {
+    if size != 0.0 && !(1e-4..1e16).contains(&size) {
         format!("{number:e}")
     } else {
         format!("{}", number + 0.0)

@@ -41,7 +41,6 @@ pub enum FindingKind {
     UnclosedQuote,
     /// Quoted values that hold line breaks.
     BreaksInQuotes,
-    /// The archive held more after its end, or lacked its check sum.
     /// The workbook has other sheets.
     OtherSheets {
         /// The sheet that was read.
@@ -215,6 +214,74 @@ pub enum FindingKind {
         /// The largest share of one predictor.
         largest: f64,
     },
+}
+
+impl FindingKind {
+    /// A stable, searchable name of the kind.
+    #[must_use]
+    pub fn code(&self) -> &'static str {
+        match self {
+            Self::OtherEncoding(_) => "other-encoding",
+            Self::BrokenLetters => "broken-letters",
+            Self::UnclosedQuote => "unclosed-quote",
+            Self::BreaksInQuotes => "breaks-in-quotes",
+            Self::OtherSheets { .. } => "other-sheets",
+            Self::HiddenSheet => "hidden-sheet",
+            Self::MergedCells => "merged-cells",
+            Self::LinesAbove => "lines-above",
+            Self::NoHeader => "no-header",
+            Self::HeaderShort => "header-short",
+            Self::UnitsRow => "units-row",
+            Self::BlankRows => "blank-rows",
+            Self::BlankColumns => "blank-columns",
+            Self::LinesBelow => "lines-below",
+            Self::SummaryRows => "summary-rows",
+            Self::RepeatedHeader => "repeated-header",
+            Self::ShortRows { .. } => "short-rows",
+            Self::LongRows { .. } => "long-rows",
+            Self::Sideways(_) => "sideways",
+            Self::PerhapsSideways(_) => "perhaps-sideways",
+            Self::BlankNames => "blank-names",
+            Self::RepeatedNames => "repeated-names",
+            Self::TextAmongNumbers => "text-among-numbers",
+            Self::NumbersAsText => "numbers-as-text",
+            Self::ErrorValues => "error-values",
+            Self::OtherDecimalMark => "other-decimal-mark",
+            Self::GroupedDigits => "grouped-digits",
+            Self::ValuesWithUnit => "values-with-unit",
+            Self::DatesAmongNumbers => "dates-among-numbers",
+            Self::BelowLimit => "below-limit",
+            Self::AboveLimit => "above-limit",
+            Self::MissingWords { .. } => "missing-words",
+            Self::MissingCodes => "missing-codes",
+            Self::SuspectedCode { .. } => "suspected-code",
+            Self::NumbersTooLarge => "numbers-too-large",
+            Self::DigitsLost => "digits-lost",
+            Self::LeadingZeros => "leading-zeros",
+            Self::ExponentLabels => "exponent-labels",
+            Self::DateLabels => "date-labels",
+            Self::DatesAmongLabels => "dates-among-labels",
+            Self::NumbersAmongLabels => "numbers-among-labels",
+            Self::BlanksAround => "blanks-around",
+            Self::LabelVariants => "label-variants",
+            Self::RepeatedSamples => "repeated-samples",
+            Self::UnnamedSamples => "unnamed-samples",
+            Self::LooksLikeRepeats { .. } => "looks-like-repeats",
+            Self::IdenticalSamples => "identical-samples",
+            Self::NearIdenticalSamples { .. } => "near-identical-samples",
+            Self::ConstantColumns => "constant-columns",
+            Self::EmptyColumns => "empty-columns",
+            Self::EqualColumns => "equal-columns",
+            Self::EqualsOutcome { .. } => "equals-outcome",
+            Self::NamedLikeOutcome => "named-like-outcome",
+            Self::BatchWithOutcome { .. } => "batch-with-outcome",
+            Self::BatchOfOneClass { .. } => "batch-of-one-class",
+            Self::OrderWithOutcome { .. } => "order-with-outcome",
+            Self::AlreadyNormalized(_) => "already-normalized",
+            Self::MissingShare { .. } => "missing-share",
+            Self::BelowLimitShare { .. } => "below-limit-share",
+        }
+    }
 }
 
 /// Why samples seem to lie in columns, or might.

@@ -192,9 +192,7 @@ impl Origin {
     fn take(&self, rows: &[usize]) -> Self {
         Self {
             lines: match &self.lines {
-                Lines::Unknown => {
-                    Lines::Rows(rows.iter().map(|&row| row as u32 + 1).collect())
-                }
+                Lines::Unknown => Lines::Rows(rows.iter().map(|&row| row as u32 + 1).collect()),
                 Lines::Rows(at) => Lines::Rows(rows.iter().map(|&row| at[row]).collect()),
                 Lines::Columns(heads) => {
                     Lines::Columns(rows.iter().map(|&row| heads[row].clone()).collect())

@@ -1,24 +1,12 @@
 //! The table of widths against the fonts themselves, as resvg sets them.
 
-use std::sync::Arc;
-
-use resvg::usvg::{Group, Node, Options, Tree, fontdb};
+use resvg::usvg::{Group, Node, Tree};
+use widefold::export::picture::options;
 use widefold::figure::font::Face;
 use widefold::figure::ink::{Ink, Palette};
 use widefold::figure::metrics;
 use widefold::figure::picture::{Anchor, Picture, Point, Rect, Size, Turn, Word};
 use widefold::figure::svg::svg;
-
-fn options() -> Options<'static> {
-    let mut fonts = fontdb::Database::new();
-    for face in Face::ALL {
-        fonts.load_font_data(face.bytes().to_vec());
-    }
-    Options {
-        fontdb: Arc::new(fonts),
-        ..Options::default()
-    }
-}
 
 /// The boxes of the outlines of all texts in an SVG, in order.
 pub fn text_boxes(text: &str) -> Vec<Rect> {
@@ -80,7 +68,12 @@ fn widths_agree_with_the_fonts_as_they_are_painted() {
         "Häm, ÀÉÎ, Łódź, Ψυχή, Живот",
     ];
     for face in Face::ALL {
-        for text in texts {
+        // The font for symbols need not have all letters: no text is set in it as a whole.
+        let has_all = |text: &&str| text.chars().all(|letter| metrics::has(letter, face));
+        let whole = texts
+            .iter()
+            .filter(|text| face != Face::Symbols || has_all(text));
+        for text in whole {
             let (told, seen) = (metrics::width(text, face, 40.0), painted(text, face).width);
             // Outlines lack the air at both ends of a text; kerning draws letters together.
             assert!(

@@ -109,7 +109,7 @@ fn error_curve() -> Figure {
         .map(|s| (41.0 * (1.0 - (s.log10() + 3.0) / 3.0).max(0.0).powf(1.7)).round())
         .collect();
     let repeats: Vec<f64> = (0..50)
-        .map(|_| (0.0312f64.log10() + 0.17 * dice.normal()))
+        .map(|_| 0.0312f64.log10() + 0.17 * dice.normal())
         .map(|at| 10f64.powf(at))
         .collect();
     let tell = |(s, e): (&f64, &f64)| {
@@ -521,11 +521,13 @@ fn distribution() -> Figure {
 fn roc() -> Figure {
     let mut dice = Dice::new(17);
     let mut curve = |power: f64, steps: usize| -> Vec<(f64, f64)> {
+        let mut best: f64 = 0.0;
         (0..=steps)
             .map(|at| {
                 let x = at as f64 / steps as f64;
-                let wobble = 0.02 * dice.normal() * (x * (1.0 - x)).sqrt();
-                (x, (x.powf(power) + wobble).clamp(0.0, 1.0))
+                let wobble = 0.05 * dice.normal() * (x * (1.0 - x)).sqrt();
+                best = best.max((x.powf(power) + wobble).clamp(0.0, 1.0));
+                (x, best)
             })
             .collect()
     };
@@ -533,7 +535,7 @@ fn roc() -> Figure {
         caption: Caption::titled("Seed lots that germinate: hits against false alarms"),
         false_alarms: Heading::new("false alarms", ""),
         hits: Heading::new("hits", ""),
-        curve: curve(0.22, 100),
+        curve: curve(0.22, 60),
         repeats: (0..10).map(|_| curve(0.22, 40)).collect(),
         threshold: Some((0.12, 0.12f64.powf(0.22), "threshold 0.35".to_owned(), None)),
         chance: "chance".to_owned(),
@@ -600,7 +602,7 @@ fn survival() -> Figure {
             group("high risk", 0.09, ["64", "38", "22", "13", "8"]),
         ],
         times: vec![0.0, 6.0, 12.0, 18.0, 24.0],
-        at_risk: "at risk:".to_owned(),
+        at_risk: "at risk".to_owned(),
     }
     .figure()
 }

@@ -29,7 +29,7 @@ fn every_figure_is_drawn_as_it_was_looked_at() {
     let mut differing = Vec::new();
     for (name, figure) in sample::all() {
         let picture = layout(&figure, natural_size(&figure, 660.0));
-        let text = svg(&picture, &Palette::paper());
+        let text = svg(&picture.with_margin(16.0), &Palette::paper());
         let file = folder().join(format!("{name}.svg"));
         if is_update() {
             std::fs::create_dir_all(folder()).unwrap();

@@ -1,6 +1,7 @@
 //! Preparation steps, measures and stability against reference values, and the laws of steps.
 
 mod class; // the class of every step, and that nothing is learnt from held-out samples
+mod interval; // intervals for a new sample, and for the error of a procedure
 mod measure; // measures against reference values
 mod preprocess; // steps against reference values
 mod proof; // chains, plans and the run-time proof together

@@ -18,9 +18,6 @@ const NARROWEST_BAR: f64 = 2.5;
 /// The smallest region that a pointer can hit with ease: its radius.
 const EASY: f64 = 6.0;
 
-/// The golden ratio's fraction: multiples of it are spread evenly over the unit interval.
-const GOLDEN: f64 = 0.618_033_988_749_894_9;
-
 /// What the layers of one panel come to.
 #[derive(Default)]
 pub(super) struct Painted {
@@ -53,8 +50,12 @@ pub(super) enum Place {
     AtTop(f64),
     /// On a level line, near an end.
     OnLine(f64),
-    /// Right above a place.
+    /// Below or above a rising line, anywhere along it.
+    Along(Point, Point),
+    /// Centred above a place.
     Above(Point),
+    /// Above a place, beside the line that comes down to it.
+    RightAbove(Point),
 }
 
 /// A name at the end of a line.
@@ -124,7 +125,14 @@ pub(super) fn paint(layer: &Layer, frame: &Frame, out: &mut Painted) {
                 out.wishes.push(Wish {
                     text: text.clone(),
                     role: *role,
-                    place: Place::Above(at),
+                    place: match role {
+                        Role::Chosen => Place::RightAbove(at),
+                        Role::Series(_)
+                        | Role::Pale(_)
+                        | Role::Quiet
+                        | Role::Caution
+                        | Role::Reference => Place::Above(at),
+                    },
                 });
             }
         }
@@ -315,6 +323,8 @@ fn band(frame: &Frame, out: &mut Painted, role: Role, x: &[f64], low: &[f64], hi
         if lower.len() < 2 {
             continue;
         }
+        out.busy.extend(between(&lower));
+        out.busy.extend(between(&upper));
         let mut points = upper;
         points.extend(lower.into_iter().rev());
         marks.push(Mark::Area {
@@ -449,6 +459,9 @@ fn rule(frame: &Frame, out: &mut Painted, role: Role, at: At, label: &str) {
         At::X(x) => {
             let Some(x) = frame.at_x(x) else { return };
             let ends = vec![Point::new(x, plot.y), Point::new(x, plot.bottom())];
+            if role == Role::Chosen && frame.holds(ends[1]) {
+                out.drops.push(ends[1]);
+            }
             (ends, Place::AtTop(x))
         }
         At::Y(y) => {
@@ -496,7 +509,7 @@ fn identity(frame: &Frame, out: &mut Painted, label: &str) {
         out.wishes.push(Wish {
             text: label.to_owned(),
             role: Role::Reference,
-            place: Place::Beside(to, 4.0),
+            place: Place::Along(from, to),
         });
     }
 }
@@ -551,9 +564,7 @@ fn rug(frame: &Frame, out: &mut Painted, role: Role, x: &[f64], tips: &[Tip]) {
         .enumerate()
         .map(|(at, x)| {
             let x = frame.at_x(*x)?;
-            // Strewn by a rule instead of by chance, so that it is the same every time.
-            let share = (at as f64 * GOLDEN).fract() - 0.5;
-            let y = plot.y + plot.height / 2.0 + share * room;
+            let y = plot.y + plot.height / 2.0 + thin::strewn(at) * room;
             Some(Point::new(x, y)).filter(|at| frame.holds(*at))
         })
         .collect();

@@ -70,7 +70,12 @@ pub(super) fn lay(panels: &[Panel], figure: &Figure, room: Rect, sheet: &mut She
 
     let mut shown = Shown::Nothing;
     for group in groups(panels) {
-        let (above, last) = (&frames[group.start], &frames[group.end - 1]);
+        let bearer = group
+            .clone()
+            .rev()
+            .find(|at| bears_axis(panels, *at))
+            .unwrap_or(group.start);
+        let (above, last) = (&frames[group.start], &frames[bearer]);
         rulers(&panels[group.start], above, last, sheet);
         x_axis(&panels[group.start], above, last, sheet);
         let mut drops = Vec::new();
@@ -86,10 +91,10 @@ pub(super) fn lay(panels: &[Panel], figure: &Figure, room: Rect, sheet: &mut She
             }
             drops.append(&mut painted.drops);
             // A line from what was chosen down through the strips, behind their marks.
-            if at > group.start {
+            if at > group.start && panel.height != Height::Line {
                 sheet.marks(drops.iter().map(|from| drop_line(from.x, frame)));
             }
-            if at + 1 < group.end {
+            if at + 1 < group.end && panels[at + 1].height != Height::Line {
                 let own: Vec<Mark> = drops
                     .iter()
                     .map(|from| Mark::Line {
@@ -150,6 +155,7 @@ fn above(panels: &[Panel], at: usize) -> f64 {
     let gap = match (at, panels[at].height) {
         (0, _) => 2.0,
         (_, Height::Strip) => STRIP_GAP,
+        (_, Height::Line) if panels[at - 1].height != Height::Line => STRIP_GAP,
         (_, Height::Line) => 0.0,
         (_, Height::Share(_) | Height::Square) => PANEL_GAP,
     };
@@ -161,19 +167,28 @@ fn above(panels: &[Panel], at: usize) -> f64 {
     }
 }
 
-/// The height below a panel: numbers and heading of the horizontal axis, if it is the last that
-/// shares one.
+/// The height below a panel: numbers and heading of the horizontal axis, if it is the one under
+/// which they stand.
 fn below(panels: &[Panel], at: usize) -> f64 {
-    let is_last = panels.get(at + 1).is_none_or(|next| next.x.is_some());
-    if !is_last {
+    if !bears_axis(panels, at) {
         return 0.0;
     }
     let heading = x_axis_of(panels, at).map(Axis::heading).unwrap_or_default();
-    20.0 + if heading.is_empty() {
-        2.0
+    22.0 + if heading.is_empty() {
+        0.0
     } else {
-        style::SMALL_LINE + 2.0
+        style::SMALL_LINE
     }
+}
+
+/// Whether the horizontal axis stands below a panel: the last of its run that is no line of
+/// numbers.
+fn bears_axis(panels: &[Panel], at: usize) -> bool {
+    let later = panels[at + 1..]
+        .iter()
+        .take_while(|next| next.x.is_none())
+        .all(|next| next.height == Height::Line);
+    later && (panels[at].height != Height::Line || panels[at].x.is_some())
 }
 
 fn x_axis_of(panels: &[Panel], at: usize) -> Option<&Axis> {
@@ -334,22 +349,27 @@ fn y_mapping(panel: &Panel) -> Mapping {
 fn y_ticks(panel: &Panel, map: &Mapping, height: f64) -> Vec<Tick> {
     match panel.height {
         Height::Strip | Height::Line => Vec::new(),
-        Height::Share(_) | Height::Square => {
-            map.ticks((height / TICK_PITCH).floor().clamp(2.0, 6.0) as usize)
-        }
+        Height::Share(_) => map.ticks((height / TICK_PITCH).floor().clamp(2.0, 7.0) as usize),
+        Height::Square => map.ticks(square_ticks(height)),
     }
+}
+
+/// How many numbers are written along either axis of a square.
+fn square_ticks(side: f64) -> usize {
+    (side / 46.0).floor().clamp(2.0, 6.0) as usize
 }
 
 fn margins(panels: &[Panel], y_ticks: &[Vec<Tick>], x_maps: &[Mapping], width: f64) -> Margins {
     let small = |text: &str| metrics::width(text, Face::Sans, style::SMALL);
     let widest = |widths: &mut dyn Iterator<Item = f64>| widths.fold(0.0, f64::max);
     let numbers = widest(&mut y_ticks.iter().flatten().map(|tick| small(&tick.text)));
-    let strips = widest(
-        &mut panels
-            .iter()
-            .filter(|panel| is_strip(panel))
-            .map(|panel| small(&panel.y.heading())),
-    );
+    let strips =
+        widest(&mut panels.iter().filter(|panel| is_strip(panel)).map(
+            |panel| match panel.height {
+                Height::Line => small(&panel.y.heading()) + style::GAP,
+                Height::Strip | Height::Share(_) | Height::Square => small(&panel.y.heading()),
+            },
+        ));
     let names = |end: End| {
         widest(
             &mut panels
@@ -445,8 +465,7 @@ fn grid(panel: &Panel, frame: &Frame, sheet: &mut Sheet) {
         }
     }
     if panel.height == Height::Square {
-        let most = (plot.width / TICK_PITCH).floor().clamp(2.0, 6.0) as usize;
-        for tick in frame.x.ticks(most) {
+        for tick in frame.x.ticks(square_ticks(plot.width)) {
             let x = crisp(plot.x + tick.share * plot.width).min(plot.right() - 0.5);
             sheet.mark(Mark::Line {
                 points: vec![Point::new(x, plot.y), Point::new(x, plot.bottom())],
@@ -480,10 +499,12 @@ fn grid(panel: &Panel, frame: &Frame, sheet: &mut Sheet) {
 fn y_axis(panel: &Panel, frame: &Frame, margins: &Margins, sheet: &mut Sheet) {
     let plot = frame.plot;
     if is_strip(panel) {
-        let at = Point::new(
-            plot.x - style::GAP,
-            plot.y + plot.height / 2.0 + style::BASELINE,
-        );
+        // Numbers in a line of text are centred on their places, the first at the very edge.
+        let away = match panel.height {
+            Height::Line => 2.0 * style::GAP,
+            Height::Strip | Height::Share(_) | Height::Square => style::GAP,
+        };
+        let at = Point::new(plot.x - away, plot.y + plot.height / 2.0 + style::BASELINE);
         let _ = sheet.fitted(
             &panel.y.heading(),
             at,
@@ -555,7 +576,12 @@ fn x_axis(panel: &Panel, first: &Frame, last: &Frame, sheet: &mut Sheet) {
     // As many numbers as have room, measured on a generous first try.
     let tried = first.x.ticks(6);
     let pitch = widest(&tried) + TICK_AIR;
-    let most = (width / pitch).floor().clamp(2.0, 8.0) as usize;
+    let most = match panel.height {
+        Height::Square => square_ticks(width),
+        Height::Share(_) | Height::Strip | Height::Line => {
+            (width / pitch).floor().clamp(2.0, 8.0) as usize
+        }
+    };
     let ticks = first.x.ticks(most);
     let pitch = (width / ticks.len().max(1) as f64).max(1.0);
     let is_names = match axis.scale {
@@ -576,7 +602,7 @@ fn x_axis(panel: &Panel, first: &Frame, last: &Frame, sheet: &mut Sheet) {
             .max(1.0);
         (every as usize, every * pitch - style::GAP)
     };
-    let baseline = plot.bottom() + 15.0;
+    let baseline = plot.bottom() + 17.0;
     for tick in ticks.iter().step_by(every) {
         let x = plot.x + tick.share * plot.width;
         let _ = sheet.fitted(
@@ -608,7 +634,7 @@ fn x_axis(panel: &Panel, first: &Frame, last: &Frame, sheet: &mut Sheet) {
         return;
     }
     let at = Point::new(plot.right(), baseline + style::SMALL_LINE);
-    let placed = sheet.fitted(
+    let _ = sheet.fitted(
         &heading,
         at,
         Anchor::End,
@@ -616,7 +642,6 @@ fn x_axis(panel: &Panel, first: &Frame, last: &Frame, sheet: &mut Sheet) {
         (Ink::QuietText, Face::Sans),
         plot.right(),
     );
-    debug_assert!(placed == Placed::Yes || sheet.size().height < 120.0 || plot.right() < 120.0);
 }
 
 /// Names at the ends of lines, with a fine stroke to the line where they had to move.

@@ -10,7 +10,7 @@ use crate::figure::picture::{Anchor, Point, Rect, Word};
 
 /// Sets the words that want a place, the most important first.
 pub(super) fn words(painted: &Painted, frame: &Frame, sheet: &mut Sheet) {
-    for wish in &painted.wishes {
+    for wish in painted.wishes.iter().filter(|wish| !wish.text.is_empty()) {
         let best = candidates(wish, frame)
             .into_iter()
             .filter(|word| sheet.has_room(word) && lies_in(word, frame, wish))
@@ -29,10 +29,19 @@ fn lies_in(word: &Word, frame: &Frame, wish: &Wish) -> bool {
     let rect = word.rect();
     let plot = frame.plot;
     let over = match wish.place {
-        Place::Above(_) => 16.0,
-        Place::Beside(..) | Place::AtTop(_) | Place::OnLine(_) => 6.0,
+        Place::Above(_) | Place::RightAbove(_) => 16.0,
+        Place::Beside(..) | Place::AtTop(_) | Place::OnLine(_) | Place::Along(..) => 6.0,
     };
-    rect.y >= plot.y - over && rect.bottom() <= plot.bottom() + 4.0
+    let (left, right) = match wish.place {
+        Place::Above(_) | Place::RightAbove(_) => (f64::NEG_INFINITY, f64::INFINITY),
+        Place::Beside(..) | Place::AtTop(_) | Place::OnLine(_) | Place::Along(..) => {
+            (plot.x - 1.0, plot.right() + 1.0)
+        }
+    };
+    rect.y >= plot.y - over
+        && rect.bottom() <= plot.bottom() + 4.0
+        && rect.x >= left
+        && rect.right() <= right
 }
 
 /// How many busy places a rectangle covers.
@@ -68,6 +77,18 @@ fn candidates(wish: &Wish, frame: &Frame) -> Vec<Word> {
             }
             words
         }
+        Place::Along(from, to) => {
+            let along = |share: f64| {
+                Point::new(
+                    from.x + share * (to.x - from.x),
+                    from.y + share * (to.y - from.y),
+                )
+            };
+            let places = [0.8, 0.7, 0.9, 0.6, 0.5, 0.3, 0.15].map(along);
+            let below = places.map(|at| word(Point::new(at.x + 8.0, at.y + 10.0), Anchor::Start));
+            let above = places.map(|at| word(Point::new(at.x - 8.0, at.y - 4.0), Anchor::End));
+            below.into_iter().chain(above).collect()
+        }
         Place::AtTop(x) => {
             let mut words = Vec::new();
             for step in 0..4 {
@@ -91,8 +112,12 @@ fn candidates(wish: &Wish, frame: &Frame) -> Vec<Word> {
         }
         Place::Above(at) => vec![
             word(Point::new(at.x, at.y - 4.0), Anchor::Middle),
-            word(Point::new(at.x + 7.0, at.y + 1.0), Anchor::Start),
-            word(Point::new(at.x - 7.0, at.y + 1.0), Anchor::End),
+            word(Point::new(at.x + 5.0, at.y - 4.0), Anchor::Start),
+            word(Point::new(at.x - 5.0, at.y - 4.0), Anchor::End),
+        ],
+        Place::RightAbove(at) => vec![
+            word(Point::new(at.x + 4.0, at.y - 4.0), Anchor::Start),
+            word(Point::new(at.x - 4.0, at.y - 4.0), Anchor::End),
         ],
     }
 }

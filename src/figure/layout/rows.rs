@@ -4,7 +4,7 @@ use crate::figure::axis::{Ends, Mapping};
 use crate::figure::font::Face;
 use crate::figure::ink::Ink;
 use crate::figure::layout::sheet::Sheet;
-use crate::figure::layout::{Shown, style};
+use crate::figure::layout::{Shown, style, thin};
 use crate::figure::metrics;
 use crate::figure::picture::{Anchor, Mark, Point, Rect, Region, Stroke};
 use crate::figure::{Align, Axis, Bar, Column, Role, Row, Rows, Stress, Track, Zero};
@@ -27,6 +27,10 @@ const LONGEST_BAR: f64 = 460.0;
 const SHORTEST_BAR: f64 = 24.0;
 /// More rows than this are not wanted on a page.
 const MOST_ROWS: usize = 40;
+/// The height of the line with the numbers of the axis.
+const NUMBERS: f64 = 22.0;
+/// How far dots are strewn up and down from the middle of their row.
+const STREWN: f64 = 5.0;
 /// Less room than this is not enough for a column.
 const NARROWEST_COLUMN: f64 = 8.0;
 
@@ -38,7 +42,19 @@ pub(super) fn natural_height(rows: &Rows) -> f64 {
     } else {
         0.0
     };
-    head_height(rows) + count * PITCH + more + 4.0
+    head_height(rows) + count * PITCH + more + numbers_height(rows) + 4.0
+}
+
+/// Dots are read off an axis; bars have their numbers beside them.
+fn has_numbers(rows: &Rows) -> bool {
+    rows.rows.iter().any(|row| match row.bar {
+        Bar::Dots { .. } => true,
+        Bar::Value { .. } | Bar::Closed(_) | Bar::Blank => false,
+    })
+}
+
+fn numbers_height(rows: &Rows) -> f64 {
+    if has_numbers(rows) { NUMBERS } else { 0.0 }
 }
 
 fn head_height(rows: &Rows) -> f64 {
@@ -166,7 +182,7 @@ fn plan(rows: &Rows, room: Rect) -> Plan {
         .collect();
 
     let head = head_height(rows);
-    let space = (room.height - head).max(1.0);
+    let space = (room.height - head - numbers_height(rows)).max(1.0);
     let wanted = rows.rows.len() as f64;
     let pitch = (space / wanted).floor().clamp(TIGHT, PITCH);
     let fitting = (space / pitch).floor().max(0.0) as usize;
@@ -190,10 +206,7 @@ fn plan(rows: &Rows, room: Rect) -> Plan {
 fn mapping(rows: &Rows) -> Mapping {
     let mut axis = Axis::linear("", "").with_zero(Zero::Shown);
     axis.range = rows.range;
-    let is_dots = rows.rows.iter().any(|row| match row.bar {
-        Bar::Dots { .. } => true,
-        Bar::Value { .. } | Bar::Closed(_) | Bar::Blank => false,
-    });
+    let is_dots = has_numbers(rows);
     if is_dots {
         axis.zero = Zero::Free;
     }
@@ -218,6 +231,7 @@ fn mapping(rows: &Rows) -> Mapping {
         }
     }
     values.extend(rows.rule.iter().map(|(at, _)| *at));
+    // Dots get air at both ends; bars end where the axis does.
     let ends = if is_dots { Ends::Padded } else { Ends::Exact };
     Mapping::new(&axis, values.into_iter(), ends)
 }
@@ -341,8 +355,13 @@ fn head(rows: &Rows, plan: &Plan, room: Rect, sheet: &mut Sheet) {
     );
     if plan.bar.width > 0.0 {
         let bars = Point::new(plan.bar.x, y);
+        let factor = if has_numbers(rows) {
+            plan.map.factor()
+        } else {
+            String::new()
+        };
         let _ = sheet.fitted(
-            &rows.bars,
+            format!("{} {factor}", rows.bars).trim(),
             bars,
             Anchor::Start,
             style::SMALL,
@@ -374,6 +393,9 @@ fn ground(rows: &Rows, plan: &Plan, sheet: &mut Sheet) {
     if let Some((at, _)) = &rows.rule {
         upright(*at, Stroke::dashed(Ink::Reference, style::HAIR));
     }
+    if has_numbers(rows) {
+        numbers(plan, bottom, sheet);
+    }
     if rows.track == Track::Shown {
         for (at, row) in rows.rows.iter().take(plan.count).enumerate() {
             let is_tracked = match row.bar {
@@ -388,6 +410,27 @@ fn ground(rows: &Rows, plan: &Plan, sheet: &mut Sheet) {
                 ));
             }
         }
+    }
+}
+
+/// The numbers of the axis below the rows.
+fn numbers(plan: &Plan, bottom: f64, sheet: &mut Sheet) {
+    let most = (plan.bar.width / 55.0).floor().clamp(2.0, 7.0) as usize;
+    for tick in plan.map.ticks(most) {
+        let x = plan.bar.x + tick.share * plan.bar.width;
+        let place = Point::new(x, bottom + 15.0);
+        let _ = sheet.text(
+            &tick.text,
+            place,
+            Anchor::Middle,
+            Ink::QuietText,
+            Face::Sans,
+        );
+        let x = (x.floor() + 0.5).min(plan.bar.right() - 0.5);
+        sheet.mark(Mark::Line {
+            points: vec![Point::new(x, plan.top), Point::new(x, bottom)],
+            stroke: Stroke::solid(Ink::Grid, style::HAIR),
+        });
     }
 }
 
@@ -439,28 +482,25 @@ fn bar(row: &Row, plan: &Plan, middle: f64, sheet: &mut Sheet) {
             values,
             middle: center,
         } => {
-            sheet.mark(Mark::Line {
-                points: vec![
-                    Point::new(plan.bar.x, middle + 0.5),
-                    Point::new(plan.bar.right(), middle + 0.5),
-                ],
-                stroke: Stroke::solid(Ink::Grid, style::HAIR),
-            });
             let places: Vec<Option<Point>> = values
                 .iter()
-                .map(|value| Some(Point::new(at_x(plan, *value)?, middle + 0.5)))
+                .enumerate()
+                .map(|(at, value)| {
+                    let up = thin::strewn(at) * 2.0 * STREWN;
+                    Some(Point::new(at_x(plan, *value)?, middle + up))
+                })
                 .collect();
-            for at in crate::figure::layout::thin::dots(&places, 0.5) {
+            for at in thin::dots(&places, 0.7) {
                 sheet.marks(places[at].map(|center| Mark::Disc {
                     center,
-                    radius: style::SMALL_DOT + 0.5,
+                    radius: style::SMALL_DOT,
                     fill: Some(style::dot_ink(*role)),
                     stroke: None,
                 }));
             }
             if let Some(x) = center.and_then(|value| at_x(plan, value)) {
                 sheet.mark(Mark::Line {
-                    points: vec![Point::new(x, middle - 5.5), Point::new(x, middle + 6.5)],
+                    points: vec![Point::new(x, middle - 8.0), Point::new(x, middle + 8.0)],
                     stroke: Stroke::solid(Ink::Text, 1.5),
                 });
             }

@@ -14,7 +14,7 @@ const MOST_TOLD: usize = 400;
 
 /// How much of the space around a letter box may be shared with a neighbour: boxes reach from
 /// the accents of capitals to the descenders, which rarely meet.
-const AIR: f64 = 1.0;
+const AIR: f64 = 0.75;
 
 /// A picture that is being made.
 pub(super) struct Sheet {
@@ -89,10 +89,6 @@ impl Sheet {
         if word.text.is_empty() {
             return Placed::No;
         }
-        let word = Word {
-            at: rounded(word.at),
-            ..word
-        };
         if !self.has_room(&word) {
             return Placed::No;
         }
@@ -127,6 +123,8 @@ impl Sheet {
     }
 
     pub(super) fn into_picture(mut self, title: &str, description: &str) -> Picture {
+        let page = Rect::new(0.0, 0.0, self.size.width, self.size.height);
+        self.spots.retain_mut(|spot| cut_spot(spot, &page));
         if self.spots.len() > MOST_TOLD {
             for spot in &mut self.spots {
                 spot.telling = Telling::Pointer;
@@ -136,7 +134,12 @@ impl Sheet {
             title: title.to_owned(),
             description: description.to_owned(),
             size: self.size,
-            marks: self.marks.into_iter().map(rounded_mark).collect(),
+            marks: self
+                .marks
+                .into_iter()
+                .map(rounded_mark)
+                .filter_map(|mark| cut_mark(mark, &page))
+                .collect(),
             words: self.words,
             spots: self.spots.into_iter().map(rounded_spot).collect(),
             rulers: self.rulers,
@@ -156,7 +159,8 @@ pub(super) fn word(text: &str, at: Point, anchor: Anchor, size: f64, ink: Ink, f
     Word {
         text: text.to_owned(),
         full: None,
-        at,
+        // Rounded at once, so that what was found to have room still has it on the sheet.
+        at: rounded(at),
         anchor,
         size,
         turn: Turn::Level,
@@ -232,6 +236,57 @@ fn rounded_mark(mark: Mark) -> Mark {
             rect: rounded_rect(rect),
             marks: marks.into_iter().map(rounded_mark).collect(),
         },
+    }
+}
+
+/// A mark, cut to the page where there was too little room for it; `None` if nothing is left.
+fn cut_mark(mark: Mark, page: &Rect) -> Option<Mark> {
+    let air = page.grown(1.0);
+    match mark {
+        Mark::Line { ref points, .. } | Mark::Area { ref points, .. } => {
+            if points.iter().all(|at| air.holds(*at)) {
+                Some(mark)
+            } else {
+                Some(Mark::Clip {
+                    rect: *page,
+                    marks: vec![mark],
+                })
+            }
+        }
+        Mark::Disc { center, radius, .. } => {
+            let around = Rect::new(center.x, center.y, 0.0, 0.0).grown(radius);
+            air.covers(&around).then_some(mark)
+        }
+        Mark::Rect {
+            rect,
+            radius,
+            fill,
+            stroke,
+        } => Some(Mark::Rect {
+            rect: rect.common(page)?,
+            radius,
+            fill,
+            stroke,
+        }),
+        Mark::Clip { rect, marks } => Some(Mark::Clip {
+            rect: rect.common(page)?,
+            marks,
+        }),
+    }
+}
+
+/// Cuts a spot to the page; says whether anything is left of it.
+fn cut_spot(spot: &mut Spot, page: &Rect) -> bool {
+    match &mut spot.region {
+        Region::Rect(rect) => match rect.common(page) {
+            Some(common) => {
+                *rect = common;
+                true
+            }
+            None => false,
+        },
+        Region::Disc { center, .. } => page.holds(*center),
+        Region::Line(points) => points.iter().any(|at| page.holds(*at)),
     }
 }
 

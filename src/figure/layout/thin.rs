@@ -5,6 +5,15 @@ use crate::figure::picture::Point;
 /// Points of a line nearer than this to the straight way past them are not seen, in pixels.
 const UNSEEN: f64 = 0.12;
 
+/// The golden ratio's fraction: its multiples are spread evenly over the unit interval.
+const GOLDEN: f64 = 0.618_033_988_749_894_9;
+
+/// From −0.5 to 0.5, by a rule instead of by chance, so that it is the same every time: how far
+/// the nth dot is moved aside so that equal ones can be seen.
+pub(super) fn strewn(nth: usize) -> f64 {
+    (nth as f64 * GOLDEN).fract() - 0.5
+}
+
 /// Splits a line where a place is missing, and thins each piece.
 pub(super) fn pieces(points: impl Iterator<Item = Option<Point>>) -> Vec<Vec<Point>> {
     let mut pieces = vec![Vec::new()];

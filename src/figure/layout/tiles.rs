@@ -9,9 +9,9 @@ use crate::figure::metrics;
 use crate::figure::picture::{Anchor, Mark, Point, Rect, Region, Turn, Word};
 
 /// The height of a tile on a page.
-const TALL: f64 = 24.0;
+const TALL: f64 = 26.0;
 /// The widest tile.
-const WIDEST: f64 = 64.0;
+const WIDEST: f64 = 72.0;
 /// The smallest side of a tile; more tiles than have room are merged by their mean.
 const SMALLEST: f64 = 2.0;
 /// Between tiles that are large enough for a gap.

@@ -28,6 +28,20 @@ impl Histogram {
     #[must_use]
     pub fn figure(&self) -> Figure {
         let (edges, counts) = self.binned();
+        let mut value = self.value.linear();
+        // Air around the bars, so that a line at the outermost value is seen as one.
+        let reach = edges
+            .iter()
+            .copied()
+            .chain(self.observed.iter().map(|choice| choice.at))
+            .filter(|at| at.is_finite() && at.abs() < 1e300);
+        let ends = reach.fold((f64::INFINITY, f64::NEG_INFINITY), |(low, high), at| {
+            (low.min(at), high.max(at))
+        });
+        if ends.0 < ends.1 {
+            let air = 0.04 * (ends.1 - ends.0);
+            value = value.with_range(ends.0 - air, ends.1 + air);
+        }
         let mut layers = vec![Layer::Bins {
             role: Role::Quiet,
             edges,
@@ -40,7 +54,7 @@ impl Histogram {
                 label: choice.label.clone(),
             });
         }
-        let panel = Panel::new(self.value.linear(), self.count.linear(), layers);
+        let panel = Panel::new(value, self.count.linear(), layers);
         self.caption.figure(Body::Panels(vec![panel]))
     }
 

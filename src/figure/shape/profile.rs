@@ -36,12 +36,18 @@ impl Profile {
     #[must_use]
     pub fn figure(&self) -> Figure {
         let mut layers = Vec::new();
-        if let Some(signal) = self.signal_in_range() {
+        if let Some((low, signal)) = self.signal_in_range() {
+            layers.push(Layer::Band {
+                role: Role::Quiet,
+                x: self.positions.clone(),
+                low: vec![low; signal.len()],
+                high: signal.clone(),
+            });
             layers.push(Layer::Line {
                 role: Role::Quiet,
                 x: self.positions.clone(),
                 y: signal,
-                weight: Weight::Normal,
+                weight: Weight::Fine,
                 label: Some(Label {
                     text: self.signal_label.clone(),
                     end: End::Right,
@@ -101,8 +107,9 @@ impl Profile {
         self.caption.figure(Body::Panels(vec![panel]))
     }
 
-    /// The signal, stretched to the range of the coefficients: it has another unit.
-    fn signal_in_range(&self) -> Option<Vec<f64>> {
+    /// The low end of the coefficients, and the signal stretched to their range: it has another
+    /// unit.
+    fn signal_in_range(&self) -> Option<(f64, Vec<f64>)> {
         let ends = |values: &mut dyn Iterator<Item = f64>| {
             values.filter(|value| value.is_finite()).fold(
                 None,
@@ -126,6 +133,6 @@ impl Profile {
             return None;
         }
         let stretch = |value: &f64| low + (value - from) / (to - from) * (high - low);
-        Some(self.signal.iter().map(stretch).collect())
+        Some((low, self.signal.iter().map(stretch).collect()))
     }
 }

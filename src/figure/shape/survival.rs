@@ -1,7 +1,9 @@
 //! The share without an event over time, a stepped line for each group.
 
 use crate::figure::shape::{Caption, Heading};
-use crate::figure::{Axis, Body, End, Figure, Label, Layer, Panel, Role, Scale, Weight, Zero};
+use crate::figure::{
+    Axis, Body, End, Figure, Height, Label, Layer, Panel, Role, Scale, Weight, Zero,
+};
 
 /// What survival curves are built from.
 #[derive(Clone, Debug, Default, PartialEq)]
@@ -16,7 +18,7 @@ pub struct Survival {
     pub groups: Vec<Group>,
     /// The times at which the numbers at risk are written.
     pub times: Vec<f64>,
-    /// What the numbers below are; stands at the head of each of their lines, before the name.
+    /// What the numbers below are; stands above their names.
     pub at_risk: String,
 }
 
@@ -65,29 +67,50 @@ impl Survival {
         }
         let y =
             Axis::scaled(&self.share.label, &self.share.unit, Scale::Percent).with_range(0.0, 1.0);
-        let mut panels = vec![Panel::new(
-            self.time.linear().with_zero(Zero::Shown),
-            y,
-            layers,
-        )];
+        let mut time = self.time.linear().with_zero(Zero::Shown);
+        time.ticks.clone_from(&self.times);
+        let reach = self.groups.iter().flat_map(|group| &group.times);
+        let last = reach
+            .chain(&self.times)
+            .copied()
+            .filter(|time| time.is_finite())
+            .fold(0.0, f64::max);
+        if last > 0.0 && last < 1e300 {
+            time = time.with_range(0.0, last);
+        }
+        let mut panels = vec![Panel::new(time, y, layers)];
+        panels.extend(self.numbers_at_risk());
+        self.caption.figure(Body::Panels(panels))
+    }
+}
+
+impl Survival {
+    /// A line of text that says what the numbers are, and one with numbers for each group.
+    fn numbers_at_risk(&self) -> Vec<Panel> {
+        let line = |label: &str, layers| {
+            let mut line = Panel::strip(label, Zero::Free, layers);
+            line.y.range = Some((0.0, 1.0));
+            line.height = Height::Line;
+            line
+        };
+        let mut lines = Vec::new();
         for (nth, group) in self.groups.iter().enumerate() {
             if group.at_risk.is_empty() {
                 continue;
             }
-            let numbers = self.times.iter().zip(&group.at_risk);
             let text = |(at, text): (&f64, &String)| Layer::Text {
                 role: Role::Series((nth % 250) as u8),
                 x: *at,
                 y: 0.0,
                 text: text.clone(),
             };
-            let label = format!("{} {}", self.at_risk, group.name);
-            let mut line = Panel::strip(label.trim(), Zero::Free, numbers.map(text).collect());
-            line.y.range = Some((0.0, 1.0));
-            line.height = crate::figure::Height::Line;
-            panels.push(line);
+            let numbers = self.times.iter().zip(&group.at_risk).map(text).collect();
+            if lines.is_empty() && !self.at_risk.is_empty() {
+                lines.push(line(&self.at_risk, Vec::new()));
+            }
+            lines.push(line(&group.name, numbers));
         }
-        self.caption.figure(Body::Panels(panels))
+        lines
     }
 }
 

@@ -88,10 +88,22 @@ impl Trace {
         Layer::Line {
             role,
             x: self.strengths.clone(),
-            y: line.values.clone(),
+            y: without_rest(&line.values),
             weight,
             label,
             tip: line.tip.clone(),
         }
     }
+}
+
+/// The coefficients without the stretches at zero, so that lines do not cover each other there;
+/// the zeros next to another value stay, so that each line begins on the axis.
+fn without_rest(values: &[f64]) -> Vec<f64> {
+    let is_zero = |at: Option<usize>| at.and_then(|at| values.get(at)).is_none_or(|v| *v == 0.0);
+    (0..values.len())
+        .map(|at| {
+            let is_rest = is_zero(Some(at)) && is_zero(at.checked_sub(1)) && is_zero(Some(at + 1));
+            if is_rest { f64::NAN } else { values[at] }
+        })
+        .collect()
 }

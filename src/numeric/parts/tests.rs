@@ -335,7 +335,7 @@ fn halves_share_no_unit_and_are_equal() {
     };
     let pairs = complementary_pairs(20, 3, &all(21), &structure).unwrap();
     assert_eq!(pairs.len(), 20);
-    let mut sat_out = vec![0; 21];
+    let mut sat_out = [0; 21];
     for (first, second) in &pairs {
         let count = |rows: &[usize]| {
             let mut of: Vec<usize> = rows.iter().map(|&row| units[row]).collect();
@@ -349,9 +349,9 @@ fn halves_share_no_unit_and_are_equal() {
         assert_eq!(count(second.training()), (5, true));
         assert_eq!(first.training(), second.held_out());
         assert_eq!(first.held_out(), second.training());
-        for row in 0..21 {
+        for (row, count) in sat_out.iter_mut().enumerate() {
             let used = first.training().contains(&row) || second.training().contains(&row);
-            sat_out[row] += usize::from(!used);
+            *count += usize::from(!used);
         }
     }
     assert!(

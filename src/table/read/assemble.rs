@@ -72,7 +72,8 @@ impl Gather {
     /// Takes in what was gathered from later columns.
     fn absorb(&mut self, other: Self) {
         for (finding, last) in other.findings.into_iter().zip(other.last_columns) {
-            let same = |f: &&mut Finding| f.kind == finding.kind && f.treatment == finding.treatment;
+            let same =
+                |f: &&mut Finding| f.kind == finding.kind && f.treatment == finding.treatment;
             let Some(known) = self.findings.iter_mut().find(same) else {
                 self.findings.push(finding);
                 self.last_columns.push(last);
@@ -81,8 +82,12 @@ impl Gather {
             known.count += finding.count;
             known.n_columns += finding.n_columns;
             let room = |taken: usize| KEPT.saturating_sub(taken);
-            known.places.extend(finding.places.into_iter().take(room(known.places.len())));
-            known.columns.extend(finding.columns.into_iter().take(room(known.columns.len())));
+            known
+                .places
+                .extend(finding.places.into_iter().take(room(known.places.len())));
+            known
+                .columns
+                .extend(finding.columns.into_iter().take(room(known.columns.len())));
             for example in finding.examples {
                 known.add_example(&example);
             }
@@ -165,7 +170,14 @@ pub fn assemble(
         for (at, raw) in columns.into_iter().enumerate() {
             work.check()?;
             let is_first = piece == 0 && at == 0;
-            done.push(settle(raw, n_rows, is_first, &manner, &whereabouts, &mut gather));
+            done.push(settle(
+                raw,
+                n_rows,
+                is_first,
+                &manner,
+                &whereabouts,
+                &mut gather,
+            ));
         }
         Ok((done, gather))
     })?;
@@ -184,7 +196,11 @@ pub fn assemble(
                 continue;
             }
             if settled.is_unnamed {
-                let line = if settled.line > 0 { settled.line } else { raw.header_line };
+                let line = if settled.line > 0 {
+                    settled.line
+                } else {
+                    raw.header_line
+                };
                 let mut place = Place::file(file_name).with_column(name);
                 place.sheet.clone_from(&whereabouts.sheet);
                 place.row = Some(line as usize).filter(|&line| line > 0);
@@ -269,17 +285,16 @@ fn looks_numeric(odd: &Odd<'_>) -> bool {
 }
 
 /// The numbers of a column, and what was noticed about the values that are none.
-fn numbers(
-    raw: Raw<'_>,
-    manner: &Manner<'_>,
-    place: &Whereabouts,
-    gather: &mut Gather,
-) -> Numbers {
+fn numbers(raw: Raw<'_>, manner: &Manner<'_>, place: &Whereabouts, gather: &mut Gather) -> Numbers {
     let mut values = raw.values;
     let mut censored = Vec::new();
     let (name, line) = (&raw.name, raw.line);
     for &code in &manner.numeric_codes {
-        for (row, value) in values.iter_mut().enumerate().filter(|(_, value)| **value == code) {
+        for (row, value) in values
+            .iter_mut()
+            .enumerate()
+            .filter(|(_, value)| **value == code)
+        {
             *value = f64::NAN;
             let at = || place.place(row as u32, line, name);
             let kind = FindingKind::MissingCodes;
@@ -333,7 +348,11 @@ fn numbers(
     }
     for code in suspect::codes(&values) {
         let kind = FindingKind::SuspectedCode { code: plain(code) };
-        for (row, _) in values.iter().enumerate().filter(|(_, value)| **value == code) {
+        for (row, _) in values
+            .iter()
+            .enumerate()
+            .filter(|(_, value)| **value == code)
+        {
             let at = || place.place(row as u32, line, name);
             gather.add(kind.clone(), Treatment::Kept, name, at, &plain(code));
         }
@@ -344,8 +363,25 @@ fn numbers(
 /// Rows near the end whose first label names a summary.
 fn summary_rows(columns: &[Column], place: &Whereabouts) -> Option<Finding> {
     const WORDS: [&str; 19] = [
-        "mean", "average", "avg", "sd", "std", "stdev", "std dev", "total", "sum", "median", "min",
-        "max", "minimum", "maximum", "cv", "rsd", "count", "mittelwert", "summe",
+        "mean",
+        "average",
+        "avg",
+        "sd",
+        "std",
+        "stdev",
+        "std dev",
+        "total",
+        "sum",
+        "median",
+        "min",
+        "max",
+        "minimum",
+        "maximum",
+        "cv",
+        "rsd",
+        "count",
+        "mittelwert",
+        "summe",
     ];
     const NEAR_END: usize = 12;
     let RawLines::Rows(_) = place.lines else {
@@ -361,7 +397,12 @@ fn summary_rows(columns: &[Column], place: &Whereabouts) -> Option<Finding> {
         let Some(label) = label else { continue };
         let small = label.to_lowercase();
         let bare = small.trim_end_matches([':', '.', ' ']);
-        let is_alone = labels.iter().flatten().filter(|other| *other == label).count() == 1;
+        let is_alone = labels
+            .iter()
+            .flatten()
+            .filter(|other| *other == label)
+            .count()
+            == 1;
         if is_alone && WORDS.contains(&bare) {
             finding.add(|| place.place(row as u32, 0, &column.name), label);
         }

@@ -181,8 +181,9 @@ fn limit(text: &str, mark: DecimalMark) -> Option<Sort> {
 /// Whether a text says that a measured value is missing.
 pub fn is_missing_word(text: &str) -> bool {
     const WORDS: [&str; 27] = [
-        "na", "n/a", "n.a.", "n.a", "#n/a", "#na", "<na>", "nan", "null", "none", "nil", "nd", "n.d.",
-        "n.d", "n/d", "missing", "-", "--", "–", "—", ".", "?", "bdl", "lod", "<lod", "<loq", "loq",
+        "na", "n/a", "n.a.", "n.a", "#n/a", "#na", "<na>", "nan", "null", "none", "nil", "nd",
+        "n.d.", "n.d", "n/d", "missing", "-", "--", "–", "—", ".", "?", "bdl", "lod", "<lod",
+        "<loq", "loq",
     ];
     text.len() <= 8 && {
         let small = text.to_lowercase();
@@ -226,7 +227,11 @@ fn grouped(text: &str, mark: DecimalMark) -> Option<f64> {
         .split_once(point)
         .map_or((bare, None), |(whole, decimals)| (whole, Some(decimals)));
     let separator = whole.chars().find(|letter| !letter.is_ascii_digit())?;
-    if separator == point || !matches!(separator, ',' | '.' | ' ' | '\'' | '’' | '\u{a0}' | '\u{202f}')
+    if separator == point
+        || !matches!(
+            separator,
+            ',' | '.' | ' ' | '\'' | '’' | '\u{a0}' | '\u{202f}'
+        )
     {
         return None;
     }
@@ -235,7 +240,9 @@ fn grouped(text: &str, mark: DecimalMark) -> Option<f64> {
     let is_number = |group: &str| group.bytes().all(|byte| byte.is_ascii_digit());
     let begins_well = (1..=3).contains(&first.len()) && is_number(first) && !first.starts_with('0');
     if !begins_well
-        || !groups.clone().all(|group| group.len() == 3 && is_number(group))
+        || !groups
+            .clone()
+            .all(|group| group.len() == 3 && is_number(group))
         || !decimals.is_none_or(is_number)
     {
         return None;
@@ -265,16 +272,20 @@ fn has_unit(text: &str, mark: DecimalMark) -> bool {
 /// Whether a text is written like a unit of measurement.
 pub fn is_unit(text: &str) -> bool {
     const WHOLE: [&str; 74] = [
-        "%", "‰", "°C", "°F", "°", "K", "nm", "µm", "μm", "um", "mm", "cm", "m", "km", "cm-1", "cm⁻¹",
-        "1/cm", "g", "mg", "µg", "μg", "ug", "ng", "pg", "kg", "t", "l", "L", "ml", "mL", "µl", "μl",
-        "ul", "s", "min", "h", "d", "ms", "Hz", "kHz", "MHz", "V", "mV", "A", "mA", "W", "Pa", "hPa",
-        "kPa", "bar", "mbar", "mol", "mmol", "µmol", "ppm", "ppb", "ppt", "m/z", "Da", "a.u.", "au",
-        "AU", "counts", "cps", "score", "days", "years", "lx", "pH", "dB", "J", "kJ", "N", "Ohm",
+        "%", "‰", "°C", "°F", "°", "K", "nm", "µm", "μm", "um", "mm", "cm", "m", "km", "cm-1",
+        "cm⁻¹", "1/cm", "g", "mg", "µg", "μg", "ug", "ng", "pg", "kg", "t", "l", "L", "ml", "mL",
+        "µl", "μl", "ul", "s", "min", "h", "d", "ms", "Hz", "kHz", "MHz", "V", "mV", "A", "mA",
+        "W", "Pa", "hPa", "kPa", "bar", "mbar", "mol", "mmol", "µmol", "ppm", "ppb", "ppt", "m/z",
+        "Da", "a.u.", "au", "AU", "counts", "cps", "score", "days", "years", "lx", "pH", "dB", "J",
+        "kJ", "N", "Ohm",
     ];
     let bare = text
         .strip_prefix('[')
         .and_then(|rest| rest.strip_suffix(']'))
-        .or_else(|| text.strip_prefix('(').and_then(|rest| rest.strip_suffix(')')));
+        .or_else(|| {
+            text.strip_prefix('(')
+                .and_then(|rest| rest.strip_suffix(')'))
+        });
     let is_wrapped = bare.is_some();
     let bare = trimmed(bare.unwrap_or(text));
     if bare.is_empty() || bare.chars().count() > 16 {
@@ -293,8 +304,8 @@ pub fn is_unit(text: &str) -> bool {
 }
 
 const MONTHS: [&str; 15] = [
-    "jan", "feb", "mar", "apr", "may", "jun", "jul", "aug", "sep", "oct", "nov", "dec", "mai", "okt",
-    "dez",
+    "jan", "feb", "mar", "apr", "may", "jun", "jul", "aug", "sep", "oct", "nov", "dec", "mai",
+    "okt", "dez",
 ];
 
 /// Whether a text is, or could be taken for, a date.
@@ -315,7 +326,11 @@ fn is_numeric_date(text: &str) -> bool {
         return false;
     }
     let parts: Vec<&str> = text.split(separator).collect();
-    if parts.len() != 3 || !parts.iter().all(|part| part.bytes().all(|b| b.is_ascii_digit())) {
+    if parts.len() != 3
+        || !parts
+            .iter()
+            .all(|part| part.bytes().all(|b| b.is_ascii_digit()))
+    {
         return false;
     }
     let number = |at: usize| parts[at].parse::<u32>().unwrap_or(0);
@@ -323,7 +338,11 @@ fn is_numeric_date(text: &str) -> bool {
     let year_first = parts[0].len() == 4 && is_day(1) && is_day(2);
     let year_last = is_day(0) && is_day(1) && matches!(parts[2].len(), 2 | 4);
     (year_first || year_last)
-        && (1..=12).contains(&if year_first { number(1).min(number(2)) } else { number(0).min(number(1)) })
+        && (1..=12).contains(&if year_first {
+            number(1).min(number(2))
+        } else {
+            number(0).min(number(1))
+        })
 }
 
 fn is_month_date(text: &str) -> bool {
@@ -337,9 +356,7 @@ fn is_month_date(text: &str) -> bool {
             small == *month || (small.len() > 3 && small.len() <= 9 && is_long_month(&small))
         })
     };
-    let is_number = |part: &&str| {
-        part.len() <= 4 && part.bytes().all(|byte| byte.is_ascii_digit())
-    };
+    let is_number = |part: &&str| part.len() <= 4 && part.bytes().all(|byte| byte.is_ascii_digit());
     (2..=3).contains(&parts.len())
         && parts.iter().filter(|part| is_month(part)).count() == 1
         && parts.iter().filter(|part| is_number(part)).count() == parts.len() - 1
@@ -348,8 +365,18 @@ fn is_month_date(text: &str) -> bool {
 fn is_long_month(small: &str) -> bool {
     matches!(
         small,
-        "january" | "february" | "march" | "april" | "june" | "july" | "august" | "sept"
-            | "september" | "october" | "november" | "december"
+        "january"
+            | "february"
+            | "march"
+            | "april"
+            | "june"
+            | "july"
+            | "august"
+            | "sept"
+            | "september"
+            | "october"
+            | "november"
+            | "december"
     )
 }
 
@@ -408,7 +435,17 @@ mod tests {
         for error in ["#DIV/0!", "#value!", "#REF!"] {
             assert_eq!(point(error), Sort::Error, "{error}");
         }
-        for date in ["2026-03-02", "2/3/2026", "02.03.26", "MAR-2", "SEP-9", "2-Mar", "Sep 09", "3 March 2026", "2026-03-02 14:00"] {
+        for date in [
+            "2026-03-02",
+            "2/3/2026",
+            "02.03.26",
+            "MAR-2",
+            "SEP-9",
+            "2-Mar",
+            "Sep 09",
+            "3 March 2026",
+            "2026-03-02 14:00",
+        ] {
             assert_eq!(point(date), Sort::Date, "{date}");
         }
         for unit in ["12 mg", "5%", "3.5 g/100 g", "< 2 ppm"] {
@@ -424,7 +461,10 @@ mod tests {
         assert_eq!(point("007"), Sort::LeadingZeros(7.0));
         assert_eq!(point("0"), Sort::Number(0.0));
         assert_eq!(point("0.5"), Sort::Number(0.5));
-        assert_eq!(point("9007199254740993"), Sort::LongDigits(9_007_199_254_740_992.0));
+        assert_eq!(
+            point("9007199254740993"),
+            Sort::LongDigits(9_007_199_254_740_992.0)
+        );
         assert_eq!(point("1e400"), Sort::TooLarge);
         assert_eq!(point("inf"), Sort::TooLarge);
         assert_eq!(point("\u{2212}2.5"), Sort::Number(-2.5));

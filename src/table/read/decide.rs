@@ -74,12 +74,7 @@ pub fn is_labels(raw: &Raw<'_>, is_first: bool) -> bool {
 /// Settles a column that kept its texts: turns it into numbers if that is what it holds.
 ///
 /// Returns whether it is one of labels.
-pub fn settle(
-    raw: &mut Raw<'_>,
-    n_rows: usize,
-    is_first: bool,
-    manner: &Manner<'_>,
-) -> bool {
+pub fn settle(raw: &mut Raw<'_>, n_rows: usize, is_first: bool, manner: &Manner<'_>) -> bool {
     if !raw.plan.keeps_text() {
         return false;
     }

@@ -79,11 +79,7 @@ pub fn delimiter(text: &str, work: &Work<'_>) -> Result<Delimiter, Cancelled> {
 
 /// The share of lines with the commonest number of fields, times the share of sensible fields;
 /// and that number.
-fn score(
-    text: &str,
-    delimiter: Delimiter,
-    work: &Work<'_>,
-) -> Result<(f64, usize), Cancelled> {
+fn score(text: &str, delimiter: Delimiter, work: &Work<'_>) -> Result<(f64, usize), Cancelled> {
     let dialect = Dialect::new(delimiter);
     let lines = lines(text, dialect, work)?;
     let mut counts: Vec<usize> = lines
@@ -124,11 +120,7 @@ fn is_sensible(field: &str) -> bool {
         | Sort::MissingWord
         | Sort::Error
         | Sort::TooLarge => true,
-        Sort::OtherMark
-        | Sort::Grouped(_)
-        | Sort::WithUnit
-        | Sort::Date
-        | Sort::Text => false,
+        Sort::OtherMark | Sort::Grouped(_) | Sort::WithUnit | Sort::Date | Sort::Text => false,
     };
     if is_value(DecimalMark::Point) || is_value(DecimalMark::Comma) {
         return true;
@@ -171,7 +163,8 @@ pub fn decimal(
             }
         });
     }
-    let is_comma = commas > points || (commas + points == 0 && unclear > 0 && delimiter != Delimiter::Comma);
+    let is_comma =
+        commas > points || (commas + points == 0 && unclear > 0 && delimiter != Delimiter::Comma);
     Ok(if is_comma {
         DecimalMark::Comma
     } else {
@@ -202,8 +195,14 @@ mod tests {
             ("a|b|c\n1|2.5|3\n", (Bar, P)),
             ("name a b\nx 1.5 2\ny 2.5 3\n", (Blanks, P)),
             ("name, first\n\"1,5\",\"2,5\"\n\"3,5\",4\n", (Comma, C)),
-            ("Wheel 12 of cave A,1.5,2\nWheel 13 of cave A,1.7,3\n", (Comma, P)),
-            ("Report of 3 March\nmade by K; M\n\nid;x\nK-1;0,123\nK-2;0,456\nK-3;1,234\n", (Semicolon, C)),
+            (
+                "Wheel 12 of cave A,1.5,2\nWheel 13 of cave A,1.7,3\n",
+                (Comma, P),
+            ),
+            (
+                "Report of 3 March\nmade by K; M\n\nid;x\nK-1;0,123\nK-2;0,456\nK-3;1,234\n",
+                (Semicolon, C),
+            ),
             ("only\n1.5\n2.5\n", (Comma, P)),
             ("id;n\na;1,234\nb;2,345\n", (Semicolon, C)),
         ] {

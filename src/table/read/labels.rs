@@ -100,7 +100,10 @@ fn variants(
     }
     let mut groups: BTreeMap<String, Vec<(&str, usize, usize)>> = BTreeMap::new();
     for (label, (count, row)) in counts {
-        groups.entry(folded(label)).or_default().push((label, count, row));
+        groups
+            .entry(folded(label))
+            .or_default()
+            .push((label, count, row));
     }
     for mut group in groups.into_values().filter(|group| group.len() > 1) {
         // The rarer ways of writing are the ones to look at.

@@ -166,7 +166,9 @@ fn is_data(rows: &[HeadRow], row: usize, width: usize) -> bool {
             let sort = row.sort(column);
             sort.is_quantity() || sort.is_nothing()
         };
-        here.sort(column).is_quantity() && below.iter().all(goes_on)
+        // A name such as “900 nm” is a number with a unit, and no value.
+        let sort = here.sort(column);
+        sort.is_quantity() && sort != Sort::WithUnit && below.iter().all(goes_on)
     })
 }
 
@@ -182,7 +184,23 @@ fn guess_header(rows: &[HeadRow], data: Option<usize>, width: usize) -> Option<u
     if above.is_some() {
         return above;
     }
-    is_axis_row(rows, data).then_some(data)
+    (is_axis_row(rows, data) || is_row_of_names(rows, data)).then_some(data)
+}
+
+/// Whether a row that holds some numbers is a header all the same: names such as 1E-05 or 007
+/// stand among names that are text, above numbers.
+fn is_row_of_names(rows: &[HeadRow], row: usize) -> bool {
+    let here = &rows[row];
+    let Some(below) = rows[row + 1..].iter().find(|row| row.n_filled() > 0) else {
+        return false;
+    };
+    let names_above_numbers = (0..here.cells.len())
+        .filter(|&column| {
+            let sort = here.sort(column);
+            below.sort(column).is_quantity() && !sort.is_quantity() && !sort.is_nothing()
+        })
+        .count();
+    names_above_numbers > 0 && here.n_unlike() == here.cells.len().min(here.width())
 }
 
 /// Whether a row of numbers is an axis (wavelengths, masses) and the row below is not.
@@ -208,10 +226,7 @@ fn is_short(header: &HeadRow, body: &[HeadRow]) -> bool {
     let expected = header.n_fields + 1;
     let rows: Vec<&HeadRow> = body.iter().filter(|row| row.n_filled() > 1).collect();
     let longer = rows.iter().filter(|row| row.n_fields == expected).count();
-    let filled_at_end = rows
-        .iter()
-        .filter(|row| row.width() == expected)
-        .count();
+    let filled_at_end = rows.iter().filter(|row| row.width() == expected).count();
     header.width() == header.n_fields
         && !rows.is_empty()
         && longer * 10 >= rows.len() * 9
@@ -232,7 +247,11 @@ fn left(rows: &[HeadRow], header: Option<usize>, after: usize, is_short: bool) -
         .and_then(|header| rows.get(header))
         .filter(|_| !is_short)
         .and_then(first_filled);
-    [of_body, of_header].into_iter().flatten().min().unwrap_or(0)
+    [of_body, of_header]
+        .into_iter()
+        .flatten()
+        .min()
+        .unwrap_or(0)
 }
 
 fn find_units(layout: &mut Layout, rows: &[HeadRow], options: &Options) {
@@ -288,7 +307,11 @@ fn orient(layout: &mut Layout, rows: &[HeadRow], n_body: usize, options: &Option
         (Orienting::RowHeadsAreAnAxis, true)
     } else if names_predictors(header.text(names)) && are_labels(&body, names) {
         (Orienting::FirstHeadNamesPredictors, true)
-    } else if n_body >= 200 && n_body >= 5 * header.n_fields && are_labels(&body, names) && is_numeric(&body, names) {
+    } else if n_body >= 200
+        && n_body >= 5 * header.n_fields
+        && are_labels(&body, names)
+        && is_numeric(&body, names)
+    {
         (Orienting::ManyNamedRows, false)
     } else {
         return;
@@ -311,11 +334,20 @@ fn rows_differ_in_kind(header: &HeadRow, body: &[&HeadRow], names: usize) -> boo
             continue;
         }
         let quantities = filled.iter().filter(|cell| cell.sort.is_quantity()).count();
-        let repeats_header = filled.iter().filter(|cell| header.cells.iter().any(|name| name.text == cell.text)).count() * 2 > filled.len();
+        let repeats_header = filled
+            .iter()
+            .filter(|cell| header.cells.iter().any(|name| name.text == cell.text))
+            .count()
+            * 2
+            > filled.len();
         let units = filled.iter().filter(|cell| is_unit(&cell.text)).count();
         if quantities * 10 >= filled.len() * 9 {
             numbers += 1;
-        } else if quantities == 0 && units * 2 < filled.len() && !repeats_header && row.sort(names) == Sort::Text {
+        } else if quantities == 0
+            && units * 2 < filled.len()
+            && !repeats_header
+            && row.sort(names) == Sort::Text
+        {
             let mut texts: Vec<&str> = filled.iter().map(|cell| cell.text.as_str()).collect();
             texts.sort_unstable();
             texts.dedup();
@@ -335,20 +367,62 @@ fn small_words(text: &str) -> Vec<String> {
 
 fn names_predictors(text: &str) -> bool {
     const WORDS: [&str; 26] = [
-        "peak", "peaks", "feature", "features", "marker", "markers", "snp", "probe", "channel",
-        "variable", "variables", "predictor", "predictors", "wavelength", "wavenumber", "mz", "m/z",
-        "analyte", "compound", "taxon", "otu", "band", "gene", "protein", "metabolite", "wellenlänge",
+        "peak",
+        "peaks",
+        "feature",
+        "features",
+        "marker",
+        "markers",
+        "snp",
+        "probe",
+        "channel",
+        "variable",
+        "variables",
+        "predictor",
+        "predictors",
+        "wavelength",
+        "wavenumber",
+        "mz",
+        "m/z",
+        "analyte",
+        "compound",
+        "taxon",
+        "otu",
+        "band",
+        "gene",
+        "protein",
+        "metabolite",
+        "wellenlänge",
     ];
-    small_words(text).iter().any(|word| WORDS.contains(&word.as_str()))
+    small_words(text)
+        .iter()
+        .any(|word| WORDS.contains(&word.as_str()))
 }
 
 /// Whether a head says that samples are named below it.
 pub fn names_samples(text: &str) -> bool {
     const WORDS: [&str; 17] = [
-        "sample", "samples", "sampleid", "sampleno", "id", "name", "names", "specimen", "lot", "code",
-        "label", "barcode", "subject", "accession", "probe-id", "scan", "key",
+        "sample",
+        "samples",
+        "sampleid",
+        "sampleno",
+        "id",
+        "name",
+        "names",
+        "specimen",
+        "lot",
+        "code",
+        "label",
+        "barcode",
+        "subject",
+        "accession",
+        "probe-id",
+        "scan",
+        "key",
     ];
-    small_words(text).iter().any(|word| WORDS.contains(&word.as_str()))
+    small_words(text)
+        .iter()
+        .any(|word| WORDS.contains(&word.as_str()))
 }
 
 fn has_axis(header: &HeadRow, names: usize) -> bool {
@@ -372,7 +446,10 @@ fn heads_are_an_axis(header: &HeadRow, body: &[&HeadRow], names: usize) -> bool 
 
 fn are_labels(body: &[&HeadRow], names: usize) -> bool {
     let mut heads: Vec<&str> = body.iter().map(|row| row.text(names)).collect();
-    let labels = body.iter().filter(|row| !row.sort(names).is_quantity()).count();
+    let labels = body
+        .iter()
+        .filter(|row| !row.sort(names).is_quantity())
+        .count();
     heads.sort_unstable();
     heads.dedup();
     heads.len() == body.len() && labels * 2 > body.len()

@@ -31,7 +31,13 @@ pub fn guess(bytes: &[u8]) -> Encoding {
     }
     // Latin letters in UTF-16 have a zero in every other byte.
     let look = &bytes[..bytes.len().min(LOOK)];
-    let zeros = |odd: usize| look.iter().skip(odd).step_by(2).filter(|&&b| b == 0).count();
+    let zeros = |odd: usize| {
+        look.iter()
+            .skip(odd)
+            .step_by(2)
+            .filter(|&&b| b == 0)
+            .count()
+    };
     let half = look.len() / 2;
     if half > 0 && zeros(1) * 10 > half * 7 && zeros(0) * 10 < half {
         return Encoding::Utf16Le;
@@ -135,10 +141,13 @@ pub fn is_broken(text: &str) -> bool {
         return false;
     }
     text.contains('\u{fffd}')
-        || text.chars().zip(text.chars().skip(1)).any(|(first, second)| {
-            matches!(first, 'Ã' | 'Â') && ('\u{80}'..='\u{bf}').contains(&second)
-                || first == 'â' && matches!(second, '€' | '\u{80}' | '‚')
-        })
+        || text
+            .chars()
+            .zip(text.chars().skip(1))
+            .any(|(first, second)| {
+                matches!(first, 'Ã' | 'Â') && ('\u{80}'..='\u{bf}').contains(&second)
+                    || first == 'â' && matches!(second, '€' | '\u{80}' | '‚')
+            })
 }
 
 #[cfg(test)]

@@ -64,7 +64,9 @@ mod tests {
         let (names, findings) = unlike(&heads, 0, |_| Place::nowhere());
         assert_eq!(
             names,
-            ["id", "column 2", "fat", "fat (3)", "fat (2)", "fat (4)", "column 7"]
+            [
+                "id", "column 2", "fat", "fat (3)", "fat (2)", "fat (4)", "column 7"
+            ]
         );
         assert_eq!(findings.map(|finding| finding.count), Some(2));
     }

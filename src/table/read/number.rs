@@ -72,8 +72,18 @@ mod tests {
     #[test]
     fn numbers_are_read_to_the_last_bit() {
         for text in [
-            "0", "-0.1", "3.14", "1e-5", "2E+3", ".5", "5.", "+7", "123456789.123456789",
-            "0.1000000000000000055511151231257827", "9007199254740993", "1.7976931348623157e308",
+            "0",
+            "-0.1",
+            "3.14",
+            "1e-5",
+            "2E+3",
+            ".5",
+            "5.",
+            "+7",
+            "123456789.123456789",
+            "0.1000000000000000055511151231257827",
+            "9007199254740993",
+            "1.7976931348623157e308",
         ] {
             let expected: f64 = text.parse().unwrap();
             assert_eq!(whole(text.as_bytes(), Point), Some(expected), "{text}");
@@ -84,7 +94,9 @@ mod tests {
 
     #[test]
     fn other_marks_words_and_rests_are_no_numbers() {
-        for text in ["", "-", ".", "1,5", "inf", "-inf", "nan", "NaN", "1.5 ", "1e", "0x1", "1.2.3"] {
+        for text in [
+            "", "-", ".", "1,5", "inf", "-inf", "nan", "NaN", "1.5 ", "1e", "0x1", "1.2.3",
+        ] {
             assert_eq!(whole(text.as_bytes(), Point), None, "{text}");
         }
         for text in ["1.5", "1,2,3", ",", "infinity"] {

@@ -342,7 +342,9 @@ mod tests {
             let rows: Vec<Vec<String>> = (0..5)
                 .map(|row| {
                     (0..4)
-                        .map(|column| random_text(seed * 100 + row * 10 + column, (seed % 7) as usize))
+                        .map(|column| {
+                            random_text(seed * 100 + row * 10 + column, (seed % 7) as usize)
+                        })
                         .collect()
                 })
                 .collect();
@@ -359,7 +361,11 @@ mod tests {
     fn no_text_is_lost_whatever_the_quotes() {
         for seed in 1..2000 {
             let text = random_text(seed, 30);
-            let letters = |text: &str| text.chars().filter(|c| matches!(c, 'a' | '1' | '.')).count();
+            let letters = |text: &str| {
+                text.chars()
+                    .filter(|c| matches!(c, 'a' | '1' | '.'))
+                    .count()
+            };
             let kept: usize = split(&text, Delimiter::Comma)
                 .iter()
                 .flatten()
@@ -396,6 +402,9 @@ mod tests {
 
     #[test]
     fn old_line_breaks_are_line_breaks() {
-        assert_eq!(split("a;b\r1;2\r", Delimiter::Semicolon), [["a", "b"], ["1", "2"]]);
+        assert_eq!(
+            split("a;b\r1;2\r", Delimiter::Semicolon),
+            [["a", "b"], ["1", "2"]]
+        );
     }
 }

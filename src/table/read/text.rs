@@ -79,7 +79,10 @@ pub fn read(
         .collect();
     let mut asked = options.clone();
     if let Some(row) = options.header_row.filter(|&row| row > 0) {
-        match records.iter().position(|record| record.line as usize == row) {
+        match records
+            .iter()
+            .position(|record| record.line as usize == row)
+        {
             Some(at) => asked.header_row = Some(at + 1),
             None => {
                 let rows = records.last().map_or(0, |record| record.line as usize);
@@ -265,7 +268,8 @@ fn plan<'a>(
 
     let (names, of_names) = if layout.orientation == Orientation::SamplesInRows {
         names::unlike(&heads[layout.left.min(width)..], layout.left, |at| {
-            header.map_or_else(|| Place::file(file_name), place)
+            header
+                .map_or_else(|| Place::file(file_name), place)
                 .with_column(&(layout.left + at + 1).to_string())
         })
     } else {
@@ -274,7 +278,10 @@ fn plan<'a>(
     findings.extend(of_names);
     let mut broken = Finding::new(FindingKind::BrokenLetters, Treatment::Kept);
     for name in names.iter().filter(|name| letters::is_broken(name)) {
-        broken.add(|| header.map_or_else(|| Place::file(file_name), place), name);
+        broken.add(
+            || header.map_or_else(|| Place::file(file_name), place),
+            name,
+        );
     }
     findings.push(broken);
     if let Some(reason) = layout.reason {

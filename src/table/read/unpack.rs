@@ -84,7 +84,10 @@ mod tests {
         let whole = packed(&b"1.5,2.5\n".repeat(1000));
         for length in [5, 20, whole.len() - 1] {
             let error = gunzip(&whole[..length], &Work::unattended()).unwrap();
-            assert!(matches!(error, Err(ReadError::TruncatedArchive { .. })), "{length}");
+            assert!(
+                matches!(error, Err(ReadError::TruncatedArchive { .. })),
+                "{length}"
+            );
         }
     }
 }

@@ -48,7 +48,9 @@ pub fn read(
     };
     let mut findings = of_book(&sheet, &book.choices, &here, options.sheet.is_some());
     let grouping = options.grouping.unwrap_or(Grouping::Absent);
-    let mark = options.decimal.unwrap_or_else(|| guess_mark(&sheet, grouping));
+    let mark = options
+        .decimal
+        .unwrap_or_else(|| guess_mark(&sheet, grouping));
     if let Some(row) = options.header_row.filter(|&row| row > sheet.rows.len()) {
         let rows = sheet.rows.len();
         return Ok(Err(ReadError::NoSuchRow { asked: row, rows }));
@@ -151,7 +153,11 @@ fn of_book(
     if !sheet.merged.is_empty() {
         let mut finding = Finding::new(FindingKind::MergedCells, Treatment::Kept);
         for &(row, column) in &sheet.merged {
-            let place = || here.clone().with_row(row as usize + 1).with_column(&letters_of(column as usize));
+            let place = || {
+                here.clone()
+                    .with_row(row as usize + 1)
+                    .with_column(&letters_of(column as usize))
+            };
             finding.add(place, "");
         }
         findings.push(finding);
@@ -171,14 +177,19 @@ fn letters_of(column: usize) -> String {
     letters.iter().rev().collect()
 }
 
-/// The decimal mark of numbers that are stored as text.
+/// The decimal mark of numbers that are stored as text. A few with commas among many that are
+/// stored as numbers are slips; only where commas are the habit are they decimal marks.
 fn guess_mark(sheet: &Sheet, grouping: Grouping) -> DecimalMark {
     let (mut points, mut commas) = (0, 0);
     for cell in sheet.rows.iter().take(layout::ROWS).flatten() {
-        if let Stuff::Text(text) = &cell.stuff {
-            let is_number = |mark| matches!(sort(text, mark, grouping), Sort::Number(_));
-            points += usize::from(text.contains('.') && is_number(DecimalMark::Point));
-            commas += usize::from(text.contains(',') && is_number(DecimalMark::Comma));
+        match &cell.stuff {
+            Stuff::Number(number) => points += usize::from(number.fract() != 0.0),
+            Stuff::Text(text) => {
+                let is_number = |mark| matches!(sort(text, mark, grouping), Sort::Number(_));
+                points += usize::from(text.contains('.') && is_number(DecimalMark::Point));
+                commas += usize::from(text.contains(',') && is_number(DecimalMark::Comma));
+            }
+            Stuff::Date(_) | Stuff::Truth(_) | Stuff::Error(_) => {}
         }
     }
     if commas > points {
@@ -230,7 +241,11 @@ fn body_rows(
     here: &Place,
     findings: &mut Vec<Finding>,
 ) -> Vec<usize> {
-    let first_text = |row: usize| sheet.rows[row].first().map_or(String::new(), |c| c.stuff.text().into_owned());
+    let first_text = |row: usize| {
+        sheet.rows[row]
+            .first()
+            .map_or(String::new(), |c| c.stuff.text().into_owned())
+    };
     let place = |row: usize| here.clone().with_row(row + 1);
     let mut above = Finding::new(FindingKind::LinesAbove, Treatment::LeftOut);
     for row in (0..layout.header.unwrap_or(0)).filter(|&row| !sheet.rows[row].is_empty()) {
@@ -258,8 +273,12 @@ fn body_rows(
         .iter()
         .map(|row| TailRow {
             n_filled: row.len(),
-            text: row.first().map_or(String::new(), |cell| cell.stuff.text().into_owned()),
-            is_at_left: row.first().is_some_and(|cell| cell.column as usize == layout.left),
+            text: row
+                .first()
+                .map_or(String::new(), |cell| cell.stuff.text().into_owned()),
+            is_at_left: row
+                .first()
+                .is_some_and(|cell| cell.column as usize == layout.left),
         })
         .collect();
     let end = last - below::notes(&tail, common).min(last - layout.first.min(last));
@@ -273,13 +292,20 @@ fn body_rows(
     for row in layout.first..end {
         if sheet.rows[row].is_empty() {
             blank.add(|| place(row), "");
-        } else if layout.header.is_some_and(|header| sheet.rows[header] == sheet.rows[row]) {
+        } else if layout
+            .header
+            .is_some_and(|header| sheet.rows[header] == sheet.rows[row])
+        {
             again.add(|| place(row), "");
         } else {
             body.push(row);
         }
     }
-    findings.extend([above, notes, blank, again].into_iter().filter(|finding| finding.count > 0));
+    findings.extend(
+        [above, notes, blank, again]
+            .into_iter()
+            .filter(|finding| finding.count > 0),
+    );
     body
 }
 
@@ -297,7 +323,11 @@ struct Grid<'s> {
 impl<'s> Grid<'s> {
     fn texts(&self, row: Option<usize>) -> Vec<String> {
         let mut texts = vec![String::new(); self.sheet.width];
-        for cell in row.and_then(|row| self.sheet.rows.get(row)).into_iter().flatten() {
+        for cell in row
+            .and_then(|row| self.sheet.rows.get(row))
+            .into_iter()
+            .flatten()
+        {
             trimmed(&cell.stuff.text()).clone_into(&mut texts[cell.column as usize]);
         }
         texts
@@ -346,14 +376,25 @@ impl<'s> Grid<'s> {
         }
     }
 
-    fn empty(&self, name: String, is_unnamed: bool, line: u32, plan: Plan, n_rows: usize) -> Raw<'s> {
+    fn empty(
+        &self,
+        name: String,
+        is_unnamed: bool,
+        line: u32,
+        plan: Plan,
+        n_rows: usize,
+    ) -> Raw<'s> {
         Raw {
             name,
             is_unnamed,
             unit: None,
             line,
             plan,
-            values: if plan.keeps_text() { Vec::new() } else { vec![f64::NAN; n_rows] },
+            values: if plan.keeps_text() {
+                Vec::new()
+            } else {
+                vec![f64::NAN; n_rows]
+            },
             odd: Vec::new(),
         }
     }
@@ -386,7 +427,9 @@ impl<'s> Grid<'s> {
     /// Samples in rows.
     fn upright(&self, mut findings: Vec<Finding>) -> Result<RawTable<'s>, ReadError> {
         let left = self.layout.left;
-        let heads = self.texts(self.layout.header).split_off(left.min(self.sheet.width));
+        let heads = self
+            .texts(self.layout.header)
+            .split_off(left.min(self.sheet.width));
         let header = self.layout.header;
         let (names, repeated) = names::unlike(&heads, left, |at| {
             let place = self.here.clone().with_column(&letters_of(left + at));
@@ -404,7 +447,10 @@ impl<'s> Grid<'s> {
             .map(|(at, name)| {
                 let plan = self.plan(&name);
                 let mut raw = self.empty(name, heads[at].is_empty(), 0, plan, n_rows);
-                raw.unit = units.get(at + left).filter(|unit| !unit.is_empty()).cloned();
+                raw.unit = units
+                    .get(at + left)
+                    .filter(|unit| !unit.is_empty())
+                    .cloned();
                 raw
             })
             .collect();
@@ -442,10 +488,15 @@ impl<'s> Grid<'s> {
             .map(|cell| cell.column as usize + 1)
             .max()
             .unwrap_or(0);
-        let named = head_texts.iter().rposition(|head| !head.is_empty()).map_or(0, |at| at + 1);
+        let named = head_texts
+            .iter()
+            .rposition(|head| !head.is_empty())
+            .map_or(0, |at| at + 1);
         let n_samples = used.max(named).saturating_sub(first);
         if n_samples == 0 {
-            return Err(ReadError::HeaderOnly { columns: self.body.len() });
+            return Err(ReadError::HeaderOnly {
+                columns: self.body.len(),
+            });
         }
         let head_of = |row: usize| {
             self.sheet.rows[row]
@@ -458,14 +509,30 @@ impl<'s> Grid<'s> {
             head_of(row).map_or(String::new(), |cell| trimmed(&cell.stuff.text()).to_owned())
         }));
         let (names, repeated) = names::unlike(&all, 0, |at| {
-            let row = at.checked_sub(1).map_or(header_line as usize, |at| self.body[at] + 1);
+            let row = at
+                .checked_sub(1)
+                .map_or(header_line as usize, |at| self.body[at] + 1);
             self.here.clone().with_row(row)
         });
         findings.extend(repeated);
-        let heads = self.body.iter().filter_map(|&row| head_of(row).map(|cell| (row, cell)));
+        let heads = self
+            .body
+            .iter()
+            .filter_map(|&row| head_of(row).map(|cell| (row, cell)));
         findings.extend(self.dates_among_names(heads));
-        let mut samples = self.empty(names[0].clone(), false, header_line, Plan::Labels, n_samples);
-        for cell in self.layout.header.iter().flat_map(|&row| &self.sheet.rows[row]) {
+        let mut samples = self.empty(
+            names[0].clone(),
+            false,
+            header_line,
+            Plan::Labels,
+            n_samples,
+        );
+        for cell in self
+            .layout
+            .header
+            .iter()
+            .flat_map(|&row| &self.sheet.rows[row])
+        {
             if let Some(at) = (cell.column as usize).checked_sub(first) {
                 samples.odd.push(self.odd(at as u32, cell));
             }
@@ -474,8 +541,18 @@ impl<'s> Grid<'s> {
         for (at, &row) in self.body.iter().enumerate() {
             let name = names[at + 1].clone();
             let plan = self.plan(&name);
-            let plan = if plan == Plan::Names { Plan::Numbers } else { plan };
-            let mut raw = self.empty(name, all[at + 1].is_empty(), row as u32 + 1, plan, n_samples);
+            let plan = if plan == Plan::Names {
+                Plan::Numbers
+            } else {
+                plan
+            };
+            let mut raw = self.empty(
+                name,
+                all[at + 1].is_empty(),
+                row as u32 + 1,
+                plan,
+                n_samples,
+            );
             for cell in &self.sheet.rows[row] {
                 if Some(cell.column as usize) == self.layout.units {
                     raw.unit = Some(trimmed(&cell.stuff.text()).to_owned());

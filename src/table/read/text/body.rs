@@ -5,6 +5,7 @@ use crate::base::problem::Place;
 use crate::base::thread::{Threads, in_order};
 use crate::base::work::{Cancelled, Work};
 use crate::table::finding::{Finding, FindingKind, Treatment};
+use crate::table::read::Options;
 use crate::table::read::cell::{Sort, sort, trimmed};
 use crate::table::read::decide;
 use crate::table::read::error::ReadError;
@@ -14,7 +15,6 @@ use crate::table::read::number;
 use crate::table::read::raw::{Odd, Plan, Raw, RawLines, RawTable, Stored};
 use crate::table::read::split::{self, Field, Record};
 use crate::table::read::text::{Found, Manner, are_labels, row_lines};
-use crate::table::read::Options;
 use std::borrow::Cow;
 use std::sync::Mutex;
 
@@ -80,7 +80,11 @@ pub fn read<'a>(
 
 /// One value of a row.
 enum Hit {
-    Number { value: f64, start: usize, end: usize },
+    Number {
+        value: f64,
+        start: usize,
+        end: usize,
+    },
     Other(Field),
 }
 
@@ -97,7 +101,14 @@ fn scan(manner: Manner<'_>, record: Record, mut hit: impl FnMut(usize, Hit)) -> 
         if let Some((value, length)) = number::leading(&bytes[at..end], manner.mark) {
             let stop = at + length;
             if (stop == end || bytes[stop] == delimiter) && !loses_digits(&bytes[at..stop], value) {
-                hit(index, Hit::Number { value, start: at, end: stop });
+                hit(
+                    index,
+                    Hit::Number {
+                        value,
+                        start: at,
+                        end: stop,
+                    },
+                );
                 next = Some(stop);
             }
         }
@@ -140,7 +151,10 @@ fn plans(body: &Body<'_>, options: &Options) -> Vec<Plan> {
     let mut sorts: Vec<Vec<Sort>> = vec![Vec::new(); n_columns];
     for &record in body.records.iter().take(LOOK) {
         let _ = scan(manner, record, |index, hit| {
-            let Some(sorts) = index.checked_sub(body.left).and_then(|at| sorts.get_mut(at)) else {
+            let Some(sorts) = index
+                .checked_sub(body.left)
+                .and_then(|at| sorts.get_mut(at))
+            else {
                 return;
             };
             sorts.push(match hit {
@@ -183,18 +197,29 @@ fn upright<'a>(
     let plans = plans(body, options);
     let mut values: Vec<Vec<f64>> = plans
         .iter()
-        .map(|plan| if plan.keeps_text() { Vec::new() } else { vec![0.0; n_rows] })
+        .map(|plan| {
+            if plan.keeps_text() {
+                Vec::new()
+            } else {
+                vec![0.0; n_rows]
+            }
+        })
         .collect();
     let rows_each = rows_each(body);
     let n_pieces = n_rows.div_ceil(rows_each);
-    let mut shares: Vec<Vec<&mut [f64]>> = (0..n_pieces).map(|_| Vec::with_capacity(n_columns)).collect();
+    let mut shares: Vec<Vec<&mut [f64]>> = (0..n_pieces)
+        .map(|_| Vec::with_capacity(n_columns))
+        .collect();
     for column in &mut values {
         let mut pieces = column.chunks_mut(rows_each);
         for share in &mut shares {
             share.push(pieces.next().unwrap_or(&mut []));
         }
     }
-    let shares: Vec<Strip<'_>> = shares.into_iter().map(|share| Mutex::new(Some(share))).collect();
+    let shares: Vec<Strip<'_>> = shares
+        .into_iter()
+        .map(|share| Mutex::new(Some(share)))
+        .collect();
     let pieces = in_order(threads, n_pieces, &work.part(0.0..0.9), |piece| {
         let mut share = shares[piece]
             .lock()
@@ -220,7 +245,11 @@ fn upright<'a>(
         columns.push(Raw {
             name: body.names[at].clone(),
             is_unnamed: body.heads.get(at + body.left).is_none_or(String::is_empty),
-            unit: body.units.get(at + body.left).filter(|unit| !unit.is_empty()).cloned(),
+            unit: body
+                .units
+                .get(at + body.left)
+                .filter(|unit| !unit.is_empty())
+                .cloned(),
             line: 0,
             plan,
             values,
@@ -271,10 +300,11 @@ fn strip<'a>(
             };
             let Some(values) = share.get_mut(slot) else {
                 // More values than names: blanks behind the last delimiter are no values.
-                is_long = is_long || match hit {
-                    Hit::Number { .. } => true,
-                    Hit::Other(field) => !trimmed(&field.text(manner.text)).is_empty(),
-                };
+                is_long = is_long
+                    || match hit {
+                        Hit::Number { .. } => true,
+                        Hit::Other(field) => !trimmed(&field.text(manner.text)).is_empty(),
+                    };
                 return;
             };
             let (text, sort) = match hit {
@@ -283,7 +313,10 @@ fn strip<'a>(
                         *place = value;
                         return;
                     }
-                    (Cow::Borrowed(slice(manner.text, start, end)), Sort::Number(value))
+                    (
+                        Cow::Borrowed(slice(manner.text, start, end)),
+                        Sort::Number(value),
+                    )
                 }
                 Hit::Other(field) => {
                     let text = trimmed_field(manner.text, &field);
@@ -306,7 +339,15 @@ fn strip<'a>(
                 }
             };
             let row = (first + at) as u32;
-            odd.push((slot as u32, Odd { row, sort, stored: Stored::Text, text }));
+            odd.push((
+                slot as u32,
+                Odd {
+                    row,
+                    sort,
+                    stored: Stored::Text,
+                    text,
+                },
+            ));
         });
         for values in share.iter_mut().skip(found.saturating_sub(body.left)) {
             if let Some(place) = values.get_mut(at) {
@@ -359,30 +400,44 @@ fn retext<'a>(
         return Ok(());
     };
     let rows_each = rows_each(body);
-    let pieces = in_order(threads, body.records.len().div_ceil(rows_each), work, |piece| {
-        let first = piece * rows_each;
-        let mut texts = Vec::new();
-        for (at, &record) in body.records.iter().enumerate().skip(first).take(rows_each) {
-            work.check()?;
-            let mut index = 0;
-            split::fields(body.manner.text.as_bytes(), record, body.manner.dialect, |field| {
-                if let Some(slot) = usize::checked_sub(index, body.left) {
-                    let text = trimmed_field(body.manner.text, &field);
-                    if wanted.get(slot) == Some(&true) && !trimmed(&text).is_empty() {
-                        texts.push((slot, label(at as u32, text)));
-                    }
-                }
-                index += 1;
-                if index > last + body.left {
-                    std::ops::ControlFlow::Break(())
-                } else {
-                    std::ops::ControlFlow::Continue(())
-                }
-            });
-        }
-        Ok(texts)
-    })?;
-    for (raw, _) in columns.iter_mut().zip(&wanted).filter(|(_, is_wanted)| **is_wanted) {
+    let pieces = in_order(
+        threads,
+        body.records.len().div_ceil(rows_each),
+        work,
+        |piece| {
+            let first = piece * rows_each;
+            let mut texts = Vec::new();
+            for (at, &record) in body.records.iter().enumerate().skip(first).take(rows_each) {
+                work.check()?;
+                let mut index = 0;
+                split::fields(
+                    body.manner.text.as_bytes(),
+                    record,
+                    body.manner.dialect,
+                    |field| {
+                        if let Some(slot) = usize::checked_sub(index, body.left) {
+                            let text = trimmed_field(body.manner.text, &field);
+                            if wanted.get(slot) == Some(&true) && !trimmed(&text).is_empty() {
+                                texts.push((slot, label(at as u32, text)));
+                            }
+                        }
+                        index += 1;
+                        if index > last + body.left {
+                            std::ops::ControlFlow::Break(())
+                        } else {
+                            std::ops::ControlFlow::Continue(())
+                        }
+                    },
+                );
+            }
+            Ok(texts)
+        },
+    )?;
+    for (raw, _) in columns
+        .iter_mut()
+        .zip(&wanted)
+        .filter(|(_, is_wanted)| **is_wanted)
+    {
         raw.values = Vec::new();
         raw.odd = Vec::new();
         raw.plan = Plan::Labels;
@@ -396,15 +451,24 @@ fn retext<'a>(
 fn uneven_rows(body: &Body<'_>, uneven: Uneven) -> Vec<Finding> {
     let expected = body.left + body.names.len();
     let place = |line: u32| Place::file(&body.file_name).with_row(line as usize);
-    let mut short = Finding::new(FindingKind::ShortRows { expected }, Treatment::CountedAsMissing);
+    let mut short = Finding::new(
+        FindingKind::ShortRows { expected },
+        Treatment::CountedAsMissing,
+    );
     for line in uneven.short {
         short.add(|| place(line), "");
     }
-    let mut long = Finding::new(FindingKind::LongRows { expected }, Treatment::CountedAsMissing);
+    let mut long = Finding::new(
+        FindingKind::LongRows { expected },
+        Treatment::CountedAsMissing,
+    );
     for line in uneven.long {
         long.add(|| place(line), "");
     }
-    [short, long].into_iter().filter(|finding| finding.count > 0).collect()
+    [short, long]
+        .into_iter()
+        .filter(|finding| finding.count > 0)
+        .collect()
 }
 
 /// Samples in columns: every row of the file is a column of the table.
@@ -415,14 +479,22 @@ fn sideways<'a>(
     work: &Work<'_>,
 ) -> Result<Found<'a>, Cancelled> {
     let manner = body.manner;
-    let first_sample = body.unit_column.map_or(body.left, |units| units.max(body.left)) + 1;
+    let first_sample = body
+        .unit_column
+        .map_or(body.left, |units| units.max(body.left))
+        + 1;
     let mut n_samples = body.width.saturating_sub(first_sample);
     // Blank heads at the end are delimiters at the end of lines, unless values stand below.
-    while n_samples > 0 && body.names[first_sample + n_samples - 1].is_empty() && is_blank_column(body, first_sample + n_samples - 1) {
+    while n_samples > 0
+        && body.names[first_sample + n_samples - 1].is_empty()
+        && is_blank_column(body, first_sample + n_samples - 1)
+    {
         n_samples -= 1;
     }
     if n_samples == 0 {
-        return Ok(Err(ReadError::HeaderOnly { columns: body.records.len() }));
+        return Ok(Err(ReadError::HeaderOnly {
+            columns: body.records.len(),
+        }));
     }
     let heads: Vec<String> = body
         .records
@@ -564,7 +636,11 @@ fn across<'a>(
         unit: None,
         line: record.line,
         plan,
-        values: if plan.keeps_text() { Vec::new() } else { vec![f64::NAN; n_samples] },
+        values: if plan.keeps_text() {
+            Vec::new()
+        } else {
+            vec![f64::NAN; n_samples]
+        },
         odd: Vec::new(),
     };
     let mut is_long = false;
@@ -580,9 +656,10 @@ fn across<'a>(
             return;
         };
         let (text, sort) = match hit {
-            Hit::Number { value, start, end } => {
-                (Cow::Borrowed(slice(manner.text, start, end)), Sort::Number(value))
-            }
+            Hit::Number { value, start, end } => (
+                Cow::Borrowed(slice(manner.text, start, end)),
+                Sort::Number(value),
+            ),
             Hit::Other(field) => {
                 let text = trimmed_field(manner.text, &field);
                 let sort = sort(&text, manner.mark, manner.grouping);
@@ -598,7 +675,12 @@ fn across<'a>(
         }
         match (raw.values.get_mut(row), sort) {
             (Some(place), Sort::Number(value)) => *place = value,
-            _ => raw.odd.push(Odd { row: row as u32, sort, stored: Stored::Text, text }),
+            _ => raw.odd.push(Odd {
+                row: row as u32,
+                sort,
+                stored: Stored::Text,
+                text,
+            }),
         }
     });
     if is_long {

@@ -101,8 +101,8 @@ pub fn open(
 }
 
 fn attempt(bytes: &[u8], asked: Option<&str>, work: &Work<'_>) -> Result<Book, Stop> {
-    let mut book = open_workbook_auto_from_rs(Cursor::new(bytes))
-        .map_err(|_| Stop::Error(why_not(bytes)))?;
+    let mut book =
+        open_workbook_auto_from_rs(Cursor::new(bytes)).map_err(|_| Stop::Error(why_not(bytes)))?;
     let sheets: Vec<SheetChoice> = book
         .sheets_metadata()
         .iter()
@@ -145,14 +145,22 @@ fn first_with_table(
     work: &Work<'_>,
 ) -> Result<Sheet, Stop> {
     let mut fallback: Option<Sheet> = None;
-    let of = |visibility| choices.sheets.iter().filter(move |sheet| sheet.visibility == visibility);
+    let of = |visibility| {
+        choices
+            .sheets
+            .iter()
+            .filter(move |sheet| sheet.visibility == visibility)
+    };
     for choice in of(Visibility::Visible).chain(of(Visibility::Hidden)) {
         let sheet = read(book, &choice.name, work)?;
         let filled = sheet.rows.iter().filter(|row| !row.is_empty()).count();
         if filled > 1 && sheet.width > 1 {
             return Ok(sheet);
         }
-        if fallback.as_ref().is_none_or(|known| known.rows.is_empty() && filled > 0) {
+        if fallback
+            .as_ref()
+            .is_none_or(|known| known.rows.is_empty() && filled > 0)
+        {
             fallback = Some(sheet);
         }
     }
@@ -162,7 +170,10 @@ fn first_with_table(
 fn why_not(bytes: &[u8]) -> ReadError {
     let contains = |text: &[u8]| memchr::memmem::find(bytes, text).is_some();
     if !bytes.starts_with(b"PK") {
-        let wide: Vec<u8> = "EncryptedPackage".encode_utf16().flat_map(u16::to_le_bytes).collect();
+        let wide: Vec<u8> = "EncryptedPackage"
+            .encode_utf16()
+            .flat_map(u16::to_le_bytes)
+            .collect();
         return if contains(&wide) {
             ReadError::Encrypted
         } else {
@@ -267,7 +278,10 @@ impl Filled {
     fn add_range(&mut self, range: &calamine::Range<Data>, work: &Work<'_>) -> Result<(), Stop> {
         let (top, left) = range.start().unwrap_or((0, 0));
         for (row, column, data) in range.used_cells() {
-            let place = (top.saturating_add(row as u32), left.saturating_add(column as u32));
+            let place = (
+                top.saturating_add(row as u32),
+                left.saturating_add(column as u32),
+            );
             self.add(place, from_owned(data), work)?;
         }
         Ok(())
@@ -307,7 +321,8 @@ fn from_date(date: &ExcelDateTime) -> Stuff {
     let text = match date.as_datetime() {
         Some(time) if date.is_datetime() => {
             let text = time.to_string();
-            text.strip_suffix(" 00:00:00").map_or(text.clone(), str::to_owned)
+            text.strip_suffix(" 00:00:00")
+                .map_or(text.clone(), str::to_owned)
         }
         _ => plain(date.as_f64()),
     };

@@ -189,6 +189,15 @@ impl Paragraph {
         self
     }
 
+    /// The same paragraph with the pieces of another behind it.
+    #[must_use]
+    pub fn and(mut self, other: Self) -> Self {
+        for span in other.spans {
+            self = self.span(span);
+        }
+        self
+    }
+
     /// The same paragraph with more words.
     #[must_use]
     pub fn text(self, text: impl Into<String>) -> Self {
@@ -236,7 +245,14 @@ impl Paragraph {
     /// The same paragraph with one entry of a fact that is a table. An entry that the fact does
     /// not hold is marked as missing.
     #[must_use]
-    pub fn entry(self, cell: CellId, fact: &str, table: &FactTable, row: usize, name: &str) -> Self {
+    pub fn entry(
+        self,
+        cell: CellId,
+        fact: &str,
+        table: &FactTable,
+        row: usize,
+        name: &str,
+    ) -> Self {
         let span = match table.column(name) {
             Some(column) if row < column.values.len() => Span::Entry {
                 cell,

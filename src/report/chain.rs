@@ -68,7 +68,10 @@ impl<'a> Chain<'a> {
     pub fn outcome(&self) -> String {
         self.settings()
             .and_then(|data| data.outcome.as_ref())
-            .map_or_else(|| "the outcome".to_owned(), |outcome| outcome.column.clone())
+            .map_or_else(
+                || "the outcome".to_owned(),
+                |outcome| outcome.column.clone(),
+            )
     }
 }
 

@@ -30,7 +30,11 @@ impl Noun {
 #[must_use]
 pub fn sample(data: Option<&Data>) -> Noun {
     let named = data.and_then(|data| data.sample_name.as_deref());
-    Noun::new(&named.and_then(word_of).unwrap_or_else(|| "sample".to_owned()))
+    Noun::new(
+        &named
+            .and_then(word_of)
+            .unwrap_or_else(|| "sample".to_owned()),
+    )
 }
 
 /// What one unit is called; the word for a sample where samples are the units.
@@ -46,7 +50,11 @@ pub fn unit(data: Option<&Data>) -> Noun {
 #[must_use]
 pub fn batch(data: Option<&Data>) -> Noun {
     let named = data.and_then(|data| data.batch.as_deref());
-    Noun::new(&named.and_then(word_of).unwrap_or_else(|| "batch".to_owned()))
+    Noun::new(
+        &named
+            .and_then(word_of)
+            .unwrap_or_else(|| "batch".to_owned()),
+    )
 }
 
 /// The noun in a column's name, if the name is one that a sentence can hold: `wheel` in
@@ -159,7 +167,14 @@ mod tests {
 
     #[test]
     fn a_column_that_is_no_word_gives_the_plain_one() {
-        for column in ["V17", "id", "Nr.", "sample (lab)", "x", "the lot of one lot"] {
+        for column in [
+            "V17",
+            "id",
+            "Nr.",
+            "sample (lab)",
+            "x",
+            "the lot of one lot",
+        ] {
             assert_eq!(unit(Some(&with_unit(column))).one, "unit", "{column}");
         }
         assert_eq!(unit(None).one, "sample");

@@ -1,7 +1,7 @@
 //! Builds paragraphs from patterns: words, and facts in braces.
 
 use crate::base::number::Precision;
-use crate::eval::fact::{FactTable, Facts};
+use crate::eval::fact::{Fact, FactTable, Facts};
 use crate::report::block::{Paragraph, Span};
 use crate::study::cell::CellId;
 
@@ -87,6 +87,16 @@ impl<'a> Source<'a> {
         self.facts.value(name)
     }
 
+    /// The facts of this list that the cell gives, with a value that is known.
+    #[must_use]
+    pub fn given(&self, names: &[&str]) -> Vec<&'a Fact> {
+        names
+            .iter()
+            .filter(|name| self.value(name).is_some() || self.facts.words(name).is_some())
+            .filter_map(|name| self.facts.get(name))
+            .collect()
+    }
+
     /// Whether the fact is a number above zero.
     #[must_use]
     pub fn is_above_zero(&self, name: &str) -> bool {
@@ -154,7 +164,6 @@ pub fn without_results(title: &str) -> Paragraph {
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::eval::fact::Fact;
 
     #[test]
     fn a_pattern_binds_its_numbers_and_chooses_its_words() {
@@ -175,12 +184,10 @@ mod tests {
             "{samples} [scan was|scans were] of “‹0›”, ⟨1/(2n)⟩, {nested r²|%}, {units}.",
             &["W 12"],
         );
-        assert_eq!(
-            said.plain(),
-            "1 scan was of “W 12”, 1/(2n), 80 %, {units}."
-        );
+        assert_eq!(said.plain(), "1 scan was of “W 12”, 1/(2n), 80 %, {units}.");
         assert_eq!(said.missing(), ["units"]);
-        let digits = |span: &&Span| matches!(span, Span::Text(text) if text.contains(char::is_numeric));
+        let digits =
+            |span: &&Span| matches!(span, Span::Text(text) if text.contains(char::is_numeric));
         assert_eq!(said.spans.iter().find(digits), None);
     }
 

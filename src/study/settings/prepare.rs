@@ -62,7 +62,48 @@ pub enum Step {
     UnitVariance,
 }
 
+/// What a step needs to know, which decides where it may be learnt.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]
+pub enum StepClass {
+    /// The sample itself and nothing else.
+    RowByRow,
+    /// A reference that does not come from the study's samples.
+    FixedReference,
+    /// Samples: it is learnt in a training part and applied to any.
+    Learned,
+}
+
+impl StepClass {
+    /// The words for the class.
+    #[must_use]
+    pub const fn words(self) -> &'static str {
+        match self {
+            Self::RowByRow => "row-by-row",
+            Self::FixedReference => "fixed reference",
+            Self::Learned => "learned",
+        }
+    }
+}
+
 impl Step {
+    /// What the step needs to know.
+    #[must_use]
+    pub const fn class(&self) -> StepClass {
+        match self {
+            Self::Log { .. }
+            | Self::StandardNormalVariate
+            | Self::SavitzkyGolay { .. }
+            | Self::Detrend { .. } => StepClass::RowByRow,
+            Self::BelowLimit { .. } => StepClass::FixedReference,
+            Self::ScatterCorrection
+            | Self::MissingShareFilter { .. }
+            | Self::NearConstantFilter { .. }
+            | Self::MedianImputation
+            | Self::Center
+            | Self::UnitVariance => StepClass::Learned,
+        }
+    }
+
     /// The steps that can be added, each with its usual settings, in the order of the catalogue.
     #[must_use]
     pub fn catalogue() -> Vec<Self> {

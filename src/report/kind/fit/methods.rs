@@ -1,0 +1,400 @@
+//! How the fit was made, chosen and judged, for the write-up: enough for a stranger to repeat it.
+
+use crate::report::Context;
+use crate::report::block::Paragraph;
+use crate::report::chain::{Chain, questions_of};
+use crate::report::noun::{self, Noun};
+use crate::report::tell::{Source, Telling};
+use crate::study::settings::fit::{Fit, Judge, Penalty, Plan, Rule, Scaling, Scheme, Strength};
+use crate::study::settings::question::Ask;
+
+/// The paragraphs of the methods.
+#[must_use]
+pub fn methods(context: &Context<'_>, fit: &Fit, source: &Source<'_>) -> Vec<Paragraph> {
+    let chain = Chain::from(context, fit.input);
+    let unit = noun::unit(chain.settings());
+    let batch = noun::batch(chain.settings());
+    let mut telling = Telling::new();
+    model(&mut telling, fit, source, &chain, &unit);
+    choice(&mut telling, fit, source, &unit, &batch);
+    chosen(&mut telling, fit, source);
+    judged(&mut telling, fit, source, &unit, &batch);
+    if matches!(fit.judge, Judge::Nested(_)) {
+        performance(&mut telling, source, &unit);
+    }
+    solver(&mut telling, source);
+    selection(&mut telling, context, fit, source);
+    telling.done()
+}
+
+fn model(telling: &mut Telling, fit: &Fit, source: &Source<'_>, chain: &Chain<'_>, unit: &Noun) {
+    let outcome = chain.outcome();
+    let has_units = chain.settings().is_some_and(|data| data.unit.is_some());
+    let penalty = match &fit.penalty {
+        Penalty::Ridge => "A ridge regression (squared penalty)",
+        Penalty::Lasso => "A lasso (absolute penalty)",
+        Penalty::ElasticNet { .. } => "An elastic net (absolute and squared penalty)",
+    };
+    let of_units = if has_units {
+        format!(" of {{units}} [{}|{}]", unit.one, unit.many)
+    } else {
+        String::new()
+    };
+    telling.say(source.say(
+        &format!(
+            "{penalty} of “‹0›” on {{predictors}} [predictor|predictors] was fitted to {{samples}} \
+             [sample|samples]{of_units}."
+        ),
+        &[&outcome],
+    ));
+    let has_covariates = source.is_above_zero("covariates");
+    let loss = if has_covariates {
+        "1/(2n) · Σᵢ (yᵢ − b₀ − zᵢ·c − xᵢ·b)²"
+    } else {
+        "1/(2n) · Σᵢ (yᵢ − b₀ − xᵢ·b)²"
+    };
+    let formula = match &fit.penalty {
+        Penalty::Ridge => format!("{loss} + λ · Σⱼ bⱼ²/2"),
+        Penalty::Lasso => format!("{loss} + λ · Σⱼ |bⱼ|"),
+        Penalty::ElasticNet { .. } => {
+            format!("{loss} + λ · Σⱼ ( s·|bⱼ| + (1 − s)/2 · bⱼ² )")
+        }
+    };
+    telling.say(
+        Paragraph::of("The intercept and the coefficients minimise ")
+            .formula(formula)
+            .text(", where ")
+            .formula("n")
+            .text(" is the number of samples, ")
+            .formula("yᵢ")
+            .text(" the outcome of a sample, ")
+            .formula("xᵢ")
+            .text(" its predictors, ")
+            .formula("b₀")
+            .text(" the intercept, ")
+            .formula("bⱼ")
+            .text(" the coefficient of a predictor and ")
+            .formula("λ")
+            .text(" the penalty strength."),
+    );
+    if let Penalty::ElasticNet { shares } = &fit.penalty {
+        if shares.len() > 1 {
+            telling.say(source.say(
+                "The lasso share ⟨s⟩ was chosen together with the strength among {lasso shares \
+                 tried} values; {lasso share} was taken.",
+                &[],
+            ));
+        } else {
+            telling.say(source.say("The lasso share ⟨s⟩ was {lasso share}.", &[]));
+        }
+    }
+    telling.say(if has_covariates {
+        source.say(
+            "The intercept and the coefficients ⟨c⟩ of {covariates} [covariate|covariates] ⟨zᵢ⟩ \
+             were not penalised.",
+            &[],
+        )
+    } else {
+        Paragraph::of("The intercept was not penalised.")
+    });
+    telling.say(
+        match fit.scaling {
+            Scaling::UnitVariance => Paragraph::of(
+                "Each predictor was centred and divided by its standard deviation (divisor ",
+            )
+            .formula("n")
+            .text(") in the training part at hand; the outcome was not scaled."),
+            Scaling::AsPrepared => Paragraph::of(
+                "Each predictor was centred in the training part at hand and kept the scale on \
+                 which it arrived; the outcome was not scaled.",
+            ),
+        }
+        .text(" Coefficients are reported on the scale of the predictors as they entered."),
+    );
+    telling.end();
+}
+
+fn choice(telling: &mut Telling, fit: &Fit, source: &Source<'_>, unit: &Noun, batch: &Noun) {
+    let (rule, inner) = match &fit.strength {
+        Strength::ByHand(_) => {
+            telling.say(source.say(
+                "The penalty strength was set by hand to {chosen strength}.",
+                &[],
+            ));
+            scalings(telling, source);
+            telling.end();
+            return;
+        }
+        Strength::Chosen { rule, inner, .. } => (rule, *inner),
+    };
+    telling.say(source.say(
+        "{strengths tried} strengths were tried, evenly spaced on the logarithmic scale, from \
+         {strongest strength} down to {weakest strength}.",
+        &[],
+    ));
+    telling.say(match &fit.penalty {
+        Penalty::Ridge => Paragraph::of(
+            "For ridge regression the strongest was set from the spectrum of the predictors’ \
+             cross-products, so that the coefficients hardly differ from zero there.",
+        ),
+        Penalty::Lasso | Penalty::ElasticNet { .. } => Paragraph::of(
+            "The strongest was the all-zero point: the weakest strength at which every penalised \
+             coefficient is zero, found from all samples that the level may see.",
+        ),
+    });
+    if source.has("range extended") {
+        telling.say(source.say(
+            "The range was extended because the choice had fallen on its end: {range extended}.",
+            &[],
+        ));
+    }
+    if rule.needs_parts() {
+        telling.say(
+            source
+                .say("The strength was chosen by cross-validation with ", &[])
+                .and(plan(source, inner, unit, batch, "inner"))
+                .text("."),
+        );
+    }
+    telling.say(match rule {
+        Rule::LowestError => {
+            Paragraph::of("The strength with the lowest mean squared held-out error was taken.")
+        }
+        Rule::OneStandardError => Paragraph::of(
+            "The strongest penalty whose mean squared held-out error lay within one standard error \
+             of the lowest was taken (one-standard-error rule); the standard error is that of the \
+             mean over held-out parts.",
+        ),
+        Rule::GeneralisedCrossValidation => Paragraph::of(
+            "The strength with the lowest generalised cross-validation value was taken; this rule \
+             needs no held-out parts.",
+        ),
+        Rule::ExtendedBic { .. } => Paragraph::of(
+            "The strength with the lowest extended Bayesian information criterion was taken; this \
+             rule needs no held-out parts.",
+        ),
+    });
+    telling.end();
+}
+
+/// How samples came into parts.
+fn plan(source: &Source<'_>, plan: Plan, unit: &Noun, batch: &Noun, level: &str) -> Paragraph {
+    let drawn = if plan.repeats > 1 {
+        format!(", drawn anew {{{level} repeats}} times")
+    } else {
+        String::new()
+    };
+    let pattern = match plan.scheme {
+        Scheme::Units => format!(
+            "{{{level} parts}} {level} parts of whole {} at random{drawn}",
+            unit.many
+        ),
+        Scheme::Balanced => format!(
+            "{{{level} parts}} {level} parts of whole {} at random, balanced by the outcome{drawn}",
+            unit.many
+        ),
+        Scheme::WholeBatches => format!(
+            "{{{level} parts}} {level} parts, each of them one whole {}",
+            batch.one
+        ),
+        Scheme::LeaveOneUnitOut => format!(
+            "{{{level} parts}} {level} parts, each of them one {}",
+            unit.one
+        ),
+        Scheme::Blocks => format!(
+            "{{{level} parts}} {level} parts of {} that follow each other in order of measurement",
+            unit.many
+        ),
+    };
+    source.say(&pattern, &[])
+}
+
+fn scalings(telling: &mut Telling, source: &Source<'_>) {
+    telling.say(source.say(
+        "In other scalings of the objective this is ⟨nλ⟩ = {strength times n} (loss ⟨½ Σ⟩), \
+         ⟨2nλ⟩ = {strength times 2n} (loss ⟨Σ⟩) and ⟨1/(nλ)⟩ = {inverse strength} (inverse form).",
+        &[],
+    ));
+}
+
+fn chosen(telling: &mut Telling, fit: &Fit, source: &Source<'_>) {
+    if matches!(fit.strength, Strength::ByHand(_)) {
+        return;
+    }
+    telling.say(source.say(
+        "With all samples the chosen strength was {chosen strength}, number {strength position} \
+         of those tried, counted from the strongest.",
+        &[],
+    ));
+    scalings(telling, source);
+    if source.facts.words("strength at edge") == Some("yes") {
+        telling.say(Paragraph::of(
+            "It lay at the end of the range tried, so that a better one may lie outside.",
+        ));
+    }
+    if matches!(fit.judge, Judge::Nested(_)) {
+        telling.say(source.say(
+            "Over the outer training parts the chosen strength had the median {outer strength \
+             median} and the quartiles {outer strength lower quartile} and {outer strength upper \
+             quartile}.",
+            &[],
+        ));
+    }
+    telling.end();
+}
+
+fn judged(telling: &mut Telling, fit: &Fit, source: &Source<'_>, unit: &Noun, batch: &Noun) {
+    let Judge::Nested(outer) = fit.judge else {
+        telling.say(Paragraph::of(
+            "The procedure was not judged on samples that it had not seen. The error that chose \
+             the strength flatters the model and is not given as its performance.",
+        ));
+        seed(telling, source);
+        telling.end();
+        return;
+    };
+    telling.say(
+        source
+            .say(
+                "The whole procedure, choice of strength included, was judged by nested \
+                 cross-validation with ",
+                &[],
+            )
+            .and(plan(source, outer, unit, batch, "outer"))
+            .text("."),
+    );
+    telling.say(Paragraph::of(format!(
+        "No {} was divided between a training part and its held-out part at either level.",
+        unit.one
+    )));
+    // The claim is made only where the run-time check has found nothing against it.
+    let holds = source.value("proof violations") == Some(0.0)
+        && source.facts.words("judged") == Some("nested cross-validation");
+    if holds {
+        telling.say(source.say(
+            "All learned steps and the choice of strength were repeated within each outer training \
+             part; a check at run time of {learned steps checked} learned [step|steps] in {fits \
+             checked} [fit|fits] found none that had been learnt from a held-out sample.",
+            &[],
+        ));
+    }
+    seed(telling, source);
+    telling.end();
+}
+
+fn seed(telling: &mut Telling, source: &Source<'_>) {
+    telling.say(source.say(
+        "Everything that was drawn at random followed from the seed {seed}; the assignment of \
+         samples to parts is kept in the study.",
+        &[],
+    ));
+}
+
+fn performance(telling: &mut Telling, source: &Source<'_>, unit: &Noun) {
+    telling.say(source.say(
+        "On held-out samples the root mean squared error was {nested rmse} (standard deviation over \
+         repeats {nested rmse spread}) and the mean absolute error {nested mae}.",
+        &[],
+    ));
+    telling.say(source.say(
+        "⟨R²⟩ was {nested r²}, defined as ⟨1 − SSE/SST⟩, the squared errors of held-out predictions \
+         over the squared deviations of the outcome from its mean.",
+        &[],
+    ));
+    if source.has("nested rmse low") && source.has("nested rmse high") {
+        telling.say(source.say(
+            &format!(
+                "The interval for the root mean squared error, over {}, runs from {{nested rmse \
+                 low}} to {{nested rmse high}}",
+                unit.many
+            ),
+            &[],
+        )
+        .and(if source.has("nested r² low") && source.has("nested r² high") {
+            source.say(", that for ⟨R²⟩ from {nested r² low} to {nested r² high}", &[])
+        } else {
+            Paragraph::new()
+        })
+        .text(
+            "; it describes the procedure on samples of this number, not the final fitted model \
+             itself.",
+        ));
+    }
+    if source.has("nested slope") {
+        telling.say(source.say(
+            "The slope of observed on predicted values was {nested slope}, the average difference \
+             (predicted minus observed) {nested bias}.",
+            &[],
+        ));
+    }
+    telling.say(source.say(
+        "Predicting the mean of the training part for every sample gave an error of {mean-only \
+         rmse} in the same parts.",
+        &[],
+    ));
+    if source.has("improvement low") && source.has("improvement high") {
+        telling.say(source.say(
+            "The squared error of the fit was lower by {improvement over the mean} (paired \
+             interval from {improvement low} to {improvement high}).",
+            &[],
+        ));
+    }
+    telling.say(source.say(
+        "On its own training samples the final fit reached an apparent ⟨R²⟩ of {apparent r²}; the \
+         optimism (apparent minus nested) was {optimism}.",
+        &[],
+    ));
+    telling.end();
+}
+
+fn solver(telling: &mut Telling, source: &Source<'_>) {
+    telling.say(source.say(
+        "Every solution carries a certificate, a bound on how far its objective can lie above the \
+         lowest possible one: the worst of {solutions} solutions was {worst gap}, with {solver \
+         tolerance} asked for.",
+        &[],
+    ));
+    if source.is_above_zero("unsettled solutions") {
+        telling.say(source.say(
+            "{unsettled solutions} [solution|solutions] had not settled to that.",
+            &[],
+        ));
+    }
+    telling.end();
+}
+
+fn selection(telling: &mut Telling, context: &Context<'_>, fit: &Fit, source: &Source<'_>) {
+    if matches!(fit.penalty, Penalty::Ridge) {
+        telling.say(source.say(
+            "Ridge regression keeps every predictor; at the chosen strength the model had \
+             {effective degrees of freedom} effective degrees of freedom.",
+            &[],
+        ));
+        telling.end();
+        return;
+    }
+    telling.say(source.say(
+        "The final fit chose {chosen predictors} [predictor|predictors].",
+        &[],
+    ));
+    if matches!(fit.judge, Judge::Nested(_)) {
+        telling.say(source.say(
+            "Over the outer training parts the number chosen had the median {chosen predictors \
+             outer median} and lay between {chosen predictors outer least} and {chosen predictors \
+             outer most}.",
+            &[],
+        ));
+    }
+    if !is_asked_again(context, source) {
+        telling.say(Paragraph::of(
+            "How often these predictors would be chosen again was not examined.",
+        ));
+    }
+    telling.end();
+}
+
+/// Whether a question asks if the same predictors would be chosen again.
+fn is_asked_again(context: &Context<'_>, source: &Source<'_>) -> bool {
+    questions_of(context, source.cell)
+        .any(|(_, question)| matches!(question.ask, Ask::ChosenAgain { .. }))
+}

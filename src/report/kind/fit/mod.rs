@@ -1,0 +1,272 @@
+//! What a Fit cell has to say.
+
+pub mod answer;
+pub mod methods;
+
+use crate::report::Context;
+use crate::report::chain::Chain;
+use crate::report::noun::{self, Noun};
+use crate::report::sentence::{Editor, Sentence};
+use crate::report::word;
+use crate::study::settings::data::Data;
+use crate::study::settings::fit::{Fit, Judge, Penalty, Plan, Rule, Scaling, Scheme, Strength};
+use crate::study::settings::slot::Slot;
+use crate::study::settings::slot::fit::FitSlot;
+
+const PENALTIES: [(&str, &str); 3] = [
+    ("ridge", "ridge regression"),
+    ("lasso", "lasso"),
+    ("elastic-net", "elastic net"),
+];
+const SCALINGS: [(&str, &str); 2] = [
+    (
+        "unit-variance",
+        "predictors divided by their standard deviation",
+    ),
+    (
+        "as-prepared",
+        "predictors on the scale on which they arrive",
+    ),
+];
+const WAYS: [(&str, &str); 5] = [
+    ("lowest-error", "lowest error"),
+    (
+        "one-se",
+        "strongest penalty within one standard error of the lowest error",
+    ),
+    ("gcv", "lowest generalised cross-validation value"),
+    ("ebic", "lowest extended Bayesian information criterion"),
+    ("by-hand", "by hand"),
+];
+const JUDGINGS: [(&str, &str); 2] = [("nested", "Judge"), ("not-judged", "Do not judge")];
+
+/// The words of the study that sentences about a fit need.
+struct Words {
+    unit: Noun,
+    batch: Noun,
+}
+
+impl Words {
+    fn of(data: Option<&Data>) -> Self {
+        Self {
+            unit: noun::unit(data),
+            batch: noun::batch(data),
+        }
+    }
+
+    /// The labels of the schemes, in the study's own words.
+    fn schemes(&self) -> [(&'static str, String); 5] {
+        [
+            ("units", "parts".to_owned()),
+            ("balanced", "balanced parts".to_owned()),
+            (
+                "whole-batches",
+                format!("holding out whole {} in turn", self.batch.many),
+            ),
+            (
+                "leave-one-unit-out",
+                format!("leaving out one {} at a time", self.unit.one),
+            ),
+            ("blocks", "blocks in order of measurement".to_owned()),
+        ]
+    }
+}
+
+/// The settings as sentences, in the present tense.
+#[must_use]
+pub fn sentences(context: &Context<'_>, fit: &Fit) -> Vec<Sentence> {
+    let chain = Chain::from(context, fit.input);
+    let words = Words::of(chain.settings());
+    let mut sentences = vec![
+        model(context, fit, &chain.outcome()),
+        strength(fit, &words),
+        judge(fit, &words),
+        Sentence::new()
+            .text("Seed ")
+            .whole(Slot::Fit(FitSlot::Seed), fit.seed)
+            .text("."),
+        scaling(fit),
+    ];
+    if let Strength::Chosen { range, .. } = fit.strength {
+        let sentence = Sentence::new()
+            .text("The weakest strength tried is ")
+            .optional_real(Slot::Fit(FitSlot::Ratio), range.ratio, "the usual share")
+            .text(match range.ratio {
+                Some(_) => " times the strongest.",
+                None => " of the strongest.",
+            });
+        sentences.push(sentence.detail());
+    }
+    sentences
+}
+
+fn model(context: &Context<'_>, fit: &Fit, outcome: &str) -> Sentence {
+    let slot = Slot::Fit(FitSlot::Penalty);
+    let sentence = match &fit.penalty {
+        Penalty::Ridge => {
+            Sentence::new()
+                .text("Fit a ")
+                .choice(slot, "ridge regression", &PENALTIES)
+        }
+        Penalty::Lasso => Sentence::new()
+            .text("Fit a ")
+            .choice(slot, "lasso", &PENALTIES),
+        Penalty::ElasticNet { shares } => {
+            let texts: Vec<String> = shares.iter().map(|share| word::real(*share)).collect();
+            let before = if shares.len() == 1 {
+                " with the lasso share "
+            } else {
+                " with the best of the lasso shares "
+            };
+            Sentence::new()
+                .text("Fit an ")
+                .choice(slot, "elastic net", &PENALTIES)
+                .text(before)
+                .word(Slot::Fit(FitSlot::Shares), noun::list(&texts), Editor::List)
+        }
+    };
+    sentence
+        .text(format!(" of {outcome} on "))
+        .cell(
+            Slot::Fit(FitSlot::Input),
+            word::cell(context, fit.input, "samples still to be chosen"),
+            &word::SAMPLES,
+        )
+        .text(".")
+}
+
+fn strength(fit: &Fit, words: &Words) -> Sentence {
+    let choice = Slot::Fit(FitSlot::Choice);
+    let (rule, range, inner) = match &fit.strength {
+        Strength::ByHand(strength) => {
+            return Sentence::new()
+                .text("Set the penalty strength ")
+                .choice(choice, "by hand", &WAYS)
+                .text(" to ")
+                .real(Slot::Fit(FitSlot::Strength), *strength)
+                .text(".");
+        }
+        Strength::Chosen { rule, range, inner } => (*rule, *range, *inner),
+    };
+    let sentence = Sentence::new()
+        .text("Choose the penalty strength among ")
+        .whole(Slot::Fit(FitSlot::Count), u64::from(range.count))
+        .text(" values by ");
+    let parts = |sentence: Sentence| {
+        let slots = [
+            FitSlot::InnerScheme,
+            FitSlot::InnerParts,
+            FitSlot::InnerRepeats,
+        ];
+        plan(sentence, inner, words, "", slots)
+    };
+    match rule {
+        Rule::LowestError => {
+            parts(sentence)
+                .text(", taking the ")
+                .choice(choice, "lowest error", &WAYS)
+        }
+        Rule::OneStandardError => parts(sentence).text(", taking the ").choice(
+            choice,
+            "strongest penalty within one standard error of the lowest error",
+            &WAYS,
+        ),
+        Rule::GeneralisedCrossValidation => {
+            sentence
+                .text("the ")
+                .choice(choice, "lowest generalised cross-validation value", &WAYS)
+        }
+        Rule::ExtendedBic { gamma } => sentence
+            .text("the ")
+            .choice(
+                choice,
+                "lowest extended Bayesian information criterion",
+                &WAYS,
+            )
+            .text(", with the weight ")
+            .real(Slot::Fit(FitSlot::Gamma), gamma)
+            .text(" for the number of possible models"),
+    }
+    .text(".")
+}
+
+/// “**10** **parts**, repeated **5** times”, or the words of a scheme that fixes its parts.
+fn plan(
+    sentence: Sentence,
+    plan: Plan,
+    words: &Words,
+    level: &str,
+    [scheme, parts, repeats]: [FitSlot; 3],
+) -> Sentence {
+    let schemes = words.schemes();
+    let labels: Vec<(&str, &str)> = schemes
+        .iter()
+        .map(|(name, label)| (*name, label.as_str()))
+        .collect();
+    let text = labels[match plan.scheme {
+        Scheme::Units => 0,
+        Scheme::Balanced => 1,
+        Scheme::WholeBatches => 2,
+        Scheme::LeaveOneUnitOut => 3,
+        Scheme::Blocks => 4,
+    }]
+    .1;
+    let mut sentence = sentence;
+    if plan.scheme.takes_parts() {
+        sentence = sentence
+            .whole(Slot::Fit(parts), u64::from(plan.parts))
+            .text(format!(" {level}"));
+    }
+    sentence = sentence.choice(Slot::Fit(scheme), text, &labels);
+    if !plan.scheme.is_drawn() {
+        return sentence;
+    }
+    let slot = Slot::Fit(repeats);
+    if plan.repeats == 1 {
+        sentence
+            .text(", drawn ")
+            .word(slot, "once", word::number_editor(slot))
+    } else {
+        sentence
+            .text(", repeated ")
+            .whole(slot, u64::from(plan.repeats))
+            .text(" times")
+    }
+}
+
+fn judge(fit: &Fit, words: &Words) -> Sentence {
+    let slot = Slot::Fit(FitSlot::Judge);
+    match fit.judge {
+        Judge::Declined => Sentence::new()
+            .choice(slot, "Do not judge", &JUDGINGS)
+            .text(" the procedure on samples that it has not seen."),
+        Judge::Nested(outer) => {
+            let sentence = Sentence::new()
+                .choice(slot, "Judge", &JUDGINGS)
+                .text(" the whole procedure ")
+                .text(if outer.scheme.takes_parts() {
+                    "on "
+                } else {
+                    "by "
+                });
+            let slots = [
+                FitSlot::OuterScheme,
+                FitSlot::OuterParts,
+                FitSlot::OuterRepeats,
+            ];
+            plan(sentence, outer, words, "outer ", slots).text(".")
+        }
+    }
+}
+
+fn scaling(fit: &Fit) -> Sentence {
+    let text = match fit.scaling {
+        Scaling::UnitVariance => "predictors divided by their standard deviation",
+        Scaling::AsPrepared => "predictors on the scale on which they arrive",
+    };
+    Sentence::new()
+        .text("The penalty acts on ")
+        .choice(Slot::Fit(FitSlot::Scaling), text, &SCALINGS)
+        .text(".")
+        .detail()
+}

@@ -11,6 +11,7 @@ use crate::study::settings::data::TableSource;
 use crate::study::source::{Shelf, SourceId};
 use std::cell::RefCell;
 use std::collections::BTreeMap;
+use std::collections::btree_map::Entry;
 use std::path::{Component, Path, PathBuf};
 
 /// Opens a study in its readable form. Tables are looked for from the folder of `path`.
@@ -119,9 +120,8 @@ pub fn save(path: &Path, study: &Study, shelf: &Shelf, ledger: &Ledger) -> Resul
     let mut names = BTreeMap::new();
     for table in tables(study) {
         let key = (table.source.clone(), table.file.clone());
-        if !names.contains_key(&key) {
-            let name = name(table, shelf, path)?;
-            let _ = names.insert(key, name);
+        if let Entry::Vacant(place) = names.entry(key) {
+            let _ = place.insert(name(table, shelf, path)?);
         }
     }
     let name = |table: &TableSource| {

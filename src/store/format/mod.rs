@@ -17,6 +17,9 @@ pub const NEWEST: u64 = 1;
 /// The program that writes.
 pub const PROGRAM: &str = concat!("widefold ", env!("CARGO_PKG_VERSION"));
 
+/// Finds a table: from the name and the hash in a file to its bytes' name and its file's name.
+pub type FindTable<'a> = dyn Fn(&str, Option<SourceId>) -> (SourceId, String) + 'a;
+
 /// A study as it was read, with what was found on the way.
 #[derive(Debug)]
 pub struct Read {
@@ -33,11 +36,7 @@ pub struct Read {
 ///
 /// # Errors
 /// A [`Problem`] when the bytes are no study, or one of a newer format.
-pub fn read(
-    bytes: &[u8],
-    file: &str,
-    table: &dyn Fn(&str, Option<SourceId>) -> (SourceId, String),
-) -> Result<Read, Problem> {
+pub fn read(bytes: &[u8], file: &str, table: &FindTable<'_>) -> Result<Read, Problem> {
     let value = json(bytes, file)?;
     match version(&value, file)? {
         1 => v1::study::read(&value, file, table),

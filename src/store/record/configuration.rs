@@ -8,6 +8,7 @@ use crate::study::settings::data::TableSource;
 use crate::study::source;
 use serde_json::Value;
 use std::collections::BTreeMap;
+use std::collections::btree_map::Entry;
 
 /// The configuration of one cell and of all that it draws on.
 #[derive(Clone, Debug, PartialEq)]
@@ -48,8 +49,8 @@ pub fn configuration(study: &Study, id: CellId) -> Option<Configuration> {
             if parts.iter().all(|(known, _)| *known != fingerprint) {
                 parts.push((fingerprint, part));
             }
-        } else if !described.contains_key(&at) {
-            let _ = described.insert(at, Described::Begun);
+        } else if let Entry::Vacant(place) = described.entry(at) {
+            let _ = place.insert(Described::Begun);
             open.push((at, true));
             let upstream = cell.settings.draws_on().into_iter().rev();
             open.extend(upstream.map(|id| (id, false)));

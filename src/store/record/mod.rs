@@ -4,9 +4,7 @@ pub mod configuration;
 mod written;
 
 use crate::base::problem::{Place, Problem};
-use crate::eval::caveat::Caveat;
-use crate::eval::fact::Facts;
-use crate::eval::outcome::{Failure, Gives, Outcome, Remedy, Verdict};
+use crate::eval::outcome::{Failure, Gives, Outcome, Remedy};
 use crate::eval::standing::{Standing, Standings, State};
 use crate::store::format::place::{At, Notes};
 use crate::store::format::v1::{
@@ -49,14 +47,20 @@ pub struct Entry {
     /// What it was made from, by fingerprint; the cell itself is last.
     made_from: Map<String, Value>,
     /// What came of it.
-    verdict: Verdict,
+    verdict: Result<Arc<Outcome>, Arc<Failure>>,
 }
 
 impl Entry {
-    /// What came of the cell.
+    /// What the cell gave: facts and caveats, and nothing to compute with.
     #[must_use]
-    pub fn verdict(&self) -> &Verdict {
-        &self.verdict
+    pub fn outcome(&self) -> Option<&Arc<Outcome>> {
+        self.verdict.as_ref().ok()
+    }
+
+    /// Why the cell gave nothing.
+    #[must_use]
+    pub fn failure(&self) -> Option<&Arc<Failure>> {
+        self.verdict.as_ref().err()
     }
 }
 
@@ -76,8 +80,8 @@ impl Record {
             let old = self.entries.get(&cell.id);
             let standing = standings.get(cell.id);
             let verdict = match standing.state {
-                State::Current => standing.outcome.map(|outcome| Ok((*outcome).clone())),
-                State::Failed => standing.failure.map(|failure| Err((*failure).clone())),
+                State::Current => standing.outcome.map(Ok),
+                State::Failed => standing.failure.map(Err),
                 State::Due | State::Working(_) | State::Waiting | State::Stopped => None,
             };
             // A stand-in's own text is no result of the cell it stands for.
@@ -91,7 +95,7 @@ impl Record {
                 }
                 continue;
             };
-            let is_on_record = |outcome: &Outcome| matches!(outcome.gives, Gives::OnRecord);
+            let is_on_record = |outcome: &Arc<Outcome>| matches!(outcome.gives, Gives::OnRecord);
             if let Some(old) = old
                 && old.fingerprint == made.fingerprint
                 && verdict.as_ref().is_ok_and(is_on_record)
@@ -104,7 +108,7 @@ impl Record {
                 program: PROGRAM.to_owned(),
                 fingerprint: made.fingerprint,
                 made_from: made.parts.into_iter().collect(),
-                verdict: verdict.map(on_record),
+                verdict: verdict.map(|outcome| on_record(&outcome)),
             };
             let _ = entries.insert(cell.id, Arc::new(entry));
         }
@@ -128,7 +132,8 @@ impl Record {
     /// and caveats, and gives nothing to compute with.
     #[must_use]
     pub fn outcome_if_agrees(&self, study: &Study, id: CellId) -> Option<Outcome> {
-        self.agreeing(study, id)?.verdict.clone().ok()
+        let outcome = self.agreeing(study, id)?.outcome()?;
+        Some(Outcome::clone(outcome))
     }
 
     /// How the cells of a study stand when it has just been opened: recorded results that agree
@@ -149,8 +154,8 @@ impl Record {
             };
             let standing = Standing {
                 state,
-                outcome: outcome.cloned().map(Arc::new),
-                failure: failure.cloned().map(Arc::new),
+                outcome: outcome.cloned(),
+                failure: failure.cloned(),
             };
             standings.put(*id, standing);
         }
@@ -209,10 +214,14 @@ fn file_name(id: CellId) -> String {
 }
 
 /// What is kept of an outcome: what it publishes, and not what others compute with.
-fn on_record(outcome: Outcome) -> Outcome {
-    Outcome {
-        gives: Gives::OnRecord,
-        ..outcome
+fn on_record(outcome: &Arc<Outcome>) -> Arc<Outcome> {
+    match outcome.gives {
+        Gives::OnRecord => Arc::clone(outcome),
+        Gives::Facts | Gives::Data(_) | Gives::Prepared(_) | Gives::Fit(_) => Arc::new(Outcome {
+            gives: Gives::OnRecord,
+            facts: outcome.facts.clone(),
+            caveats: outcome.caveats.clone(),
+        }),
     }
 }
 
@@ -242,18 +251,18 @@ fn read(bytes: &[u8]) -> Result<Entry, String> {
     if written.format != NEWEST {
         return Err(format!("It is of format {}.", written.format));
     }
-    let verdict: Option<(Facts, Vec<Caveat>)>;
-    let verdict: Verdict = match (written.outcome, written.failure) {
+    let verdict = match (written.outcome, written.failure) {
         (Some(outcome), None) => {
-            verdict = outcome.read();
-            let (facts, caveats) = verdict.ok_or("A fact or a caveat has a word unknown here.")?;
-            Ok(Outcome {
+            let (facts, caveats) = outcome
+                .read()
+                .ok_or("A fact or a caveat has a word unknown here.")?;
+            Ok(Arc::new(Outcome {
                 gives: Gives::OnRecord,
                 facts,
                 caveats,
-            })
+            }))
         }
-        (None, Some(failure)) => Err(read_failure(failure)),
+        (None, Some(failure)) => Err(Arc::new(read_failure(failure))),
         _ => return Err("It holds neither an outcome nor a failure, or both.".to_owned()),
     };
     Ok(Entry {

@@ -10,6 +10,7 @@ pub mod question;
 pub mod study;
 pub mod words;
 
+use crate::store::format::FindTable;
 use crate::store::format::place::{At, Fault, Fields};
 use crate::study::cell::{CellId, Kind};
 use crate::study::link::Link;
@@ -17,7 +18,6 @@ use crate::study::settings::Settings;
 use crate::study::settings::compare::Compare;
 use crate::study::settings::data::TableSource;
 use crate::study::settings::score::Score;
-use crate::study::source::SourceId;
 use serde_json::Value;
 
 pub use crate::store::format::v1::group::Group;
@@ -31,7 +31,7 @@ pub struct Reading<'a> {
     /// The cell with a title.
     pub titled: &'a dyn Fn(&str) -> Option<CellId>,
     /// The bytes and the file name of a table, from the name and the hash in the file.
-    pub table: &'a dyn Fn(&str, Option<SourceId>) -> (SourceId, String),
+    pub table: &'a FindTable<'a>,
 }
 
 /// What settings need to know to be written.

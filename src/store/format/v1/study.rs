@@ -1,12 +1,12 @@
 //! A whole study in format 1: title, cells, ledger.
 
 use crate::base::problem::{Place, Problem};
-use crate::store::format::Read;
 use crate::store::format::place::{At, Fault, Fields, Notes, way};
 use crate::store::format::v1::kept::{Positions, put_back};
 use crate::store::format::v1::{
     Group, Reading, Writing, kind_of, kind_word, read_settings, write_settings,
 };
+use crate::store::format::{FindTable, Read};
 use crate::study::Study;
 use crate::study::cell::{Cell, CellId, Kind};
 use crate::study::kept::{Kept, KeptCell, KeptField, Step};
@@ -28,11 +28,7 @@ const LEDGER: &str = "ledger";
 ///
 /// # Errors
 /// A [`Problem`] when there is no list of cells.
-pub fn read(
-    value: &Value,
-    file: &str,
-    table: &dyn Fn(&str, Option<SourceId>) -> (SourceId, String),
-) -> Result<Read, Problem> {
+pub fn read(value: &Value, file: &str, table: &FindTable<'_>) -> Result<Read, Problem> {
     let refusal = |fault: Fault| {
         problem("not-a-study", file, &fault)
             .mend("Choose a study: a file that ends in .widefold, or its readable form in .json.")

@@ -1,5 +1,6 @@
 //! Floor 4: studies on disk: the packed form, the readable form, what is recorded, what is rescued.
 
+mod acts;
 pub mod archive;
 pub mod bare;
 mod disk;
@@ -10,14 +11,15 @@ pub mod record;
 pub mod rescue;
 
 use crate::base::problem::{Place, Problem};
-use crate::store::record::Record;
 use crate::study::Study;
 use crate::study::ledger::Ledger;
 use crate::study::settings::data::TableSource;
 use crate::study::source::Shelf;
 use std::path::Path;
 
-pub use crate::store::record::fingerprint;
+pub use crate::store::acts::note_acts;
+pub use crate::store::disk::replace;
+pub use crate::store::record::{Record, fingerprint};
 
 /// The form of a study on disk.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -122,6 +124,15 @@ pub fn save(
             disk::replace(path, &bytes)
         }
     }
+}
+
+/// The bytes of a file.
+///
+/// # Errors
+/// A [`Problem`] when the file could not be read, or has no end, as a device has none.
+pub fn read_file(path: &Path) -> Result<Vec<u8>, Problem> {
+    let what = format!("“{}”", disk::name_of(path));
+    disk::read(path).map_err(|error| disk::not_read(path, &what, &error))
 }
 
 /// Puts the bytes of a table's file on the shelf and returns the table, with every interpretation

@@ -125,12 +125,22 @@ impl Rescue {
         (left, problems)
     }
 
-    /// Opens unsaved work.
+    /// Opens unsaved work. Where the study's own file still names its tables by path, they are
+    /// known by these paths again.
     ///
     /// # Errors
     /// As [`crate::store::open`].
     pub fn open(&self, rescued: &Rescued) -> Result<Opened, Problem> {
-        crate::store::open(&rescued.file)
+        let mut opened = crate::store::open(&rescued.file)?;
+        let original = rescued.original.as_ref();
+        if let Some(Ok(original)) = original.map(|path| crate::store::open(path)) {
+            for table in packed::tables(&original.study) {
+                if let Some(path) = original.shelf.origin(&table.source, &table.file) {
+                    opened.shelf.came_from(&table.source, &table.file, path);
+                }
+            }
+        }
+        Ok(opened)
     }
 
     fn file_of(&self, session: &str) -> PathBuf {

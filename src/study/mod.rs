@@ -60,16 +60,18 @@ impl Study {
         let above = cells.iter().map(|cell| cell.id.number().saturating_add(1));
         let mut study = Self::new(title);
         study.next_id = above.max().unwrap_or(1).max(next_id).max(1);
-        let mut used = BTreeSet::new();
+        let mut ids = BTreeSet::new();
+        let mut titles = BTreeSet::new();
         for mut cell in cells {
-            if !used.insert(cell.id) {
+            if !ids.insert(cell.id) {
                 cell.id = study.next_id();
                 study.next_id = study.next_id.saturating_add(1);
-                let _ = used.insert(cell.id);
+                let _ = ids.insert(cell.id);
             }
             let wish = lawful_title(&cell.title)
                 .unwrap_or_else(|_| cell.settings.kind().name().to_owned());
-            cell.title = study.free_title(&wish);
+            cell.title = numbered(&wish, |title| !titles.contains(&folded(title)));
+            let _ = titles.insert(folded(&cell.title));
             study.cells.push(cell);
         }
         study
@@ -115,10 +117,6 @@ impl Study {
     /// The cell with this title; extra blanks and case do not count.
     #[must_use]
     pub fn titled(&self, title: &str) -> Option<&Cell> {
-        let folded = |title: &str| {
-            let words: Vec<_> = title.split_whitespace().collect();
-            words.join(" ").to_lowercase()
-        };
         let wanted = folded(title);
         self.cells.iter().find(|cell| folded(&cell.title) == wanted)
     }
@@ -133,17 +131,7 @@ impl Study {
     #[must_use]
     pub fn free_title(&self, wish: &str) -> String {
         let wish = lawful_title(wish).unwrap_or_else(|_| "Cell".to_owned());
-        if self.titled(&wish).is_none() {
-            return wish;
-        }
-        let mut number = 2;
-        loop {
-            let title = format!("{wish} {number}");
-            if self.titled(&title).is_none() {
-                return title;
-            }
-            number += 1;
-        }
+        numbered(&wish, |title| self.titled(title).is_none())
     }
 
     /// All cells that draw on `id`, directly or through others, in reading order.
@@ -166,4 +154,21 @@ impl Study {
             .map(|cell| cell.id)
             .collect()
     }
+}
+
+/// A title as it is compared with others.
+fn folded(title: &str) -> String {
+    let words: Vec<_> = title.split_whitespace().collect();
+    words.join(" ").to_lowercase()
+}
+
+/// The wish itself, or the wish and the first number, from 2 on, that makes it free.
+fn numbered(wish: &str, is_free: impl Fn(&str) -> bool) -> String {
+    if is_free(wish) {
+        return wish.to_owned();
+    }
+    (2_u64..)
+        .map(|number| format!("{wish} {number}"))
+        .find(|title| is_free(title))
+        .expect("some number is free")
 }

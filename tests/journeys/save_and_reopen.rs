@@ -2,7 +2,7 @@
 
 use crate::support::{Desk, Dice, Folder, any_desk, any_facts, current, get, put};
 use std::path::{Path, PathBuf};
-use widefold::eval::standing::{Standings, State};
+use widefold::eval::standing::{Standing, Standings, State};
 use widefold::store::preferences::{Preferences, Theme};
 use widefold::store::record::Record;
 use widefold::store::rescue::{Rescue, Session};
@@ -14,10 +14,10 @@ use widefold::study::history::History;
 use widefold::study::ledger::Ledger;
 use widefold::study::link::Link;
 use widefold::study::settings::Settings;
-use widefold::study::settings::data::{Data, TableSource};
+use widefold::study::settings::data::{Data, Sealed, TableSource};
 use widefold::study::settings::fit::{Fit, Penalty};
 use widefold::study::settings::prepare::Prepare;
-use widefold::study::settings::question::{Ask, Question};
+use widefold::study::settings::question::{Ask, Question, Seal};
 use widefold::study::source::Shelf;
 
 fn save(path: &Path, desk: &Desk) -> Record {
@@ -264,6 +264,7 @@ fn recorded_results_are_current_until_something_they_were_made_from_changes() {
         mut study, record, ..
     } = store::open(&path).unwrap();
     assert_eq!(states(&record, &study), [State::Current; 4]);
+    assert_eq!(record.outcomes(&study).len(), 4);
     let outcome = record.outcome_if_agrees(&study, fit).unwrap();
     let facts = desk.standings.get(fit).outcome.unwrap().facts.clone();
     assert_eq!(format!("{:?}", outcome.facts), format!("{facts:?}"));
@@ -299,6 +300,7 @@ fn recorded_results_are_current_until_something_they_were_made_from_changes() {
     assert!(record.outcome_if_agrees(&study, fit).is_none());
     assert!(record.outcome_if_agrees(&study, question).is_none());
     assert!(record.outcome_if_agrees(&study, prepare).is_some());
+    assert_eq!(record.outcomes(&study).len(), 2);
     // The old result is still shown, as due.
     assert!(record.standings(&study).get(fit).outcome.is_some());
     let _ = study.apply(back.unwrap()).unwrap();
@@ -310,11 +312,8 @@ fn the_record_of_a_cell_that_is_due_stays_in_the_file() {
     let folder = Folder::new();
     let (mut desk, [_, prepare, fit, question]) = line(&folder);
     let record = Record::from(&desk.study, &desk.standings);
-    let _ = desk
-        .study
-        .apply(Edit::Remove { id: prepare })
-        .map(drop)
-        .unwrap();
+    let removed = desk.study.apply(Edit::Remove { id: prepare });
+    assert!(removed.is_ok());
     let mut standings = record.standings(&desk.study);
     assert_eq!(standings.get(fit).state, State::Due);
     standings.put(fit, current(any_facts(&mut Dice(99)), Vec::new()));
@@ -383,6 +382,51 @@ fn a_fingerprint_is_that_of_the_configuration_and_not_of_names_and_places() {
     assert_ne!(ids[0], data);
     let others: Vec<_> = ids.iter().map(|id| fingerprint(&other, *id)).collect();
     assert_eq!(others, all);
+}
+
+#[test]
+fn looks_and_openings_are_counted_once_for_each_configuration() {
+    let folder = Folder::new();
+    let (mut desk, [data, prepare, fit, question]) = line(&folder);
+    let configure = |study: &mut Study, id, settings| {
+        let _ = study.apply(Edit::Configure { id, settings }).unwrap();
+    };
+    let ask = |seal| {
+        Settings::Question(Question {
+            fit: Link::to(fit),
+            ask: Ask::Ladder { seal },
+        })
+    };
+    let note = |desk: &mut Desk, date: &str| {
+        store::note_acts(&desk.study, &desk.standings, &mut desk.ledger, date);
+        (desk.ledger.looks().len(), desk.ledger.openings().len())
+    };
+    configure(&mut desk.study, question, ask(Seal::Opened));
+    assert_eq!(note(&mut desk, "2026-03-14"), (1, 0), "nothing is sealed");
+    let sealed = Settings::Data(Data {
+        sealed: Sealed::Listed(vec!["a".to_owned()]),
+        ..Data::default()
+    });
+    configure(&mut desk.study, data, sealed);
+    configure(&mut desk.study, question, ask(Seal::Closed));
+    assert_eq!(note(&mut desk, "2026-03-15"), (2, 0), "other data");
+    configure(&mut desk.study, question, ask(Seal::Opened));
+    assert_eq!(note(&mut desk, "2026-03-16"), (2, 1));
+    assert_eq!(note(&mut desk, "2026-03-17"), (2, 1));
+    assert_eq!(desk.ledger.openings()[0].cell, "Lab values");
+    assert_eq!(desk.ledger.openings()[0].date, "2026-03-16");
+    let configuration = fingerprint(&desk.study, fit);
+    assert_eq!(desk.ledger.openings()[0].configuration, configuration);
+    assert_eq!(desk.ledger.looks()[1].configuration, configuration);
+    // A fit that has not been evaluated has not been held against the outcome.
+    let other = Settings::Fit(Fit {
+        input: Link::to(prepare),
+        penalty: Penalty::Ridge,
+        ..Fit::default()
+    });
+    configure(&mut desk.study, fit, other);
+    desk.standings.put(fit, Standing::due());
+    assert_eq!(note(&mut desk, "2026-03-18").0, 2);
 }
 
 #[test]
@@ -611,6 +655,24 @@ fn unsaved_work_is_found_offered_and_forgotten() {
     assert_eq!(opened.study, desk.study);
     assert_eq!(opened.problems, []);
     assert_eq!(states(&opened.record, &opened.study), [State::Current; 4]);
+
+    // The study lay in its readable form: its tables are named by path again when it is saved.
+    let readable = folder.file("lab.json");
+    let save = |shelf: &Shelf| {
+        let nothing = Record::default();
+        store::save(&readable, &desk.study, shelf, &desk.ledger, &nothing).unwrap();
+        get(&readable)
+    };
+    let before = save(&desk.shelf);
+    let session = Session {
+        original: Some(&readable),
+        ..session
+    };
+    rescue
+        .keep(session, &desk.study, &desk.shelf, &desk.ledger, &record)
+        .unwrap();
+    let opened = rescue.open(&rescue.left_behind().0[0]).unwrap();
+    assert_eq!(save(&opened.shelf), before);
 
     put(&folder.file("data/rescue/broken.widefold"), "PK nonsense");
     let (left, problems) = rescue.left_behind();

@@ -136,6 +136,17 @@ impl Record {
         Some(Outcome::clone(outcome))
     }
 
+    /// All recorded outcomes that were made from what the study says now.
+    #[must_use]
+    pub fn outcomes(&self, study: &Study) -> BTreeMap<CellId, Arc<Outcome>> {
+        let cells = study.cells().iter();
+        let agreeing = cells.filter_map(|cell| {
+            let outcome = self.agreeing(study, cell.id)?.outcome()?;
+            Some((cell.id, Arc::clone(outcome)))
+        });
+        agreeing.collect()
+    }
+
     /// How the cells of a study stand when it has just been opened: recorded results that agree
     /// are current or failed, others are shown but due.
     #[must_use]

@@ -1,6 +1,6 @@
 //! Draws one figure of each kind as SVG and PNG, in all palettes: to look at them.
 //!
-//! `cargo run --example figure_gallery -- FOLDER`
+//! `cargo run --example figure_gallery -- FOLDER [WIDTH]`
 
 #![expect(
     clippy::disallowed_methods,
@@ -25,8 +25,12 @@ fn main() -> std::io::Result<()> {
         ("dark", Palette::dark()),
         ("paper", Palette::paper()),
     ];
+    let width = std::env::args()
+        .nth(2)
+        .and_then(|text| text.parse().ok())
+        .unwrap_or(660.0);
     for (name, figure) in sample::all() {
-        let picture = layout(&figure, natural_size(&figure, 660.0)).with_margin(16.0);
+        let picture = layout(&figure, natural_size(&figure, width)).with_margin(16.0);
         for (look, palette) in &palettes {
             let text = svg(&picture, palette);
             std::fs::write(format!("{folder}/{name}-{look}.svg"), &text)?;

@@ -1,12 +1,12 @@
 //! `export`: writes the hand-over workbook and the methods write-up.
 
-use crate::base::problem::{Place, Problem};
+use crate::base::problem::Problem;
 use crate::cli::arguments::Export;
 use crate::cli::today;
 use crate::cli::update::{bring_up_to_date, report};
+use crate::export::Occasion;
 use crate::export::workbook::workbook;
 use crate::export::write_up::write_up;
-use crate::export::Occasion;
 use crate::report::Context;
 use crate::store::{self, replace};
 use std::path::Path;
@@ -27,8 +27,15 @@ pub fn run(arguments: &Export) -> Result<ExitCode, Problem> {
     let mut opened = store::open(&arguments.study)?;
     opened.problems.iter().for_each(super::say);
     let standings = bring_up_to_date(&mut opened);
-    let context = Context { study: &opened.study, standings: &standings, ledger: &opened.ledger };
-    let occasion = Occasion { date: today(), despite: arguments.despite.clone() };
+    let context = Context {
+        study: &opened.study,
+        standings: &standings,
+        ledger: &opened.ledger,
+    };
+    let occasion = Occasion {
+        date: today(),
+        despite: arguments.despite.clone(),
+    };
     if let Some(path) = &arguments.workbook {
         let bytes = workbook(&context, &occasion).map_err(|error| error.problem(DESPITE))?;
         replace(path, &bytes)?;
@@ -40,24 +47,25 @@ pub fn run(arguments: &Export) -> Result<ExitCode, Problem> {
             write_up(&context, &occasion, &folder).map_err(|error| error.problem(DESPITE))?;
         let beside = path.parent().unwrap_or(Path::new("")).join(&folder);
         if !written.figures.is_empty() {
-            std::fs::create_dir_all(&beside).map_err(|error| {
-                Problem::new("cannot-write", "The folder for the figures cannot be made.")
-                    .at(Place::file(&beside.display().to_string()))
-                    .mend("Choose another place for the write-up.")
-                    .details(error.to_string())
-            })?;
+            store::make_folder(&beside)?;
         }
         for (name, bytes) in &written.figures {
             replace(&beside.join(name), bytes)?;
         }
         replace(path, written.markdown.as_bytes())?;
-        eprintln!("Wrote {} and {} figures.", path.display(), written.figures.len());
+        eprintln!(
+            "Wrote {} and {} figures.",
+            path.display(),
+            written.figures.len()
+        );
     }
     Ok(report(&opened.study, &standings))
 }
 
 /// The folder beside a write-up that takes its figures: `methods.md` has `methods-figures`.
 fn figure_folder(path: &Path) -> String {
-    let stem = path.file_stem().map_or_else(|| "write-up".into(), |stem| stem.to_string_lossy());
+    let stem = path
+        .file_stem()
+        .map_or_else(|| "write-up".into(), |stem| stem.to_string_lossy());
     format!("{stem}-figures")
 }

@@ -1,5 +1,6 @@
 //! The stable JSON of `facts --json`.
 
+use crate::base::number::Precision;
 use crate::eval::fact::{Fact, FactTable, FactValue, FactValues};
 use crate::report::Context;
 use serde_json::{Map, Value, json};
@@ -14,8 +15,11 @@ pub fn facts(context: &Context<'_>) -> String {
         .map(|cell| {
             let standing = context.standings.get(cell.id);
             let outcome = standing.outcome;
-            let facts: Vec<Value> =
-                outcome.iter().flat_map(|o| o.facts.all()).map(fact).collect();
+            let facts: Vec<Value> = outcome
+                .iter()
+                .flat_map(|o| o.facts.all())
+                .map(fact)
+                .collect();
             let caveats: Vec<Value> = outcome
                 .iter()
                 .flat_map(|o| &o.caveats)
@@ -51,7 +55,7 @@ pub fn facts(context: &Context<'_>) -> String {
 
 fn fact(fact: &Fact) -> Value {
     let value = match &fact.value {
-        FactValue::Number(number) => finite(*number),
+        FactValue::Number(number) => number_value(*number, fact.precision),
         FactValue::Text(text) => Value::String(text.clone()),
         FactValue::Table(table) => Value::Array(records(table)),
     };
@@ -66,7 +70,9 @@ fn records(table: &FactTable) -> Vec<Value> {
                 .iter()
                 .map(|column| {
                     let value = match &column.values {
-                        FactValues::Numbers(numbers) => finite(numbers[row]),
+                        FactValues::Numbers(numbers) => {
+                            number_value(numbers[row], column.precision)
+                        }
                         FactValues::Texts(texts) => Value::String(texts[row].clone()),
                     };
                     (column.name.clone(), value)
@@ -77,7 +83,13 @@ fn records(table: &FactTable) -> Vec<Value> {
         .collect()
 }
 
-/// A number at full precision; what is not known, or without limit, is null.
-fn finite(number: f64) -> Value {
+/// A number at full precision, a count as a whole number; what is not known, or without limit, is
+/// null.
+fn number_value(number: f64, precision: Precision) -> Value {
+    /// Up to here every whole number has a double of its own.
+    const EXACT: f64 = 9_007_199_254_740_992.0;
+    if precision == Precision::Whole && number.fract() == 0.0 && number.abs() <= EXACT {
+        return Value::from(number as i64);
+    }
     serde_json::Number::from_f64(number).map_or(Value::Null, Value::Number)
 }

@@ -29,8 +29,16 @@ impl Progress {
             bar.set_style(style);
             bar
         });
-        let titles = study.cells().iter().map(|cell| (cell.id, cell.title.clone())).collect();
-        Self { bar, titles, n_due: Mutex::new(0) }
+        let titles = study
+            .cells()
+            .iter()
+            .map(|cell| (cell.id, cell.title.clone()))
+            .collect();
+        Self {
+            bar,
+            titles,
+            n_due: Mutex::new(0),
+        }
     }
 
     /// Takes an event in.

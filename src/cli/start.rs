@@ -22,8 +22,10 @@ use std::sync::Arc;
 pub fn run(arguments: &Start) -> Result<ExitCode, Problem> {
     let mut tables = Vec::new();
     for path in &arguments.tables {
-        let bytes = store::read_file(path)?;
-        let name = path.file_name().map_or_else(String::new, |name| name.to_string_lossy().into_owned());
+        let bytes = store::read_table(path)?;
+        let name = path
+            .file_name()
+            .map_or_else(String::new, |name| name.to_string_lossy().into_owned());
         tables.push((name, Arc::from(bytes)));
     }
     let wishes = wishes(arguments)?;
@@ -33,7 +35,13 @@ pub fn run(arguments: &Start) -> Result<ExitCode, Problem> {
         eprintln!("{note}");
     }
     let nothing = Record::default();
-    store::save(&arguments.output, &started.study, &started.shelf, &Ledger::default(), &nothing)?;
+    store::save(
+        &arguments.output,
+        &started.study,
+        &started.shelf,
+        &Ledger::default(),
+        &nothing,
+    )?;
     eprintln!(
         "Wrote {} with {} cells. Next: widefold update {}",
         arguments.output.display(),
@@ -45,15 +53,20 @@ pub fn run(arguments: &Start) -> Result<ExitCode, Problem> {
 
 fn wishes(arguments: &Start) -> Result<Wishes, Problem> {
     let kind = match arguments.kind {
-        None => arguments.event.as_ref().map(|event| OutcomeKind::Time { event: event.clone() }),
+        None => arguments.event.as_ref().map(|event| OutcomeKind::Time {
+            event: event.clone(),
+        }),
         Some(KindName::Measured) => Some(OutcomeKind::Measured),
         Some(KindName::YesNo) => Some(OutcomeKind::YesNo { event: None }),
         Some(KindName::Classes) => Some(OutcomeKind::Classes),
         Some(KindName::Count) => Some(OutcomeKind::Count { exposure: None }),
         Some(KindName::Time) => Some(OutcomeKind::Time {
             event: arguments.event.clone().ok_or_else(|| {
-                Problem::new("no-event", "For a time it must be said which column holds the event.")
-                    .mend("Name it with --event NAME.")
+                Problem::new(
+                    "no-event",
+                    "For a time it must be said which column holds the event.",
+                )
+                .mend("Name it with --event NAME.")
             })?,
         }),
     };
@@ -74,22 +87,35 @@ fn wishes(arguments: &Start) -> Result<Wishes, Problem> {
 
 /// The file's name without its ending, as a title: `cellar-light.widefold` is “Cellar light”.
 fn title(path: &Path) -> String {
-    let stem = path.file_stem().map_or_else(String::new, |stem| stem.to_string_lossy().into_owned());
+    let stem = path
+        .file_stem()
+        .map_or_else(String::new, |stem| stem.to_string_lossy().into_owned());
     let words = stem.replace(['-', '_'], " ");
     let mut letters = words.chars();
-    letters.next().map_or_else(String::new, |first| first.to_uppercase().chain(letters).collect())
+    letters.next().map_or_else(String::new, |first| {
+        first.to_uppercase().chain(letters).collect()
+    })
 }
 
 fn fit(arguments: &Start) -> Result<Fit, Problem> {
     let mut fit = Fit::default();
     let share = |value: f64| {
-        Real::new(value).filter(|share| share.get() > 0.0 && share.get() < 1.0).ok_or_else(|| {
-            Problem::new("lasso-share", format!("The lasso share must be above 0 and below 1; “{value}” was given."))
+        Real::new(value)
+            .filter(|share| share.get() > 0.0 && share.get() < 1.0)
+            .ok_or_else(|| {
+                Problem::new(
+                    "lasso-share",
+                    format!("The lasso share must be above 0 and below 1; “{value}” was given."),
+                )
                 .at(Place::nowhere())
                 .mend("Use --penalty ridge for 0 and --penalty lasso for 1.")
-        })
+            })
     };
-    let mut shares = arguments.lasso_share.iter().map(|s| share(*s)).collect::<Result<Vec<_>, _>>()?;
+    let mut shares = arguments
+        .lasso_share
+        .iter()
+        .map(|s| share(*s))
+        .collect::<Result<Vec<_>, _>>()?;
     shares.sort();
     shares.dedup();
     fit.penalty = match arguments.penalty {
@@ -104,17 +130,24 @@ fn fit(arguments: &Start) -> Result<Fit, Problem> {
         }
     };
     if let Some(strength) = arguments.strength {
-        let real = Real::new(strength).filter(|s| s.get() >= 0.0).ok_or_else(|| {
-            Problem::new("strength", format!("The penalty strength must be 0 or more; “{strength}” was given."))
+        let real = Real::new(strength)
+            .filter(|s| s.get() >= 0.0)
+            .ok_or_else(|| {
+                Problem::new(
+                    "strength",
+                    format!("The penalty strength must be 0 or more; “{strength}” was given."),
+                )
                 .mend("Give another strength, or leave it to a rule.")
-        })?;
+            })?;
         fit.strength = Strength::ByHand(real);
     } else if let Strength::Chosen { rule, inner, .. } = &mut fit.strength {
         *rule = match arguments.choice {
             ChoiceName::LowestError => Rule::LowestError,
             ChoiceName::OneSe => Rule::OneStandardError,
             ChoiceName::Gcv => Rule::GeneralisedCrossValidation,
-            ChoiceName::Ebic => Rule::ExtendedBic { gamma: Real::constant(0.5) },
+            ChoiceName::Ebic => Rule::ExtendedBic {
+                gamma: Real::constant(0.5),
+            },
         };
         inner.parts = arguments.parts.unwrap_or(inner.parts).max(2);
         inner.repeats = arguments.repeats.unwrap_or(inner.repeats).max(1);

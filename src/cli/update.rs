@@ -41,13 +41,18 @@ pub fn bring_up_to_date(opened: &mut Opened) -> Standings {
     };
     let tell = |event: Event| {
         progress.tell(&event);
-        standings.lock().expect("nobody panics while absorbing").absorb(&event);
+        standings
+            .lock()
+            .expect("nobody panics while absorbing")
+            .absorb(&event);
     };
     let mut memo = Memo::new(MEMO_BUDGET);
     // Nobody can call this run off: the process is stopped instead, and the file is then as before.
     let _ = evaluate(&snapshot, &mut memo, &CancelToken::default(), &tell);
     progress.done();
-    let standings = standings.into_inner().expect("nobody panics while absorbing");
+    let standings = standings
+        .into_inner()
+        .expect("nobody panics while absorbing");
     note_acts(&opened.study, &standings, &mut opened.ledger);
     standings
 }
@@ -73,7 +78,10 @@ pub fn report(study: &Study, standings: &Standings) -> ExitCode {
             }
             State::Waiting => {
                 all_done = false;
-                eprintln!("“{}” waits: a cell that it draws on could not be evaluated.", cell.title);
+                eprintln!(
+                    "“{}” waits: a cell that it draws on could not be evaluated.",
+                    cell.title
+                );
             }
             State::Due | State::Working(_) | State::Stopped => {
                 all_done = false;
@@ -81,5 +89,9 @@ pub fn report(study: &Study, standings: &Standings) -> ExitCode {
             }
         }
     }
-    if all_done { ExitCode::SUCCESS } else { ExitCode::from(NOT_DONE) }
+    if all_done {
+        ExitCode::SUCCESS
+    } else {
+        ExitCode::from(NOT_DONE)
+    }
 }

@@ -52,18 +52,29 @@ pub fn evaluate(
     tell(Event::Planned(first_states(&snapshot.study, &plan, &fresh)));
     for id in &plan.circular {
         let verdict = Arc::new(Err(circle(&snapshot.study, *id).into()));
-        tell(Event::Finished { id: *id, verdict, remembered: false });
+        tell(Event::Finished {
+            id: *id,
+            verdict,
+            remembered: false,
+        });
     }
     let mut done: BTreeMap<CellId, Arc<Verdict>> = BTreeMap::new();
     for &id in &plan.order {
         token_check(token)?;
-        let cell = snapshot.study.cell(id).expect("the plan names cells of the study");
+        let cell = snapshot
+            .study
+            .cell(id)
+            .expect("the plan names cells of the study");
         if waits_for_failed(&snapshot.study, cell, &done) {
             tell(Event::Planned(vec![(id, State::Waiting)]));
             continue;
         }
         let recipe = plan.recipes[&id];
-        let remembered = if fresh.contains(&id) { None } else { memo.get(recipe) };
+        let remembered = if fresh.contains(&id) {
+            None
+        } else {
+            memo.get(recipe)
+        };
         let (verdict, remembered) = match remembered {
             Some(verdict) => (verdict, true),
             None => {
@@ -74,7 +85,11 @@ pub fn evaluate(
             }
         };
         let _ = done.insert(id, Arc::clone(&verdict));
-        tell(Event::Finished { id, verdict, remembered });
+        tell(Event::Finished {
+            id,
+            verdict,
+            remembered,
+        });
     }
     Ok(())
 }
@@ -85,12 +100,18 @@ fn waits_for_failed(study: &Study, cell: &Cell, done: &BTreeMap<CellId, Arc<Verd
     kind::computes_with(&cell.settings)
         && cell.settings.draws_on().iter().any(|input| {
             study.cell(*input).is_some()
-                && done.get(input).is_none_or(|verdict| verdict.as_ref().is_err())
+                && done
+                    .get(input)
+                    .is_none_or(|verdict| verdict.as_ref().is_err())
         })
 }
 
 fn token_check(token: &CancelToken) -> Result<(), Cancelled> {
-    if token.is_cancelled() { Err(Cancelled) } else { Ok(()) }
+    if token.is_cancelled() {
+        Err(Cancelled)
+    } else {
+        Ok(())
+    }
 }
 
 /// The cells that must be evaluated: those that the memo does not know, and those that are known
@@ -101,7 +122,10 @@ fn needs_evaluation(study: &Study, plan: &Plan, memo: &mut Memo) -> Vec<CellId> 
         let known = memo.get(plan.recipes[&id]);
         let on_record = matches!(
             known.as_deref(),
-            Some(Ok(Outcome { gives: Gives::OnRecord, .. }))
+            Some(Ok(Outcome {
+                gives: Gives::OnRecord,
+                ..
+            }))
         );
         let is_wanted = study.cells().iter().any(|cell| {
             fresh.contains(&cell.id)
@@ -121,7 +145,11 @@ fn first_states(study: &Study, plan: &Plan, fresh: &[CellId]) -> Vec<(CellId, St
             return State::Current;
         }
         let cell = study.cell(id).expect("the plan names cells of the study");
-        let waits = cell.settings.draws_on().iter().any(|input| fresh.contains(input));
+        let waits = cell
+            .settings
+            .draws_on()
+            .iter()
+            .any(|input| fresh.contains(input));
         if waits { State::Waiting } else { State::Due }
     };
     plan.order.iter().map(|&id| (id, state(id))).collect()
@@ -137,7 +165,9 @@ fn run_cell(
     // A thousand steps are as fine as anybody can see; more would only fill the queue.
     let last = Mutex::new(-1.0_f32);
     let report = |share: f32| {
-        let mut last = last.lock().expect("nobody panics while holding the last share");
+        let mut last = last
+            .lock()
+            .expect("nobody panics while holding the last share");
         if share - *last >= 0.001 || share >= 1.0 && *last < 1.0 {
             *last = share;
             tell(Event::Progressed(cell.id, share));
@@ -156,7 +186,11 @@ fn fault(panic: &(dyn std::any::Any + Send)) -> Problem {
     let words = panic
         .downcast_ref::<String>()
         .cloned()
-        .or_else(|| panic.downcast_ref::<&str>().map(|words| (*words).to_owned()))
+        .or_else(|| {
+            panic
+                .downcast_ref::<&str>()
+                .map(|words| (*words).to_owned())
+        })
         .unwrap_or_else(|| "no words".to_owned());
     Problem::new(
         "fault-of-the-program",
@@ -203,7 +237,10 @@ pub const MEMO_BUDGET: usize = 2 << 30;
 impl Desk {
     /// Starts a worker.
     #[must_use]
-    #[expect(clippy::disallowed_methods, reason = "the desk is where the worker thread lives")]
+    #[expect(
+        clippy::disallowed_methods,
+        reason = "the desk is where the worker thread lives"
+    )]
     pub fn start() -> Self {
         let (orders, inbox) = channel::<Order>();
         let _worker = std::thread::spawn(move || {
@@ -213,10 +250,15 @@ impl Desk {
                 let tell = |event: Event| {
                     // Nobody listens any more when the run was replaced; the work then stops at
                     // its next step.
-                    let _ = events.lock().expect("nobody panics while telling").send(event);
+                    let _ = events
+                        .lock()
+                        .expect("nobody panics while telling")
+                        .send(event);
                 };
                 let ended = evaluate(&order.snapshot, &mut memo, &order.token, &tell);
-                tell(Event::Ended { cancelled: ended.is_err() });
+                tell(Event::Ended {
+                    cancelled: ended.is_err(),
+                });
             }
         });
         Self { orders }
@@ -227,7 +269,11 @@ impl Desk {
     pub fn run(&self, snapshot: Snapshot) -> Run {
         let cancel = CancelSource::new();
         let (sender, events) = channel();
-        let order = Order { snapshot, token: cancel.token(), events: sender };
+        let order = Order {
+            snapshot,
+            token: cancel.token(),
+            events: sender,
+        };
         // The worker lives as long as the desk; if it does not, the receiver just ends.
         let _ = self.orders.send(order);
         Run { events, cancel }

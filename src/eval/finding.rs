@@ -5,13 +5,21 @@ use crate::table::read::ReadError;
 use crate::table::samples::JoinError;
 /// Sentence.
 #[must_use]
-pub fn sentence(f: &Finding) -> String { format!("{:?}", f.kind) }
+pub fn sentence(f: &Finding) -> String {
+    format!("{:?}", f.kind)
+}
 /// Treatment.
 #[must_use]
-pub fn treatment(f: &Finding) -> String { format!("{:?}", f.treatment) }
+pub fn treatment(f: &Finding) -> String {
+    format!("{:?}", f.treatment)
+}
 /// Error.
 #[must_use]
-pub fn read_problem(e: &ReadError, file: &str) -> Problem { Problem::new("read", format!("{e:?}")).at(Place::file(file)) }
+pub fn read_problem(e: &ReadError, file: &str) -> Problem {
+    Problem::new("read", format!("{e:?}")).at(Place::file(file))
+}
 /// Join.
 #[must_use]
-pub fn join_error(e: &JoinError) -> String { format!("{e:?}") }
+pub fn join_error(e: &JoinError) -> String {
+    format!("{e:?}")
+}

@@ -29,7 +29,11 @@ impl Memo {
     /// An empty memo that holds about `budget` bytes.
     #[must_use]
     pub fn new(budget: usize) -> Self {
-        Self { entries: BTreeMap::new(), budget, run: 0 }
+        Self {
+            entries: BTreeMap::new(),
+            budget,
+            run: 0,
+        }
     }
 
     /// Notes that a new run begins; entries age by it.
@@ -49,7 +53,14 @@ impl Memo {
     /// the present run has used stays.
     pub fn put(&mut self, recipe: ContentHash, verdict: Arc<Verdict>) {
         let bytes = weight(&verdict);
-        let _ = self.entries.insert(recipe, Entry { verdict, bytes, used: self.run });
+        let _ = self.entries.insert(
+            recipe,
+            Entry {
+                verdict,
+                bytes,
+                used: self.run,
+            },
+        );
         let mut total: usize = self.entries.values().map(|entry| entry.bytes).sum();
         while total > self.budget {
             let oldest = self.entries.iter().min_by_key(|(_, entry)| entry.used);
@@ -94,7 +105,10 @@ mod tests {
             memo.put(ContentHash::of(&run), failure("It cannot be done."));
             let _ = memo.get(ContentHash::of(&0_u8));
         }
-        assert!(memo.get(ContentHash::of(&0_u8)).is_some(), "asked for in every run");
+        assert!(
+            memo.get(ContentHash::of(&0_u8)).is_some(),
+            "asked for in every run"
+        );
         assert!(memo.get(ContentHash::of(&1_u8)).is_none(), "the oldest");
         assert!(memo.get(ContentHash::of(&2_u8)).is_some(), "the newest");
     }

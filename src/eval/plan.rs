@@ -29,29 +29,37 @@ pub fn plan(study: &Study) -> Plan {
     loop {
         // Always the first cell in reading order that is ready, so that the plan follows the page
         // as far as it can.
-        let next = study.cells().iter().find(|cell| {
-            !plan.recipes.contains_key(&cell.id)
-                && cell
-                    .settings
-                    .draws_on()
-                    .iter()
-                    .all(|input| plan.recipes.contains_key(input) || study.cell(*input).is_none())
-        });
+        let next =
+            study.cells().iter().find(|cell| {
+                !plan.recipes.contains_key(&cell.id)
+                    && cell.settings.draws_on().iter().all(|input| {
+                        plan.recipes.contains_key(input) || study.cell(*input).is_none()
+                    })
+            });
         let Some(cell) = next else { break };
         let recipe = recipe(cell, &plan.recipes);
         let _ = plan.recipes.insert(cell.id, recipe);
         plan.order.push(cell.id);
     }
     let left = |cell: &&Cell| !plan.recipes.contains_key(&cell.id);
-    plan.circular = study.cells().iter().filter(left).map(|cell| cell.id).collect();
+    plan.circular = study
+        .cells()
+        .iter()
+        .filter(left)
+        .map(|cell| cell.id)
+        .collect();
     plan
 }
 
 /// A link counts by the recipe that it leads to, not by the id; titles and positions do not count.
 /// Tables are named by their content in the settings, so that the source is part of it.
 fn recipe(cell: &Cell, known: &BTreeMap<CellId, ContentHash>) -> ContentHash {
-    let inputs: Vec<Option<ContentHash>> =
-        cell.settings.draws_on().iter().map(|input| known.get(input).copied()).collect();
+    let inputs: Vec<Option<ContentHash>> = cell
+        .settings
+        .draws_on()
+        .iter()
+        .map(|input| known.get(input).copied())
+        .collect();
     ContentHash::of(&(KIND_VERSION, unlinked(&cell.settings), inputs))
 }
 
@@ -81,7 +89,11 @@ mod tests {
 
     fn insert(study: &mut Study, at: usize, title: &str, settings: Settings) -> CellId {
         let id = study.next_id();
-        let cell = Cell { id, title: title.to_owned(), settings };
+        let cell = Cell {
+            id,
+            title: title.to_owned(),
+            settings,
+        };
         let _ = study.apply(Edit::Insert { at, cell }).unwrap();
         id
     }
@@ -90,9 +102,15 @@ mod tests {
     fn upside_down() -> (Study, CellId, CellId, CellId) {
         let mut study = Study::new("Test");
         let data = insert(&mut study, 0, "scans", Settings::Data(Data::default()));
-        let prepare = Prepare { input: Link::to(data), steps: vec![Step::Center] };
+        let prepare = Prepare {
+            input: Link::to(data),
+            steps: vec![Step::Center],
+        };
         let prepared = insert(&mut study, 0, "prepared", Settings::Prepare(prepare));
-        let fit = Fit { input: Link::to(prepared), ..Fit::default() };
+        let fit = Fit {
+            input: Link::to(prepared),
+            ..Fit::default()
+        };
         let fit = insert(&mut study, 0, "fit", Settings::Fit(fit));
         (study, data, prepared, fit)
     }
@@ -108,7 +126,12 @@ mod tests {
         let (mut study, data, ..) = upside_down();
         let before = plan(&study).recipes;
         let title = "other name".to_owned();
-        let _ = study.apply(Edit::Retitle { what: Titled::Cell(data), title }).unwrap();
+        let _ = study
+            .apply(Edit::Retitle {
+                what: Titled::Cell(data),
+                title,
+            })
+            .unwrap();
         let _ = study.apply(Edit::Move { id: data, to: 0 }).unwrap();
         assert_eq!(plan(&study).recipes, before);
     }
@@ -118,8 +141,16 @@ mod tests {
         let (mut study, data, prepared, fit) = upside_down();
         let before = plan(&study).recipes;
         let steps = vec![Step::Center, Step::UnitVariance];
-        let settings = Settings::Prepare(Prepare { input: Link::to(data), steps });
-        let _ = study.apply(Edit::Configure { id: prepared, settings }).unwrap();
+        let settings = Settings::Prepare(Prepare {
+            input: Link::to(data),
+            steps,
+        });
+        let _ = study
+            .apply(Edit::Configure {
+                id: prepared,
+                settings,
+            })
+            .unwrap();
         let after = plan(&study).recipes;
         assert_eq!(before[&data], after[&data]);
         assert_ne!(before[&prepared], after[&prepared]);
@@ -132,7 +163,10 @@ mod tests {
         let prepare = |own: u32, input: u32| Cell {
             id: id(own),
             title: format!("cell {own}"),
-            settings: Settings::Prepare(Prepare { input: Link::to(id(input)), steps: Vec::new() }),
+            settings: Settings::Prepare(Prepare {
+                input: Link::to(id(input)),
+                steps: Vec::new(),
+            }),
         };
         let study = Study::restored("By hand", vec![prepare(1, 2), prepare(2, 1)], 3);
         let plan = plan(&study);

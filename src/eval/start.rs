@@ -94,13 +94,21 @@ pub fn start(
         }
     }
     if read_tables.is_empty() {
-        return Ok(Err(Problem::new("no-table", "No table was named.").mend("Name a file with a table.")));
+        return Ok(Err(
+            Problem::new("no-table", "No table was named.").mend("Name a file with a table.")
+        ));
     }
     let mut notes = Vec::new();
-    Ok(data_settings(read_tables, wishes, &mut notes).and_then(|(data, shape)| {
-        let study = ready_study(data, &shape, wishes, &mut notes)?;
-        Ok(Started { study, shelf, notes })
-    }))
+    Ok(
+        data_settings(read_tables, wishes, &mut notes).and_then(|(data, shape)| {
+            let study = ready_study(data, &shape, wishes, &mut notes)?;
+            Ok(Started {
+                study,
+                shelf,
+                notes,
+            })
+        }),
+    )
 }
 
 struct ReadTable {
@@ -160,7 +168,12 @@ fn data_settings(
         sources.push(source);
     }
     let find = |name: &str| tables.iter().find_map(|read| read.table.column(name));
-    let named = [Some(&wishes.outcome), wishes.samples.as_ref(), wishes.unit.as_ref(), wishes.batch.as_ref()];
+    let named = [
+        Some(&wishes.outcome),
+        wishes.samples.as_ref(),
+        wishes.unit.as_ref(),
+        wishes.batch.as_ref(),
+    ];
     let also = wishes.covariates.iter().chain(&wishes.ignored);
     for name in named.into_iter().flatten().chain(also) {
         if find(name).is_none() {
@@ -173,14 +186,27 @@ fn data_settings(
         None => guess_kind(outcome_column, notes),
     };
     let first = &tables[0];
-    let samples = wishes.samples.clone().or_else(|| sample_names(first, wishes, notes));
-    let taken: BTreeSet<&str> = [Some(wishes.outcome.as_str()), samples.as_deref(), wishes.unit.as_deref(), wishes.batch.as_deref()]
-        .into_iter()
-        .flatten()
-        .chain(wishes.covariates.iter().map(String::as_str))
-        .chain(wishes.ignored.iter().map(String::as_str))
-        .chain(sources.iter().filter_map(|s| s.join.as_ref()).map(|join| join.left.as_str()))
-        .collect();
+    let samples = wishes
+        .samples
+        .clone()
+        .or_else(|| sample_names(first, wishes, notes));
+    let taken: BTreeSet<&str> = [
+        Some(wishes.outcome.as_str()),
+        samples.as_deref(),
+        wishes.unit.as_deref(),
+        wishes.batch.as_deref(),
+    ]
+    .into_iter()
+    .flatten()
+    .chain(wishes.covariates.iter().map(String::as_str))
+    .chain(wishes.ignored.iter().map(String::as_str))
+    .chain(
+        sources
+            .iter()
+            .filter_map(|s| s.join.as_ref())
+            .map(|join| join.left.as_str()),
+    )
+    .collect();
     let predictors = predictor_columns(&tables, &taken, notes);
     let shape = shape(&tables, &predictors, wishes, samples.as_deref());
     let ranges = ranges(&tables, &predictors);
@@ -205,23 +231,39 @@ fn data_settings(
 }
 
 fn no_such_column(name: &str, tables: &[ReadTable]) -> Problem {
-    let files: Vec<&str> = tables.iter().map(|read| read.source.file.as_str()).collect();
+    let files: Vec<&str> = tables
+        .iter()
+        .map(|read| read.source.file.as_str())
+        .collect();
     let some: Vec<&str> = tables
         .iter()
         .flat_map(|read| read.table.columns().iter().take(6))
         .map(|column| column.name.as_str())
         .take(8)
         .collect();
-    Problem::new("missing-outcome", format!("There is no column “{name}” in the tables."))
-        .at(Place::file(&files.join(", ")))
-        .mend(format!("Name a column that is there; the first are “{}”.", some.join("”, “")))
+    Problem::new(
+        "missing-outcome",
+        format!("There is no column “{name}” in the tables."),
+    )
+    .at(Place::file(&files.join(", ")))
+    .mend(format!(
+        "Name a column that is there; the first are “{}”.",
+        some.join("”, “")
+    ))
 }
 
 /// The columns on which a table is joined: the wished ones if it has them, else the column that
 /// shares its name with one of the tables before and the most values with it.
-fn join(before: &[ReadTable], table: &ReadTable, wishes: &Wishes, notes: &mut Vec<String>) -> Result<Join, Problem> {
+fn join(
+    before: &[ReadTable],
+    table: &ReadTable,
+    wishes: &Wishes,
+    notes: &mut Vec<String>,
+) -> Result<Join, Problem> {
     let texts = |column: &Column| -> BTreeSet<String> {
-        (0..column.len()).filter_map(|row| key_text(column, row)).collect()
+        (0..column.len())
+            .filter_map(|row| key_text(column, row))
+            .collect()
     };
     let mut best: Option<(usize, String)> = None;
     let wished = [wishes.unit.as_ref(), wishes.samples.as_ref()];
@@ -245,13 +287,24 @@ fn join(before: &[ReadTable], table: &ReadTable, wishes: &Wishes, notes: &mut Ve
     let Some((_, name)) = best else {
         return Err(Problem::new(
             "no-join",
-            format!("“{}” shares no column of names with the tables before it.", table.source.file),
+            format!(
+                "“{}” shares no column of names with the tables before it.",
+                table.source.file
+            ),
         )
         .at(Place::file(&table.source.file))
         .mend("Give the column that names the same things the same head in both tables."));
     };
-    notes.push(format!("“{}” is joined on the column “{name}”; case and blanks do not count.", table.source.file));
-    Ok(Join { left: name.clone(), right: name, case: LetterCase::Folded, zeros: LeadingZeros::Kept })
+    notes.push(format!(
+        "“{}” is joined on the column “{name}”; case and blanks do not count.",
+        table.source.file
+    ));
+    Ok(Join {
+        left: name.clone(),
+        right: name,
+        case: LetterCase::Folded,
+        zeros: LeadingZeros::Kept,
+    })
 }
 
 fn key_text(column: &Column, row: usize) -> Option<String> {
@@ -285,7 +338,9 @@ fn sample_names(first: &ReadTable, wishes: &Wishes, notes: &mut Vec<String>) -> 
         if column.name == wishes.outcome || Some(&column.name) == wishes.unit.as_ref() {
             return false;
         }
-        let Values::Texts(texts) = &column.values else { return false };
+        let Values::Texts(texts) = &column.values else {
+            return false;
+        };
         let distinct: BTreeSet<&String> = texts.iter().flatten().collect();
         distinct.len() == texts.len()
     })?;
@@ -348,8 +403,12 @@ fn axis_runs(table: &Table, columns: &[usize]) -> Vec<Vec<usize>> {
     let mut runs: Vec<Vec<usize>> = Vec::new();
     let stem = |at: usize| -> (String, String) {
         let name = &table.columns()[at].name;
-        let begin = name.find(|c: char| c.is_ascii_digit()).unwrap_or(name.len());
-        let end = name.rfind(|c: char| c.is_ascii_digit()).map_or(begin, |end| end + 1);
+        let begin = name
+            .find(|c: char| c.is_ascii_digit())
+            .unwrap_or(name.len());
+        let end = name
+            .rfind(|c: char| c.is_ascii_digit())
+            .map_or(begin, |end| end + 1);
         (name[..begin].to_owned(), name[end..].to_owned())
     };
     for &at in columns {
@@ -359,7 +418,10 @@ fn axis_runs(table: &Table, columns: &[usize]) -> Vec<Vec<usize>> {
         }
     }
     runs.retain(|run| {
-        let names: Vec<&str> = run.iter().map(|&at| table.columns()[at].name.as_str()).collect();
+        let names: Vec<&str> = run
+            .iter()
+            .map(|&at| table.columns()[at].name.as_str())
+            .collect();
         run.len() >= 3 && axis::of_names(&names).is_some()
     });
     runs
@@ -368,32 +430,56 @@ fn axis_runs(table: &Table, columns: &[usize]) -> Vec<Vec<usize>> {
 fn ranges(tables: &[ReadTable], predictors: &(usize, Vec<usize>)) -> Vec<ColumnRange> {
     axis::ranges(&tables[predictors.0].table, &predictors.1)
         .into_iter()
-        .map(|range| ColumnRange { first: range.first, last: range.last })
+        .map(|range| ColumnRange {
+            first: range.first,
+            last: range.last,
+        })
         .collect()
 }
 
-fn shape(tables: &[ReadTable], predictors: &(usize, Vec<usize>), wishes: &Wishes, samples: Option<&str>) -> Shape {
+fn shape(
+    tables: &[ReadTable],
+    predictors: &(usize, Vec<usize>),
+    wishes: &Wishes,
+    samples: Option<&str>,
+) -> Shape {
     let table = &tables[predictors.0].table;
     let mut has_gaps = false;
     let mut has_limits = false;
     for &at in &predictors.1 {
         if let Values::Numbers(numbers) = &table.columns()[at].values {
             has_limits |= !numbers.censored().is_empty();
-            let n_gaps = numbers.values().iter().filter(|value| value.is_nan()).count();
+            let n_gaps = numbers
+                .values()
+                .iter()
+                .filter(|value| value.is_nan())
+                .count();
             has_gaps |= n_gaps > numbers.censored().len();
         }
     }
-    let names: Vec<&str> =
-        predictors.1.iter().map(|&at| table.columns()[at].name.as_str()).collect();
+    let names: Vec<&str> = predictors
+        .1
+        .iter()
+        .map(|&at| table.columns()[at].name.as_str())
+        .collect();
     let is_spectrum = names.len() >= 50
         && axis::of_names(&names).is_some_and(|axis| {
-            axis.is_monotone() && axis.unit.as_deref().is_some_and(|unit| LIGHT.contains(&unit))
+            axis.is_monotone()
+                && axis
+                    .unit
+                    .as_deref()
+                    .is_some_and(|unit| LIGHT.contains(&unit))
         });
     let unit = wishes.unit.as_deref().or(samples);
     let first = &tables[0].table;
-    let n_units = unit.and_then(|name| first.column(name)).map_or(first.n_rows(), |column| {
-        (0..column.len()).filter_map(|row| key_text(column, row)).collect::<BTreeSet<_>>().len()
-    });
+    let n_units = unit
+        .and_then(|name| first.column(name))
+        .map_or(first.n_rows(), |column| {
+            (0..column.len())
+                .filter_map(|row| key_text(column, row))
+                .collect::<BTreeSet<_>>()
+                .len()
+        });
     Shape {
         n_samples: first.n_rows(),
         n_units,
@@ -410,8 +496,13 @@ const LIGHT: [&str; 6] = ["nm", "cm-1", "cm⁻¹", "1/cm", "µm", "um"];
 /// Samples of the first table whose outcome stands there and is blank are excluded, recorded.
 fn exclude_without_outcome(data: &mut Data, first: &ReadTable, notes: &mut Vec<String>) {
     let Some(outcome) = &data.outcome else { return };
-    let Some(column) = first.table.column(&outcome.column) else { return };
-    let names = data.sample_name.as_ref().and_then(|name| first.table.column(name));
+    let Some(column) = first.table.column(&outcome.column) else {
+        return;
+    };
+    let names = data
+        .sample_name
+        .as_ref()
+        .and_then(|name| first.table.column(name));
     let name = |row: usize| match names {
         Some(names) => key_name(names, row),
         None => Some(format!("sample {}", row + 1)),
@@ -443,12 +534,24 @@ fn key_name(column: &Column, row: usize) -> Option<String> {
 }
 
 /// Data, Prepare, Fit, the questions, and a summary with live facts.
-fn ready_study(data: Data, shape: &Shape, wishes: &Wishes, notes: &mut Vec<String>) -> Result<Study, Problem> {
-    let mut study = Study::new(if wishes.title.is_empty() { "Study" } else { &wishes.title });
+fn ready_study(
+    data: Data,
+    shape: &Shape,
+    wishes: &Wishes,
+    notes: &mut Vec<String>,
+) -> Result<Study, Problem> {
+    let mut study = Study::new(if wishes.title.is_empty() {
+        "Study"
+    } else {
+        &wishes.title
+    });
     let outcome = wishes.outcome.clone();
     let data = add(&mut study, "Tables", Settings::Data(data))?;
     let steps = steps(shape, notes);
-    let prepare = Prepare { input: Link::to(data), steps };
+    let prepare = Prepare {
+        input: Link::to(data),
+        steps,
+    };
     let prepared = add(&mut study, "Prepared samples", Settings::Prepare(prepare))?;
     let fit = fit_settings(wishes, shape, prepared, notes);
     let penalty = match fit.penalty {
@@ -458,7 +561,11 @@ fn ready_study(data: Data, shape: &Shape, wishes: &Wishes, notes: &mut Vec<Strin
     };
     let is_ridge = fit.penalty == Penalty::Ridge;
     let by_hand = matches!(fit.strength, Strength::ByHand(_));
-    let fit = add(&mut study, &format!("{outcome} {penalty}"), Settings::Fit(fit))?;
+    let fit = add(
+        &mut study,
+        &format!("{outcome} {penalty}"),
+        Settings::Fit(fit),
+    )?;
     for ask in Ask::catalogue() {
         let leave_out = match ask {
             Ask::ChosenAgain { .. } => is_ridge,
@@ -471,21 +578,41 @@ fn ready_study(data: Data, shape: &Shape, wishes: &Wishes, notes: &mut Vec<Strin
         };
         if !leave_out {
             let title = ask.title();
-            let _ = add(&mut study, title, Settings::Question(Question { fit: Link::to(fit), ask }))?;
+            let _ = add(
+                &mut study,
+                title,
+                Settings::Question(Question {
+                    fit: Link::to(fit),
+                    ask,
+                }),
+            )?;
         }
     }
-    let title = |id: CellId| study.cell(id).map(|cell| cell.title.clone()).unwrap_or_default();
+    let title = |id: CellId| {
+        study
+            .cell(id)
+            .map(|cell| cell.title.clone())
+            .unwrap_or_default()
+    };
     let text = summary(&title(data), &title(fit));
     let prose = Prose::parse(&text, &study);
     let id = study.next_id();
-    let cell = Cell { id, title: "Summary".to_owned(), settings: Settings::Prose(prose) };
+    let cell = Cell {
+        id,
+        title: "Summary".to_owned(),
+        settings: Settings::Prose(prose),
+    };
     apply(&mut study, Edit::Insert { at: 0, cell })?;
     Ok(study)
 }
 
 fn add(study: &mut Study, title: &str, settings: Settings) -> Result<CellId, Problem> {
     let id = study.next_id();
-    let cell = Cell { id, title: study.free_title(title), settings };
+    let cell = Cell {
+        id,
+        title: study.free_title(title),
+        settings,
+    };
     let at = study.cells().len();
     apply(study, Edit::Insert { at, cell })?;
     Ok(id)
@@ -530,13 +657,18 @@ fn steps(shape: &Shape, notes: &mut Vec<String>) -> Vec<Step> {
 
 /// The wished fit, with as many parts as there are units to fill them.
 fn fit_settings(wishes: &Wishes, shape: &Shape, prepared: CellId, notes: &mut Vec<String>) -> Fit {
-    let mut fit = Fit { input: Link::to(prepared), ..wishes.fit.clone() };
+    let mut fit = Fit {
+        input: Link::to(prepared),
+        ..wishes.fit.clone()
+    };
     let units = u32::try_from(shape.n_units).unwrap_or(u32::MAX);
     if let Judge::Nested(plan) = &mut fit.judge {
         // Two units in a held-out part, so that parts can be told from single units.
         let most = (units / 2).max(2);
         if plan.parts > most {
-            notes.push(format!("Only {units} independent samples: {most} outer parts are drawn."));
+            notes.push(format!(
+                "Only {units} independent samples: {most} outer parts are drawn."
+            ));
             plan.parts = most;
         }
         let kept = units - units.div_ceil(plan.parts.max(1));

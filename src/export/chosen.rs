@@ -35,25 +35,42 @@ pub fn list(context: &Context<'_>, fit: CellId) -> Option<ChosenList> {
     let mut table = facts.table("coefficients")?.clone();
     let predictors = table.texts("predictor").to_vec();
     if facts.words("penalty") == Some("ridge") {
-        return Some(ChosenList { table, frequencies: Frequencies::NothingChosen });
+        return Some(ChosenList {
+            table,
+            frequencies: Frequencies::NothingChosen,
+        });
     }
     let mut frequencies = Frequencies::NotAsked;
     for cell in context.study.cells() {
-        let Settings::Question(question) = &cell.settings else { continue };
+        let Settings::Question(question) = &cell.settings else {
+            continue;
+        };
         if question.fit.0 != Some(fit) {
             continue;
         }
-        let Some(answer) = context.outcome(cell.id) else { continue };
+        let Some(answer) = context.outcome(cell.id) else {
+            continue;
+        };
         match question.ask {
             Ask::ChosenAgain { .. } if frequencies == Frequencies::NotAsked => {
                 if let Some(found) = answer.facts.table("frequencies") {
-                    join(&mut table, &predictors, found, &["frequency", "low", "high", "sign consistency"]);
+                    join(
+                        &mut table,
+                        &predictors,
+                        found,
+                        &["frequency", "low", "high", "sign consistency"],
+                    );
                     frequencies = Frequencies::Known;
                 }
             }
             Ask::StandIns { .. } if table.column("stand-ins").is_none() => {
                 if let Some(found) = answer.facts.table("groups") {
-                    join(&mut table, &predictors, found, &["stand-ins", "strongest stand-in", "strongest correlation"]);
+                    join(
+                        &mut table,
+                        &predictors,
+                        found,
+                        &["stand-ins", "strongest stand-in", "strongest correlation"],
+                    );
                 }
             }
             Ask::ChosenAgain { .. }
@@ -72,18 +89,32 @@ pub fn list(context: &Context<'_>, fit: CellId) -> Option<ChosenList> {
 fn join(table: &mut FactTable, predictors: &[String], other: &FactTable, columns: &[&str]) {
     let rows: Vec<Option<usize>> = predictors
         .iter()
-        .map(|name| other.texts("predictor").iter().position(|known| known == name))
+        .map(|name| {
+            other
+                .texts("predictor")
+                .iter()
+                .position(|known| known == name)
+        })
         .collect();
     for name in columns {
-        let Some(column) = other.column(name) else { continue };
+        let Some(column) = other.column(name) else {
+            continue;
+        };
         let values = match &column.values {
             FactValues::Numbers(numbers) => FactValues::Numbers(
-                rows.iter().map(|row| row.map_or(f64::NAN, |row| numbers[row])).collect(),
+                rows.iter()
+                    .map(|row| row.map_or(f64::NAN, |row| numbers[row]))
+                    .collect(),
             ),
             FactValues::Texts(texts) => FactValues::Texts(
-                rows.iter().map(|row| row.map_or_else(String::new, |row| texts[row].clone())).collect(),
+                rows.iter()
+                    .map(|row| row.map_or_else(String::new, |row| texts[row].clone()))
+                    .collect(),
             ),
         };
-        table.columns.push(FactColumn { values, ..column.clone() });
+        table.columns.push(FactColumn {
+            values,
+            ..column.clone()
+        });
     }
 }

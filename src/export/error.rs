@@ -35,20 +35,26 @@ impl ExportError {
                     .collect();
                 Problem::new(
                     "export-stopped",
-                    format!("The export is blocked by what stands in the margin. {}", texts.join(" ")),
+                    format!(
+                        "The export is blocked by what stands in the margin. {}",
+                        texts.join(" ")
+                    ),
                 )
                 .mend("Resolve it.")
-                .mend(format!("Or give a reason, which is printed, with {despite}."))
+                .mend(format!(
+                    "Or give a reason, which is printed, with {despite}."
+                ))
             }
-            Self::NothingToExport => {
-                Problem::new("nothing-to-export", "No cell of the study has been evaluated yet.")
-                    .mend("Bring the study up to date first.")
-            }
-            Self::Picture(error) => {
-                Problem::new("picture", "A figure could not be painted.").details(format!("{error:?}"))
-            }
+            Self::NothingToExport => Problem::new(
+                "nothing-to-export",
+                "No cell of the study has been evaluated yet.",
+            )
+            .mend("Bring the study up to date first."),
+            Self::Picture(error) => Problem::new("picture", "A figure could not be painted.")
+                .details(format!("{error:?}")),
             Self::Workbook(words) => {
-                Problem::new("workbook", "The workbook could not be put together.").details(words.clone())
+                Problem::new("workbook", "The workbook could not be put together.")
+                    .details(words.clone())
             }
         }
     }

@@ -1,10 +1,10 @@
 //! Text of the exports that is the same for every study.
 
+use crate::study::Study;
 use crate::study::settings::Settings;
 use crate::study::settings::fit::{Penalty, Rule, Strength};
 use crate::study::settings::prepare::Step;
 use crate::study::settings::question::Ask;
-use crate::study::Study;
 
 /// What only the user can tell, from the items of TRIPOD+AI (Collins et al. 2024).
 pub const TO_SUPPLY: [&str; 12] = [
@@ -108,9 +108,6 @@ fn of_question(ask: &Ask) -> Vec<&'static str> {
         Ask::ChosenAgain { .. } => vec![SHAH, MEINSHAUSEN, NOGUEIRA],
         Ask::StandIns { .. } => vec![MANDOZZI],
         Ask::LeastSquares => vec![HOERL],
-        Ask::ErrorCurve
-        | Ask::CoefficientTrace
-        | Ask::Agreement
-        | Ask::Ladder { .. } => Vec::new(),
+        Ask::ErrorCurve | Ask::CoefficientTrace | Ask::Agreement | Ask::Ladder { .. } => Vec::new(),
     }
 }

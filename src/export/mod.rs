@@ -26,10 +26,15 @@ pub struct Occasion {
 pub fn caveats(context: &Context<'_>) -> Vec<(Option<CellId>, Caveat)> {
     let mut found: Vec<(Option<CellId>, Caveat)> = Vec::new();
     for cell in context.study.cells() {
-        let Some(outcome) = context.outcome(cell.id) else { continue };
+        let Some(outcome) = context.outcome(cell.id) else {
+            continue;
+        };
         for caveat in &outcome.caveats {
             // The same remark from a fit and from a question about it is printed once.
-            if !found.iter().any(|(_, known)| known.id == caveat.id && known.text == caveat.text) {
+            if !found
+                .iter()
+                .any(|(_, known)| known.id == caveat.id && known.text == caveat.text)
+            {
                 found.push((Some(cell.id), caveat.clone()));
             }
         }

@@ -66,7 +66,7 @@ pub fn png(svg: &str, scale: f64) -> Result<Vec<u8>, PictureError> {
         width: width as u64,
         height: height as u64,
     };
-    if !(width * height <= MOST_PIXELS) {
+    if width * height > MOST_PIXELS {
         return Err(too_large);
     }
     let mut pixels = Pixmap::new(width as u32, height as u32).ok_or(too_large)?;

@@ -11,11 +11,11 @@ use crate::export::{Occasion, caveats, stops};
 use crate::figure::ink::Palette;
 use crate::figure::layout::{layout, natural_size};
 use crate::figure::svg::svg;
-use crate::report::block::{Block, Grid, NamedFigure, Paragraph};
+use crate::report::block::{Align, Block, Grid, Item, ItemMark, NamedFigure, Paragraph, Span};
 use crate::report::{self, CellReport, Context};
 use crate::study::cell::{CellId, Kind};
-use crate::study::settings::data::Subject;
 use crate::study::settings::Settings;
+use crate::study::settings::data::Subject;
 
 /// A write-up: its text, and the files that the text shows.
 #[derive(Clone, Debug, PartialEq, Eq)]
@@ -51,21 +51,43 @@ pub fn write_up(
         return Err(ExportError::Stopped(standing));
     }
     let reports = report::study(context);
-    if context.study.cells().iter().all(|cell| context.outcome(cell.id).is_none()) {
+    if context
+        .study
+        .cells()
+        .iter()
+        .all(|cell| context.outcome(cell.id).is_none())
+    {
         return Err(ExportError::NothingToExport);
     }
-    let mut page = Page { context, folder, text: String::new(), figures: Vec::new(), incomplete: Vec::new() };
+    let mut page = Page {
+        context,
+        folder,
+        text: String::new(),
+        figures: Vec::new(),
+        incomplete: Vec::new(),
+    };
     page.heading(1, context.study.title());
-    page.line(&format!("*Written on {} by Widefold {}. {}*", occasion.date, env!("CARGO_PKG_VERSION"), fixed::STATUS));
+    page.line(&format!(
+        "*Written on {} by Widefold {}. {}*",
+        occasion.date,
+        env!("CARGO_PKG_VERSION"),
+        fixed::STATUS
+    ));
     if let Some(reason) = &occasion.despite {
-        page.line(&format!("*Blocking remarks were overridden. The reason given: {}*", escape(reason)));
+        page.line(&format!(
+            "*Blocking remarks were overridden. The reason given: {}*",
+            escape(reason)
+        ));
     }
     let prose = |report: &&CellReport| kind(context, report.id) == Some(Kind::Prose);
     for report in reports.iter().filter(prose) {
         page.blocks(report)?;
     }
     page.heading(2, "Methods");
-    for report in reports.iter().filter(|report| !prose(report) && !report.methods.is_empty()) {
+    for report in reports
+        .iter()
+        .filter(|report| !prose(report) && !report.methods.is_empty())
+    {
         page.heading(3, &escape(&context.title(report.id)));
         for paragraph in &report.methods {
             page.paragraph(paragraph);
@@ -75,7 +97,12 @@ pub fn write_up(
     for report in reports.iter().filter(|report| !prose(report)) {
         page.result(report)?;
     }
-    for cell in context.study.cells().iter().filter(|cell| cell.settings.kind() == Kind::Fit) {
+    for cell in context
+        .study
+        .cells()
+        .iter()
+        .filter(|cell| cell.settings.kind() == Kind::Fit)
+    {
         page.chosen(cell.id);
     }
     page.caveats();
@@ -83,7 +110,10 @@ pub fn write_up(
     page.supply();
     page.list("What this document cannot know", &fixed::NOT_KNOWABLE);
     page.references();
-    Ok(WriteUp { markdown: page.text, figures: page.figures })
+    Ok(WriteUp {
+        markdown: page.text,
+        figures: page.figures,
+    })
 }
 
 fn kind(context: &Context<'_>, id: CellId) -> Option<Kind> {
@@ -123,7 +153,10 @@ impl Page<'_> {
         }
         self.heading(3, &escape(&self.context.title(report.id)));
         if let Some(failure) = &report.failure {
-            self.line(&format!("[This part could not be evaluated. {}]", escape(&failure.problem.to_string())));
+            self.line(&format!(
+                "[This part could not be evaluated. {}]",
+                escape(&failure.problem.to_string())
+            ));
         }
         if let Some(answer) = &report.answer {
             self.paragraph(answer);
@@ -132,7 +165,11 @@ impl Page<'_> {
     }
 
     fn blocks(&mut self, report: &CellReport) -> Result<(), ExportError> {
-        for block in &report.blocks {
+        self.painted(report.id, &report.blocks)
+    }
+
+    fn painted(&mut self, id: CellId, blocks: &[Block]) -> Result<(), ExportError> {
+        for block in blocks {
             match block {
                 Block::Heading(text) => self.heading(4, &escape(text)),
                 Block::Paragraph(paragraph) => self.paragraph(paragraph),
@@ -143,14 +180,78 @@ impl Page<'_> {
                     self.text.push('\n');
                 }
                 Block::Grid(grid) => self.grid(grid),
-                Block::Figure(figure) => self.figure(report.id, figure)?,
+                Block::Figure(figure) => self.figure(id, figure)?,
+                // Prose begins below the title of the write-up.
+                Block::Section { level, text } => {
+                    self.heading(usize::from(*level).clamp(1, 5) + 1, &inline(text));
+                }
+                Block::Items(items) => self.items(items),
+                Block::Quote(inside) => {
+                    let mut quoted = Page {
+                        text: String::new(),
+                        figures: Vec::new(),
+                        incomplete: Vec::new(),
+                        ..*self
+                    };
+                    quoted.painted(id, inside)?;
+                    let (text, figures, incomplete) =
+                        (quoted.text, quoted.figures, quoted.incomplete);
+                    for line in text.trim_end().lines() {
+                        self.text.push_str(&format!("> {line}\n"));
+                    }
+                    self.text.push('\n');
+                    self.figures.extend(figures);
+                    self.incomplete.extend(incomplete);
+                }
+                Block::Code(letters) => self.line(&format!("```\n{}\n```", letters.trim_end())),
+                Block::Rule => self.line("---"),
+                Block::Tabular { head, align, rows } => self.tabular(head, align, rows),
             }
         }
         Ok(())
     }
 
+    fn items(&mut self, items: &[Item]) {
+        for item in items {
+            let indent = "  ".repeat(usize::from(item.depth));
+            let mark = match item.mark {
+                ItemMark::Bullet => "- ".to_owned(),
+                ItemMark::Number(number) => format!("{number}. "),
+                ItemMark::Continued => "  ".to_owned(),
+            };
+            self.text
+                .push_str(&format!("{indent}{mark}{}\n", inline(&item.text)));
+        }
+        self.text.push('\n');
+    }
+
+    fn tabular(&mut self, head: &[Paragraph], align: &[Align], rows: &[Vec<Paragraph>]) {
+        let line = |cells: &[Paragraph]| {
+            format!(
+                "| {} |\n",
+                cells.iter().map(inline).collect::<Vec<_>>().join(" | ")
+            )
+        };
+        self.text.push_str(&line(head));
+        let rules: Vec<&str> = align
+            .iter()
+            .map(|align| match align {
+                Align::Start => ":--",
+                Align::Middle => ":-:",
+                Align::End => "--:",
+            })
+            .collect();
+        self.text.push_str(&format!("| {} |\n", rules.join(" | ")));
+        for row in rows {
+            self.text.push_str(&line(row));
+        }
+        self.text.push('\n');
+    }
+
     fn grid(&mut self, grid: &Grid) {
-        let table = FactTable { columns: grid.columns.clone() };
+        let table = FactTable {
+            columns: grid.columns.clone(),
+        };
         self.table(&grid.title, &table, MOST_ROWS);
     }
 
@@ -166,7 +267,11 @@ impl Page<'_> {
             .iter()
             .map(|column| {
                 let name = escape(&column.name);
-                if column.unit.is_empty() { name } else { format!("{name}, {}", escape(&column.unit)) }
+                if column.unit.is_empty() {
+                    name
+                } else {
+                    format!("{name}, {}", escape(&column.unit))
+                }
             })
             .collect();
         self.text.push_str(&format!("| {} |\n", heads.join(" | ")));
@@ -174,8 +279,11 @@ impl Page<'_> {
         self.text.push_str(&format!("| {} |\n", rules.join(" | ")));
         let rows = table.n_rows();
         for row in 0..rows.min(most_rows) {
-            let values: Vec<String> =
-                table.columns.iter().map(|column| escape(&column.shown(row))).collect();
+            let values: Vec<String> = table
+                .columns
+                .iter()
+                .map(|column| escape(&column.shown(row)))
+                .collect();
             self.text.push_str(&format!("| {} |\n", values.join(" | ")));
         }
         self.text.push('\n');
@@ -190,18 +298,31 @@ impl Page<'_> {
     }
 
     fn figure(&mut self, id: CellId, figure: &NamedFigure) -> Result<(), ExportError> {
-        let name = format!("{}-{}.png", file_name(&self.context.title(id)), file_name(&figure.name));
+        let name = format!(
+            "{}-{}.png",
+            file_name(&self.context.title(id)),
+            file_name(&figure.name)
+        );
         let picture = layout(&figure.figure, natural_size(&figure.figure, WIDTH));
         let bytes = png(&svg(&picture, &Palette::paper()), PIXELS)?;
         self.figures.push((name.clone(), bytes));
         let reading = inline(&figure.reading);
-        self.line(&format!("![{}]({}/{name})", escape(&figure.figure.title), self.folder));
-        self.line(&format!("*{}. {reading}*", escape(figure.figure.title.trim_end_matches('.'))));
+        self.line(&format!(
+            "![{}]({}/{name})",
+            escape(&figure.figure.title),
+            self.folder
+        ));
+        self.line(&format!(
+            "*{}. {reading}*",
+            escape(figure.figure.title.trim_end_matches('.'))
+        ));
         Ok(())
     }
 
     fn chosen(&mut self, fit: CellId) {
-        let Some(list) = chosen::list(self.context, fit) else { return };
+        let Some(list) = chosen::list(self.context, fit) else {
+            return;
+        };
         let title = escape(&self.context.title(fit));
         match list.frequencies {
             Frequencies::Known => {
@@ -244,18 +365,23 @@ impl Page<'_> {
     }
 
     fn cautions(&mut self) {
-        let subjects = self.context.study.cells().iter().filter_map(|cell| match &cell.settings {
-            Settings::Data(data) if data.subject != Subject::Ordinary => {
-                crate::eval::caveat::health::check(data.subject)
-            }
-            Settings::Data(_)
-            | Settings::Prepare(_)
-            | Settings::Fit(_)
-            | Settings::Question(_)
-            | Settings::Compare(_)
-            | Settings::Score(_)
-            | Settings::Prose(_) => None,
-        });
+        let subjects = self
+            .context
+            .study
+            .cells()
+            .iter()
+            .filter_map(|cell| match &cell.settings {
+                Settings::Data(data) if data.subject != Subject::Ordinary => {
+                    crate::eval::caveat::health::check(data.subject)
+                }
+                Settings::Data(_)
+                | Settings::Prepare(_)
+                | Settings::Fit(_)
+                | Settings::Question(_)
+                | Settings::Compare(_)
+                | Settings::Score(_)
+                | Settings::Prose(_) => None,
+            });
         let texts: Vec<String> = subjects.map(|caveat| caveat.text).collect();
         if texts.is_empty() {
             return;
@@ -267,7 +393,10 @@ impl Page<'_> {
     }
 
     fn supply(&mut self) {
-        self.list("What its authors must still supply", &fixed::TO_SUPPLY.map(|item| item));
+        self.list(
+            "What its authors must still supply",
+            &fixed::TO_SUPPLY.map(|item| item),
+        );
         if self.incomplete.is_empty() {
             return;
         }
@@ -281,7 +410,11 @@ impl Page<'_> {
     fn list(&mut self, title: &str, items: &[&str]) {
         self.heading(2, title);
         for item in items {
-            let text = if title.starts_with("What its authors") { format!("- [to supply: {item}]\n") } else { format!("- {item}\n") };
+            let text = if title.starts_with("What its authors") {
+                format!("- [to supply: {item}]\n")
+            } else {
+                format!("- {item}\n")
+            };
             self.text.push_str(&text);
         }
         self.text.push('\n');
@@ -308,8 +441,32 @@ fn rule(column: &FactColumn) -> &'static str {
     }
 }
 
+/// A paragraph as a line of markdown.
 fn inline(paragraph: &Paragraph) -> String {
-    report::markdown(paragraph)
+    let mut line = String::new();
+    for span in &paragraph.spans {
+        match span {
+            Span::Text(text)
+            | Span::Name(text)
+            | Span::Fact { text, .. }
+            | Span::Entry { text, .. }
+            | Span::Counted { text, .. } => {
+                line.push_str(&escape(text));
+            }
+            Span::Strong(text) => line.push_str(&format!("**{}**", escape(text))),
+            Span::Emphasis(text) => line.push_str(&format!("*{}*", escape(text))),
+            Span::Code(text) | Span::Formula(text) => line.push_str(&format!("`{text}`")),
+            Span::Link { text, address } => {
+                line.push_str(&format!(
+                    "[{}]({})",
+                    escape(text),
+                    address.replace([' ', ')'], "")
+                ));
+            }
+            Span::Missing(name) => line.push_str(&format!("[to supply: {}]", escape(name))),
+        }
+    }
+    line
 }
 
 /// Text from the study inside markdown: signs that would be read as marks are marked as text.
@@ -341,7 +498,11 @@ pub fn file_name(text: &str) -> String {
         }
     }
     let name = name.trim_end_matches('-');
-    if name.is_empty() { "figure".to_owned() } else { name.chars().take(60).collect() }
+    if name.is_empty() {
+        "figure".to_owned()
+    } else {
+        name.chars().take(60).collect()
+    }
 }
 
 #[cfg(test)]

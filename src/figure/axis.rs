@@ -406,3 +406,120 @@ fn multiples(low: f64, high: f64, step: f64) -> impl Iterator<Item = f64> {
 fn decimals(step: f64) -> u8 {
     (-(step.log10() + 1e-9).floor()).clamp(0.0, 12.0) as u8
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn texts(map: &Mapping, most: usize) -> Vec<String> {
+        map.ticks(most).into_iter().map(|tick| tick.text).collect()
+    }
+
+    fn mapping(scale: Scale, values: &[f64], ends: Ends) -> Mapping {
+        let axis = Axis::scaled("", "", scale);
+        Mapping::new(&axis, values.iter().copied(), ends)
+    }
+
+    #[test]
+    fn even_axes_are_written_in_ones_twos_and_fives() {
+        let map = mapping(Scale::Linear, &[0.21, 0.93], Ends::Rounded);
+        assert_eq!(texts(&map, 6), ["0.2", "0.4", "0.6", "0.8", "1.0"]);
+        let map = mapping(Scale::Linear, &[-7.0, 12.0], Ends::Rounded);
+        assert_eq!(texts(&map, 5), ["−10", "−5", "0", "5", "10", "15"]);
+        let map = mapping(Scale::Percent, &[0.0, 1.0], Ends::Exact);
+        assert_eq!(texts(&map, 2), ["0 %", "50 %", "100 %"]);
+    }
+
+    #[test]
+    fn axes_of_ratios_are_written_at_decades_or_in_ones_twos_and_fives() {
+        let map = mapping(Scale::Log10, &[0.001, 1.0], Ends::Exact);
+        assert_eq!(texts(&map, 5), ["0.001", "0.01", "0.1", "1"]);
+        let map = mapping(Scale::Log10, &[0.5, 30.0], Ends::Exact);
+        assert_eq!(texts(&map, 5), ["0.5", "1", "2", "5", "10", "20"]);
+        let map = mapping(Scale::Log10, &[1e-9, 1e-3], Ends::Exact);
+        assert_eq!(texts(&map, 4), ["10⁻⁸", "10⁻⁶", "10⁻⁴"]);
+    }
+
+    #[test]
+    fn zero_has_a_shelf_below_the_smallest_ratio() {
+        let map = mapping(Scale::Log10AndZero, &[0.0, 0.1, 10.0], Ends::Padded);
+        assert_eq!(texts(&map, 5)[0], "0");
+        let places = [0.0, -1e-17, 0.1, 10.0].map(|value| map.share(value).unwrap());
+        assert!(places[0] == places[1] && places[1] < SHELF && SHELF < places[2]);
+        assert!(places[2] < places[3] && places[3] < 1.0);
+    }
+
+    #[test]
+    fn large_and_small_numbers_are_written_with_a_common_factor() {
+        let map = mapping(Scale::Linear, &[1.2e9, 3.4e9], Ends::Rounded);
+        assert_eq!(map.factor(), "× 10⁹");
+        assert_eq!(texts(&map, 5), ["1.0", "1.5", "2.0", "2.5", "3.0", "3.5"]);
+        let map = mapping(Scale::Linear, &[2e-7, 9e-7], Ends::Rounded);
+        assert_eq!(map.factor(), "× 10⁻⁶");
+        assert_eq!(
+            mapping(Scale::Linear, &[0.0, 40.0], Ends::Exact).factor(),
+            ""
+        );
+    }
+
+    #[test]
+    fn numbers_without_a_place_have_none() {
+        let even = mapping(Scale::Linear, &[0.0, 1.0], Ends::Exact);
+        let ratio = mapping(Scale::Log10, &[0.1, 1.0], Ends::Exact);
+        for odd in [f64::NAN, f64::INFINITY, f64::NEG_INFINITY, f64::MAX] {
+            assert_eq!(even.share(odd), None);
+        }
+        assert_eq!(ratio.share(0.0), None);
+        assert_eq!(ratio.share(-3.0), None);
+        assert_eq!(even.share(0.25), Some(0.25));
+    }
+
+    #[test]
+    fn written_numbers_lie_on_the_axis_in_order_whatever_the_numbers() {
+        let scales = [
+            Scale::Linear,
+            Scale::Percent,
+            Scale::Log10,
+            Scale::Log10AndZero,
+        ];
+        let sizes = [1e-305, 1e-40, 3e-5, 0.7, 1.0, 812.0, 4e7, 1e200, 9e299];
+        for scale in scales {
+            for low in sizes {
+                for high in sizes {
+                    for ends in [Ends::Rounded, Ends::Padded, Ends::Exact] {
+                        for values in [[low, high], [-low, high], [low, low]] {
+                            let map = mapping(scale.clone(), &values, ends);
+                            let ticks = map.ticks(5);
+                            let inside = |tick: &Tick| (-1e-6..=1.0 + 1e-6).contains(&tick.share);
+                            assert!(ticks.iter().all(inside), "{scale:?} {values:?} {ticks:?}");
+                            assert!(
+                                ticks.windows(2).all(|pair| pair[0].share < pair[1].share),
+                                "{scale:?} {values:?} {ticks:?}"
+                            );
+                            assert!(ticks.len() < 20, "{scale:?} {values:?} {ticks:?}");
+                        }
+                    }
+                }
+            }
+        }
+    }
+
+    #[test]
+    fn given_numbers_are_written_with_the_decimals_that_they_need() {
+        let axis = Axis::linear("", "")
+            .with_range(0.0, 24.0)
+            .with_ticks(&[0.0, 7.5, 24.0, 90.0]);
+        let map = Mapping::new(&axis, std::iter::empty(), Ends::Exact);
+        assert_eq!(texts(&map, 3), ["0.0", "7.5", "24.0"]);
+    }
+
+    #[test]
+    fn an_axis_without_numbers_or_with_equal_ones_has_a_length() {
+        for values in [&[][..], &[f64::NAN], &[0.0], &[5.0, 5.0], &[-3e-9, -3e-9]] {
+            for scale in [Scale::Linear, Scale::Log10, Scale::Log10AndZero] {
+                let map = mapping(scale, values, Ends::Exact);
+                assert!(map.high > map.low, "{values:?}");
+            }
+        }
+    }
+}

@@ -66,6 +66,29 @@ impl Face {
         self == Self::SerifItalic
     }
 
+    /// From the top of the font's own line to its baseline, in em: where a program that places
+    /// text by the top of its line has to begin (the `hhea` table).
+    #[must_use]
+    pub fn line_ascent(self) -> f64 {
+        match self {
+            Self::Sans | Self::SansStrong | Self::Serif | Self::SerifItalic | Self::SerifStrong => {
+                1.069
+            }
+            Self::Symbols => 0.928,
+        }
+    }
+
+    /// From the baseline to the bottom of the font's own line, in em.
+    #[must_use]
+    pub fn line_descent(self) -> f64 {
+        match self {
+            Self::Sans | Self::SansStrong | Self::Serif | Self::SerifItalic | Self::SerifStrong => {
+                0.293
+            }
+            Self::Symbols => 0.236,
+        }
+    }
+
     /// How far its letters reach above the baseline, in em: what accented capitals need.
     #[must_use]
     pub fn ascent(self) -> f64 {

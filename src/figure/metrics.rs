@@ -47,6 +47,24 @@ pub fn fitted(text: &str, face: Face, size: f64, room: f64) -> String {
     cut
 }
 
+/// A text broken between words into at most `most` lines of `room` pixels; what does not fit
+/// stays on the last line, to be cut short there.
+#[must_use]
+pub fn lines(text: &str, face: Face, size: f64, room: f64, most: usize) -> Vec<String> {
+    let mut lines: Vec<String> = Vec::new();
+    for word in text.split_whitespace() {
+        let count = lines.len();
+        match lines.last_mut() {
+            Some(line) if count >= most || width(&format!("{line} {word}"), face, size) <= room => {
+                line.push(' ');
+                line.push_str(word);
+            }
+            Some(_) | None => lines.push(word.to_owned()),
+        }
+    }
+    lines
+}
+
 /// The width of a letter in em: in the face itself, else in the font for symbols.
 fn advance(letter: char, face: Face) -> f64 {
     let code = u32::from(letter);
@@ -132,6 +150,20 @@ mod tests {
         assert!(width(&cut, Face::Sans, 12.0) <= 80.0);
         assert_eq!(fitted(name, Face::Sans, 12.0, 800.0), name);
         assert_eq!(fitted(name, Face::Sans, 12.0, 3.0), "");
+    }
+
+    #[test]
+    fn a_long_text_is_broken_between_words() {
+        let text = "observed against predicted salt in moisture";
+        let broken = lines(text, Face::Sans, 12.0, 150.0, 5);
+        assert!(broken.len() == 2 && broken.join(" ") == text);
+        assert!(
+            broken
+                .iter()
+                .all(|line| width(line, Face::Sans, 12.0) <= 150.0)
+        );
+        assert_eq!(lines(text, Face::Sans, 12.0, 10.0, 2).len(), 2);
+        assert!(lines("", Face::Sans, 12.0, 10.0, 2).is_empty());
     }
 
     #[test]

@@ -320,6 +320,8 @@ pub enum Weight {
     Normal,
     /// One of many.
     Fine,
+    /// One of very many: see-through, so that where they lie close is darker.
+    Faint,
     /// One of several, broken into dashes.
     Dashed,
 }

@@ -61,12 +61,20 @@ pub fn curve(share: f64, strengths: &[f64], by_repeat: &[Vec<Vec<f64>>]) -> Curv
         let n_parts = parts.len() as f64;
         for at in 0..strengths.len() {
             let mean = parts.iter().map(|part| part[at]).sum::<f64>() / n_parts;
-            let square = parts.iter().map(|part| (part[at] - mean).powi(2)).sum::<f64>();
+            let square = parts
+                .iter()
+                .map(|part| (part[at] - mean).powi(2))
+                .sum::<f64>();
             errors[at] += mean / n_repeats;
             standard_errors[at] += (square / (n_parts - 1.0) / n_parts).sqrt() / n_repeats;
         }
     }
-    Curve { share, strengths: strengths.to_vec(), errors, standard_errors }
+    Curve {
+        share,
+        strengths: strengths.to_vec(),
+        errors,
+        standard_errors,
+    }
 }
 
 /// The strength that a rule picks from a curve: its place in the range.
@@ -103,7 +111,11 @@ pub fn lowest(errors: &[f64]) -> Option<usize> {
 #[must_use]
 pub fn generalised_cross_validation(mean_square: f64, n: f64, df: f64) -> f64 {
     let left = 1.0 - df / n;
-    if left <= 1e-12 { f64::INFINITY } else { mean_square / left.powi(2) }
+    if left <= 1e-12 {
+        f64::INFINITY
+    } else {
+        mean_square / left.powi(2)
+    }
 }
 
 /// The extended Bayesian information criterion of a gaussian fit with `k` effective degrees of
@@ -142,7 +154,9 @@ mod tests {
     fn curve_of(errors: &[f64], standard_errors: &[f64]) -> Curve {
         Curve {
             share: 1.0,
-            strengths: (0..errors.len()).map(|at| 0.5_f64.powi(at as i32)).collect(),
+            strengths: (0..errors.len())
+                .map(|at| 0.5_f64.powi(at as i32))
+                .collect(),
             errors: errors.to_vec(),
             standard_errors: standard_errors.to_vec(),
         }
@@ -159,7 +173,10 @@ mod tests {
     fn equal_errors_go_to_the_larger_strength_and_nan_is_never_chosen() {
         let curve = curve_of(&[f64::NAN, 3.0, 3.0, 5.0], &[0.0; 4]);
         assert_eq!(pick(Rule::LowestError, &curve), Some(1));
-        assert_eq!(pick(Rule::LowestError, &curve_of(&[f64::NAN], &[0.0])), None);
+        assert_eq!(
+            pick(Rule::LowestError, &curve_of(&[f64::NAN], &[0.0])),
+            None
+        );
     }
 
     #[test]

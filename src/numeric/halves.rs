@@ -26,12 +26,16 @@ pub fn select_on_halves(
     threads: Threads,
     work: &Work<'_>,
 ) -> Result<(Vec<HalfChoice>, Tally), Halt> {
-    let halves: Vec<&Split> = pairs.iter().flat_map(|(first, second)| [first, second]).collect();
+    let halves: Vec<&Split> = pairs
+        .iter()
+        .flat_map(|(first, second)| [first, second])
+        .collect();
     let silent = work.silent();
     let results = in_order(threads, halves.len(), work, |at| {
         let mut tally = Tally::default();
-        let fit =
-            fit_part(material, procedure, halves[at], share, strengths, &mut tally, &silent);
+        let fit = fit_part(
+            material, procedure, halves[at], share, strengths, &mut tally, &silent,
+        );
         match fit {
             Ok(fit) => {
                 let standardised = fit.path.standardised(strengths.len() - 1);

@@ -22,7 +22,7 @@ pub struct Proof {
 /// A step that was learnt from rows that it must not see.
 #[derive(Clone, Debug, PartialEq, Eq, PartialOrd, Ord)]
 pub struct Violation {
-    /// The step's place in the chain, from 0.
+    /// The step's place in the chain, from 0; [`usize::MAX`] for scaling in the solver.
     pub step: usize,
     /// What is wrong with the rows.
     pub breach: Breach,
@@ -96,6 +96,25 @@ impl Proof {
                 .extend(beside.difference(&training).copied());
         }
         self.ever_held_out.extend(held_out);
+    }
+
+    /// Compares the rows from which the solver took means and standard deviations, where
+    /// centring or scaling is left to it, with the split for which they are used.
+    pub fn check_moments(&mut self, rows: &[usize], split: &Split) {
+        self.n_learned_steps += 1;
+        let is_training = |row: &&usize| split.training().binary_search(row).is_ok();
+        let outside: Vec<usize> = rows
+            .iter()
+            .filter(|row| !is_training(row))
+            .copied()
+            .collect();
+        if !outside.is_empty() {
+            self.record(Violation {
+                step: usize::MAX,
+                breach: Breach::OutsideTraining,
+                rows: outside,
+            });
+        }
     }
 
     /// Takes in what another proof has compared.

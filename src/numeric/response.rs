@@ -78,10 +78,15 @@ impl Response {
     /// without predictors. NaN for another kind of outcome.
     #[must_use]
     pub fn baseline(&self, rows: &[usize], weights: Option<&[f64]>) -> f64 {
-        let Self::Measured(values) = self else { return f64::NAN };
+        let Self::Measured(values) = self else {
+            return f64::NAN;
+        };
         let weight = |row: usize| weights.map_or(1.0, |weights| weights[row]);
         let total: f64 = rows.iter().map(|&row| weight(row)).sum();
-        rows.iter().map(|&row| weight(row) * values[row]).sum::<f64>() / total
+        rows.iter()
+            .map(|&row| weight(row) * values[row])
+            .sum::<f64>()
+            / total
     }
 
     /// The squared error of a linear predictor for one sample of a measured outcome; NaN for
@@ -90,7 +95,9 @@ impl Response {
     pub fn squared_error(&self, row: usize, eta: f64) -> f64 {
         match self {
             Self::Measured(values) => (values[row] - eta).powi(2),
-            Self::YesNo(_) | Self::Classes { .. } | Self::Count { .. } | Self::Time { .. } => f64::NAN,
+            Self::YesNo(_) | Self::Classes { .. } | Self::Count { .. } | Self::Time { .. } => {
+                f64::NAN
+            }
         }
     }
 

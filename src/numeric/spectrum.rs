@@ -73,7 +73,10 @@ pub fn spectrum(
     let largest = eigenvalues.first().copied().unwrap_or(0.0);
     eigenvalues.retain(|value| *value > ZERO * largest);
     eigenvalues.truncate(columns.len());
-    Ok(Spectrum { eigenvalues, n_predictors: columns.len() })
+    Ok(Spectrum {
+        eigenvalues,
+        n_predictors: columns.len(),
+    })
 }
 
 impl Spectrum {
@@ -93,9 +96,19 @@ impl Spectrum {
     /// the smallest is zero.
     #[must_use]
     pub fn condition(&self, k: f64) -> f64 {
-        let Some(largest) = self.eigenvalues.first() else { return f64::INFINITY };
-        let smallest = if self.n_zero() > 0 { 0.0 } else { self.eigenvalues[self.rank() - 1] };
-        if smallest + k <= 0.0 { f64::INFINITY } else { (largest + k) / (smallest + k) }
+        let Some(largest) = self.eigenvalues.first() else {
+            return f64::INFINITY;
+        };
+        let smallest = if self.n_zero() > 0 {
+            0.0
+        } else {
+            self.eigenvalues[self.rank() - 1]
+        };
+        if smallest + k <= 0.0 {
+            f64::INFINITY
+        } else {
+            (largest + k) / (smallest + k)
+        }
     }
 
     /// The participation ratio (Σd²)²/Σd⁴ of the eigenvalues d²: how many directions really carry
@@ -104,7 +117,11 @@ impl Spectrum {
     pub fn participation_ratio(&self) -> f64 {
         let sum: f64 = self.eigenvalues.iter().sum();
         let squares: f64 = self.eigenvalues.iter().map(|v| v * v).sum();
-        if squares > 0.0 { sum * sum / squares } else { 0.0 }
+        if squares > 0.0 {
+            sum * sum / squares
+        } else {
+            0.0
+        }
     }
 }
 

@@ -128,6 +128,13 @@ pub enum Span {
         /// The entry as it is shown, with its unit.
         text: String,
     },
+    /// A number from the ledger of the study: looks, openings of the sealed set.
+    Counted {
+        /// What is counted.
+        what: String,
+        /// The number as it is shown.
+        text: String,
+    },
     /// A fact that does not exist, marked in place; the text as it was typed.
     Missing(String),
 }
@@ -145,7 +152,8 @@ impl Span {
             | Self::Name(text)
             | Self::Formula(text)
             | Self::Fact { text, .. }
-            | Self::Entry { text, .. } => text.clone(),
+            | Self::Entry { text, .. }
+            | Self::Counted { text, .. } => text.clone(),
             Self::Missing(name) => format!("{{{name}}}"),
         }
     }
@@ -214,6 +222,15 @@ impl Paragraph {
     #[must_use]
     pub fn formula(self, letters: impl Into<String>) -> Self {
         self.span(Span::Formula(letters.into()))
+    }
+
+    /// The same paragraph with a number from the ledger of the study.
+    #[must_use]
+    pub fn counted(self, what: &str, count: usize) -> Self {
+        self.span(Span::Counted {
+            what: what.to_owned(),
+            text: number::text(count as f64, Precision::Whole),
+        })
     }
 
     /// The same paragraph with a fact, number and unit. A fact that the cell does not give is
@@ -290,7 +307,8 @@ impl Paragraph {
                 | Span::Name(_)
                 | Span::Formula(_)
                 | Span::Fact { .. }
-                | Span::Entry { .. } => None,
+                | Span::Entry { .. }
+                | Span::Counted { .. } => None,
             })
             .collect()
     }

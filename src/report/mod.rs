@@ -118,6 +118,14 @@ pub fn study(context: &Context<'_>) -> Vec<CellReport> {
         .collect()
 }
 
+/// How many distinct configurations have been evaluated against the outcome, for the write-up.
+#[must_use]
+pub fn looks(context: &Context<'_>) -> Paragraph {
+    Paragraph::of("Distinct configurations that had been evaluated against the outcome: ")
+        .counted("looks", context.ledger.looks().len())
+        .text(".")
+}
+
 /// The settings of a cell as sentences with editable words, in the present tense.
 #[must_use]
 pub fn sentences(context: &Context<'_>, cell: &Cell, facts: Option<&Facts>) -> Vec<Sentence> {

@@ -1,1 +1,819 @@
-//! t
+//! A study with facts written by hand, for tests: the cellar scans, fitted and asked.
+
+use crate::base::number::Precision;
+use crate::eval::fact::{Fact, FactColumn, Facts};
+use crate::eval::outcome::{Gives, Outcome};
+use crate::eval::standing::{Standing, Standings, State};
+use crate::report::Context;
+use crate::study::Study;
+use crate::study::cell::{Cell, CellId};
+use crate::study::ledger::Ledger;
+use crate::study::link::Link;
+use crate::study::settings::Settings;
+use crate::study::settings::data::{Data, Sealed};
+use crate::study::settings::fit::{Fit, Judge, Penalty, Strength};
+use crate::study::settings::prepare::Step;
+use crate::study::settings::question::{Ask, Question};
+use crate::study::settings::spread;
+use std::sync::Arc;
+
+const MEANING: &str = "What it is.";
+const UNIT: &str = "g/100 g";
+
+/// A study and what came of it.
+pub struct Bench {
+    pub study: Study,
+    pub standings: Standings,
+    pub ledger: Ledger,
+}
+
+impl Bench {
+    /// Cells one after the other from number 1 on, with their facts.
+    pub fn of(cells: Vec<(&str, Settings, Option<Facts>)>) -> Self {
+        let mut standings = Standings::default();
+        let mut list = Vec::new();
+        for (at, (title, settings, facts)) in cells.into_iter().enumerate() {
+            let id = CellId::new(at as u32 + 1);
+            list.push(Cell {
+                id,
+                title: title.to_owned(),
+                settings,
+            });
+            if let Some(facts) = facts {
+                let outcome = Outcome {
+                    gives: Gives::Facts,
+                    facts,
+                    caveats: Vec::new(),
+                };
+                let standing = Standing {
+                    state: State::Current,
+                    outcome: Some(Arc::new(outcome)),
+                    failure: None,
+                };
+                standings.put(id, standing);
+            }
+        }
+        Self {
+            study: Study::restored("Cellar light", list, 1),
+            standings,
+            ledger: Ledger::default(),
+        }
+    }
+
+    /// The study around a fit, with these questions asked of it.
+    pub fn around(data: &Data, fit: &Fit, asks: &[Ask]) -> Self {
+        let prepare = spread::prepare().swap_remove(3);
+        let steps = prepare.steps.clone();
+        let mut cells = vec![
+            (
+                "cellar scans",
+                Settings::Data(data.clone()),
+                Some(data_facts(data)),
+            ),
+            (
+                "prepared scans",
+                Settings::Prepare(prepare),
+                Some(prepare_facts(&steps)),
+            ),
+            (
+                "salt lasso",
+                Settings::Fit(fit.clone()),
+                Some(fit_facts(data, fit)),
+            ),
+            (
+                "salt ridge",
+                Settings::Fit(fit.clone()),
+                Some(fit_facts(data, fit)),
+            ),
+        ];
+        for ask in asks {
+            let question = Question {
+                fit: Link::to(spread::FIT),
+                ask: ask.clone(),
+            };
+            cells.push((
+                ask.title(),
+                Settings::Question(question),
+                Some(question_facts(ask)),
+            ));
+        }
+        Self::of(cells)
+    }
+
+    /// The demo study, with every question asked.
+    pub fn cellar() -> Self {
+        let fit = Fit {
+            input: Link::to(spread::PREPARE),
+            ..Fit::default()
+        };
+        Self::around(&spread::cellar(), &fit, &Ask::catalogue())
+    }
+
+    pub fn context(&self) -> Context<'_> {
+        Context {
+            study: &self.study,
+            standings: &self.standings,
+            ledger: &self.ledger,
+        }
+    }
+}
+
+/// Pushes facts with less writing.
+struct Writer(Facts);
+
+impl Writer {
+    fn counts(mut self, counts: &[(&str, usize)]) -> Self {
+        for (name, value) in counts {
+            self.0.push(Fact::count(name, *value, MEANING));
+        }
+        self
+    }
+
+    fn numbers(mut self, unit: &str, precision: Precision, numbers: &[(&str, f64)]) -> Self {
+        for (name, value) in numbers {
+            self.0
+                .push(Fact::number(name, *value, unit, precision, MEANING));
+        }
+        self
+    }
+
+    fn texts(mut self, texts: &[(&str, &str)]) -> Self {
+        for (name, text) in texts {
+            self.0.push(Fact::text(name, *text, MEANING));
+        }
+        self
+    }
+
+    fn table(mut self, name: &str, columns: Vec<FactColumn>) -> Self {
+        self.0.push(Fact::table(name, columns, MEANING));
+        self
+    }
+}
+
+fn words(name: &str, texts: &[&str]) -> FactColumn {
+    let texts = texts.iter().map(|text| (*text).to_owned()).collect();
+    FactColumn::texts(name, texts, MEANING)
+}
+
+fn column(name: &str, unit: &str, precision: Precision, numbers: &[f64]) -> FactColumn {
+    FactColumn::numbers(name, numbers.to_vec(), unit, precision, MEANING)
+}
+
+fn whole(name: &str, numbers: &[f64]) -> FactColumn {
+    column(name, "", Precision::Whole, numbers)
+}
+
+pub fn data_facts(data: &Data) -> Facts {
+    let has_units = data.unit.is_some();
+    let mut writer = Writer(Facts::new())
+        .counts(&[
+            ("table count", data.tables.len()),
+            ("samples read", 360),
+            ("samples joined", 358),
+            ("samples excluded", data.exclusions.len()),
+            ("samples without outcome", 0),
+            ("samples", 356),
+            ("units", 119),
+            ("predictors", 700),
+            ("predictors ignored", data.ignored.len()),
+            ("covariates", data.covariates.len()),
+            ("missing values", 12),
+            ("below-limit values", 0),
+        ])
+        .numbers(
+            "",
+            Precision::Percent(2),
+            &[
+                ("missing share", 0.000_05),
+                ("largest missing share", 0.011),
+            ],
+        )
+        .texts(&[
+            ("outcome", "salt in moisture"),
+            ("outcome unit", UNIT),
+            ("outcome kind", "measured quantity"),
+            ("predictor range", "900 nm … 1700 nm"),
+        ])
+        .numbers(
+            UNIT,
+            Precision::Decimals(2),
+            &[
+                ("outcome mean", 2.914),
+                ("outcome standard deviation", 0.617),
+                ("outcome least", 1.81),
+                ("outcome most", 4.19),
+            ],
+        )
+        .table(
+            "source files",
+            vec![
+                words("file", &["cellar-scans.csv", "cellar-lab.xlsx"]),
+                words("sheet", &["", "Wet chemistry"]),
+                whole("bytes", &[2_104_331.0, 18_220.0]),
+                words("sha-256", &["0a1b", "2c3d"]),
+                words("orientation", &["samples in rows", "samples in rows"]),
+                whole("rows read", &[360.0, 160.0]),
+                whole("columns read", &[704.0, 6.0]),
+            ],
+        )
+        .table(
+            "join report",
+            vec![
+                words("table", &["cellar-lab.xlsx"]),
+                words("key", &["wheel"]),
+                whole("matched", &[358.0]),
+                whole("only left", &[2.0]),
+                whole("only right", &[1.0]),
+                whole("repeated", &[0.0]),
+            ],
+        )
+        .table(
+            "import findings",
+            vec![
+                words(
+                    "finding",
+                    &["The column “salt_calc” nearly equals the outcome."],
+                ),
+                whole("count", &[1.0]),
+                words("places", &["column “salt_calc”"]),
+                words("treatment", &["kept"]),
+            ],
+        );
+    if has_units {
+        writer = writer
+            .counts(&[("samples per unit least", 2), ("samples per unit most", 3)])
+            .texts(&[("unit column", "wheel")]);
+    }
+    if data.batch.is_some() {
+        writer = writer
+            .counts(&[("batches", 4)])
+            .texts(&[("batch column", "cave")]);
+    }
+    if !data.covariates.is_empty() {
+        writer = writer.texts(&[("covariate names", "age, cellar temperature")]);
+    }
+    if data.sealed != Sealed::Nothing {
+        writer = writer.counts(&[("sealed samples", 120), ("sealed units", 40)]);
+    }
+    let outcome_error = data.outcome.as_ref().and_then(|o| o.reference_error);
+    if outcome_error.is_some() {
+        writer = writer.numbers(UNIT, Precision::Decimals(2), &[("reference error", 0.12)]);
+    }
+    if !data.exclusions.is_empty() {
+        writer = writer.table(
+            "exclusions",
+            vec![
+                words("sample", &["W007-b", "W044-c"]),
+                words("reason", &["probe touched the rind"; 2]),
+                words("outcome seen", &["after", "after"]),
+            ],
+        );
+    }
+    if !data.corrections.is_empty() {
+        writer = writer.table(
+            "corrections",
+            vec![
+                words("sample", &["W012-a"]),
+                words("column", &["salt in moisture"]),
+                words("from", &["31.2"]),
+                words("to", &["3.12"]),
+                words("reason", &["decimal point lost"]),
+                words("outcome seen", &["before"]),
+            ],
+        );
+    }
+    writer.0
+}
+
+pub fn prepare_facts(steps: &[Step]) -> Facts {
+    let texts = |text: fn(&Step) -> String| -> Vec<String> { steps.iter().map(text).collect() };
+    let name = |step: &Step| match step {
+        Step::SavitzkyGolay { .. } => "first derivative by local polynomials".to_owned(),
+        Step::Log { .. }
+        | Step::StandardNormalVariate
+        | Step::Detrend { .. }
+        | Step::ScatterCorrection
+        | Step::MissingShareFilter { .. }
+        | Step::NearConstantFilter { .. }
+        | Step::MedianImputation
+        | Step::BelowLimit { .. }
+        | Step::Center
+        | Step::UnitVariance => "another step".to_owned(),
+    };
+    let parameters = |step: &Step| match step {
+        Step::SavitzkyGolay { window, degree, .. } => format!("window {window}, degree {degree}"),
+        Step::Log { .. }
+        | Step::StandardNormalVariate
+        | Step::Detrend { .. }
+        | Step::ScatterCorrection
+        | Step::MissingShareFilter { .. }
+        | Step::NearConstantFilter { .. }
+        | Step::MedianImputation
+        | Step::BelowLimit { .. }
+        | Step::Center
+        | Step::UnitVariance => String::new(),
+    };
+    let class = |step: &Step| step.class().words().to_owned();
+    Writer(Facts::new())
+        .counts(&[
+            ("steps", steps.len()),
+            ("learned steps", 2),
+            ("predictors entering", 700),
+            ("predictors leaving", 700),
+        ])
+        .table(
+            "step list",
+            vec![
+                FactColumn::texts("step", texts(name), MEANING),
+                FactColumn::texts("class", texts(class), MEANING),
+                FactColumn::texts("parameters", texts(parameters), MEANING),
+            ],
+        )
+        .0
+}
+
+pub fn fit_facts(data: &Data, fit: &Fit) -> Facts {
+    let share = match &fit.penalty {
+        Penalty::Ridge => 0.0,
+        Penalty::Lasso => 1.0,
+        Penalty::ElasticNet { .. } => 0.5,
+    };
+    let three = Precision::Significant(3);
+    let two = Precision::Decimals(2);
+    let mut writer = Writer(Facts::new())
+        .numbers("", Precision::Significant(2), &[("lasso share", share)])
+        .counts(&[
+            ("samples", 356),
+            ("units", 119),
+            ("predictors", 700),
+            ("covariates", data.covariates.len()),
+            ("chosen predictors", 5),
+            ("solutions", 104_900),
+            ("unsettled solutions", 0),
+        ])
+        .numbers("", Precision::Full, &[("seed", fit.seed as f64)])
+        .numbers(
+            "",
+            three,
+            &[
+                ("chosen strength", 0.031_2),
+                ("strength times n", 11.1),
+                ("strength times 2n", 22.2),
+                ("inverse strength", 0.090_1),
+                ("effective degrees of freedom", 31.2),
+            ],
+        )
+        .numbers(
+            UNIT,
+            two,
+            &[("apparent rmse", 0.151), ("apparent mae", 0.12)],
+        )
+        .numbers("", two, &[("apparent r²", 0.94)])
+        .numbers(
+            "",
+            Precision::Significant(1),
+            &[("worst gap", 8e-10), ("solver tolerance", 1e-9)],
+        )
+        .table(
+            "coefficients",
+            vec![
+                words(
+                    "predictor",
+                    &["1452 nm", "1150 nm", "1384 nm", "1716 nm", "1210 nm"],
+                ),
+                column("coefficient", UNIT, three, &[-3.2, 1.9, 1.1, 0.3, -0.1]),
+                column(
+                    "standardised coefficient",
+                    UNIT,
+                    three,
+                    &[-0.31, 0.22, 0.14, 0.05, -0.02],
+                ),
+            ],
+        );
+    if let Penalty::ElasticNet { shares } = &fit.penalty
+        && shares.len() > 1
+    {
+        writer = writer.table(
+            "lasso shares tried",
+            vec![
+                column(
+                    "lasso share",
+                    "",
+                    Precision::Significant(2),
+                    &[0.2, 0.5, 0.8],
+                ),
+                column("tuning error", UNIT, two, &[0.29, 0.28, 0.28]),
+            ],
+        );
+    }
+    if let Strength::Chosen { range, .. } = fit.strength {
+        writer = writer
+            .counts(&[
+                ("strengths tried", range.count as usize),
+                ("strength position", 51),
+                ("inner parts", 10),
+                ("inner repeats", 5),
+            ])
+            .numbers(
+                "",
+                three,
+                &[
+                    ("strongest strength", 0.994),
+                    ("weakest strength", 0.000_994),
+                ],
+            )
+            .texts(&[("strength at edge", "no")])
+            .table("error curve", error_curve());
+    }
+    match fit.judge {
+        Judge::Declined => writer = writer.texts(&[("judged", "not judged")]),
+        Judge::Nested(_) => writer = nested(writer),
+    }
+    writer.0
+}
+
+fn nested(writer: Writer) -> Writer {
+    let three = Precision::Significant(3);
+    let two = Precision::Decimals(2);
+    writer
+        .texts(&[("judged", "nested cross-validation")])
+        .counts(&[
+            ("outer parts", 5),
+            ("outer repeats", 10),
+            ("fits checked", 2_550),
+            ("learned steps checked", 5_100),
+            ("proof violations", 0),
+            ("chosen predictors outer median", 6),
+            ("chosen predictors outer least", 3),
+            ("chosen predictors outer most", 14),
+        ])
+        .numbers(
+            UNIT,
+            two,
+            &[
+                ("nested rmse", 0.276),
+                ("nested mae", 0.221),
+                ("nested bias", -0.01),
+                ("nested rmse spread", 0.011),
+                ("nested rmse low", 0.24),
+                ("nested rmse high", 0.31),
+                ("mean-only rmse", 0.618),
+                ("mean-only mae", 0.52),
+            ],
+        )
+        .numbers(
+            "",
+            two,
+            &[
+                ("nested r²", 0.80),
+                ("nested r² low", 0.75),
+                ("nested r² high", 0.85),
+                ("nested slope", 1.03),
+                ("optimism", 0.14),
+            ],
+        )
+        .numbers(
+            "",
+            Precision::Percent(0),
+            &[
+                ("improvement over the mean", 0.80),
+                ("improvement low", 0.72),
+                ("improvement high", 0.87),
+            ],
+        )
+        .numbers(
+            "",
+            three,
+            &[
+                ("outer strength median", 0.0307),
+                ("outer strength lower quartile", 0.0251),
+                ("outer strength upper quartile", 0.0402),
+            ],
+        )
+        .table(
+            "outer choices",
+            vec![
+                whole("repeat", &[1.0, 1.0]),
+                whole("part", &[1.0, 2.0]),
+                column("strength", "", three, &[0.0307, 0.0402]),
+                whole("chosen predictors", &[6.0, 5.0]),
+            ],
+        )
+}
+
+fn error_curve() -> Vec<FactColumn> {
+    let two = Precision::Decimals(2);
+    vec![
+        column(
+            "strength",
+            "",
+            Precision::Significant(3),
+            &[0.994, 0.1, 0.0312, 0.01, 0.000_994],
+        ),
+        column("error", UNIT, two, &[0.62, 0.34, 0.27, 0.29, 0.36]),
+        column("standard error", UNIT, two, &[0.03, 0.02, 0.02, 0.02, 0.03]),
+        column("low", UNIT, two, &[0.59, 0.32, 0.25, 0.27, 0.33]),
+        column("high", UNIT, two, &[0.65, 0.36, 0.29, 0.31, 0.39]),
+        whole("chosen predictors", &[0.0, 3.0, 5.0, 19.0, 118.0]),
+    ]
+}
+
+pub fn question_facts(ask: &Ask) -> Facts {
+    let three = Precision::Significant(3);
+    let two = Precision::Decimals(2);
+    let strength = Writer(Facts::new()).numbers("", three, &[("chosen strength", 0.0312)]);
+    match ask {
+        Ask::LeastSquares => {
+            strength
+                .counts(&[
+                    ("samples", 356),
+                    ("predictors", 700),
+                    ("rank", 355),
+                    ("zero eigenvalues", 345),
+                ])
+                .numbers(
+                    "",
+                    three,
+                    &[
+                        ("largest eigenvalue", 412.0),
+                        ("smallest positive eigenvalue", 1.1e-6),
+                        ("condition number", f64::INFINITY),
+                        ("penalised condition number", 13_200.0),
+                        ("effective degrees of freedom", 31.2),
+                        ("participation ratio", 2.61),
+                    ],
+                )
+                .table(
+                    "spectrum",
+                    vec![
+                        whole("direction", &[1.0, 2.0, 3.0]),
+                        column("eigenvalue", "", three, &[412.0, 20.0, 0.0]),
+                        column("penalised eigenvalue", "", three, &[412.03, 20.03, 0.0312]),
+                        column("shrinkage factor", "", three, &[0.9999, 0.998, 0.0]),
+                    ],
+                )
+                .0
+        }
+        Ask::ErrorCurve => {
+            strength
+                .counts(&[("chosen predictors", 5)])
+                .numbers(
+                    UNIT,
+                    two,
+                    &[
+                        ("lowest error", 0.27),
+                        ("lowest error standard error", 0.02),
+                    ],
+                )
+                .numbers(
+                    "",
+                    three,
+                    &[
+                        ("one-standard-error strength", 0.0501),
+                        ("strength log10 interquartile range", 0.204),
+                        ("strength least", 0.0121),
+                        ("strength most", 0.0702),
+                    ],
+                )
+                .numbers("", Precision::Percent(0), &[("curve improvement", 0.56)])
+                .table("error curve", error_curve())
+                .0
+        }
+        Ask::CoefficientTrace => {
+            strength
+                .counts(&[
+                    ("predictors ever chosen", 131),
+                    ("chosen predictors", 5),
+                    ("sign changes", 4),
+                ])
+                .table(
+                    "trace",
+                    vec![
+                        words("predictor", &["1452 nm", "1452 nm", "1150 nm"]),
+                        column("strength", "", three, &[0.1, 0.0312, 0.0312]),
+                        column(
+                            "standardised coefficient",
+                            UNIT,
+                            three,
+                            &[-0.2, -0.31, 0.22],
+                        ),
+                    ],
+                )
+                .table(
+                    "trace strengths",
+                    vec![
+                        column("strength", "", three, &[0.994, 0.1, 0.0312]),
+                        whole("chosen predictors", &[0.0, 1.0, 2.0]),
+                    ],
+                )
+                .0
+        }
+        Ask::Agreement => {
+            Writer(Facts::new())
+                .numbers(
+                    UNIT,
+                    two,
+                    &[
+                        ("nested rmse", 0.276),
+                        ("nested mae", 0.221),
+                        ("bias", -0.012),
+                        ("sep", 0.275),
+                        ("intercept", -0.08),
+                        ("reference error", 0.12),
+                    ],
+                )
+                .numbers(
+                    "",
+                    two,
+                    &[
+                        ("nested r²", 0.80),
+                        ("slope", 1.03),
+                        ("slope low", 0.95),
+                        ("slope high", 1.11),
+                        ("correlation", 0.90),
+                    ],
+                )
+                .table(
+                    "held-out predictions",
+                    vec![
+                        words("sample", &["W001-a", "W001-b", "W002-a"]),
+                        words("unit", &["W001", "W001", "W002"]),
+                        words("batch", &["north", "north", "south"]),
+                        column("observed", UNIT, two, &[2.91, 2.91, 3.4]),
+                        column("predicted", UNIT, two, &[2.8, 2.95, 3.2]),
+                    ],
+                )
+                .0
+        }
+        Ask::Ladder { seal } => ladder(*seal),
+        Ask::ChosenAgain { .. } => chosen_again(),
+        Ask::StandIns { .. } => stand_ins(),
+    }
+}
+
+fn ladder(seal: crate::study::settings::question::Seal) -> Facts {
+    let two = Precision::Decimals(2);
+    let opened = seal == crate::study::settings::question::Seal::Opened;
+    let sealed = if opened { 0.69 } else { f64::NAN };
+    let remark = if opened { "" } else { "sealed, not opened" };
+    let mut writer = Writer(Facts::new())
+        .numbers(
+            "",
+            two,
+            &[
+                ("apparent r²", 0.94),
+                ("tuning r²", 0.86),
+                ("nested r²", 0.80),
+                ("ungrouped r²", 0.95),
+                ("batch r²", 0.71),
+            ],
+        )
+        .numbers(UNIT, two, &[("batch rmse", 0.33)])
+        .table(
+            "ladder",
+            vec![
+                words(
+                    "step",
+                    &[
+                        "apparent",
+                        "tuning",
+                        "nested",
+                        "whole caves held out",
+                        "sealed wheels",
+                    ],
+                ),
+                words(
+                    "what is held out",
+                    &["nothing", "inner parts", "outer parts", "caves", "40"],
+                ),
+                column("r²", "", two, &[0.94, 0.86, 0.80, 0.71, sealed]),
+                column("r² low", "", two, &[f64::NAN, 0.84, 0.75, 0.62, f64::NAN]),
+                column("r² high", "", two, &[f64::NAN, 0.88, 0.85, 0.79, f64::NAN]),
+                column("rmse", UNIT, two, &[0.15, 0.23, 0.28, 0.33, f64::NAN]),
+                words("remark", &["", "", "", "", remark]),
+            ],
+        );
+    if opened {
+        writer = writer
+            .numbers("", two, &[("sealed r²", 0.69), ("sealed slope", 1.08)])
+            .numbers(UNIT, two, &[("sealed rmse", 0.34), ("sealed bias", 0.09)])
+            .counts(&[("sealed openings", 1)]);
+    }
+    writer.0
+}
+
+fn chosen_again() -> Facts {
+    let two = Precision::Decimals(2);
+    Writer(Facts::new())
+        .counts(&[
+            ("pairs", 50),
+            ("resamples", 100),
+            ("chosen again", 3),
+            ("chosen predictors", 5),
+        ])
+        .numbers(
+            "",
+            two,
+            &[
+                ("threshold", 0.75),
+                ("stability index", 0.61),
+                ("stability low", 0.57),
+                ("stability high", 0.65),
+                ("expected low-selection predictors worst case", 0.14),
+                ("expected low-selection predictors unimodal", 0.07),
+                ("expected low-selection predictors r-concave", 0.02),
+                ("null stability index", 0.01),
+                ("null highest frequency", 0.18),
+            ],
+        )
+        .numbers(
+            "",
+            Precision::Significant(3),
+            &[
+                ("strength used", 0.0312),
+                ("mean chosen per half", 7.04),
+                ("null chosen per half", 3.12),
+            ],
+        )
+        .table(
+            "frequencies",
+            vec![
+                words(
+                    "predictor",
+                    &["1452 nm", "1150 nm", "1384 nm", "1716 nm", "1210 nm"],
+                ),
+                column(
+                    "frequency",
+                    "",
+                    Precision::Percent(0),
+                    &[0.98, 0.94, 0.91, 0.42, 0.31],
+                ),
+                column(
+                    "low",
+                    "",
+                    Precision::Percent(0),
+                    &[0.93, 0.88, 0.84, 0.33, 0.23],
+                ),
+                column(
+                    "high",
+                    "",
+                    Precision::Percent(0),
+                    &[0.99, 0.97, 0.95, 0.52, 0.41],
+                ),
+                column(
+                    "sign consistency",
+                    "",
+                    Precision::Percent(0),
+                    &[1.0, 1.0, 1.0, 0.9, 0.8],
+                ),
+                words("in the final list", &["yes", "yes", "yes", "yes", "yes"]),
+            ],
+        )
+        .0
+}
+
+fn stand_ins() -> Facts {
+    Writer(Facts::new())
+        .counts(&[
+            ("chosen predictors", 5),
+            ("predictors with stand-ins", 5),
+            ("stand-ins in all", 42),
+            ("largest group", 14),
+        ])
+        .numbers(
+            "",
+            Precision::Decimals(2),
+            &[("correlation threshold", 0.8)],
+        )
+        .table(
+            "stand-ins",
+            vec![
+                words("predictor", &["1452 nm", "1452 nm", "1150 nm"]),
+                words("stand-in", &["1451 nm", "1453 nm", "1151 nm"]),
+                column(
+                    "correlation",
+                    "",
+                    Precision::Decimals(3),
+                    &[0.991, 0.989, 0.96],
+                ),
+            ],
+        )
+        .table(
+            "groups",
+            vec![
+                words("predictor", &["1452 nm", "1150 nm", "1384 nm", "1716 nm"]),
+                whole("stand-ins", &[14.0, 9.0, 11.0, 2.0]),
+                words(
+                    "strongest stand-in",
+                    &["1451 nm", "1151 nm", "1383 nm", "1715 nm"],
+                ),
+                column(
+                    "strongest correlation",
+                    "",
+                    Precision::Decimals(3),
+                    &[0.991, 0.96, 0.97, 0.85],
+                ),
+            ],
+        )
+        .0
+}

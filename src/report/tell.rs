@@ -50,7 +50,7 @@ impl<'a> Source<'a> {
             paragraph = match open {
                 '{' => {
                     let (name, form) = inside.split_once('|').unwrap_or((inside, ""));
-                    last = self.facts.value(name);
+                    last = self.count(name);
                     if form == "%" {
                         paragraph.fact_as(self.cell, self.facts, name, Precision::Percent(0))
                     } else {
@@ -71,6 +71,12 @@ impl<'a> Source<'a> {
             };
         }
         paragraph.text(rest)
+    }
+
+    /// What decides between one and many: a number, or the number of rows of a table.
+    fn count(&self, name: &str) -> Option<f64> {
+        let rows = || self.facts.table(name).map(|table| table.n_rows() as f64);
+        self.facts.value(name).or_else(rows)
     }
 
     /// Whether the cell gives this fact; a number that is not known counts as not given.

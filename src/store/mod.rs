@@ -18,7 +18,7 @@ use crate::study::source::Shelf;
 use std::path::Path;
 
 pub use crate::store::acts::note_acts;
-pub use crate::store::disk::replace;
+pub use crate::store::disk::{make_folder, replace};
 pub use crate::store::record::{Record, fingerprint};
 
 /// The form of a study on disk.
@@ -103,6 +103,14 @@ pub fn open_bytes(path: &Path, bytes: &[u8]) -> Result<Opened, Problem> {
                      table, start one.",
             )),
     }
+}
+
+/// The bytes of a table's file.
+///
+/// # Errors
+/// A [`Problem`] when there is no such file or it cannot be read.
+pub fn read_table(path: &Path) -> Result<Vec<u8>, Problem> {
+    disk::read(path).map_err(|error| disk::not_read(path, "the table", &error))
 }
 
 /// Saves a study in the form that the name asks for. The file that was there before stays as it

@@ -68,8 +68,15 @@ fn parts(name: &str) -> Option<(&str, f64, &str)> {
     Some((&name[..start], number, &name[end..]))
 }
 
+/// What stands before and behind the number in a name, if it holds one.
+#[must_use]
+pub fn surroundings(name: &str) -> Option<(String, String)> {
+    parts(name).map(|(prefix, _, suffix)| (prefix.to_owned(), suffix.to_owned()))
+}
+
 /// The unit that stands before or behind the number of a name.
-fn unit(prefix: &str, suffix: &str) -> Option<String> {
+#[must_use]
+pub fn unit_of(prefix: &str, suffix: &str) -> Option<String> {
     const UNITS: [(&str, &str); 17] = [
         ("nm", "nm"),
         ("µm", "µm"),
@@ -122,7 +129,7 @@ pub fn of_names(names: &[&str]) -> Option<Axis> {
     sorted.sort_by(f64::total_cmp);
     let are_unlike = sorted.windows(2).all(|pair| pair[0] < pair[1]);
     (positions.len() >= 3 && are_unlike).then(|| Axis {
-        unit: unit(prefix, suffix),
+        unit: unit_of(prefix, suffix),
         prefix: prefix.to_owned(),
         suffix: suffix.to_owned(),
         positions,

@@ -68,7 +68,10 @@ fn with(column: &Column, row: usize, to: &str) -> Option<Column> {
             Values::Numbers(Numbers::with_censored(values, censored))
         }
     };
-    Some(Column { values, ..column.clone() })
+    Some(Column {
+        values,
+        ..column.clone()
+    })
 }
 
 #[cfg(test)]

@@ -129,6 +129,17 @@ fn a_text_that_was_cut_short_keeps_its_whole_in_the_file() {
     assert!(seen > 100, "the nasty names are long enough: {seen}");
 }
 
+#[test]
+fn every_picture_is_svg_that_another_program_can_read() {
+    for seed in 0..4 {
+        for (name, figure) in nasty::all(seed) {
+            let picture = layout(&figure, natural_size(&figure, 500.0)).with_margin(16.0);
+            let read = picture::png(&svg(&picture, &Palette::dark()), 0.5);
+            assert!(read.is_ok(), "{name}: {read:?}");
+        }
+    }
+}
+
 /// The glyphs themselves, as an independent program sets them, not the table of widths.
 #[test]
 fn the_letters_as_they_are_painted_do_not_overlap_either() {

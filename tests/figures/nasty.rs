@@ -174,6 +174,8 @@ fn curve(from: &mut Source) -> Figure {
         errors: from.numbers(),
         low: from.numbers(),
         high: from.numbers(),
+        spread_low: from.numbers(),
+        spread_high: from.numbers(),
         tips: from.tips(),
         baseline: Some((from.number(), from.name())),
         chosen: from.choice(),

@@ -29,51 +29,164 @@ enum Data {
 
 /// Examples of a kind of step, at least one for each class it can have.
 fn examples(kind: StepKind) -> Vec<(Step, Data)> {
+    let fixed: Vec<f64> = (1..=12).map(f64::from).collect();
     match kind {
-        StepKind::Logarithm => vec![(
-            Logarithm::new(LogarithmBase::Ten, 0.5).unwrap().into(),
+        StepKind::UnitConversion => on(Data::Gappy, [UnitConversion::new(-0.01, 2.0).unwrap()]),
+        StepKind::Absorbance => on(
             Data::Gappy,
-        )],
-        StepKind::StandardNormalVariate => vec![(StandardNormalVariate.into(), Data::Gappy)],
-        StepKind::SavitzkyGolay => vec![
-            (SavitzkyGolay::new(5, 2, 1).unwrap().into(), Data::Spectra),
-            (SavitzkyGolay::new(3, 1, 0).unwrap().into(), Data::Gappy),
-        ],
-        StepKind::Detrend => vec![(Detrend::new(2).unwrap().into(), Data::Gappy)],
-        StepKind::ScatterCorrection => vec![
-            (
-                ScatterCorrection::new(Reference::TrainingMean).into(),
+            [Absorbance::of_shares(), Absorbance::against(fixed).unwrap()],
+        ),
+        StepKind::CommonAxis => {
+            let at = |rule| CommonAxis::new(vec![901.0, 915.5, 930.0], rule).unwrap();
+            on(
                 Data::Gappy,
-            ),
-            (
-                ScatterCorrection::new(Reference::Fixed((1..=12).map(f64::from).collect())).into(),
+                [at(Interpolation::Linear), at(Interpolation::CubicSpline)],
+            )
+        }
+        StepKind::CutRegions => {
+            let regions = vec![(910.0, 920.0)];
+            let keep = CutRegions::new(regions.clone(), Regions::Keep).unwrap();
+            on(
                 Data::Gappy,
-            ),
-        ],
-        StepKind::MissingShare => vec![(MissingShare::new(0.1).unwrap().into(), Data::Gappy)],
-        StepKind::NearConstant => vec![(NearConstant::new(0.7).unwrap().into(), Data::Gappy)],
-        StepKind::ColumnImputation => vec![
-            (
-                ColumnImputation::new(ColumnStatistic::Median).into(),
+                [CutRegions::new(regions, Regions::Cut).unwrap(), keep],
+            )
+        }
+        StepKind::SpikeRemoval => on(Data::Gappy, [SpikeRemoval::new(3, 1.0).unwrap()]),
+        StepKind::LimitFill => on(Data::Gappy, [LimitFill::new(LimitRule::Half)]),
+        StepKind::Normalisation => on(
+            Data::Gappy,
+            [
+                Divisor::Sum,
+                Divisor::Area,
+                Divisor::Peak,
+                Divisor::Length,
+                Divisor::Standard(2),
+            ]
+            .map(|divisor| Normalisation::new(divisor, 10.0).unwrap()),
+        ),
+        StepKind::StandardNormalVariate => on(Data::Gappy, [StandardNormalVariate]),
+        StepKind::Detrend => on(Data::Gappy, [Detrend::new(2).unwrap()]),
+        StepKind::Baseline => on(
+            Data::Gappy,
+            [
+                BaselineRule::Offset,
+                BaselineRule::Line,
+                BaselineRule::Asymmetric {
+                    smoothness: 10.0,
+                    asymmetry: 0.05,
+                },
+            ]
+            .map(|rule| Baseline::new(rule).unwrap()),
+        ),
+        StepKind::SavitzkyGolay => on(
+            Data::Gappy,
+            [
+                SavitzkyGolay::new(5, 2, 1).unwrap(),
+                SavitzkyGolay::new(3, 1, 0).unwrap(),
+            ],
+        ),
+        StepKind::Logarithm => on(
+            Data::Gappy,
+            [Logarithm::new(LogarithmBase::Ten, 0.5).unwrap()],
+        ),
+        StepKind::InverseHyperbolicSine => {
+            on(Data::Gappy, [InverseHyperbolicSine::new(3.0).unwrap()])
+        }
+        StepKind::Power => on(Data::Gappy, [0.5, -1.0].map(|e| Power::new(e).unwrap())),
+        StepKind::PowerTransform => [PowerFamily::BoxCox, PowerFamily::YeoJohnson]
+            .into_iter()
+            .flat_map(|family| {
+                let choices = [PowerChoice::Given(0.3), PowerChoice::Fitted];
+                on(
+                    Data::Gappy,
+                    choices.map(|choice| PowerTransform::new(family, choice).unwrap()),
+                )
+            })
+            .collect(),
+        StepKind::CenteredLogRatio => on(Data::Gappy, [CenteredLogRatio::new(0.1).unwrap()]),
+        StepKind::QualityControlDrift => on(
+            Data::Gappy,
+            [
+                (DriftTrend::Line, DriftRemoval::Ratio),
+                (DriftTrend::Smooth { span: 0.8 }, DriftRemoval::Difference),
+            ]
+            .map(|(trend, removal)| QualityControlDrift::new(trend, removal).unwrap()),
+        ),
+        StepKind::ScatterCorrection => on(
+            Data::Gappy,
+            [Reference::TrainingMean, Reference::Fixed(fixed)].map(ScatterCorrection::new),
+        ),
+        StepKind::ExtendedScatterCorrection => {
+            let interferent: Vec<f64> = (0..12).map(|j| f64::from(j).sin()).collect();
+            let against = |reference| {
+                ExtendedScatterCorrection::new(reference, 0, vec![interferent.clone()]).unwrap()
+            };
+            let bent = fixed.iter().map(|x| x + 0.1 * x * x).collect();
+            on(
                 Data::Gappy,
-            ),
-            (
-                ColumnImputation::new(ColumnStatistic::Mean).into(),
+                [Reference::TrainingMean, Reference::Fixed(bent)].map(against),
+            )
+        }
+        StepKind::ProbabilisticQuotient => on(
+            Data::Gappy,
+            [
+                QuotientReference::TrainingMedian,
+                QuotientReference::Fixed(fixed),
+            ]
+            .map(ProbabilisticQuotient::new),
+        ),
+        StepKind::QuantileNormalisation => on(
+            Data::Gappy,
+            [
+                QuantileNormalisation::learned(),
+                QuantileNormalisation::fixed(fixed).unwrap(),
+            ],
+        ),
+        StepKind::ColumnImputation => {
+            let mut examples = on(
+                Data::Gappy,
+                [ColumnImputation::new(ColumnStatistic::Median)],
+            );
+            examples.extend(on(
                 Data::Markers,
-            ),
-        ],
-        StepKind::LimitFill => vec![(LimitFill::new(LimitRule::Half).into(), Data::Gappy)],
-        StepKind::Centering => vec![(Centering.into(), Data::Gappy)],
-        StepKind::Scaling => [
-            ScalingRule::UnitVariance,
-            ScalingRule::Pareto,
-            ScalingRule::Range,
-            ScalingRule::Level,
-            ScalingRule::Robust,
-        ]
-        .map(|rule| (Scaling::new(rule).into(), Data::Spectra))
-        .to_vec(),
+                [ColumnImputation::new(ColumnStatistic::Mean)],
+            ));
+            examples
+        }
+        StepKind::NearestImputation => on(
+            Data::Gappy,
+            [NeighborWeights::Equal, NeighborWeights::InverseDistance]
+                .map(|weights| NearestImputation::new(3, weights).unwrap()),
+        ),
+        StepKind::LowRankImputation => on(Data::Gappy, [LowRankImputation::new(2).unwrap()]),
+        StepKind::MissingShare => on(Data::Gappy, [MissingShare::new(0.1).unwrap()]),
+        StepKind::NearConstant => on(Data::Gappy, [NearConstant::new(0.7).unwrap()]),
+        StepKind::QualityControlSpread => {
+            on(Data::Gappy, [QualityControlSpread::new(0.12).unwrap()])
+        }
+        StepKind::MinorAllele => on(Data::Markers, [MinorAllele::new(0.2).unwrap()]),
+        StepKind::OutcomeFilter => on(Data::Gappy, [OutcomeFilter::new(5).unwrap()]),
+        StepKind::BatchCentering => on(Data::Gappy, [BatchCentering]),
+        StepKind::CovariateRemoval => on(Data::Gappy, [CovariateRemoval]),
+        StepKind::PrincipalScores => on(Data::Spectra, [PrincipalScores::new(3).unwrap()]),
+        StepKind::Centering => on(Data::Gappy, [Centering]),
+        StepKind::Scaling => on(
+            Data::Spectra,
+            [
+                ScalingRule::UnitVariance,
+                ScalingRule::Pareto,
+                ScalingRule::Range,
+                ScalingRule::Level,
+                ScalingRule::Robust,
+            ]
+            .map(Scaling::new),
+        ),
     }
+}
+
+/// Steps of one kind on the same samples.
+fn on<S: Into<Step>, const N: usize>(data: Data, steps: [S; N]) -> Vec<(Step, Data)> {
+    steps.map(|step| (step.into(), data)).to_vec()
 }
 
 fn samples(data: Data) -> Samples {
@@ -174,12 +287,15 @@ fn is_same(a: &Samples, b: &Samples) -> bool {
 
 /// Other values in some rows: columns change places, so that gaps and spreads move too.
 fn with_other_rows(samples: &Samples, rows: impl Iterator<Item = usize>) -> Samples {
+    // Allele counts must stay counts.
+    let is_counts = samples.x.iter().all(|x| x.is_nan() || x.fract() == 0.0);
+    let growth = if is_counts { 0.0 } else { 0.01 };
     let mut other = samples.clone();
     let x = Arc::make_mut(&mut other.x);
     for row in rows {
         for column in 0..COLUMNS {
             let from = (5 * column + 4) % COLUMNS;
-            x[(row, column)] = samples.x[(row, from)] * (1.0 + 0.01 * (row * row) as f64);
+            x[(row, column)] = samples.x[(row, from)] * (1.0 + growth * (row * row) as f64);
         }
     }
     other

@@ -14,8 +14,11 @@ pub fn check(slope: f64, low: f64, high: f64) -> Option<Caveat> {
     if !slope.is_finite() || !excludes {
         return None;
     }
-    let severity =
-        if slope < BAND.0 || slope > BAND.1 { Severity::Caution } else { Severity::Note };
+    let severity = if slope < BAND.0 || slope > BAND.1 {
+        Severity::Caution
+    } else {
+        Severity::Note
+    };
     let text = if slope < 1.0 {
         "Held-out predictions are too extreme: they spread wider than the observations they stand \
          for, which is a sign of overfitting."

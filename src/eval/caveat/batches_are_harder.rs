@@ -21,10 +21,19 @@ pub fn check(nested: f64, batch: f64, word: &str) -> Option<Caveat> {
         show(batch)
     );
     Some(
-        Caveat::new("batches-are-harder", Severity::Caution, &format!("A new {word} is harder"), text)
-            .because("nested R²", nested, Precision::Decimals(3))
-            .because("R² with whole batches held out", batch, Precision::Decimals(3))
-            .threshold("a fall of 0.2 or more")
-            .origin(Origin::Convention),
+        Caveat::new(
+            "batches-are-harder",
+            Severity::Caution,
+            &format!("A new {word} is harder"),
+            text,
+        )
+        .because("nested R²", nested, Precision::Decimals(3))
+        .because(
+            "R² with whole batches held out",
+            batch,
+            Precision::Decimals(3),
+        )
+        .threshold("a fall of 0.2 or more")
+        .origin(Origin::Convention),
     )
 }

@@ -23,7 +23,10 @@ const BELOW: (f64, f64) = (0.30, 0.60);
 /// All remarks on the data, the gravest first.
 #[must_use]
 pub fn caveats(data: &Dataset, findings: &[Finding], facts: &Facts) -> Vec<Caveat> {
-    let mut caveats: Vec<Caveat> = findings.iter().filter_map(|f| of_finding(f, data)).collect();
+    let mut caveats: Vec<Caveat> = findings
+        .iter()
+        .filter_map(|f| of_finding(f, data))
+        .collect();
     let units = facts.value("units").unwrap_or(f64::NAN);
     caveats.extend(few_units::check(units as usize));
     caveats.extend(health::check(data.subject));
@@ -60,9 +63,13 @@ fn of_finding(found: &Finding, data: &Dataset) -> Option<Caveat> {
                 .origin(Origin::Published),
         ),
         FindingKind::NearIdenticalSamples { .. } => Some(
-            caveat("near-identical-samples", Severity::Caution, "Nearly identical samples")
-                .threshold("a tenth of the median distance to the nearest neighbour")
-                .origin(Origin::Computed),
+            caveat(
+                "near-identical-samples",
+                Severity::Caution,
+                "Nearly identical samples",
+            )
+            .threshold("a tenth of the median distance to the nearest neighbour")
+            .origin(Origin::Computed),
         ),
         FindingKind::BatchWithOutcome { strength, .. } => {
             let (value, threshold, words) = match strength {
@@ -70,27 +77,49 @@ fn of_finding(found: &Finding, data: &Dataset) -> Option<Caveat> {
                 Association::EtaSquared(eta) => (*eta, ETA_SQUARED, "η² of 0.14 or more"),
             };
             (value >= threshold).then(|| {
-                caveat("batch-with-outcome", Severity::Caution, "Batch and outcome go together")
-                    .because("association", value, Precision::Decimals(2))
-                    .threshold(words)
+                caveat(
+                    "batch-with-outcome",
+                    Severity::Caution,
+                    "Batch and outcome go together",
+                )
+                .because("association", value, Precision::Decimals(2))
+                .threshold(words)
             })
         }
         FindingKind::BatchOfOneClass { share, .. } => {
-            let severity = if *share >= ONE_CLASS { Severity::Stop } else { Severity::Caution };
+            let severity = if *share >= ONE_CLASS {
+                Severity::Stop
+            } else {
+                Severity::Caution
+            };
             Some(
                 caveat("batch-of-one-class", severity, "Batches of a single class")
                     .because("share of samples", *share, Precision::Percent(0))
                     .threshold("any batch; a stop from 80 % of the samples"),
             )
         }
-        FindingKind::OrderWithOutcome { rank_correlation, .. } => Some(
-            caveat("order-with-outcome", Severity::Caution, "Order and outcome go together")
-                .because("rank correlation", *rank_correlation, Precision::Decimals(2))
-                .threshold("0.3 or more"),
+        FindingKind::OrderWithOutcome {
+            rank_correlation, ..
+        } => Some(
+            caveat(
+                "order-with-outcome",
+                Severity::Caution,
+                "Order and outcome go together",
+            )
+            .because(
+                "rank correlation",
+                *rank_correlation,
+                Precision::Decimals(2),
+            )
+            .threshold("0.3 or more"),
         ),
         FindingKind::AlreadyNormalized(_) => Some(
-            caveat("already-normalised", Severity::Caution, "Already normalised?")
-                .threshold("a signature in the values"),
+            caveat(
+                "already-normalised",
+                Severity::Caution,
+                "Already normalised?",
+            )
+            .threshold("a signature in the values"),
         ),
         FindingKind::MissingShare { share } => graded(*share, MISSING).map(|severity| {
             caveat("missing-share", severity, "Missing values")
@@ -99,12 +128,20 @@ fn of_finding(found: &Finding, data: &Dataset) -> Option<Caveat> {
         }),
         FindingKind::BelowLimitShare { largest } => graded(*largest, BELOW).map(|severity| {
             caveat("below-limit-share", severity, "Values below a limit")
-                .because("largest share of a predictor", *largest, Precision::Percent(0))
+                .because(
+                    "largest share of a predictor",
+                    *largest,
+                    Precision::Percent(0),
+                )
                 .threshold("30 % of a predictor; a caution from 60 %")
         }),
         FindingKind::EqualsOutcome { .. } => Some(
-            caveat("outcome-in-disguise", Severity::Caution, "The outcome in disguise?")
-                .threshold("a correlation or AUC of 0.98 or more"),
+            caveat(
+                "outcome-in-disguise",
+                Severity::Caution,
+                "The outcome in disguise?",
+            )
+            .threshold("a correlation or AUC of 0.98 or more"),
         ),
         FindingKind::NamedLikeOutcome => Some(caveat(
             "named-like-outcome",

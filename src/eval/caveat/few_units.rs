@@ -16,7 +16,11 @@ pub fn check(units: usize) -> Option<Caveat> {
     if units >= NOTE {
         return None;
     }
-    let severity = if units < CAUTION { Severity::Caution } else { Severity::Note };
+    let severity = if units < CAUTION {
+        Severity::Caution
+    } else {
+        Severity::Note
+    };
     let text = format!(
         "With {} independent units, error bars of about ±10 points are normal.",
         number::text(units as f64, Precision::Whole)

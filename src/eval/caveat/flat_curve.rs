@@ -29,7 +29,11 @@ pub fn check(fitted: &Fitted) -> Option<Caveat> {
             "Any penalty does",
             "Almost any penalty does equally well, so the chosen one is close to arbitrary.",
         )
-        .because("improvement over the strongest", share, Precision::Percent(1))
+        .because(
+            "improvement over the strongest",
+            share,
+            Precision::Percent(1),
+        )
         .threshold("less than one standard error, or less than 2 %")
         .origin(Origin::Convention),
     )

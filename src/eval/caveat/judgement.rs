@@ -45,7 +45,10 @@ pub fn caveats(fitted: &Fitted, facts: &Facts) -> Vec<Caveat> {
                 value("improvement over the mean"),
                 value("improvement low"),
             ));
-            found.push(wide_interval::check(value("nested r² low"), value("nested r² high")));
+            found.push(wide_interval::check(
+                value("nested r² low"),
+                value("nested r² high"),
+            ));
             found.push(too_good::check(
                 value("nested r²"),
                 value("nested rmse"),

@@ -32,7 +32,11 @@ pub fn check(ledger: &Ledger) -> Option<Caveat> {
     Some(
         Caveat::new("many-looks", severity, "Many looks", text)
             .because("looks", looks as f64, Precision::Whole)
-            .because("openings of the sealed set", openings as f64, Precision::Whole)
+            .because(
+                "openings of the sealed set",
+                openings as f64,
+                Precision::Whole,
+            )
             .threshold("10 looks; a caution from 50 looks or 2 openings")
             .origin(Origin::Convention),
     )

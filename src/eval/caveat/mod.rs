@@ -113,7 +113,8 @@ impl Caveat {
     /// The same caveat, with a quantity that set it off.
     #[must_use]
     pub fn because(mut self, quantity: &str, value: f64, precision: Precision) -> Self {
-        self.trigger.push((quantity.to_owned(), number::text(value, precision)));
+        self.trigger
+            .push((quantity.to_owned(), number::text(value, precision)));
         self
     }
 

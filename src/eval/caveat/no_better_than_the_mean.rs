@@ -17,7 +17,11 @@ pub fn check(improvement: f64, low: f64) -> Option<Caveat> {
             "No clear gain",
             "The wide data did not clearly improve on predicting the mean for every sample.",
         )
-        .because("improvement over the mean", improvement, Precision::Percent(0))
+        .because(
+            "improvement over the mean",
+            improvement,
+            Precision::Percent(0),
+        )
         .because("lower end", low, Precision::Percent(0))
         .threshold("a 95 % interval that includes 0")
         .origin(Origin::Published),

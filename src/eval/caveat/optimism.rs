@@ -10,7 +10,12 @@ const RATIO: f64 = 1.5;
 /// A remark on the gap between apparent and nested performance (Poldrack, Huckins & Varoquaux
 /// 2020; Van Calster et al. 2019).
 #[must_use]
-pub fn check(apparent_r2: f64, nested_r2: f64, apparent_rmse: f64, nested_rmse: f64) -> Option<Caveat> {
+pub fn check(
+    apparent_r2: f64,
+    nested_r2: f64,
+    apparent_rmse: f64,
+    nested_rmse: f64,
+) -> Option<Caveat> {
     let wide = apparent_r2 - nested_r2 >= DIFFERENCE || nested_rmse >= RATIO * apparent_rmse;
     if !wide {
         return None;
@@ -23,10 +28,15 @@ pub fn check(apparent_r2: f64, nested_r2: f64, apparent_rmse: f64, nested_rmse: 
         show(nested_r2)
     );
     Some(
-        Caveat::new("optimism", Severity::Caution, "Better on its own samples", text)
-            .because("apparent R²", apparent_r2, Precision::Decimals(3))
-            .because("nested R²", nested_r2, Precision::Decimals(3))
-            .threshold("a difference of 0.20 or more, or an error 1.5 times the apparent one")
-            .origin(Origin::Convention),
+        Caveat::new(
+            "optimism",
+            Severity::Caution,
+            "Better on its own samples",
+            text,
+        )
+        .because("apparent R²", apparent_r2, Precision::Decimals(3))
+        .because("nested R²", nested_r2, Precision::Decimals(3))
+        .threshold("a difference of 0.20 or more, or an error 1.5 times the apparent one")
+        .origin(Origin::Convention),
     )
 }

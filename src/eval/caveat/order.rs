@@ -32,7 +32,10 @@ pub fn caveats(steps: &[Step]) -> Vec<Caveat> {
         severity: Severity::Caution,
         heading: "Unusual order of steps".to_owned(),
         text: format!("{}.", found.join("; ")),
-        trigger: vec![("pairs of steps out of order".to_owned(), found.len().to_string())],
+        trigger: vec![(
+            "pairs of steps out of order".to_owned(),
+            found.len().to_string(),
+        )],
         threshold: String::new(),
         origin: Origin::Convention,
     }]
@@ -42,9 +45,7 @@ pub fn caveats(steps: &[Step]) -> Vec<Caveat> {
 fn out_of_order(earlier: &Step, later: &Step) -> Option<&'static str> {
     let scales = |step: &Step| matches!(step, Step::Center | Step::UnitVariance);
     match later {
-        Step::Log { .. } if scales(earlier) => {
-            Some("centred values have no logarithm below zero")
-        }
+        Step::Log { .. } if scales(earlier) => Some("centred values have no logarithm below zero"),
         Step::SavitzkyGolay { .. } | Step::Detrend { .. } if scales(earlier) => {
             Some("neighbouring predictors are no longer on one scale")
         }

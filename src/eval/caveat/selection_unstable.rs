@@ -14,7 +14,12 @@ const GOOD: f64 = 0.75;
 pub fn check(facts: &Facts, index: Option<f64>) -> Vec<Caveat> {
     let mut caveats = Vec::new();
     let value = |name: &str| facts.value(name).unwrap_or(0.0);
-    let shown = |name: &str| facts.get(name).map(crate::eval::fact::Fact::shown).unwrap_or_default();
+    let shown = |name: &str| {
+        facts
+            .get(name)
+            .map(crate::eval::fact::Fact::shown)
+            .unwrap_or_default()
+    };
     let index_value = index.unwrap_or(0.0);
     if index_value < GOOD && value("chosen predictors") > 0.0 {
         let (severity, heading) = if index_value < POOR {
@@ -46,7 +51,11 @@ pub fn check(facts: &Facts, index: Option<f64>) -> Vec<Caveat> {
                 "With the outcome shuffled, some predictor was chosen as often as the threshold \
                  asks; a high frequency alone proves little here.",
             )
-            .because("highest frequency on the shuffled outcome", null, Precision::Percent(0))
+            .because(
+                "highest frequency on the shuffled outcome",
+                null,
+                Precision::Percent(0),
+            )
             .threshold("the threshold of the question"),
         );
     }

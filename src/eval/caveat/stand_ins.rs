@@ -17,7 +17,11 @@ pub fn check(groups: &[(usize, f64)]) -> Option<Caveat> {
         return None;
     }
     let with = groups.iter().filter(|(count, _)| *count > 0).count();
-    let severity = if strongest >= CAUTION { Severity::Caution } else { Severity::Note };
+    let severity = if strongest >= CAUTION {
+        Severity::Caution
+    } else {
+        Severity::Note
+    };
     let text = format!(
         "{} of {} chosen predictors have others that carry nearly the same information; the pick \
          among them is partly luck.",

@@ -13,9 +13,12 @@ const SHARE: f64 = 0.2;
 pub fn check(fitted: &Fitted) -> Option<Caveat> {
     let last = &fitted.last;
     let curve = last.curves.get(last.share_at)?;
-    let at_edge = last.strength_at + 1 == curve.strengths.len()
-        || last.strength_at == 0 && last.share == 0.0;
-    let fits = fitted.judged.as_ref().map_or(&[][..], |judged| &judged.held_out.fits[..]);
+    let at_edge =
+        last.strength_at + 1 == curve.strengths.len() || last.strength_at == 0 && last.share == 0.0;
+    let fits = fitted
+        .judged
+        .as_ref()
+        .map_or(&[][..], |judged| &judged.held_out.fits[..]);
     let share = if fits.is_empty() {
         0.0
     } else {
@@ -32,7 +35,11 @@ pub fn check(fitted: &Fitted) -> Option<Caveat> {
             "The best penalty strength lies at the end of the range tried; the true best may be \
              outside.",
         )
-        .because("share of outer parts at the end", share, Precision::Percent(0))
+        .because(
+            "share of outer parts at the end",
+            share,
+            Precision::Percent(0),
+        )
         .threshold("the final fit at an end, or more than 20 % of outer parts")
         .origin(Origin::Convention),
     )

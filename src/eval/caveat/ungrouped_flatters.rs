@@ -21,10 +21,15 @@ pub fn check(split: f64, nested: f64, word: &str) -> Option<Caveat> {
         show(nested)
     );
     Some(
-        Caveat::new("ungrouped-flatters", Severity::Note, "Repeats must stay together", text)
-            .because("R² with samples split", split, Precision::Decimals(3))
-            .because("nested R²", nested, Precision::Decimals(3))
-            .threshold("a rise of 0.05 or more")
-            .origin(Origin::Convention),
+        Caveat::new(
+            "ungrouped-flatters",
+            Severity::Note,
+            "Repeats must stay together",
+            text,
+        )
+        .because("R² with samples split", split, Precision::Decimals(3))
+        .because("nested R²", nested, Precision::Decimals(3))
+        .threshold("a rise of 0.05 or more")
+        .origin(Origin::Convention),
     )
 }

@@ -40,7 +40,12 @@ impl<'a> Inputs<'a> {
         done: &'a BTreeMap<CellId, Arc<Verdict>>,
         threads: Threads,
     ) -> Self {
-        Self { study, shelf, done, threads }
+        Self {
+            study,
+            shelf,
+            done,
+            threads,
+        }
     }
 
     /// The imported bytes.
@@ -80,9 +85,12 @@ impl<'a> Inputs<'a> {
 
     fn outcome(&self, link: Link, wanted: &str) -> Result<&'a Outcome, Failure> {
         let Some(id) = link.0 else {
-            return Err(Problem::new("nothing-to-draw-on", "No cell to draw on has been chosen yet.")
-                .mend(format!("Choose {wanted}."))
-                .into());
+            return Err(Problem::new(
+                "nothing-to-draw-on",
+                "No cell to draw on has been chosen yet.",
+            )
+            .mend(format!("Choose {wanted}."))
+            .into());
         };
         let Some(verdict) = self.done.get(&id) else {
             return Err(Problem::new(
@@ -111,7 +119,9 @@ impl<'a> Inputs<'a> {
     }
 
     fn title(&self, id: CellId) -> String {
-        self.study.cell(id).map_or_else(String::new, |cell| cell.title.clone())
+        self.study
+            .cell(id)
+            .map_or_else(String::new, |cell| cell.title.clone())
     }
 }
 
@@ -119,12 +129,9 @@ impl<'a> Inputs<'a> {
 #[must_use]
 pub const fn computes_with(settings: &Settings) -> bool {
     match settings.kind() {
-        Kind::Data
-        | Kind::Prepare
-        | Kind::Fit
-        | Kind::Question
-        | Kind::Compare
-        | Kind::Score => true,
+        Kind::Data | Kind::Prepare | Kind::Fit | Kind::Question | Kind::Compare | Kind::Score => {
+            true
+        }
         Kind::Prose => false,
     }
 }

@@ -74,7 +74,11 @@ impl Prepared {
     #[must_use]
     pub fn bytes(&self) -> usize {
         let matrix = matrix_bytes(&self.samples.x);
-        let own = if Arc::ptr_eq(&self.samples.x, &self.data.samples.x) { 0 } else { matrix };
+        let own = if Arc::ptr_eq(&self.samples.x, &self.data.samples.x) {
+            0
+        } else {
+            matrix
+        };
         own + matrix / 4
     }
 }
@@ -99,7 +103,10 @@ fn prepare(settings: &Prepare, inputs: &Inputs<'_>, work: &Work<'_>) -> Result<O
     let before = inputs.prepared(settings.input)?;
     let mut steps = before.steps.clone();
     steps.extend(settings.steps.iter().cloned());
-    let numeric = steps.iter().map(numeric_step).collect::<Result<Vec<_>, Problem>>()?;
+    let numeric = steps
+        .iter()
+        .map(numeric_step)
+        .collect::<Result<Vec<_>, Problem>>()?;
     let chain = Chain::new(numeric);
     let samples = chain
         .apply_shared(before.data.samples.clone(), &work.part(0.0..0.6))
@@ -120,18 +127,37 @@ fn prepare(settings: &Prepare, inputs: &Inputs<'_>, work: &Work<'_>) -> Result<O
         .prepare(&split, &prepared.samples, outcome, &work.part(0.6..1.0))
         .map_err(|stop| ended(stop, &prepared.steps, &prepared.data))?;
     let leaving = all.samples.active.iter().filter(|active| **active).count();
-    let entering = prepared.data.samples.active.iter().filter(|active| **active).count();
+    let entering = prepared
+        .data
+        .samples
+        .active
+        .iter()
+        .filter(|active| **active)
+        .count();
     drop(all);
     let mut facts = Facts::new();
     publish(&mut facts, &prepared, entering, leaving);
     let caveats = order::caveats(&prepared.steps);
-    Ok(Outcome { gives: Gives::Prepared(Arc::new(prepared)), facts, caveats })
+    Ok(Outcome {
+        gives: Gives::Prepared(Arc::new(prepared)),
+        facts,
+        caveats,
+    })
 }
 
 fn publish(facts: &mut Facts, prepared: &Prepared, entering: usize, leaving: usize) {
     let steps = &prepared.steps;
-    facts.push(Fact::count("steps", steps.len(), "How many preparation steps are taken."));
-    let classes: Vec<Class> = prepared.chain.steps().iter().map(NumericStep::class).collect();
+    facts.push(Fact::count(
+        "steps",
+        steps.len(),
+        "How many preparation steps are taken.",
+    ));
+    let classes: Vec<Class> = prepared
+        .chain
+        .steps()
+        .iter()
+        .map(NumericStep::class)
+        .collect();
     let learned = classes
         .iter()
         .filter(|class| matches!(class, Class::Learned | Class::LearnedWithOutcome))
@@ -157,12 +183,18 @@ fn publish(facts: &mut Facts, prepared: &Prepared, entering: usize, leaving: usi
         vec![
             FactColumn::texts(
                 "step",
-                steps.iter().map(|step| step_name(step).to_owned()).collect(),
+                steps
+                    .iter()
+                    .map(|step| step_name(step).to_owned())
+                    .collect(),
                 "The step.",
             ),
             FactColumn::texts(
                 "class",
-                classes.iter().map(|class| class_name(*class).to_owned()).collect(),
+                classes
+                    .iter()
+                    .map(|class| class_name(*class).to_owned())
+                    .collect(),
                 "What the step needs to know, which decides where it may be fitted.",
             ),
             FactColumn::texts(

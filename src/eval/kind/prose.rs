@@ -7,7 +7,8 @@ use crate::study::prose::{Piece, Prose};
 /// Evaluates a Prose cell.
 #[must_use]
 pub fn evaluate(prose: &Prose) -> Outcome {
-    let count = |wanted: fn(&Piece) -> bool| prose.pieces.iter().filter(|piece| wanted(piece)).count();
+    let count =
+        |wanted: fn(&Piece) -> bool| prose.pieces.iter().filter(|piece| wanted(piece)).count();
     let mut facts = Facts::new();
     facts.push(Fact::count(
         "facts in the text",
@@ -19,5 +20,9 @@ pub fn evaluate(prose: &Prose) -> Outcome {
         count(|piece| matches!(piece, Piece::Unknown(_))),
         "How many references in braces name no cell of the study.",
     ));
-    Outcome { gives: Gives::Facts, facts, caveats: Vec::new() }
+    Outcome {
+        gives: Gives::Facts,
+        facts,
+        caveats: Vec::new(),
+    }
 }

@@ -45,7 +45,11 @@ pub const fn class_name(class: Class) -> &'static str {
 pub fn parameters(step: &Step) -> String {
     match step {
         Step::Log { offset } => format!("plus {}", show(offset.get())),
-        Step::SavitzkyGolay { window, degree, derivative } => {
+        Step::SavitzkyGolay {
+            window,
+            degree,
+            derivative,
+        } => {
             format!("window {window}, degree {degree}, derivative {derivative}")
         }
         Step::Detrend { degree } => format!("degree {degree}"),
@@ -82,20 +86,20 @@ pub fn numeric_step(step: &Step) -> Result<NumericStep, Problem> {
             Logarithm::new(LogarithmBase::Natural, offset.get()).map(NumericStep::from)
         }
         Step::StandardNormalVariate => Ok(StandardNormalVariate.into()),
-        Step::SavitzkyGolay { window, degree, derivative } => {
-            SavitzkyGolay::new(*window as usize, *degree as usize, *derivative as usize)
-                .map(NumericStep::from)
-        }
+        Step::SavitzkyGolay {
+            window,
+            degree,
+            derivative,
+        } => SavitzkyGolay::new(*window as usize, *degree as usize, *derivative as usize)
+            .map(NumericStep::from),
         Step::Detrend { degree } => Detrend::new(*degree as usize).map(NumericStep::from),
-        Step::ScatterCorrection => {
-            Ok(ScatterCorrection::new(Reference::TrainingMean).into())
-        }
+        Step::ScatterCorrection => Ok(ScatterCorrection::new(Reference::TrainingMean).into()),
         Step::MissingShareFilter { most } => MissingShare::new(most.get()).map(NumericStep::from),
-        Step::NearConstantFilter { least } => NearConstant::new(1.0 - least.get()).map(NumericStep::from),
-        Step::MedianImputation => Ok(ColumnImputation::new(ColumnStatistic::Median).into()),
-        Step::BelowLimit { share } => {
-            Ok(LimitFill::new(LimitRule::Share(*share)).into())
+        Step::NearConstantFilter { least } => {
+            NearConstant::new(1.0 - least.get()).map(NumericStep::from)
         }
+        Step::MedianImputation => Ok(ColumnImputation::new(ColumnStatistic::Median).into()),
+        Step::BelowLimit { share } => Ok(LimitFill::new(LimitRule::Share(*share)).into()),
         Step::Center => Ok(Centering.into()),
         Step::UnitVariance => Ok(Scaling::new(ScalingRule::UnitVariance).into()),
     };
@@ -124,30 +128,39 @@ pub fn step_problem(step: &Step, at: usize, error: &StepError, data: &Dataset) -
         step_name(step),
         step_error(error, data)
     );
-    Problem::new("step-impossible", found).mend("Change the step, its place in the list, or the samples.")
+    Problem::new("step-impossible", found)
+        .mend("Change the step, its place in the list, or the samples.")
 }
 
 /// Why, as the end of a sentence. Columns are named as they arrived where they still can be.
 fn step_error(error: &StepError, data: &Dataset) -> String {
     let sample = |row: &usize| format!("sample “{}”", data.names[*row]);
     let column = |column: &usize| {
-        data.predictor_names
-            .get(*column)
-            .map_or_else(|| format!("column {}", column + 1), |name| format!("“{name}”"))
+        data.predictor_names.get(*column).map_or_else(
+            || format!("column {}", column + 1),
+            |name| format!("“{name}”"),
+        )
     };
     match error {
         StepError::WrongColumns { expected, found } => {
             format!("it was learnt from {expected} predictors and is given {found}")
         }
         StepError::NothingActive => "no predictor is left".to_owned(),
-        StepError::OutOfDomain { row, column: at, value } => format!(
+        StepError::OutOfDomain {
+            row,
+            column: at,
+            value,
+        } => format!(
             "the value {} of {} in {} is outside the range for which it is defined",
             show(*value),
             column(at),
             sample(row)
         ),
         StepError::NoSpread { row } => {
-            format!("all values of {} are the same, so that it has no scale", sample(row))
+            format!(
+                "all values of {} are the same, so that it has no scale",
+                sample(row)
+            )
         }
         StepError::NoTotal { row, total } => format!(
             "{} would be divided by {}, which is not positive",
@@ -159,14 +172,21 @@ fn step_error(error: &StepError, data: &Dataset) -> String {
             sample(row),
             show(*slope)
         ),
-        StepError::WindowTooWide { window, run } => format!(
-            "the window of {window} is wider than the {run} neighbouring predictors"
-        ),
+        StepError::WindowTooWide { window, run } => {
+            format!("the window of {window} is wider than the {run} neighbouring predictors")
+        }
         StepError::NoAxis => "the predictors have no numeric axis".to_owned(),
         StepError::AxisNotMonotone { column: at } => {
-            format!("the axis does not rise or fall throughout; it turns at {}", column(at))
+            format!(
+                "the axis does not rise or fall throughout; it turns at {}",
+                column(at)
+            )
         }
-        StepError::OutsideAxis { position, least, most } => format!(
+        StepError::OutsideAxis {
+            position,
+            least,
+            most,
+        } => format!(
             "the position {} lies outside the axis, which runs from {} to {}",
             show(*position),
             show(*least),
@@ -176,7 +196,10 @@ fn step_error(error: &StepError, data: &Dataset) -> String {
             format!("the value of {} in {} is missing", column(at), sample(row))
         }
         StepError::NothingKnown { column: at } => {
-            format!("{} has no known value among the training samples", column(at))
+            format!(
+                "{} has no known value among the training samples",
+                column(at)
+            )
         }
         StepError::TooFewSamples { needed, found } => {
             format!("it needs {needed} samples and has {found}")
@@ -189,9 +212,7 @@ fn step_error(error: &StepError, data: &Dataset) -> String {
         }
         StepError::NoCovariates => "there are no covariates, or a sample lacks one".to_owned(),
         StepError::NoOutcome => "it is learnt with the outcome, and there is none".to_owned(),
-        StepError::NotIndependent => {
-            "its terms cannot be told apart from each other".to_owned()
-        }
+        StepError::NotIndependent => "its terms cannot be told apart from each other".to_owned(),
         StepError::NotSettled { passes } => {
             format!("it had not settled after {passes} passes")
         }

@@ -25,34 +25,155 @@ pub fn answer(fitted: &Fitted) -> Result<Outcome, Ended> {
         facts.push(Fact::number(name, value, unit, precision, meaning));
     };
     let share = Precision::Decimals(3);
-    push("nested rmse", mean.rmse, &unit, digits, "Root mean squared error on outer held-out samples.");
-    push("nested mae", mean.mae, &unit, digits, "Mean absolute error on outer held-out samples.");
-    push("nested r²", mean.r2, "", share, "R² on outer held-out samples: 1 − SSE/SST, SST about the mean of the analysed samples.");
-    push("bias", mean.bias, &unit, digits, "Mean of held-out predicted minus observed values.");
-    push("sep", mean.sep, &unit, digits, "Standard deviation of the held-out errors about the bias (divisor n − 1).");
-    push("slope", mean.slope, "", share, "Slope of the line of observed on held-out predicted values: below 1 predictions are too extreme, above 1 too timid.");
-    push("intercept", mean.intercept, &unit, digits, "Intercept of the same line.");
-    push("correlation", mean.correlation, "", share, "Correlation of observed and held-out predicted values.");
-    let error = slope_error(&held_out.predicted, &observed, &rows.iter().map(|&row| data.units[row]).collect::<Vec<_>>());
-    push("slope low", mean.slope - 1.96 * error, "", share, "Lower end of a 95 % interval of the slope, with units as the independent observations.");
-    push("slope high", mean.slope + 1.96 * error, "", share, "Upper end of the same interval.");
+    push(
+        "nested rmse",
+        mean.rmse,
+        &unit,
+        digits,
+        "Root mean squared error on outer held-out samples.",
+    );
+    push(
+        "nested mae",
+        mean.mae,
+        &unit,
+        digits,
+        "Mean absolute error on outer held-out samples.",
+    );
+    push(
+        "nested r²",
+        mean.r2,
+        "",
+        share,
+        "R² on outer held-out samples: 1 − SSE/SST, SST about the mean of the analysed samples.",
+    );
+    push(
+        "bias",
+        mean.bias,
+        &unit,
+        digits,
+        "Mean of held-out predicted minus observed values.",
+    );
+    push(
+        "sep",
+        mean.sep,
+        &unit,
+        digits,
+        "Standard deviation of the held-out errors about the bias (divisor n − 1).",
+    );
+    push(
+        "slope",
+        mean.slope,
+        "",
+        share,
+        "Slope of the line of observed on held-out predicted values: below 1 predictions are too extreme, above 1 too timid.",
+    );
+    push(
+        "intercept",
+        mean.intercept,
+        &unit,
+        digits,
+        "Intercept of the same line.",
+    );
+    push(
+        "correlation",
+        mean.correlation,
+        "",
+        share,
+        "Correlation of observed and held-out predicted values.",
+    );
+    let error = slope_error(
+        &held_out.predicted,
+        &observed,
+        &rows.iter().map(|&row| data.units[row]).collect::<Vec<_>>(),
+    );
+    push(
+        "slope low",
+        mean.slope - 1.96 * error,
+        "",
+        share,
+        "Lower end of a 95 % interval of the slope, with units as the independent observations.",
+    );
+    push(
+        "slope high",
+        mean.slope + 1.96 * error,
+        "",
+        share,
+        "Upper end of the same interval.",
+    );
     if let Some(error) = data.outcome.reference_error {
-        push("reference error", error, &unit, Precision::Significant(3), "The standard deviation of the reference method's own error, as stated by the user.");
+        push(
+            "reference error",
+            error,
+            &unit,
+            Precision::Significant(3),
+            "The standard deviation of the reference method's own error, as stated by the user.",
+        );
     }
     let mut columns = vec![
-        FactColumn::texts("sample", rows.iter().map(|&row| data.names[row].clone()).collect(), "The sample."),
-        FactColumn::texts("unit", rows.iter().map(|&row| data.unit_names[data.units[row]].clone()).collect(), "The unit that it belongs to."),
+        FactColumn::texts(
+            "sample",
+            rows.iter().map(|&row| data.names[row].clone()).collect(),
+            "The sample.",
+        ),
+        FactColumn::texts(
+            "unit",
+            rows.iter()
+                .map(|&row| data.unit_names[data.units[row]].clone())
+                .collect(),
+            "The unit that it belongs to.",
+        ),
     ];
     if let Some(batches) = &data.batches {
-        columns.push(FactColumn::texts("batch", rows.iter().map(|&row| data.batch_names[batches[row]].clone()).collect(), "The batch that it belongs to."));
+        columns.push(FactColumn::texts(
+            "batch",
+            rows.iter()
+                .map(|&row| data.batch_names[batches[row]].clone())
+                .collect(),
+            "The batch that it belongs to.",
+        ));
     }
-    let residual = held_out.predicted.iter().zip(&observed).map(|(p, o)| p - o).collect();
-    columns.push(FactColumn::numbers("observed", observed, &unit, digits, "The observed outcome."));
-    columns.push(FactColumn::numbers("predicted", held_out.predicted.clone(), &unit, digits, "The held-out prediction, the mean over repeats."));
-    columns.push(FactColumn::numbers("residual", residual, &unit, digits, "Predicted less observed."));
-    facts.push(Fact::table("held-out predictions", columns, "The predictions of samples by fits that had not seen them."));
-    let caveats = agreement_slope::check(mean.slope, mean.slope - 1.96 * error, mean.slope + 1.96 * error);
-    Ok(Outcome { gives: Gives::Facts, facts, caveats: caveats.into_iter().collect() })
+    let residual = held_out
+        .predicted
+        .iter()
+        .zip(&observed)
+        .map(|(p, o)| p - o)
+        .collect();
+    columns.push(FactColumn::numbers(
+        "observed",
+        observed,
+        &unit,
+        digits,
+        "The observed outcome.",
+    ));
+    columns.push(FactColumn::numbers(
+        "predicted",
+        held_out.predicted.clone(),
+        &unit,
+        digits,
+        "The held-out prediction, the mean over repeats.",
+    ));
+    columns.push(FactColumn::numbers(
+        "residual",
+        residual,
+        &unit,
+        digits,
+        "Predicted less observed.",
+    ));
+    facts.push(Fact::table(
+        "held-out predictions",
+        columns,
+        "The predictions of samples by fits that had not seen them.",
+    ));
+    let caveats = agreement_slope::check(
+        mean.slope,
+        mean.slope - 1.96 * error,
+        mean.slope + 1.96 * error,
+    );
+    Ok(Outcome {
+        gives: Gives::Facts,
+        facts,
+        caveats: caveats.into_iter().collect(),
+    })
 }
 
 /// The problem of a fit whose judgement was declined.
@@ -69,12 +190,19 @@ pub(super) fn not_judged() -> Problem {
 /// factor m/(m − 1) for m units).
 fn slope_error(predicted: &[f64], observed: &[f64], units: &[usize]) -> f64 {
     let n = predicted.len() as f64;
-    let (mean_p, mean_o) = (predicted.iter().sum::<f64>() / n, observed.iter().sum::<f64>() / n);
+    let (mean_p, mean_o) = (
+        predicted.iter().sum::<f64>() / n,
+        observed.iter().sum::<f64>() / n,
+    );
     let sxx: f64 = predicted.iter().map(|p| (p - mean_p).powi(2)).sum();
     if sxx <= 0.0 {
         return f64::NAN;
     }
-    let sxy: f64 = predicted.iter().zip(observed).map(|(p, o)| (p - mean_p) * (o - mean_o)).sum();
+    let sxy: f64 = predicted
+        .iter()
+        .zip(observed)
+        .map(|(p, o)| (p - mean_p) * (o - mean_o))
+        .sum();
     let slope = sxy / sxx;
     let mut scores = std::collections::BTreeMap::new();
     for ((p, o), unit) in predicted.iter().zip(observed).zip(units) {
@@ -83,7 +211,11 @@ fn slope_error(predicted: &[f64], observed: &[f64], units: &[usize]) -> f64 {
     }
     let m = scores.len() as f64;
     let square: f64 = scores.values().map(|score: &f64| score * score).sum();
-    if m > 1.0 { (square * m / (m - 1.0)).sqrt() / sxx } else { f64::NAN }
+    if m > 1.0 {
+        (square * m / (m - 1.0)).sqrt() / sxx
+    } else {
+        f64::NAN
+    }
 }
 
 #[cfg(test)]
@@ -99,6 +231,4 @@ mod tests {
         let units = [0, 0, 1, 1, 2, 2, 3, 3];
         assert!((slope_error(&p, &o, &units) - 0.015_044_515_564_140_588).abs() < 1e-9);
     }
-
-
 }

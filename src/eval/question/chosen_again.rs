@@ -16,8 +16,7 @@ use crate::numeric::procedure::{Halt, Level, Material, ProcedureError};
 use crate::numeric::random::Random;
 use crate::numeric::response::Response;
 use crate::numeric::stability::{
-    Selections, StabilityIndex, r_concave_bound, unimodal_bound, wilson_interval,
-    worst_case_bound,
+    Selections, StabilityIndex, r_concave_bound, unimodal_bound, wilson_interval, worst_case_bound,
 };
 use std::collections::BTreeMap;
 
@@ -46,18 +45,39 @@ pub fn answer(
     }
     let trouble = |halt| halted(halt, &fitted.prepared, &fitted.settings);
     let material = fitted.prepared.material();
-    let choices = halves(fitted, &material, pairs, seed, threads, &work.part(0.0..0.5))
-        .map_err(trouble)?;
+    let choices = halves(
+        fitted,
+        &material,
+        pairs,
+        seed,
+        threads,
+        &work.part(0.0..0.5),
+    )
+    .map_err(trouble)?;
     // The null companion: the same halves and strength, the outcome shuffled among units.
     let shuffled = shuffled(fitted, seed);
-    let companion = Material { response: &shuffled, ..material };
-    let null = halves(fitted, &companion, pairs, seed, threads, &work.part(0.5..1.0))
-        .map_err(trouble)?;
+    let companion = Material {
+        response: &shuffled,
+        ..material
+    };
+    let null = halves(
+        fitted,
+        &companion,
+        pairs,
+        seed,
+        threads,
+        &work.part(0.5..1.0),
+    )
+    .map_err(trouble)?;
     let n_columns = fitted.last.samples.active.len();
     let selections = selections(n_columns, &choices);
     let (facts, index) = publish(fitted, pairs, threshold, &choices, &selections, &null);
     let caveats = selection_unstable::check(&facts, index.value);
-    Ok(Outcome { gives: Gives::Facts, facts, caveats })
+    Ok(Outcome {
+        gives: Gives::Facts,
+        facts,
+        caveats,
+    })
 }
 
 fn halves(
@@ -70,7 +90,10 @@ fn halves(
 ) -> Result<Vec<HalfChoice>, Halt> {
     let data = &fitted.prepared.data;
     let splits = complementary_pairs(pairs as usize, seed, &data.analysed, &material.structure)
-        .map_err(|error| ProcedureError::Plan { level: Level::Outer, error })?;
+        .map_err(|error| ProcedureError::Plan {
+            level: Level::Outer,
+            error,
+        })?;
     let strongest = fitted
         .last
         .curves
@@ -126,12 +149,17 @@ fn shuffled(fitted: &Fitted, seed: u64) -> Response {
 }
 
 fn selections(n_columns: usize, choices: &[HalfChoice]) -> Selections {
-    let runs =
-        choices.iter().map(|half| half.chosen.iter().map(|(at, _)| *at).collect()).collect();
+    let runs = choices
+        .iter()
+        .map(|half| half.chosen.iter().map(|(at, _)| *at).collect())
+        .collect();
     Selections::new(n_columns, runs)
 }
 
-#[expect(clippy::too_many_lines, reason = "a list of facts, one after the other")]
+#[expect(
+    clippy::too_many_lines,
+    reason = "a list of facts, one after the other"
+)]
 fn publish(
     fitted: &Fitted,
     pairs: u32,
@@ -154,34 +182,138 @@ fn publish(
     let coefficient: BTreeMap<usize, f64> = chosen.iter().copied().collect();
     let mut facts = Facts::new();
     let share = Precision::Percent(0);
-    facts.push(Fact::count("pairs", pairs as usize, "How many pairs of complementary halves of the units were drawn."));
-    facts.push(Fact::count("resamples", trials, "On how many halves the procedure was fitted."));
-    facts.push(Fact::number("threshold", threshold, "", share, "From which selection frequency on a predictor counts as chosen again."));
-    facts.push(Fact::number("strength used", fitted.last.strength, "", Precision::Significant(3), "The penalty strength on every half: that of the final fit."));
-    facts.push(Fact::number("mean chosen per half", q, "", Precision::Decimals(1), "How many predictors a half chose on average."));
-    facts.push(Fact::count("predictors", p, "How many predictors could be chosen."));
-    facts.push(Fact::count("chosen predictors", chosen.len(), "How many predictors the final fit chose."));
-    let again = chosen.iter().filter(|(at, _)| frequencies[*at] >= threshold).count();
-    facts.push(Fact::count("chosen again", again, "How many of them were chosen on at least the threshold's share of halves."));
-    let rarely = chosen.iter().filter(|(at, _)| frequencies[*at] < 0.5).count();
-    facts.push(Fact::count("chosen rarely", rarely, "How many of them were chosen on fewer than half of the halves."));
+    facts.push(Fact::count(
+        "pairs",
+        pairs as usize,
+        "How many pairs of complementary halves of the units were drawn.",
+    ));
+    facts.push(Fact::count(
+        "resamples",
+        trials,
+        "On how many halves the procedure was fitted.",
+    ));
+    facts.push(Fact::number(
+        "threshold",
+        threshold,
+        "",
+        share,
+        "From which selection frequency on a predictor counts as chosen again.",
+    ));
+    facts.push(Fact::number(
+        "strength used",
+        fitted.last.strength,
+        "",
+        Precision::Significant(3),
+        "The penalty strength on every half: that of the final fit.",
+    ));
+    facts.push(Fact::number(
+        "mean chosen per half",
+        q,
+        "",
+        Precision::Decimals(1),
+        "How many predictors a half chose on average.",
+    ));
+    facts.push(Fact::count(
+        "predictors",
+        p,
+        "How many predictors could be chosen.",
+    ));
+    facts.push(Fact::count(
+        "chosen predictors",
+        chosen.len(),
+        "How many predictors the final fit chose.",
+    ));
+    let again = chosen
+        .iter()
+        .filter(|(at, _)| frequencies[*at] >= threshold)
+        .count();
+    facts.push(Fact::count(
+        "chosen again",
+        again,
+        "How many of them were chosen on at least the threshold's share of halves.",
+    ));
+    let rarely = chosen
+        .iter()
+        .filter(|(at, _)| frequencies[*at] < 0.5)
+        .count();
+    facts.push(Fact::count(
+        "chosen rarely",
+        rarely,
+        "How many of them were chosen on fewer than half of the halves.",
+    ));
     let digits = Precision::Decimals(2);
     let mut number = |name: &str, value: Option<f64>, precision: Precision, meaning: &str| {
-        facts.push(Fact::number(name, value.unwrap_or(f64::NAN), "", precision, meaning));
+        facts.push(Fact::number(
+            name,
+            value.unwrap_or(f64::NAN),
+            "",
+            precision,
+            meaning,
+        ));
     };
-    number("stability index", index.value, digits, "Agreement of the lists, corrected for chance: 1 the same list each time, 0 lists drawn at random (Nogueira, Sechidis & Brown 2018).");
+    number(
+        "stability index",
+        index.value,
+        digits,
+        "Agreement of the lists, corrected for chance: 1 the same list each time, 0 lists drawn at random (Nogueira, Sechidis & Brown 2018).",
+    );
     let ends = index.interval(0.95);
-    number("stability low", ends.map(|ends| ends.0), digits, "Lower end of its 95 % interval.");
-    number("stability high", ends.map(|ends| ends.1.min(1.0)), digits, "Upper end of its 95 % interval.");
+    number(
+        "stability low",
+        ends.map(|ends| ends.0),
+        digits,
+        "Lower end of its 95 % interval.",
+    );
+    number(
+        "stability high",
+        ends.map(|ends| ends.1.min(1.0)),
+        digits,
+        "Upper end of its 95 % interval.",
+    );
     let bound = Precision::Significant(2);
     let about = "a bound on how many predictors of low selection probability (chosen no more often than the average predictor) are expected among those above the threshold; not a number of false discoveries";
-    number("expected low-selection predictors worst case", worst_case_bound(q, p, threshold), bound, &format!("Without assumptions (Meinshausen & Bühlmann 2010; Shah & Samworth 2013): {about}."));
-    number("expected low-selection predictors unimodal", unimodal_bound(q, p, threshold, pairs as usize), bound, &format!("If selection frequencies are unimodal (Shah & Samworth 2013): {about}."));
-    number("expected low-selection predictors r-concave", r_concave_bound(q, p, threshold, pairs as usize), bound, &format!("If selection frequencies are r-concave (Shah & Samworth 2013): {about}."));
-    number("null stability index", null_index.value, digits, "The stability index of the same procedure on the outcome shuffled among units.");
-    let highest = null_selections.frequencies().into_iter().fold(0.0, f64::max);
-    number("null highest frequency", Some(highest), share, "The highest selection frequency of any predictor on the shuffled outcome.");
-    number("null chosen per half", Some(null_selections.mean_chosen()), Precision::Decimals(1), "How many predictors a half chose on average on the shuffled outcome.");
+    number(
+        "expected low-selection predictors worst case",
+        worst_case_bound(q, p, threshold),
+        bound,
+        &format!(
+            "Without assumptions (Meinshausen & Bühlmann 2010; Shah & Samworth 2013): {about}."
+        ),
+    );
+    number(
+        "expected low-selection predictors unimodal",
+        unimodal_bound(q, p, threshold, pairs as usize),
+        bound,
+        &format!("If selection frequencies are unimodal (Shah & Samworth 2013): {about}."),
+    );
+    number(
+        "expected low-selection predictors r-concave",
+        r_concave_bound(q, p, threshold, pairs as usize),
+        bound,
+        &format!("If selection frequencies are r-concave (Shah & Samworth 2013): {about}."),
+    );
+    number(
+        "null stability index",
+        null_index.value,
+        digits,
+        "The stability index of the same procedure on the outcome shuffled among units.",
+    );
+    let highest = null_selections
+        .frequencies()
+        .into_iter()
+        .fold(0.0, f64::max);
+    number(
+        "null highest frequency",
+        Some(highest),
+        share,
+        "The highest selection frequency of any predictor on the shuffled outcome.",
+    );
+    number(
+        "null chosen per half",
+        Some(null_selections.mean_chosen()),
+        Precision::Decimals(1),
+        "How many predictors a half chose on average on the shuffled outcome.",
+    );
     // Those of the final fit and those that come close, by falling frequency.
     let mut listed: Vec<usize> = active
         .iter()
@@ -192,7 +324,12 @@ fn publish(
     let sign = |at: usize| {
         let signs: Vec<f64> = choices
             .iter()
-            .flat_map(|half| half.chosen.iter().filter(|(c, _)| *c == at).map(|(_, sign)| *sign))
+            .flat_map(|half| {
+                half.chosen
+                    .iter()
+                    .filter(|(c, _)| *c == at)
+                    .map(|(_, sign)| *sign)
+            })
             .collect();
         if signs.is_empty() {
             return f64::NAN;
@@ -203,7 +340,8 @@ fn publish(
     let column = |values: Vec<f64>, name: &str, precision: Precision, meaning: &str| {
         FactColumn::numbers(name, values, "", precision, meaning)
     };
-    let wilson = |at: usize| wilson_interval(counts[at], trials, 0.95).unwrap_or((f64::NAN, f64::NAN));
+    let wilson =
+        |at: usize| wilson_interval(counts[at], trials, 0.95).unwrap_or((f64::NAN, f64::NAN));
     facts.push(Fact::table("frequencies", vec![
         FactColumn::texts("predictor", listed.iter().map(|&at| fitted.column_name(at)).collect(), "The predictor."),
         column(listed.iter().map(|&at| frequencies[at]).collect(), "frequency", share, "On what share of the halves it was chosen."),
@@ -221,7 +359,11 @@ fn compact(selections: &Selections, active: &[usize]) -> Selections {
     let runs = selections
         .runs()
         .iter()
-        .map(|run| run.iter().filter_map(|at| active.binary_search(at).ok()).collect())
+        .map(|run| {
+            run.iter()
+                .filter_map(|at| active.binary_search(at).ok())
+                .collect()
+        })
         .collect();
     Selections::new(active.len(), runs)
 }

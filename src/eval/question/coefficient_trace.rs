@@ -29,16 +29,37 @@ pub fn answer(fitted: &Fitted) -> Result<Outcome, Ended> {
     if kept.len() > MOST_LINES && fitted.last.share == 0.0 {
         let chosen = fitted.last.strength_at;
         kept.sort_by(|(a, left), (b, right)| {
-            right[chosen].abs().total_cmp(&left[chosen].abs()).then(a.cmp(b))
+            right[chosen]
+                .abs()
+                .total_cmp(&left[chosen].abs())
+                .then(a.cmp(b))
         });
         kept.truncate(MOST_LINES);
         kept.sort_by_key(|(column, _)| *column);
     }
     let mut facts = Facts::new();
-    facts.push(Fact::number("chosen strength", fitted.last.strength, "", Precision::Significant(3), "The penalty strength of the final fit."));
-    facts.push(Fact::count("predictors ever chosen", n_ever, "How many predictors have a coefficient other than zero at some strength of the range."));
-    facts.push(Fact::count("chosen predictors", path.info(fitted.last.strength_at).n_chosen, "How many predictors have one at the chosen strength."));
-    facts.push(Fact::count("sign changes", n_turning, "How many predictors have a coefficient that changes its sign along the range."));
+    facts.push(Fact::number(
+        "chosen strength",
+        fitted.last.strength,
+        "",
+        Precision::Significant(3),
+        "The penalty strength of the final fit.",
+    ));
+    facts.push(Fact::count(
+        "predictors ever chosen",
+        n_ever,
+        "How many predictors have a coefficient other than zero at some strength of the range.",
+    ));
+    facts.push(Fact::count(
+        "chosen predictors",
+        path.info(fitted.last.strength_at).n_chosen,
+        "How many predictors have one at the chosen strength.",
+    ));
+    facts.push(Fact::count(
+        "sign changes",
+        n_turning,
+        "How many predictors have a coefficient that changes its sign along the range.",
+    ));
     facts.push(Fact::count("lines shown", kept.len(), "How many predictors the trace shows: all that are ever chosen, or of a ridge those with the largest coefficients."));
     let mut predictor = Vec::new();
     let mut strength = Vec::new();
@@ -51,16 +72,54 @@ pub fn answer(fitted: &Fitted) -> Result<Outcome, Ended> {
             value.push(*coefficient);
         }
     }
-    facts.push(Fact::table("trace", vec![
-        FactColumn::texts("predictor", predictor, "The predictor."),
-        FactColumn::numbers("strength", strength, "", Precision::Significant(4), "The penalty strength."),
-        FactColumn::numbers("standardised coefficient", value, "", Precision::Significant(4), "Its coefficient on the scale that the penalty sees."),
-    ], "The coefficients at every strength, predictor by predictor."));
-    facts.push(Fact::table("trace strengths", vec![
-        FactColumn::numbers("strength", (0..n_points).map(|at| path.strength(at)).collect(), "", Precision::Significant(4), "The penalty strength."),
-        FactColumn::numbers("chosen predictors", (0..n_points).map(|at| path.info(at).n_chosen as f64).collect(), "", Precision::Whole, "How many predictors have a coefficient other than zero."),
-    ], "How many predictors are chosen at every strength."));
-    Ok(Outcome { gives: Gives::Facts, facts, caveats: vec![shrunken_weights::always()] })
+    facts.push(Fact::table(
+        "trace",
+        vec![
+            FactColumn::texts("predictor", predictor, "The predictor."),
+            FactColumn::numbers(
+                "strength",
+                strength,
+                "",
+                Precision::Significant(4),
+                "The penalty strength.",
+            ),
+            FactColumn::numbers(
+                "standardised coefficient",
+                value,
+                "",
+                Precision::Significant(4),
+                "Its coefficient on the scale that the penalty sees.",
+            ),
+        ],
+        "The coefficients at every strength, predictor by predictor.",
+    ));
+    facts.push(Fact::table(
+        "trace strengths",
+        vec![
+            FactColumn::numbers(
+                "strength",
+                (0..n_points).map(|at| path.strength(at)).collect(),
+                "",
+                Precision::Significant(4),
+                "The penalty strength.",
+            ),
+            FactColumn::numbers(
+                "chosen predictors",
+                (0..n_points)
+                    .map(|at| path.info(at).n_chosen as f64)
+                    .collect(),
+                "",
+                Precision::Whole,
+                "How many predictors have a coefficient other than zero.",
+            ),
+        ],
+        "How many predictors are chosen at every strength.",
+    ));
+    Ok(Outcome {
+        gives: Gives::Facts,
+        facts,
+        caveats: vec![shrunken_weights::always()],
+    })
 }
 
 fn changes_sign(line: &[f64]) -> bool {

@@ -25,32 +25,114 @@ pub fn answer(fitted: &Fitted) -> Result<Outcome, Ended> {
     let digits = error_digits(fitted);
     let strength = Precision::Significant(3);
     let mut facts = Facts::new();
-    facts.push(Fact::number("chosen strength", last.strength, "", strength, "The penalty strength of the final fit."));
+    facts.push(Fact::number(
+        "chosen strength",
+        last.strength,
+        "",
+        strength,
+        "The penalty strength of the final fit.",
+    ));
     let lowest = choose::lowest(&curve.errors);
     if let (Some(at), false) = (lowest, curve.standard_errors.is_empty()) {
         let root = |value: f64| value.max(0.0).sqrt();
-        facts.push(Fact::number("lowest error", root(curve.errors[at]), &unit, digits, "The lowest error in the inner parts (root of the mean squared error)."));
-        facts.push(Fact::number("lowest error standard error", curve.standard_errors[at] / (2.0 * root(curve.errors[at])), &unit, digits, "Its standard error over the parts of a repeat."));
+        facts.push(Fact::number(
+            "lowest error",
+            root(curve.errors[at]),
+            &unit,
+            digits,
+            "The lowest error in the inner parts (root of the mean squared error).",
+        ));
+        facts.push(Fact::number(
+            "lowest error standard error",
+            curve.standard_errors[at] / (2.0 * root(curve.errors[at])),
+            &unit,
+            digits,
+            "Its standard error over the parts of a repeat.",
+        ));
         if let Some(one) = choose::pick(Rule::OneStandardError, curve) {
-            facts.push(Fact::number("one-standard-error strength", curve.strengths[one], "", strength, "The largest strength whose error is within one standard error of the lowest."));
+            facts.push(Fact::number(
+                "one-standard-error strength",
+                curve.strengths[one],
+                "",
+                strength,
+                "The largest strength whose error is within one standard error of the lowest.",
+            ));
         }
-        facts.push(Fact::number("curve improvement", 1.0 - curve.errors[at] / curve.errors[0], "", Precision::Percent(0), "How much smaller the lowest mean squared error is than that of the strongest penalty."));
-        facts.push(Fact::number("standard errors below the strongest", (curve.errors[0] - curve.errors[at]) / curve.standard_errors[at], "", Precision::Decimals(1), "How many standard errors the lowest error lies below that of the strongest penalty."));
+        facts.push(Fact::number(
+            "curve improvement",
+            1.0 - curve.errors[at] / curve.errors[0],
+            "",
+            Precision::Percent(0),
+            "How much smaller the lowest mean squared error is than that of the strongest penalty.",
+        ));
+        facts.push(Fact::number(
+            "standard errors below the strongest",
+            (curve.errors[0] - curve.errors[at]) / curve.standard_errors[at],
+            "",
+            Precision::Decimals(1),
+            "How many standard errors the lowest error lies below that of the strongest penalty.",
+        ));
     }
     if let Some(judged) = &fitted.judged {
-        let strengths: Vec<f64> = judged.held_out.fits.iter().map(|fit| fit.strength).collect();
-        let chosen: Vec<f64> = judged.held_out.fits.iter().map(|fit| fit.n_chosen as f64).collect();
+        let strengths: Vec<f64> = judged
+            .held_out
+            .fits
+            .iter()
+            .map(|fit| fit.strength)
+            .collect();
+        let chosen: Vec<f64> = judged
+            .held_out
+            .fits
+            .iter()
+            .map(|fit| fit.n_chosen as f64)
+            .collect();
         let at = |share: f64| quantile(&strengths, share);
-        let edge = judged.held_out.fits.iter().filter(|fit| fit.at_edge).count() as f64 / strengths.len() as f64;
+        let edge = judged
+            .held_out
+            .fits
+            .iter()
+            .filter(|fit| fit.at_edge)
+            .count() as f64
+            / strengths.len() as f64;
         let mut push = |name: &str, value: f64, precision: Precision, meaning: &str| {
             facts.push(Fact::number(name, value, "", precision, meaning));
         };
-        push("strength least", at(0.0), strength, "The smallest strength chosen in an outer training part.");
-        push("strength most", at(1.0), strength, "The largest strength chosen in an outer training part.");
-        push("strength log10 interquartile range", at(0.75).log10() - at(0.25).log10(), Precision::Decimals(2), "How many powers of ten the middle half of the chosen strengths spans.");
-        push("share of outer fits at the edge", edge, Precision::Percent(0), "In how many outer training parts the chosen strength lay at an end of the range.");
-        push("fewest chosen predictors", quantile(&chosen, 0.0), Precision::Whole, "The smallest number of predictors chosen in an outer training part.");
-        push("most chosen predictors", quantile(&chosen, 1.0), Precision::Whole, "The largest number of predictors chosen in an outer training part.");
+        push(
+            "strength least",
+            at(0.0),
+            strength,
+            "The smallest strength chosen in an outer training part.",
+        );
+        push(
+            "strength most",
+            at(1.0),
+            strength,
+            "The largest strength chosen in an outer training part.",
+        );
+        push(
+            "strength log10 interquartile range",
+            at(0.75).log10() - at(0.25).log10(),
+            Precision::Decimals(2),
+            "How many powers of ten the middle half of the chosen strengths spans.",
+        );
+        push(
+            "share of outer fits at the edge",
+            edge,
+            Precision::Percent(0),
+            "In how many outer training parts the chosen strength lay at an end of the range.",
+        );
+        push(
+            "fewest chosen predictors",
+            quantile(&chosen, 0.0),
+            Precision::Whole,
+            "The smallest number of predictors chosen in an outer training part.",
+        );
+        push(
+            "most chosen predictors",
+            quantile(&chosen, 1.0),
+            Precision::Whole,
+            "The largest number of predictors chosen in an outer training part.",
+        );
     }
     facts.push(error_curve(fitted, curve, &unit, digits));
     if let Some(judged) = &fitted.judged {
@@ -61,5 +143,9 @@ pub fn answer(fitted: &Fitted) -> Result<Outcome, Ended> {
         flat_curve::check(fitted),
         strength_unstable::check(fitted),
     ];
-    Ok(Outcome { gives: Gives::Facts, facts, caveats: caveats.into_iter().flatten().collect() })
+    Ok(Outcome {
+        gives: Gives::Facts,
+        facts,
+        caveats: caveats.into_iter().flatten().collect(),
+    })
 }

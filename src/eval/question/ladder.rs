@@ -6,15 +6,17 @@ use crate::base::work::Work;
 use crate::eval::caveat::{batches_are_harder, ungrouped_flatters};
 use crate::eval::fact::{Fact, FactColumn, Facts};
 use crate::eval::kind::Ended;
+use crate::eval::kind::fit::error_digits;
 use crate::eval::kind::fit::{
     Fitted, Interval, Measures, errors_by_unit, halted, interval, numeric_procedure, parts_params,
     performance,
 };
 use crate::eval::outcome::{Gives, Outcome};
 use crate::eval::question::agreement::not_judged;
-use crate::eval::kind::fit::error_digits;
 use crate::numeric::parts::{self, PartsParams, Split, Structure, assign};
-use crate::numeric::procedure::{Halt, HeldOut, Level, Material, ProcedureError, nested, one_split};
+use crate::numeric::procedure::{
+    Halt, HeldOut, Level, Material, ProcedureError, nested, one_split,
+};
 use crate::study::settings::fit::{Judge, Strength};
 use crate::study::settings::question::Seal;
 
@@ -54,8 +56,8 @@ pub fn answer(
     rungs.extend(tuning(fitted, &observed));
     let repeats_units = data.unit_column.is_some() && data.count_units(rows) < rows.len();
     if repeats_units {
-        let (measures, interval) =
-            rows_split(fitted, threads, &work.part(0.0..0.45)).map_err(|halt| halted(halt, &fitted.prepared, &fitted.settings))?;
+        let (measures, interval) = rows_split(fitted, threads, &work.part(0.0..0.45))
+            .map_err(|halt| halted(halt, &fitted.prepared, &fitted.settings))?;
         rungs.push(Rung {
             step: "rows split",
             held_out: "single samples".to_owned(),
@@ -70,7 +72,10 @@ pub fn answer(
         step: "nested",
         held_out: format!("whole {word}s"),
         measures: Some(nested_performance.mean),
-        interval: Some(interval(&nested_performance.errors.model, &nested_performance.errors.sizes)),
+        interval: Some(interval(
+            &nested_performance.errors.model,
+            &nested_performance.errors.sizes,
+        )),
         n_samples: rows.len(),
         remark: "the number to quote for new units from the same batches".to_owned(),
     });
@@ -99,14 +104,22 @@ pub fn answer(
     let variance = mean_square(&observed);
     let facts = publish(fitted, &rungs, variance);
     let r2 = |step: &str| {
-        rungs.iter().find(|rung| rung.step == step).and_then(|rung| rung.measures).map(|m| m.r2)
+        rungs
+            .iter()
+            .find(|rung| rung.step == step)
+            .and_then(|rung| rung.measures)
+            .map(|m| m.r2)
     };
     let caveats = [
         r2("rows split").and_then(|split| ungrouped_flatters::check(split, r2("nested")?, word)),
         r2("whole batches held out")
             .and_then(|batch| batches_are_harder::check(r2("nested")?, batch, &batch_word)),
     ];
-    Ok(Outcome { gives: Gives::Facts, facts, caveats: caveats.into_iter().flatten().collect() })
+    Ok(Outcome {
+        gives: Gives::Facts,
+        facts,
+        caveats: caveats.into_iter().flatten().collect(),
+    })
 }
 
 fn mean_square(observed: &[f64]) -> f64 {
@@ -147,7 +160,10 @@ fn outer_params(fitted: &Fitted, most_repeats: usize) -> PartsParams {
     match fitted.settings.judge {
         Judge::Nested(plan) => {
             let params = parts_params(plan, fitted.settings.seed);
-            PartsParams { repeats: params.repeats.min(most_repeats), ..params }
+            PartsParams {
+                repeats: params.repeats.min(most_repeats),
+                ..params
+            }
         }
         Judge::Declined => PartsParams {
             scheme: parts::Scheme::Random,
@@ -167,8 +183,16 @@ fn judge(
     work: &Work<'_>,
 ) -> Result<HeldOut, Halt> {
     let procedure = numeric_procedure(&fitted.settings, &fitted.prepared);
-    let plan = assign(params, &fitted.prepared.data.analysed, &material.structure, purpose)
-        .map_err(|error| ProcedureError::Plan { level: Level::Outer, error })?;
+    let plan = assign(
+        params,
+        &fitted.prepared.data.analysed,
+        &material.structure,
+        purpose,
+    )
+    .map_err(|error| ProcedureError::Plan {
+        level: Level::Outer,
+        error,
+    })?;
     nested(material, &procedure, &plan, purpose, threads, work)
 }
 
@@ -181,9 +205,18 @@ fn rows_split(
     let data = &fitted.prepared.data;
     let each_its_own: Vec<usize> = (0..data.names.len()).collect();
     let material = fitted.prepared.material();
-    let structure = Structure { units: &each_its_own, ..material.structure };
-    let material = Material { structure, ..material };
-    let params = PartsParams { scheme: parts::Scheme::Random, ..outer_params(fitted, 2) };
+    let structure = Structure {
+        units: &each_its_own,
+        ..material.structure
+    };
+    let material = Material {
+        structure,
+        ..material
+    };
+    let params = PartsParams {
+        scheme: parts::Scheme::Random,
+        ..outer_params(fitted, 2)
+    };
     let held_out = judge(fitted, &material, &params, "rows split", threads, work)?;
     let found = performance(&held_out, data, &data.analysed, fitted.observed());
     let interval = interval(&found.errors.model, &found.errors.sizes);
@@ -220,16 +253,29 @@ fn whole_batches(
         parts: present.len(),
         ..outer_params(fitted, 1)
     };
-    match judge(fitted, &fitted.prepared.material(), &params, "whole batches", threads, work) {
+    match judge(
+        fitted,
+        &fitted.prepared.material(),
+        &params,
+        "whole batches",
+        threads,
+        work,
+    ) {
         Ok(held_out) => {
             let found = performance(&held_out, data, &data.analysed, fitted.observed());
             let interval = interval(&found.errors.model, &found.errors.sizes);
-            Ok(rung(Some(found.mean), Some(interval), format!("the number to quote for a new {column}")))
+            Ok(rung(
+                Some(found.mean),
+                Some(interval),
+                format!("the number to quote for a new {column}"),
+            ))
         }
         // A unit that spans all batches leaves nothing to hold out: that is an answer, too.
-        Err(Halt::Failed(ProcedureError::Plan { .. })) => {
-            Ok(rung(None, None, format!("{column}s cannot be held out one by one, because units span them")))
-        }
+        Err(Halt::Failed(ProcedureError::Plan { .. })) => Ok(rung(
+            None,
+            None,
+            format!("{column}s cannot be held out one by one, because units span them"),
+        )),
         Err(halt) => Err(halt),
     }
 }
@@ -240,12 +286,20 @@ fn sealed(fitted: &Fitted, work: &Work<'_>) -> Result<Rung, Halt> {
     let data = &fitted.prepared.data;
     let material = fitted.prepared.material();
     let procedure = numeric_procedure(&fitted.settings, &fitted.prepared);
-    let split = Split::with_held_out(&data.analysed, &data.sealed, &material.structure)
-        .map_err(|error| ProcedureError::Plan { level: Level::Outer, error })?;
+    let split = Split::with_held_out(&data.analysed, &data.sealed, &material.structure).map_err(
+        |error| ProcedureError::Plan {
+            level: Level::Outer,
+            error,
+        },
+    )?;
     let (fit, _) = one_split(&material, &procedure, &split, "final", work)?;
     let observed: Vec<f64> = fit.rows.iter().map(|&row| fitted.observed()[row]).collect();
-    let squares: Vec<f64> =
-        fit.predicted.iter().zip(&observed).map(|(p, o)| (p - o).powi(2)).collect();
+    let squares: Vec<f64> = fit
+        .predicted
+        .iter()
+        .zip(&observed)
+        .map(|(p, o)| (p - o).powi(2))
+        .collect();
     let errors = errors_by_unit(data, &fit.rows, &squares, &squares);
     Ok(Rung {
         step: "sealed set",
@@ -254,7 +308,9 @@ fn sealed(fitted: &Fitted, work: &Work<'_>) -> Result<Rung, Halt> {
         interval: Some(interval(&errors.model, &errors.sizes)),
         n_samples: fit.rows.len(),
         remark: match fitted.settings.strength {
-            Strength::ByHand(_) | Strength::Chosen { .. } => "opened; each opening is counted".to_owned(),
+            Strength::ByHand(_) | Strength::Chosen { .. } => {
+                "opened; each opening is counted".to_owned()
+            }
         },
     })
 }
@@ -274,14 +330,53 @@ fn publish(fitted: &Fitted, rungs: &[Rung], variance: f64) -> Facts {
         let Some(m) = rung.measures else { continue };
         let name = prefix(rung.step);
         let mut push = |what: &str, value: f64, unit: &str, precision: Precision, meaning: &str| {
-            facts.push(Fact::number(&format!("{name} {what}"), value, unit, precision, meaning));
+            facts.push(Fact::number(
+                &format!("{name} {what}"),
+                value,
+                unit,
+                precision,
+                meaning,
+            ));
         };
-        push("r²", m.r2, "", share, &format!("R² with {} held out: {}.", rung.held_out, rung.remark));
-        push("rmse", m.rmse, unit, digits, &format!("Root mean squared error with {} held out: {}.", rung.held_out, rung.remark));
+        push(
+            "r²",
+            m.r2,
+            "",
+            share,
+            &format!("R² with {} held out: {}.", rung.held_out, rung.remark),
+        );
+        push(
+            "rmse",
+            m.rmse,
+            unit,
+            digits,
+            &format!(
+                "Root mean squared error with {} held out: {}.",
+                rung.held_out, rung.remark
+            ),
+        );
         if rung.step == "sealed set" {
-            push("bias", m.bias, unit, digits, "Mean of predicted minus observed values of the sealed samples.");
-            push("slope", m.slope, "", share, "Slope of the line of observed on predicted values of the sealed samples.");
-            push("samples", rung.n_samples as f64, "", Precision::Whole, "How many sealed samples were predicted.");
+            push(
+                "bias",
+                m.bias,
+                unit,
+                digits,
+                "Mean of predicted minus observed values of the sealed samples.",
+            );
+            push(
+                "slope",
+                m.slope,
+                "",
+                share,
+                "Slope of the line of observed on predicted values of the sealed samples.",
+            );
+            push(
+                "samples",
+                rung.n_samples as f64,
+                "",
+                Precision::Whole,
+                "How many sealed samples were predicted.",
+            );
         }
     }
     let of = |get: &dyn Fn(&Rung) -> f64| rungs.iter().map(get).collect::<Vec<f64>>();
@@ -297,15 +392,61 @@ fn publish(fitted: &Fitted, rungs: &[Rung], variance: f64) -> Facts {
         })
     };
     let texts = |get: fn(&Rung) -> String| rungs.iter().map(get).collect::<Vec<String>>();
-    facts.push(Fact::table("ladder", vec![
-        FactColumn::texts("step", texts(|rung| rung.step.to_owned()), "The way of judging."),
-        FactColumn::texts("what is held out", texts(|rung| rung.held_out.clone()), "What the fits had not seen."),
-        FactColumn::numbers("r²", measure(|m| m.r2), "", share, "R²: 1 − SSE/SST, SST about the mean of the samples judged."),
-        FactColumn::numbers("r² low", r2_end(|i| i.high), "", share, "Lower end of a 95 % interval over units; it is about the procedure."),
-        FactColumn::numbers("r² high", r2_end(|i| i.low.max(0.0)), "", share, "Upper end of the same interval."),
-        FactColumn::numbers("rmse", measure(|m| m.rmse), unit, digits, "Root mean squared error."),
-        FactColumn::numbers("samples", of(&|rung: &Rung| rung.n_samples as f64), "", Precision::Whole, "How many samples were judged."),
-        FactColumn::texts("remark", texts(|rung| rung.remark.clone()), "What the number means."),
-    ], "The same procedure judged in harder and harder ways."));
+    facts.push(Fact::table(
+        "ladder",
+        vec![
+            FactColumn::texts(
+                "step",
+                texts(|rung| rung.step.to_owned()),
+                "The way of judging.",
+            ),
+            FactColumn::texts(
+                "what is held out",
+                texts(|rung| rung.held_out.clone()),
+                "What the fits had not seen.",
+            ),
+            FactColumn::numbers(
+                "r²",
+                measure(|m| m.r2),
+                "",
+                share,
+                "R²: 1 − SSE/SST, SST about the mean of the samples judged.",
+            ),
+            FactColumn::numbers(
+                "r² low",
+                r2_end(|i| i.high),
+                "",
+                share,
+                "Lower end of a 95 % interval over units; it is about the procedure.",
+            ),
+            FactColumn::numbers(
+                "r² high",
+                r2_end(|i| i.low.max(0.0)),
+                "",
+                share,
+                "Upper end of the same interval.",
+            ),
+            FactColumn::numbers(
+                "rmse",
+                measure(|m| m.rmse),
+                unit,
+                digits,
+                "Root mean squared error.",
+            ),
+            FactColumn::numbers(
+                "samples",
+                of(&|rung: &Rung| rung.n_samples as f64),
+                "",
+                Precision::Whole,
+                "How many samples were judged.",
+            ),
+            FactColumn::texts(
+                "remark",
+                texts(|rung| rung.remark.clone()),
+                "What the number means.",
+            ),
+        ],
+        "The same procedure judged in harder and harder ways.",
+    ));
     facts
 }

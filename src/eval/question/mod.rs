@@ -37,9 +37,18 @@ fn answer(settings: &Question, inputs: &Inputs<'_>, work: &Work<'_>) -> Result<O
         Ask::CoefficientTrace => coefficient_trace::answer(&fitted),
         Ask::Agreement => agreement::answer(&fitted),
         Ask::Ladder { seal } => ladder::answer(&fitted, *seal, inputs.threads, work),
-        Ask::ChosenAgain { pairs, threshold, seed } => {
-            chosen_again::answer(&fitted, *pairs, threshold.get(), *seed, inputs.threads, work)
-        }
+        Ask::ChosenAgain {
+            pairs,
+            threshold,
+            seed,
+        } => chosen_again::answer(
+            &fitted,
+            *pairs,
+            threshold.get(),
+            *seed,
+            inputs.threads,
+            work,
+        ),
         Ask::StandIns { correlation } => stand_ins::answer(&fitted, correlation.get(), work),
     }
 }
@@ -52,10 +61,15 @@ fn active_columns(fitted: &Fitted) -> Vec<usize> {
 
 /// On which scale the penalty of a fit acts.
 fn scale(fitted: &Fitted) -> ColumnScale {
-    let scales = fitted.prepared.steps.iter().rev().take_while(|step| {
-        matches!(step, Step::Center | Step::UnitVariance)
-    });
-    let by_steps = scales.into_iter().any(|step| matches!(step, Step::UnitVariance));
+    let scales = fitted
+        .prepared
+        .steps
+        .iter()
+        .rev()
+        .take_while(|step| matches!(step, Step::Center | Step::UnitVariance));
+    let by_steps = scales
+        .into_iter()
+        .any(|step| matches!(step, Step::UnitVariance));
     match fitted.settings.scaling {
         Scaling::UnitVariance => ColumnScale::UnitVariance,
         Scaling::AsPrepared if by_steps => ColumnScale::UnitVariance,

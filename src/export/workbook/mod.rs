@@ -36,7 +36,12 @@ pub fn workbook(context: &Context<'_>, occasion: &Occasion) -> Result<Vec<u8>, E
     if !standing.is_empty() && occasion.despite.is_none() {
         return Err(ExportError::Stopped(standing));
     }
-    if context.study.cells().iter().all(|cell| context.outcome(cell.id).is_none()) {
+    if context
+        .study
+        .cells()
+        .iter()
+        .all(|cell| context.outcome(cell.id).is_none())
+    {
         return Err(ExportError::NothingToExport);
     }
     let reports = report::study(context);
@@ -44,19 +49,51 @@ pub fn workbook(context: &Context<'_>, occasion: &Occasion) -> Result<Vec<u8>, E
     // No clock below the rim: the same study gives the same bytes.
     let made = rust_xlsxwriter::DocProperties::new()
         .set_title(context.study.title())
-        .set_creation_datetime(&rust_xlsxwriter::ExcelDateTime::parse_from_str(&occasion.date).or_else(|_| rust_xlsxwriter::ExcelDateTime::from_ymd(2000, 1, 1))?);
-    book.set_properties(&made);
+        .set_creation_datetime(
+            &rust_xlsxwriter::ExcelDateTime::parse_from_str(&occasion.date)
+                .or_else(|_| rust_xlsxwriter::ExcelDateTime::from_ymd(2000, 1, 1))?,
+        );
+    let _ = book.set_properties(&made);
     read_me(&mut book, context, occasion)?;
     performance(&mut book, context)?;
-    let fits: Vec<&Cell> =
-        context.study.cells().iter().filter(|cell| cell.settings.kind() == Kind::Fit).collect();
+    let fits: Vec<&Cell> = context
+        .study
+        .cells()
+        .iter()
+        .filter(|cell| cell.settings.kind() == Kind::Fit)
+        .collect();
     for fit in &fits {
-        let suffix = if fits.len() == 1 { None } else { Some(fit.title.as_str()) };
+        let suffix = if fits.len() == 1 {
+            None
+        } else {
+            Some(fit.title.as_str())
+        };
         predictors(&mut book, context, fit, suffix)?;
-        fact_sheet(&mut book, context, fit, "held-out predictions", "Samples", suffix)?;
+        fact_sheet(
+            &mut book,
+            context,
+            fit,
+            "held-out predictions",
+            "Samples",
+            suffix,
+        )?;
         penalty(&mut book, context, fit, suffix)?;
-        fact_sheet(&mut book, context, fit, "outer choices", "Outer parts", suffix)?;
-        fact_sheet(&mut book, context, fit, "assignments", "Assignments", suffix)?;
+        fact_sheet(
+            &mut book,
+            context,
+            fit,
+            "outer choices",
+            "Outer parts",
+            suffix,
+        )?;
+        fact_sheet(
+            &mut book,
+            context,
+            fit,
+            "assignments",
+            "Assignments",
+            suffix,
+        )?;
     }
     answers(&mut book, &reports, context)?;
     figures(&mut book, &reports, context)?;
@@ -66,14 +103,24 @@ pub fn workbook(context: &Context<'_>, occasion: &Occasion) -> Result<Vec<u8>, E
     Ok(book.save_to_buffer()?)
 }
 
-fn read_me(book: &mut Workbook, context: &Context<'_>, occasion: &Occasion) -> Result<(), ExportError> {
+fn read_me(
+    book: &mut Workbook,
+    context: &Context<'_>,
+    occasion: &Occasion,
+) -> Result<(), ExportError> {
     let mut sheet = Sheet::add(book, "Read me")?;
     sheet.width(0, 110.0)?;
     sheet.title(context.study.title())?;
     sheet.text("This workbook hands over an analysis of wide data: what was predicted, how well, from which predictors, and with which reservations.")?;
-    sheet.text(&format!("Exported on {} by Widefold {}.", occasion.date, env!("CARGO_PKG_VERSION")))?;
+    sheet.text(&format!(
+        "Exported on {} by Widefold {}.",
+        occasion.date,
+        env!("CARGO_PKG_VERSION")
+    ))?;
     if let Some(reason) = &occasion.despite {
-        sheet.text(&format!("Blocking remarks were overridden. The reason given: {reason}"))?;
+        sheet.text(&format!(
+            "Blocking remarks were overridden. The reason given: {reason}"
+        ))?;
     }
     sheet.blank();
     for cell in context.study.cells() {
@@ -87,17 +134,44 @@ fn read_me(book: &mut Workbook, context: &Context<'_>, occasion: &Occasion) -> R
     }
     sheet.strong("The sheets")?;
     for (name, what) in [
-        ("Performance", "How well samples that the model had not seen were predicted, with the baseline and the ladder from flattering to severe."),
-        ("Predictors", "The chosen predictors with their coefficients, how often each is chosen again, and what could stand in for it."),
-        ("Samples", "Observed and held-out predicted value of every sample."),
-        ("Penalty", "The error of every penalty strength that was tried, with a chart."),
+        (
+            "Performance",
+            "How well samples that the model had not seen were predicted, with the baseline and the ladder from flattering to severe.",
+        ),
+        (
+            "Predictors",
+            "The chosen predictors with their coefficients, how often each is chosen again, and what could stand in for it.",
+        ),
+        (
+            "Samples",
+            "Observed and held-out predicted value of every sample.",
+        ),
+        (
+            "Penalty",
+            "The error of every penalty strength that was tried, with a chart.",
+        ),
         ("Outer parts", "What each outer training part chose."),
-        ("Assignments", "In which part each sample was held out, so that the judgement can be repeated."),
-        ("Answers", "The tables behind the answers to the questions that were asked."),
-        ("Figures", "The figures of the study, each with one line on how to read it."),
-        ("Caveats", "Remarks on the results, with what set each off. Read them before using a number."),
+        (
+            "Assignments",
+            "In which part each sample was held out, so that the judgement can be repeated.",
+        ),
+        (
+            "Answers",
+            "The tables behind the answers to the questions that were asked.",
+        ),
+        (
+            "Figures",
+            "The figures of the study, each with one line on how to read it.",
+        ),
+        (
+            "Caveats",
+            "Remarks on the results, with what set each off. Read them before using a number.",
+        ),
         ("Methods", "How it was done, as text for a report."),
-        ("Dictionary", "What every value is called, its unit and its meaning."),
+        (
+            "Dictionary",
+            "What every value is called, its unit and its meaning.",
+        ),
     ] {
         sheet.pair(name, what)?;
     }
@@ -108,7 +182,12 @@ fn read_me(book: &mut Workbook, context: &Context<'_>, occasion: &Occasion) -> R
         sheet.text("No remark was set off by the results.")?;
     }
     for (_, caveat) in found.iter().take(3) {
-        sheet.text(&format!("{} ({}): {}", caveat.heading, caveat.severity.word(), caveat.text))?;
+        sheet.text(&format!(
+            "{} ({}): {}",
+            caveat.heading,
+            caveat.severity.word(),
+            caveat.text
+        ))?;
     }
     sheet.blank();
     sheet.strong("What this document cannot know")?;
@@ -129,7 +208,9 @@ fn performance(book: &mut Workbook, context: &Context<'_>) -> Result<(), ExportE
         if !matches!(cell.settings.kind(), Kind::Fit | Kind::Question) {
             continue;
         }
-        let Some(outcome) = context.outcome(cell.id) else { continue };
+        let Some(outcome) = context.outcome(cell.id) else {
+            continue;
+        };
         for fact in outcome.facts.all() {
             if !matches!(fact.value, FactValue::Table(_)) {
                 sheet.fact(&cell.title, fact)?;
@@ -146,7 +227,9 @@ fn predictors(
     fit: &Cell,
     suffix: Option<&str>,
 ) -> Result<(), ExportError> {
-    let Some(list) = chosen::list(context, fit.id) else { return Ok(()) };
+    let Some(list) = chosen::list(context, fit.id) else {
+        return Ok(());
+    };
     let mut sheet = Sheet::add(book, &sheet_name("Predictors", suffix))?;
     match list.frequencies {
         Frequencies::Known | Frequencies::NothingChosen => sheet.table(&list.table)?,
@@ -163,8 +246,12 @@ fn fact_sheet(
     name: &str,
     suffix: Option<&str>,
 ) -> Result<(), ExportError> {
-    let Some(outcome) = context.outcome(cell.id) else { return Ok(()) };
-    let Some(table) = outcome.facts.table(fact) else { return Ok(()) };
+    let Some(outcome) = context.outcome(cell.id) else {
+        return Ok(());
+    };
+    let Some(table) = outcome.facts.table(fact) else {
+        return Ok(());
+    };
     Sheet::add(book, &sheet_name(name, suffix))?.table(table)?;
     Ok(())
 }
@@ -176,8 +263,12 @@ fn penalty(
     fit: &Cell,
     suffix: Option<&str>,
 ) -> Result<(), ExportError> {
-    let Some(outcome) = context.outcome(fit.id) else { return Ok(()) };
-    let Some(table) = outcome.facts.table("error curve") else { return Ok(()) };
+    let Some(outcome) = context.outcome(fit.id) else {
+        return Ok(());
+    };
+    let Some(table) = outcome.facts.table("error curve") else {
+        return Ok(());
+    };
     let name = sheet_name("Penalty", suffix);
     let mut sheet = Sheet::add(book, &name)?;
     sheet.table(table)?;
@@ -185,9 +276,21 @@ fn penalty(
     if rows < 2 {
         return Ok(());
     }
-    let value = if table.column("error").is_some() { "error" } else { "criterion" };
-    let at = |name: &str| table.columns.iter().position(|column| column.name == name).map(|at| at as u16);
-    let (Some(x), Some(y)) = (at("strength"), at(value)) else { return Ok(()) };
+    let value = if table.column("error").is_some() {
+        "error"
+    } else {
+        "criterion"
+    };
+    let at = |name: &str| {
+        table
+            .columns
+            .iter()
+            .position(|column| column.name == name)
+            .map(|at| at as u16)
+    };
+    let (Some(x), Some(y)) = (at("strength"), at(value)) else {
+        return Ok(());
+    };
     let mut chart = Chart::new(ChartType::ScatterSmooth);
     let _ = chart
         .add_series()
@@ -206,8 +309,15 @@ fn penalty(
                 });
         }
     }
-    let unit = table.column(value).map(|column| column.unit.clone()).unwrap_or_default();
-    let label = if unit.is_empty() { value.to_owned() } else { format!("{value}, {unit}") };
+    let unit = table
+        .column(value)
+        .map(|column| column.unit.clone())
+        .unwrap_or_default();
+    let label = if unit.is_empty() {
+        value.to_owned()
+    } else {
+        format!("{value}, {unit}")
+    };
     let _ = chart.x_axis().set_name("penalty strength").set_log_base(10);
     let _ = chart.y_axis().set_name(&label);
     let _ = chart.title().set_name("Error against penalty strength");
@@ -216,15 +326,23 @@ fn penalty(
 }
 
 /// The tables behind the answers, one below the other.
-fn answers(book: &mut Workbook, reports: &[CellReport], context: &Context<'_>) -> Result<(), ExportError> {
+fn answers(
+    book: &mut Workbook,
+    reports: &[CellReport],
+    context: &Context<'_>,
+) -> Result<(), ExportError> {
     let mut sheet = Sheet::add(book, "Answers")?;
     sheet.width(0, 34.0)?;
     for report in reports {
-        let Some(cell) = context.study.cell(report.id) else { continue };
+        let Some(cell) = context.study.cell(report.id) else {
+            continue;
+        };
         if cell.settings.kind() != Kind::Question && cell.settings.kind() != Kind::Data {
             continue;
         }
-        let Some(outcome) = context.outcome(report.id) else { continue };
+        let Some(outcome) = context.outcome(report.id) else {
+            continue;
+        };
         sheet.title(&cell.title)?;
         if let Some(answer) = &report.answer {
             sheet.text(&answer.plain())?;
@@ -232,7 +350,10 @@ fn answers(book: &mut Workbook, reports: &[CellReport], context: &Context<'_>) -
         for fact in outcome.facts.all() {
             // The trace and the predictions are long and stand elsewhere or in the figures.
             if let FactValue::Table(table) = &fact.value
-                && !matches!(fact.name.as_str(), "trace" | "held-out predictions" | "error curve" | "outer choices")
+                && !matches!(
+                    fact.name.as_str(),
+                    "trace" | "held-out predictions" | "error curve" | "outer choices"
+                )
             {
                 sheet.blank();
                 sheet.strong(&fact.meaning)?;
@@ -244,17 +365,27 @@ fn answers(book: &mut Workbook, reports: &[CellReport], context: &Context<'_>) -
     Ok(())
 }
 
-fn figures(book: &mut Workbook, reports: &[CellReport], context: &Context<'_>) -> Result<(), ExportError> {
+fn figures(
+    book: &mut Workbook,
+    reports: &[CellReport],
+    context: &Context<'_>,
+) -> Result<(), ExportError> {
     /// Laid out as in the write-up; twice as many pixels, shown at half the size.
     const WIDTH: f64 = 680.0;
     let mut sheet = Sheet::add(book, "Figures")?;
     sheet.width(0, 110.0)?;
     for report in reports {
         for block in &report.blocks {
-            let Block::Figure(figure) = block else { continue };
+            let Block::Figure(figure) = block else {
+                continue;
+            };
             let size = natural_size(&figure.figure, WIDTH);
             let bytes = png(&svg(&layout(&figure.figure, size), &Palette::paper()), 2.0)?;
-            sheet.strong(&format!("{}: {}", context.title(report.id), figure.figure.title))?;
+            sheet.strong(&format!(
+                "{}: {}",
+                context.title(report.id),
+                figure.figure.title
+            ))?;
             sheet.image(&bytes, 0.5, size.height)?;
             sheet.text(&figure.reading.plain())?;
             sheet.blank();
@@ -266,7 +397,10 @@ fn figures(book: &mut Workbook, reports: &[CellReport], context: &Context<'_>) -
 fn caveat_sheet(book: &mut Workbook, context: &Context<'_>) -> Result<(), ExportError> {
     let found = caveats(context);
     let texts = |get: &dyn Fn(&crate::eval::caveat::Caveat) -> String| {
-        found.iter().map(|(_, caveat)| get(caveat)).collect::<Vec<String>>()
+        found
+            .iter()
+            .map(|(_, caveat)| get(caveat))
+            .collect::<Vec<String>>()
     };
     let cells = found
         .iter()
@@ -279,9 +413,21 @@ fn caveat_sheet(book: &mut Workbook, context: &Context<'_>) -> Result<(), Export
             column("cell", cells),
             column("remark", texts(&|c| c.heading.clone())),
             column("text", texts(&|c| c.text.clone())),
-            column("set off by", texts(&|c| c.trigger.iter().map(|(name, value)| format!("{name}: {value}")).collect::<Vec<_>>().join("; "))),
+            column(
+                "set off by",
+                texts(&|c| {
+                    c.trigger
+                        .iter()
+                        .map(|(name, value)| format!("{name}: {value}"))
+                        .collect::<Vec<_>>()
+                        .join("; ")
+                }),
+            ),
             column("threshold", texts(&|c| c.threshold.clone())),
-            column("origin of the threshold", texts(&|c| c.origin.word().to_owned())),
+            column(
+                "origin of the threshold",
+                texts(&|c| c.origin.word().to_owned()),
+            ),
             column("name", texts(&|c| c.id.clone())),
         ],
     };
@@ -290,14 +436,22 @@ fn caveat_sheet(book: &mut Workbook, context: &Context<'_>) -> Result<(), Export
     sheet.width(3, 90.0)
 }
 
-fn methods(book: &mut Workbook, reports: &[CellReport], context: &Context<'_>) -> Result<(), ExportError> {
+fn methods(
+    book: &mut Workbook,
+    reports: &[CellReport],
+    context: &Context<'_>,
+) -> Result<(), ExportError> {
     let mut sheet = Sheet::add(book, "Methods")?;
     sheet.width(0, 110.0)?;
     sheet.text(fixed::STATUS)?;
     for report in reports.iter().filter(|report| !report.methods.is_empty()) {
         sheet.blank();
         sheet.strong(&context.title(report.id))?;
-        for paragraph in report.methods.iter().filter(|paragraph| !paragraph.is_incomplete()) {
+        for paragraph in report
+            .methods
+            .iter()
+            .filter(|paragraph| !paragraph.is_incomplete())
+        {
             sheet.text(&paragraph.plain())?;
         }
     }
@@ -321,12 +475,20 @@ fn dictionary(book: &mut Workbook, context: &Context<'_>) -> Result<(), ExportEr
     }
     sheet.heads(&["cell", "value", "column", "unit", "meaning"])?;
     for cell in context.study.cells() {
-        let Some(outcome) = context.outcome(cell.id) else { continue };
+        let Some(outcome) = context.outcome(cell.id) else {
+            continue;
+        };
         for fact in outcome.facts.all() {
             sheet.row(&[&cell.title, &fact.name, "", &fact.unit, &fact.meaning])?;
             if let FactValue::Table(table) = &fact.value {
                 for column in &table.columns {
-                    sheet.row(&[&cell.title, &fact.name, &column.name, &column.unit, &column.meaning])?;
+                    sheet.row(&[
+                        &cell.title,
+                        &fact.name,
+                        &column.name,
+                        &column.unit,
+                        &column.meaning,
+                    ])?;
                 }
             }
         }

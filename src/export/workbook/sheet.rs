@@ -21,8 +21,14 @@ const MOST_TEXT: usize = 32_000;
 /// A lawful name of a sheet.
 pub(super) fn sheet_name(name: &str, suffix: Option<&str>) -> String {
     let wish = suffix.map_or_else(|| name.to_owned(), |suffix| format!("{name}, {suffix}"));
-    let lawful = wish.chars().map(|c| if "[]:*?/\\'".contains(c) { ' ' } else { c });
-    lawful.take(MOST_LETTERS).collect::<String>().trim().to_owned()
+    let lawful = wish
+        .chars()
+        .map(|c| if "[]:*?/\\'".contains(c) { ' ' } else { c });
+    lawful
+        .take(MOST_LETTERS)
+        .collect::<String>()
+        .trim()
+        .to_owned()
 }
 
 impl<'a> Sheet<'a> {
@@ -146,7 +152,12 @@ impl<'a> Sheet<'a> {
         Ok(())
     }
 
-    pub(super) fn chart(&mut self, row: u32, column: u16, chart: &Chart) -> Result<(), ExportError> {
+    pub(super) fn chart(
+        &mut self,
+        row: u32,
+        column: u16,
+        chart: &Chart,
+    ) -> Result<(), ExportError> {
         let _ = self.sheet.insert_chart(row, column, chart)?;
         Ok(())
     }
@@ -155,15 +166,21 @@ impl<'a> Sheet<'a> {
     pub(super) fn image(&mut self, png: &[u8], scale: f64, height: f64) -> Result<(), ExportError> {
         /// The height of a row in the same units as the figure's.
         const ROW: f64 = 20.0;
-        let image = Image::new_from_buffer(png)?.set_scale_width(scale).set_scale_height(scale);
+        let image = Image::new_from_buffer(png)?
+            .set_scale_width(scale)
+            .set_scale_height(scale);
         let _ = self.sheet.insert_image(self.row, 0, &image)?;
         self.row += (height / ROW).ceil() as u32 + 1;
         Ok(())
     }
 
     fn number(&mut self, column: u16, value: f64, precision: Precision) -> Result<(), ExportError> {
-        let format = Format::new().set_num_format(workbook_format(precision)).set_align(FormatAlign::Top);
-        let _ = self.sheet.write_number_with_format(self.row, column, value, &format)?;
+        let format = Format::new()
+            .set_num_format(workbook_format(precision))
+            .set_align(FormatAlign::Top);
+        let _ = self
+            .sheet
+            .write_number_with_format(self.row, column, value, &format)?;
         Ok(())
     }
 
@@ -173,15 +190,24 @@ impl<'a> Sheet<'a> {
         if text.is_empty() {
             return Ok(());
         }
-        let kept: String = text.chars().filter(|c| *c != '\0').take(MOST_TEXT).collect();
-        let _ = self.sheet.write_string_with_format(self.row, column, kept, format)?;
+        let kept: String = text
+            .chars()
+            .filter(|c| *c != '\0')
+            .take(MOST_TEXT)
+            .collect();
+        let _ = self
+            .sheet
+            .write_string_with_format(self.row, column, kept, format)?;
         Ok(())
     }
 }
 
 /// The format of words: the text format, and the mark that keeps them words when edited.
 fn words() -> Format {
-    Format::new().set_num_format("@").set_quote_prefix().set_align(FormatAlign::Top)
+    Format::new()
+        .set_num_format("@")
+        .set_quote_prefix()
+        .set_align(FormatAlign::Top)
 }
 
 fn head(column: &FactColumn) -> String {

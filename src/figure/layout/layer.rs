@@ -156,7 +156,10 @@ fn points(
         .map(|place| place.filter(|at| frame.holds(*at)))
         .collect();
     let count = places.len();
+    // Dots that would touch all their neighbours along the axis are one of very many, too.
+    let is_crowded = count as f64 * 4.0 > frame.plot.width;
     let radius = match dot {
+        Dot::Small if is_crowded => style::TINY_DOT,
         Dot::Normal | Dot::Ring if count <= MANY => style::DOT,
         Dot::Normal | Dot::Ring | Dot::Small if count <= VERY_MANY => style::SMALL_DOT,
         Dot::Normal | Dot::Ring | Dot::Small => style::TINY_DOT,
@@ -216,6 +219,7 @@ fn line(
         Weight::Strong | Weight::Normal | Weight::Fine => {
             Stroke::solid(style::mark_ink(role), style::line_width(weight))
         }
+        Weight::Faint => Stroke::solid(style::band_ink(role), style::line_width(weight)),
         Weight::Dashed => Stroke::dashed(style::mark_ink(role), style::line_width(weight)),
     };
     if let Some(label) = label {
@@ -235,7 +239,7 @@ fn line(
     let pieces = thin::pieces(places.into_iter());
     let mut marks = Vec::new();
     for piece in pieces {
-        if weight == Weight::Fine && label.is_none() && is_flat(&piece, frame) {
+        if is_one_of_many(weight) && label.is_none() && is_flat(&piece, frame) {
             continue;
         }
         if piece.len() < 2 {
@@ -250,7 +254,7 @@ fn line(
             }
             continue;
         }
-        if weight != Weight::Fine {
+        if !is_one_of_many(weight) {
             out.busy.extend(between(&piece));
         }
         if let Some(tip) = tip {
@@ -262,6 +266,13 @@ fn line(
         });
     }
     clipped(frame, out, is_outside, marks);
+}
+
+fn is_one_of_many(weight: Weight) -> bool {
+    match weight {
+        Weight::Fine | Weight::Faint => true,
+        Weight::Strong | Weight::Normal | Weight::Dashed => false,
+    }
 }
 
 /// Whether a line never leaves the base by as much as can be seen.
@@ -345,8 +356,10 @@ fn interval(frame: &Frame, out: &mut Painted, role: Role, x: &[f64], low: &[f64]
             continue;
         }
         let inside = |at: Point| Point::new(at.x, at.y.clamp(plot.y, plot.bottom()));
+        let points = vec![inside(low), inside(high)];
+        out.busy.extend(between(&points));
         out.marks.push(Mark::Line {
-            points: vec![inside(low), inside(high)],
+            points,
             stroke: Stroke::solid(style::mark_ink(role), 1.5),
         });
     }

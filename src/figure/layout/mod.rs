@@ -16,7 +16,7 @@ mod tests;
 
 use crate::figure::layout::sheet::Sheet;
 use crate::figure::picture::{Anchor, Picture, Point, Rect, Size};
-use crate::figure::{Body, Figure, font::Face, ink::Ink};
+use crate::figure::{Body, Figure, font::Face, ink::Ink, metrics};
 
 /// Below this width or height nothing is legible; a picture is never smaller.
 const SMALLEST: f64 = 40.0;
@@ -59,11 +59,7 @@ pub fn layout(figure: &Figure, size: Size) -> Picture {
 #[must_use]
 pub fn natural_size(figure: &Figure, width: f64) -> Size {
     let width = width.clamp(SMALLEST, 20_000.0);
-    let top = if figure.title.is_empty() {
-        0.0
-    } else {
-        style::TITLE_LINE
-    };
+    let top = heading_height(title_lines(figure, width).len());
     let body = match &figure.body {
         Body::Panels(panels) => panels::natural_height(panels, width),
         Body::Rows(rows) => rows::natural_height(rows),
@@ -79,20 +75,39 @@ enum Shown {
     Nothing,
 }
 
+/// The title, broken into lines.
+fn title_lines(figure: &Figure, width: f64) -> Vec<String> {
+    metrics::lines(
+        &figure.title,
+        Face::SansStrong,
+        style::TITLE,
+        width,
+        style::TITLE_LINES,
+    )
+}
+
+/// The height of a title of so many lines, with the air below it.
+fn heading_height(lines: usize) -> f64 {
+    match lines {
+        0 => 0.0,
+        more => style::TITLE_HEIGHT + (more - 1) as f64 * style::TITLE_PITCH,
+    }
+}
+
 /// Sets the title and returns where the rest begins.
 fn heading(figure: &Figure, sheet: &mut Sheet) -> f64 {
-    if figure.title.is_empty() {
-        return 0.0;
-    }
-    let at = Point::new(0.0, style::TITLE_BASELINE);
     let width = sheet.size().width;
-    let _ = sheet.fitted(
-        &figure.title,
-        at,
-        Anchor::Start,
-        style::TITLE,
-        (Ink::Text, Face::SansStrong),
-        width,
-    );
-    style::TITLE_LINE
+    let lines = title_lines(figure, width);
+    for (nth, line) in lines.iter().enumerate() {
+        let y = style::TITLE_BASELINE + nth as f64 * style::TITLE_PITCH;
+        let _ = sheet.fitted(
+            line,
+            Point::new(0.0, y),
+            Anchor::Start,
+            style::TITLE,
+            (Ink::Text, Face::SansStrong),
+            width,
+        );
+    }
+    heading_height(lines.len())
 }

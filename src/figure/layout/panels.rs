@@ -26,7 +26,7 @@ const WIDEST_MARGIN: f64 = 0.34;
 /// The least width for numbers beside a square panel.
 const ASIDE: f64 = 150.0;
 /// Between the written numbers of a horizontal axis.
-const TICK_AIR: f64 = 26.0;
+const TICK_AIR: f64 = 18.0;
 /// The room that a vertical axis wants for each of its numbers.
 const TICK_PITCH: f64 = 34.0;
 
@@ -68,7 +68,14 @@ pub(super) fn lay(panels: &[Panel], figure: &Figure, room: Rect, sheet: &mut She
         })
         .collect();
 
-    let mut shown = Shown::Nothing;
+    let shows = |(panel, frame): (&Panel, &Frame)| {
+        let mut layers = panel.layers.iter();
+        layers.any(|part| frame::shows_something(part, frame))
+    };
+    if !figure.empty.is_empty() && !panels.iter().zip(&frames).any(shows) {
+        // Axes without data would show numbers that nobody measured.
+        return Shown::Nothing;
+    }
     for group in groups(panels) {
         let bearer = group
             .clone()
@@ -85,9 +92,6 @@ pub(super) fn lay(panels: &[Panel], figure: &Figure, room: Rect, sheet: &mut She
             let mut painted = Painted::default();
             for part in &panel.layers {
                 layer::paint(part, frame, &mut painted);
-                if frame::shows_something(part, frame) {
-                    shown = Shown::Something;
-                }
             }
             drops.append(&mut painted.drops);
             // A line from what was chosen down through the strips, behind their marks.
@@ -115,7 +119,7 @@ pub(super) fn lay(panels: &[Panel], figure: &Figure, room: Rect, sheet: &mut She
         }
     }
     aside(figure, panels, &frames, room, sheet);
-    shown
+    Shown::Something
 }
 
 fn drop_line(x: f64, frame: &Frame) -> Mark {
@@ -488,7 +492,11 @@ fn grid(panel: &Panel, frame: &Frame, sheet: &mut Sheet) {
         | Layer::Text { .. } => false,
     });
     let y_ends = frame.y.ends();
-    let crosses_zero = y_ends.0 < 0.0 && y_ends.1 > 0.0 && !is_strip(panel);
+    let has_zero_line = match panel.height {
+        Height::Share(_) => true,
+        Height::Strip | Height::Line | Height::Square => false,
+    };
+    let crosses_zero = y_ends.0 < 0.0 && y_ends.1 > 0.0 && has_zero_line;
     if stands || crosses_zero {
         let y = crisp(frame.base()).clamp(plot.y + 0.5, plot.bottom() - 0.5);
         sheet.mark(level(y, Ink::Axis));
@@ -656,13 +664,7 @@ fn end_names(names: &[EndName], frame: &Frame, margins: &Margins, sheet: &mut Sh
             .collect();
         let (edge, away, anchor, room) = match end {
             End::Left => (plot.x, -1.0, Anchor::End, margins.left),
-            End::Right => {
-                let numbers = match margins.numbers {
-                    End::Left => 0.0,
-                    End::Right => 0.0,
-                };
-                (plot.right(), 1.0, Anchor::Start, margins.right - numbers)
-            }
+            End::Right => (plot.right(), 1.0, Anchor::Start, margins.right),
         };
         for wish in ends::spread(wishes, plot.y, plot.bottom()) {
             let name = &names[wish.at];

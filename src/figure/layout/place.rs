@@ -8,13 +8,19 @@ use crate::figure::layout::sheet::{self, Placed, Sheet};
 use crate::figure::layout::style;
 use crate::figure::picture::{Anchor, Point, Rect, Word};
 
+/// So many pixels away from its place are as bad for a word as covering one more busy place.
+const FAR: f64 = 3.0;
+
 /// Sets the words that want a place, the most important first.
 pub(super) fn words(painted: &Painted, frame: &Frame, sheet: &mut Sheet) {
     for wish in painted.wishes.iter().filter(|wish| !wish.text.is_empty()) {
         let best = candidates(wish, frame)
             .into_iter()
             .filter(|word| sheet.has_room(word) && lies_in(word, frame, wish))
-            .map(|word| (covered(&word.rect(), &painted.busy), word))
+            .map(|word| {
+                let far = distance(&word.rect(), wish) / FAR;
+                (covered(&word.rect(), &painted.busy) as f64 + far, word)
+            })
             // The first of equals: candidates are listed by preference.
             .reduce(|best, next| if next.0 < best.0 { next } else { best });
         if let Some((_, word)) = best {
@@ -44,9 +50,25 @@ fn lies_in(word: &Word, frame: &Frame, wish: &Wish) -> bool {
         && rect.right() <= right
 }
 
+/// How far a word is from the place that it belongs to, for words that may wander.
+fn distance(rect: &Rect, wish: &Wish) -> f64 {
+    match wish.place {
+        Place::Beside(at, _) => {
+            let x = (rect.x - at.x).max(at.x - rect.right()).max(0.0);
+            let y = (rect.y - at.y).max(at.y - rect.bottom()).max(0.0);
+            x.hypot(y)
+        }
+        Place::AtTop(_)
+        | Place::OnLine(_)
+        | Place::Along(..)
+        | Place::Above(_)
+        | Place::RightAbove(_) => 0.0,
+    }
+}
+
 /// How many busy places a rectangle covers.
 fn covered(rect: &Rect, busy: &[Point]) -> usize {
-    let around = rect.grown(1.5);
+    let around = rect.grown(5.0);
     busy.iter().filter(|at| around.holds(**at)).count()
 }
 

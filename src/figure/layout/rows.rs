@@ -17,14 +17,17 @@ const TIGHT: f64 = 17.0;
 const HEAD: f64 = 20.0;
 /// The thickness of a bar.
 const BAR: f64 = 6.0;
-/// Between columns.
+/// Between columns, and between columns that stand close together.
 const GUTTER: f64 = 20.0;
+const CLOSE: f64 = 12.0;
 /// The most of the width that names take.
 const NAMES: f64 = 0.42;
 /// The longest bars: longer ones put the numbers out of sight of the names.
 const LONGEST_BAR: f64 = 460.0;
-/// The shortest bars; where not even they have room, there are none.
-const SHORTEST_BAR: f64 = 24.0;
+/// The shortest bars; where not even they have room, columns are left out from the right.
+const SHORTEST_BAR: f64 = 56.0;
+/// Below this width columns stand closer together.
+const NARROW: f64 = 420.0;
 /// More rows than this are not wanted on a page.
 const MOST_ROWS: usize = 40;
 /// The height of the line with the numbers of the axis.
@@ -153,29 +156,37 @@ fn plan(rows: &Rows, room: Rect) -> Plan {
         .fold(0.0, f64::max)
         .min(room.width * NAMES)
         .ceil();
-    let widths: Vec<f64> = rows
+    let gutter = if room.width < NARROW { CLOSE } else { GUTTER };
+    let mut widths: Vec<f64> = rows
         .columns
         .iter()
         .enumerate()
         .map(|(nth, column)| column_width(rows, nth, column).min(room.width * 0.3).ceil())
         .collect();
-    let texts: f64 = widths.iter().map(|width| width + GUTTER).sum();
     let has_bars = rows.rows.iter().any(|row| row.bar != Bar::Blank);
-    let left = room.x + names + GUTTER;
-    let mut length = (room.right() - left - texts).min(LONGEST_BAR);
-    if !has_bars || length < SHORTEST_BAR {
-        length = 0.0;
+    let left = room.x + names + gutter;
+    let length_beside = |widths: &[f64]| {
+        let texts: f64 = widths.iter().map(|width| width + gutter).sum();
+        (room.right() - left - texts).min(LONGEST_BAR)
+    };
+    let mut length = 0.0;
+    if has_bars {
+        // The first column is the number of the bar itself; it stays.
+        while widths.len() > 1 && length_beside(&widths) < SHORTEST_BAR {
+            let _ = widths.pop();
+        }
+        length = length_beside(&widths).max(0.0);
     }
     let bar = Rect::new(left, 0.0, length.floor(), BAR);
     let mut x = if length > 0.0 {
         bar.right()
     } else {
-        left - GUTTER
+        left - gutter
     };
     let columns = widths
         .iter()
         .map(|width| {
-            let start = x + GUTTER;
+            let start = x + gutter;
             x = start + width;
             (start, (room.right() - start).min(*width))
         })

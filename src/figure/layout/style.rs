@@ -11,8 +11,12 @@ pub(super) const TEXT: f64 = 12.0;
 pub(super) const SMALL: f64 = 11.0;
 /// From the top to the baseline of the title.
 pub(super) const TITLE_BASELINE: f64 = 13.0;
-/// The height that a title takes, with the air below it.
-pub(super) const TITLE_LINE: f64 = 28.0;
+/// The height that a title of one line takes, with the air below it.
+pub(super) const TITLE_HEIGHT: f64 = 28.0;
+/// Between the baselines of a title.
+pub(super) const TITLE_PITCH: f64 = 18.0;
+/// The most lines that a title takes.
+pub(super) const TITLE_LINES: usize = 2;
 /// The height of a line of small text.
 pub(super) const SMALL_LINE: f64 = 16.0;
 /// From the middle of a line of small text down to its baseline.
@@ -81,6 +85,6 @@ pub(super) fn line_width(weight: Weight) -> f64 {
     match weight {
         Weight::Strong => 2.0,
         Weight::Normal | Weight::Dashed => 1.5,
-        Weight::Fine => 0.75,
+        Weight::Fine | Weight::Faint => 0.75,
     }
 }

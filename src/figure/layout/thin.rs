@@ -126,3 +126,52 @@ pub(super) fn dots(points: &[Option<Point>], cell: f64) -> Vec<usize> {
     kept.sort_unstable();
     kept
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn a_straight_line_keeps_its_ends_only() {
+        let points = (0..500)
+            .map(|x| Point::new(f64::from(x), 2.0 * f64::from(x)))
+            .collect();
+        assert_eq!(
+            line(points),
+            [Point::new(0.0, 0.0), Point::new(499.0, 998.0)]
+        );
+    }
+
+    #[test]
+    fn a_crowded_line_keeps_the_extremes_of_every_pixel() {
+        let height = |at: u32| {
+            if at == 77_777 {
+                500.0
+            } else {
+                f64::from(at % 7)
+            }
+        };
+        let points: Vec<Point> = (0..100_000)
+            .map(|at| Point::new(f64::from(at) / 200.0, height(at)))
+            .collect();
+        let thin = line(points);
+        assert!(thin.len() < 5_000, "{}", thin.len());
+        assert!(thin.iter().any(|point| point.y == 500.0));
+        assert!(thin.windows(2).all(|pair| pair[0].x <= pair[1].x));
+    }
+
+    #[test]
+    fn a_missing_place_breaks_a_line() {
+        let places = [Some(0.0), Some(1.0), None, None, Some(4.0)];
+        let pieces = pieces(places.into_iter().map(|x| Some(Point::new(x?, 0.0))));
+        assert_eq!(pieces.len(), 2);
+        assert_eq!(pieces[1], [Point::new(4.0, 0.0)]);
+    }
+
+    #[test]
+    fn dots_on_each_other_are_merged_and_keep_their_order() {
+        let places = [(0.1, 0.1), (5.0, 5.0), (0.3, 0.2)].map(|(x, y)| Some(Point::new(x, y)));
+        assert_eq!(dots(&places, 1.0), [0, 1]);
+        assert!(dots(&[None, None], 1.0).is_empty());
+    }
+}

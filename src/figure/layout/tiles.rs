@@ -323,7 +323,11 @@ fn key(grid: &Grid<'_>, room: Rect, sheet: &mut Sheet) {
         return;
     }
     let y = room.bottom() - 18.0;
-    let is_one_sided = grid.tiles.values.iter().all(|value| !(*value < 0.0));
+    let is_one_sided = grid
+        .tiles
+        .values
+        .iter()
+        .all(|value| value.is_nan() || *value >= 0.0);
     let lowest = if is_one_sided { 0.0 } else { -100.0 };
     let (steps, step) = (21_u8, 6.0);
     let first = words.first().map_or(0.0, |word| {

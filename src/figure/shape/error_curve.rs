@@ -20,6 +20,10 @@ pub struct ErrorCurve {
     pub low: Vec<f64>,
     /// The upper end of its band.
     pub high: Vec<f64>,
+    /// The lower end of a second, paler band, such as the spread over repeats; empty for none.
+    pub spread_low: Vec<f64>,
+    /// Its upper end.
+    pub spread_high: Vec<f64>,
     /// What the pointer is told about each strength; empty, or as many.
     pub tips: Vec<Tip>,
     /// The error to compare with, such as that of the mean alone, and its name.
@@ -57,6 +61,12 @@ impl ErrorCurve {
                 tip: None,
             });
         }
+        layers.push(Layer::Band {
+            role: Role::Quiet,
+            x: self.strengths.clone(),
+            low: self.spread_low.clone(),
+            high: self.spread_high.clone(),
+        });
         layers.push(Layer::Band {
             role: Role::Series(0),
             x: self.strengths.clone(),

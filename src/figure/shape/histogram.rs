@@ -79,7 +79,7 @@ impl Histogram {
         }
         .clamp(1, MOST);
         let width = (high - low) / count as f64;
-        if !(width > 0.0) {
+        if width <= 0.0 {
             let half = (low.abs() * 0.05).max(0.5);
             return (vec![low - half, low + half], vec![finite.len() as f64]);
         }

@@ -129,7 +129,7 @@ impl Profile {
             .copied()
             .chain([0.0]);
         let (low, high) = ends(&mut shown)?;
-        if !(to > from) {
+        if to <= from {
             return None;
         }
         let stretch = |value: &f64| low + (value - from) / (to - from) * (high - low);

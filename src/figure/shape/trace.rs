@@ -44,6 +44,9 @@ pub enum Standing {
     Quiet,
 }
 
+/// From so many lines on, those of the background are see-through.
+const CROWD: usize = 80;
+
 impl Trace {
     /// The figure: the lines, and a strip with the count below it.
     #[must_use]
@@ -56,8 +59,14 @@ impl Trace {
         let mut layers = Vec::new();
         let quiet = |line: &&TraceLine| line.standing == Standing::Quiet;
         let named = |line: &&TraceLine| line.standing == Standing::Named;
-        for line in self.lines.iter().filter(quiet).filter(is_ever) {
-            layers.push(self.layer(line, Role::Quiet, Weight::Fine, None));
+        let background: Vec<&TraceLine> = self.lines.iter().filter(quiet).filter(is_ever).collect();
+        let weight = if background.len() > CROWD {
+            Weight::Faint
+        } else {
+            Weight::Fine
+        };
+        for line in background {
+            layers.push(self.layer(line, Role::Quiet, weight, None));
         }
         for (nth, line) in self.lines.iter().filter(named).filter(is_ever).enumerate() {
             let label = Label {

@@ -163,9 +163,7 @@ impl From<ChainStop> for Halt {
     fn from(stop: ChainStop) -> Self {
         match stop {
             ChainStop::Cancelled => Self::Cancelled,
-            ChainStop::Step { step, error } => {
-                Self::Failed(ProcedureError::Step { step, error })
-            }
+            ChainStop::Step { step, error } => Self::Failed(ProcedureError::Step { step, error }),
         }
     }
 }

@@ -54,7 +54,10 @@ pub fn nested(
 ) -> Result<HeldOut, Halt> {
     let splits: Vec<(usize, usize, Split)> = (0..plan.n_repeats())
         .flat_map(|repeat| {
-            plan.splits(repeat).into_iter().enumerate().map(move |(part, split)| (repeat, part, split))
+            plan.splits(repeat)
+                .into_iter()
+                .enumerate()
+                .map(move |(part, split)| (repeat, part, split))
         })
         .collect();
     let silent = work.silent();
@@ -62,12 +65,22 @@ pub fn nested(
         let (repeat, part, split) = &splits[at];
         let purpose = format!("{purpose} {repeat} {part}");
         match one_split(material, procedure, split, &purpose, &silent) {
-            Ok((fit, tally)) => Ok(Ok((OuterFit { repeat: *repeat, part: *part, ..fit }, tally))),
+            Ok((fit, tally)) => Ok(Ok((
+                OuterFit {
+                    repeat: *repeat,
+                    part: *part,
+                    ..fit
+                },
+                tally,
+            ))),
             Err(Halt::Cancelled) => Err(crate::base::work::Cancelled),
             Err(Halt::Failed(error)) => Ok(Err(error)),
         }
     })?;
-    let mut held_out = HeldOut { fits: Vec::with_capacity(results.len()), tally: Tally::default() };
+    let mut held_out = HeldOut {
+        fits: Vec::with_capacity(results.len()),
+        tally: Tally::default(),
+    };
     for result in results {
         let (fit, tally) = result?;
         held_out.tally.merge(&tally);
@@ -90,7 +103,10 @@ pub fn one_split(
     let tuned = tune(material, procedure, split, purpose, Reach::Chosen, work)?;
     let predicted = tuned.fit.predict(material, split.held_out());
     let at = tuned.strength_at;
-    let n_strengths = tuned.curves.get(tuned.share_at).map(|curve| curve.strengths.len());
+    let n_strengths = tuned
+        .curves
+        .get(tuned.share_at)
+        .map(|curve| curve.strengths.len());
     let fit = OuterFit {
         repeat: 0,
         part: 0,
@@ -98,13 +114,14 @@ pub fn one_split(
         strength: tuned.strength,
         // The strong end of a sparse range is the empty model, beyond which nothing changes; only
         // ridge has more to find there.
-        at_edge: n_strengths.is_some_and(|count| {
-            count > 1 && (at + 1 == count || (at == 0 && tuned.share == 0.0))
-        }),
+        at_edge: n_strengths
+            .is_some_and(|count| count > 1 && (at + 1 == count || (at == 0 && tuned.share == 0.0))),
         n_chosen: tuned.fit.path.info(at).n_chosen,
         rows: split.held_out().to_vec(),
         predicted: predicted.column(at).iter().copied().collect(),
-        baseline: material.response.baseline(split.training(), material.weights),
+        baseline: material
+            .response
+            .baseline(split.training(), material.weights),
     };
     Ok((fit, tuned.tally))
 }

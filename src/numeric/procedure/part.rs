@@ -54,7 +54,9 @@ pub fn learn_part<'a>(
 ) -> Result<Learnt<'a>, Halt> {
     let outcome = material.response.values();
     let Prepared { chain, samples } =
-        procedure.chain.prepare(split, material.samples, outcome, work)?;
+        procedure
+            .chain
+            .prepare(split, material.samples, outcome, work)?;
     tally.proof.check(&chain, split);
     if !tally.proof.holds() {
         return Err(ProcedureError::Leak.into());
@@ -73,7 +75,12 @@ pub fn learn_part<'a>(
         TrailingScale::UnitVariance => Scaling::UnitVariance,
         TrailingScale::Leave => procedure.scaling,
     };
-    Ok(Learnt { chain, samples, predictors, scaling })
+    Ok(Learnt {
+        chain,
+        samples,
+        predictors,
+        scaling,
+    })
 }
 
 fn nothing_missing(
@@ -150,13 +157,12 @@ pub fn fit_learnt<'a>(
     tally: &mut Tally,
     work: &Work<'_>,
 ) -> Result<PartFit<'a>, Halt> {
-    let path = fit_path(
-        &learnt.task(material, split.training()),
-        share,
-        strengths,
-        &Params::default(),
-        work,
-    )?;
+    let task = learnt.task(material, split.training());
+    tally.proof.check_moments(task.rows, split);
+    if !tally.proof.holds() {
+        return Err(ProcedureError::Leak.into());
+    }
+    let path = fit_path(&task, share, strengths, &Params::default(), work)?;
     tally.count(&path);
     Ok(PartFit { learnt, path })
 }

@@ -69,8 +69,15 @@ pub fn tune<'a>(
     let (rule, count, ratio, inner) = match &procedure.strength {
         StrengthRule::Fixed(strength) => {
             let share = procedure.shares[0];
-            let fit =
-                fit_part(material, procedure, split, share, &[*strength], &mut tally, work)?;
+            let fit = fit_part(
+                material,
+                procedure,
+                split,
+                share,
+                &[*strength],
+                &mut tally,
+                work,
+            )?;
             return Ok(Tuned {
                 curves: Vec::new(),
                 share_at: 0,
@@ -82,17 +89,35 @@ pub fn tune<'a>(
                 tally,
             });
         }
-        StrengthRule::Chosen { rule, count, ratio, inner } => (*rule, *count, *ratio, inner),
+        StrengthRule::Chosen {
+            rule,
+            count,
+            ratio,
+            inner,
+        } => (*rule, *count, *ratio, inner),
     };
-    let mut search = Search { material, procedure, split, purpose, rule, inner, tally };
+    let mut search = Search {
+        material,
+        procedure,
+        split,
+        purpose,
+        rule,
+        inner,
+        tally,
+    };
     let n_shares = procedure.shares.len();
     let mut curves = Vec::with_capacity(n_shares);
     let mut extended = Extended::No;
     for (at, &share) in procedure.shares.iter().enumerate() {
-        let bar = work.part(at as f32 / n_shares as f32 * 0.9..(at + 1) as f32 / n_shares as f32 * 0.9);
+        let bar =
+            work.part(at as f32 / n_shares as f32 * 0.9..(at + 1) as f32 / n_shares as f32 * 0.9);
         let (curve, longer) = search.curve(share, count, ratio, &bar)?;
         curves.push(curve);
-        extended = if longer == Extended::Once { longer } else { extended };
+        extended = if longer == Extended::Once {
+            longer
+        } else {
+            extended
+        };
     }
     let (share_at, strength_at) = winner(rule, &curves).ok_or(ProcedureError::NoError)?;
     let curve = &curves[share_at];
@@ -111,7 +136,16 @@ pub fn tune<'a>(
         &work.part(0.9..1.0),
     )?;
     let tally = search.tally;
-    Ok(Tuned { curves, share_at, strength_at, share, strength, extended, fit, tally })
+    Ok(Tuned {
+        curves,
+        share_at,
+        strength_at,
+        share,
+        strength,
+        extended,
+        fit,
+        tally,
+    })
 }
 
 /// The share and strength that win: each share's own choice by the rule, and among these the
@@ -119,7 +153,9 @@ pub fn tune<'a>(
 fn winner(rule: Rule, curves: &[Curve]) -> Option<(usize, usize)> {
     let mut best: Option<(usize, f64)> = None;
     for (at, curve) in curves.iter().enumerate() {
-        let Some(lowest) = choose::lowest(&curve.errors) else { continue };
+        let Some(lowest) = choose::lowest(&curve.errors) else {
+            continue;
+        };
         let error = curve.errors[lowest];
         if best.is_none_or(|(_, least)| error <= least) {
             best = Some((at, error));
@@ -149,8 +185,19 @@ impl Search<'_, '_> {
         work: &Work<'_>,
     ) -> Result<(Curve, Extended), Halt> {
         let rows = self.split.training();
-        let learnt = learn_part(self.material, self.procedure, self.split, &mut self.tally, work)?;
-        let p = learnt.samples.active.iter().filter(|active| **active).count();
+        let learnt = learn_part(
+            self.material,
+            self.procedure,
+            self.split,
+            &mut self.tally,
+            work,
+        )?;
+        let p = learnt
+            .samples
+            .active
+            .iter()
+            .filter(|active| **active)
+            .count();
         let ratio = ratio.unwrap_or_else(|| usual_ratio(share, rows.len(), p));
         let params = RangeParams { count, ratio };
         let mut strengths = learnt.strengths(self.material, rows, share, params)?;
@@ -166,11 +213,20 @@ impl Search<'_, '_> {
         }
         // The same spacing, half as many strengths again: the curve's first part stays the same.
         let factor = strengths[1] / strengths[0];
-        let mut longer = strengths.clone();
+        // Only the new ones are fitted, from the last of the old ones on.
+        let last = strengths.len() - 1;
+        let mut weaker = vec![strengths[last]];
         for _ in 0..count.div_ceil(2) {
-            longer.push(longer[longer.len() - 1] * factor);
+            weaker.push(weaker[weaker.len() - 1] * factor);
         }
-        Ok((self.errors(share, &longer, &work.part(0.7..1.0))?, Extended::Once))
+        let tail = self.errors(share, &weaker, &work.part(0.7..1.0))?;
+        let mut longer = curve;
+        longer.strengths.extend(&tail.strengths[1..]);
+        longer.errors.extend(&tail.errors[1..]);
+        longer
+            .standard_errors
+            .extend(tail.standard_errors.iter().skip(1));
+        Ok((longer, Extended::Once))
     }
 
     fn errors(&mut self, share: f64, strengths: &[f64], work: &Work<'_>) -> Result<Curve, Halt> {
@@ -188,9 +244,16 @@ impl Search<'_, '_> {
         work: &Work<'_>,
     ) -> Result<Curve, Halt> {
         let purpose = format!("inner {}", self.purpose);
-        let plan =
-            assign(self.inner, self.split.training(), &self.material.structure, &purpose)
-                .map_err(|error| ProcedureError::Plan { level: Level::Inner, error })?;
+        let plan = assign(
+            self.inner,
+            self.split.training(),
+            &self.material.structure,
+            &purpose,
+        )
+        .map_err(|error| ProcedureError::Plan {
+            level: Level::Inner,
+            error,
+        })?;
         let mut by_repeat = Vec::with_capacity(plan.n_repeats());
         let mut done = 0;
         for repeat in 0..plan.n_repeats() {
@@ -217,15 +280,21 @@ impl Search<'_, '_> {
     }
 
     /// A criterion that is computed on the training rows alone.
-    fn criterion(
-        &mut self,
-        share: f64,
-        strengths: &[f64],
-        work: &Work<'_>,
-    ) -> Result<Curve, Halt> {
+    fn criterion(&mut self, share: f64, strengths: &[f64], work: &Work<'_>) -> Result<Curve, Halt> {
         let rows = self.split.training();
-        let learnt = learn_part(self.material, self.procedure, self.split, &mut self.tally, work)?;
-        let p = learnt.samples.active.iter().filter(|active| **active).count() as f64;
+        let learnt = learn_part(
+            self.material,
+            self.procedure,
+            self.split,
+            &mut self.tally,
+            work,
+        )?;
+        let p = learnt
+            .samples
+            .active
+            .iter()
+            .filter(|active| **active)
+            .count() as f64;
         let fit = fit_learnt(
             self.material,
             learnt,
@@ -244,9 +313,7 @@ impl Search<'_, '_> {
                 Rule::ExtendedBic { gamma } => {
                     choose::extended_bic(losses[at], n, df - unpenalised, p, gamma)
                 }
-                Rule::GeneralisedCrossValidation
-                | Rule::LowestError
-                | Rule::OneStandardError => {
+                Rule::GeneralisedCrossValidation | Rule::LowestError | Rule::OneStandardError => {
                     choose::generalised_cross_validation(losses[at], n, df)
                 }
             }

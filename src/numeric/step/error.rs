@@ -36,6 +36,16 @@ impl ParameterError {
         }
     }
 
+    /// `value` when it is finite and not 0.
+    pub(super) fn check_not_zero(parameter: &'static str, value: f64) -> Result<f64, Self> {
+        let least = if value == 0.0 {
+            f64::MIN_POSITIVE
+        } else {
+            f64::MIN
+        };
+        Self::check(parameter, value, least, f64::MAX)
+    }
+
     /// `value` when it is from `least` to `most`.
     pub(super) fn check_count(
         parameter: &'static str,

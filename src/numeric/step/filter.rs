@@ -76,15 +76,7 @@ impl MissingShare {
 }
 
 impl Preparation for MissingShare {
-    type Found = Vec<bool>;
-
-    fn class(&self) -> Class {
-        Class::Learned
-    }
-
-    fn given(&self) -> Option<Vec<bool>> {
-        None
-    }
+    must_learn!(Vec<bool>, Class::Learned);
 
     fn learn(&self, part: &TrainingPart<'_>, work: &Work<'_>) -> Result<Vec<bool>, StepStop> {
         // Counts are compared, with room for the rounding of a share such as 0.2 of 15.
@@ -123,15 +115,7 @@ impl NearConstant {
 }
 
 impl Preparation for NearConstant {
-    type Found = Vec<bool>;
-
-    fn class(&self) -> Class {
-        Class::Learned
-    }
-
-    fn given(&self) -> Option<Vec<bool>> {
-        None
-    }
+    must_learn!(Vec<bool>, Class::Learned);
 
     fn learn(&self, part: &TrainingPart<'_>, work: &Work<'_>) -> Result<Vec<bool>, StepStop> {
         let mut values = Vec::with_capacity(part.n_rows());

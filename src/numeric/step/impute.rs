@@ -32,16 +32,8 @@ impl ColumnImputation {
 }
 
 impl Preparation for ColumnImputation {
-    /// The value for each column, none for a column without a known value.
-    type Found = Vec<Option<f64>>;
-
-    fn class(&self) -> Class {
-        Class::Learned
-    }
-
-    fn given(&self) -> Option<Self::Found> {
-        None
-    }
+    // The value for each column, none for a column without a known value.
+    must_learn!(Vec<Option<f64>>, Class::Learned);
 
     fn learn(&self, part: &TrainingPart<'_>, work: &Work<'_>) -> Result<Self::Found, StepStop> {
         let mut fills = vec![None; part.n_columns()];

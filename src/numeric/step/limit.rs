@@ -2,7 +2,7 @@
 
 use crate::base::real::Real;
 use crate::base::work::Work;
-use crate::numeric::samples::{Samples, Side};
+use crate::numeric::samples::{Limit, Samples, Side};
 use crate::numeric::step::{Class, Preparation, StepStop};
 use std::borrow::Cow;
 use std::sync::Arc;
@@ -37,15 +37,7 @@ impl LimitFill {
 }
 
 impl Preparation for LimitFill {
-    type Found = ();
-
-    fn class(&self) -> Class {
-        Class::FixedReference
-    }
-
-    fn given(&self) -> Option<()> {
-        Some(())
-    }
+    knows_enough!(Class::FixedReference);
 
     fn apply<'s>(
         &self,
@@ -53,7 +45,7 @@ impl Preparation for LimitFill {
         mut samples: Cow<'s, Samples>,
         work: &Work<'_>,
     ) -> Result<Cow<'s, Samples>, StepStop> {
-        let is_due = |samples: &Samples, limit: &crate::numeric::samples::Limit| {
+        let is_due = |samples: &Samples, limit: &Limit| {
             samples.active[limit.column] && samples.x[(limit.row, limit.column)].is_nan()
         };
         if !samples.limits.iter().any(|limit| is_due(&samples, limit)) {
@@ -67,11 +59,10 @@ impl Preparation for LimitFill {
             LimitRule::Whole => 1.0,
             LimitRule::Share(share) => share.get(),
         };
-        let (due, rest) = std::mem::take(&mut changed.limits)
+        let (due, rest): (Vec<Limit>, Vec<Limit>) = std::mem::take(&mut changed.limits)
             .into_iter()
             .partition(|limit| is_due(changed, limit));
         changed.limits = rest;
-        let due: Vec<crate::numeric::samples::Limit> = due;
         let x = Arc::make_mut(&mut changed.x);
         for limit in due {
             x[(limit.row, limit.column)] = match limit.side {

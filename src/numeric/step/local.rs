@@ -3,6 +3,7 @@
 use crate::base::work::Work;
 use crate::numeric::samples::Samples;
 use crate::numeric::step::column::{change_rows, runs};
+use crate::numeric::step::span::dot;
 use crate::numeric::step::{Class, ParameterError, Preparation, StepError, StepStop};
 use std::borrow::Cow;
 
@@ -79,15 +80,7 @@ impl SavitzkyGolay {
 }
 
 impl Preparation for SavitzkyGolay {
-    type Found = ();
-
-    fn class(&self) -> Class {
-        Class::RowByRow
-    }
-
-    fn given(&self) -> Option<()> {
-        Some(())
-    }
+    knows_enough!(Class::RowByRow);
 
     fn apply<'s>(
         &self,
@@ -232,15 +225,7 @@ impl Detrend {
 }
 
 impl Preparation for Detrend {
-    type Found = ();
-
-    fn class(&self) -> Class {
-        Class::RowByRow
-    }
-
-    fn given(&self) -> Option<()> {
-        Some(())
-    }
+    knows_enough!(Class::RowByRow);
 
     fn apply<'s>(
         &self,
@@ -290,7 +275,7 @@ fn subtract_trend(values: &mut [f64], basis: &Orthonormal) {
     }
 }
 
-fn scaled_positions(axis: &[f64], columns: &[usize]) -> Vec<f64> {
+pub(super) fn scaled_positions(axis: &[f64], columns: &[usize]) -> Vec<f64> {
     let chosen: Vec<f64> = columns.iter().map(|&column| axis[column]).collect();
     let (least, most) = ends(&chosen);
     let (middle, half) = (0.5 * (least + most), 0.5 * (most - least));
@@ -331,8 +316,4 @@ fn ends(positions: &[f64]) -> (f64, f64) {
         .fold((f64::INFINITY, f64::NEG_INFINITY), |(least, most), &t| {
             (least.min(t), most.max(t))
         })
-}
-
-fn dot(a: &[f64], b: &[f64]) -> f64 {
-    a.iter().zip(b).map(|(a, b)| a * b).sum()
 }

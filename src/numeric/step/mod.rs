@@ -6,30 +6,95 @@
 //!
 //! Steps leave columns that are switched off alone: they neither learn from nor change them.
 
+/// For the steps that need nothing but the sample, or bring what they need along.
+macro_rules! knows_enough {
+    ($class:expr) => {
+        type Found = ();
+
+        fn class(&self) -> Class {
+            $class
+        }
+
+        fn given(&self) -> Option<()> {
+            Some(())
+        }
+    };
+}
+
+/// For the steps that are learnt whatever their parameters.
+macro_rules! must_learn {
+    ($found:ty, $class:expr) => {
+        type Found = $found;
+
+        fn class(&self) -> Class {
+            $class
+        }
+
+        fn given(&self) -> Option<$found> {
+            None
+        }
+    };
+}
+
+mod axis;
+mod baseline;
+mod batch;
 mod chain;
 mod column;
+mod covariate;
 mod error;
+mod extended;
 mod filter;
 mod impute;
 mod limit;
 mod local;
+mod low_rank;
+mod marker;
+mod neighbor;
+mod order;
 mod pointwise;
+mod power;
+mod quality;
+mod quantile;
+mod quotient;
+mod relevance;
 mod row;
 mod scale;
 mod scatter;
+mod scores;
+mod span;
+mod spike;
 
+pub use axis::{CommonAxis, CutRegions, Interpolation, Regions};
+pub use baseline::{Baseline, BaselineRule};
+pub use batch::BatchCentering;
 pub use chain::{
     Chain, ChainStop, LearnedChain, Prepared, Trailing, TrailingCenter, TrailingScale,
 };
+pub use covariate::CovariateRemoval;
 pub use error::{ParameterError, StepError, StepStop};
+pub use extended::ExtendedScatterCorrection;
 pub use filter::{MissingShare, NearConstant};
 pub use impute::{ColumnImputation, ColumnStatistic};
 pub use limit::{LimitFill, LimitRule};
 pub use local::{Detrend, SavitzkyGolay, local_polynomial_weights};
-pub use pointwise::{Logarithm, LogarithmBase};
-pub use row::StandardNormalVariate;
+pub use low_rank::LowRankImputation;
+pub use marker::MinorAllele;
+pub use neighbor::{NearestImputation, NeighborWeights};
+pub use order::{OrderRemark, OrderRule, batch_remarks, order_remarks};
+pub use pointwise::{
+    Absorbance, InverseHyperbolicSine, Logarithm, LogarithmBase, Power, UnitConversion,
+};
+pub use power::{PowerChoice, PowerFamily, PowerTransform};
+pub use quality::{DriftRemoval, DriftTrend, QualityControlDrift, QualityControlSpread};
+pub use quantile::QuantileNormalisation;
+pub use quotient::{ProbabilisticQuotient, QuotientReference};
+pub use relevance::OutcomeFilter;
+pub use row::{CenteredLogRatio, Divisor, Normalisation, StandardNormalVariate};
 pub use scale::{Centering, Scaling, ScalingRule};
 pub use scatter::{Reference, ScatterCorrection};
+pub use scores::PrincipalScores;
+pub use spike::SpikeRemoval;
 
 use crate::base::work::Work;
 use crate::numeric::parts::TrainingPart;
@@ -165,24 +230,70 @@ macro_rules! steps {
 }
 
 steps! {
-    /// Logarithm of x plus a constant.
-    Logarithm,
+    /// Another unit: factor·x + offset.
+    UnitConversion,
+    /// Reflectance or transmittance to absorbance.
+    Absorbance,
+    /// Values read off at common positions.
+    CommonAxis,
+    /// Switches off regions of the axis.
+    CutRegions,
+    /// Replaces single values that stand out from their neighbours.
+    SpikeRemoval,
+    /// Fills values known to lie beyond a limit.
+    LimitFill,
+    /// Each row over its sum, area, peak, length or internal standard.
+    Normalisation,
     /// Each row minus its mean, over its standard deviation.
     StandardNormalVariate,
-    /// Local polynomials: smoothing or derivatives.
-    SavitzkyGolay,
     /// Each row minus its polynomial trend along the axis.
     Detrend,
+    /// Each row minus a baseline.
+    Baseline,
+    /// Local polynomials: smoothing or derivatives.
+    SavitzkyGolay,
+    /// Logarithm of x plus a constant.
+    Logarithm,
+    /// Inverse hyperbolic sine.
+    InverseHyperbolicSine,
+    /// A power of x.
+    Power,
+    /// Box–Cox or Yeo–Johnson transform.
+    PowerTransform,
+    /// Logarithms minus their mean over the row.
+    CenteredLogRatio,
+    /// Drift along the order of measurement, taken out by quality-control samples.
+    QualityControlDrift,
     /// Each row brought onto a reference by offset and slope.
     ScatterCorrection,
+    /// Each row brought onto a reference beside a polynomial and interferents.
+    ExtendedScatterCorrection,
+    /// Each row over its typical quotient with a reference.
+    ProbabilisticQuotient,
+    /// Every row given the same distribution of values.
+    QuantileNormalisation,
+    /// Fills missing values with a statistic of the predictor.
+    ColumnImputation,
+    /// Fills missing values from the nearest samples.
+    NearestImputation,
+    /// Fills missing values by principal components.
+    LowRankImputation,
     /// Switches off predictors with too many missing values.
     MissingShare,
     /// Switches off predictors with (nearly) one value only.
     NearConstant,
-    /// Fills missing values with a statistic of the predictor.
-    ColumnImputation,
-    /// Fills values known to lie beyond a limit.
-    LimitFill,
+    /// Switches off predictors that are unsteady in quality-control samples.
+    QualityControlSpread,
+    /// Switches off markers with a rare allele.
+    MinorAllele,
+    /// Switches off predictors that do not go together with the outcome.
+    OutcomeFilter,
+    /// Takes the level of each batch out.
+    BatchCentering,
+    /// Takes the linear share of covariates out.
+    CovariateRemoval,
+    /// Replaces predictors by scores on principal components.
+    PrincipalScores,
     /// Subtracts the mean of each predictor.
     Centering,
     /// Subtracts the mean (or median) of each predictor and divides by its scale.

@@ -95,15 +95,7 @@ impl Affine {
 }
 
 impl Preparation for Centering {
-    type Found = Affine;
-
-    fn class(&self) -> Class {
-        Class::Learned
-    }
-
-    fn given(&self) -> Option<Affine> {
-        None
-    }
+    must_learn!(Affine, Class::Learned);
 
     fn learn(&self, part: &TrainingPart<'_>, work: &Work<'_>) -> Result<Affine, StepStop> {
         Affine::learn(part, work, |column| {
@@ -122,15 +114,7 @@ impl Preparation for Centering {
 }
 
 impl Preparation for Scaling {
-    type Found = Affine;
-
-    fn class(&self) -> Class {
-        Class::Learned
-    }
-
-    fn given(&self) -> Option<Affine> {
-        None
-    }
+    must_learn!(Affine, Class::Learned);
 
     fn learn(&self, part: &TrainingPart<'_>, work: &Work<'_>) -> Result<Affine, StepStop> {
         Affine::learn(part, work, |column| {

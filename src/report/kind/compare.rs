@@ -34,9 +34,12 @@ pub fn sentences(context: &Context<'_>, compare: &Compare) -> Vec<Sentence> {
         if count == 1 {
             sentence = sentence.text(" and ");
         }
-        return vec![
-            next("fits still to be chosen", sentence).text(" side by side on the same parts."),
-        ];
+        let wanted = if count == 1 {
+            "another fit still to be chosen"
+        } else {
+            "fits still to be chosen"
+        };
+        return vec![next(wanted, sentence).text(" side by side on the same parts.")];
     }
     vec![
         sentence.text(" side by side on the same parts."),

@@ -167,9 +167,8 @@ pub fn methods(source: &Source<'_>) -> Vec<Paragraph> {
     }
     if source.is_above_zero("learned steps") {
         telling.say(source.say(
-            "{learned steps} of these steps [learns|learn] from samples (for example means); a \
-             step that is learned can be learnt only from a training part, never from the samples \
-             that it is applied to for judging.",
+            "{learned steps} of these steps [learns|learn] from samples (for example their mean); \
+             where that was done is told with the fit.",
             &[],
         ));
     }

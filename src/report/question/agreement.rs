@@ -16,8 +16,8 @@ pub fn answer(chain: &Chain<'_>, source: &Source<'_>) -> Paragraph {
     let units = noun::unit(chain.settings()).many;
     let start = source.say(
         &format!(
-            "On {units} that it has not seen, a prediction misses by {{nested mae}} on average and \
-             is {{bias}} off overall"
+            "On {units} that it has not seen, predictions miss by {{nested mae}} on average, with \
+             an average difference (bias) of {{bias}}"
         ),
         &[],
     );

@@ -111,6 +111,8 @@ pub fn figure(source: &Source<'_>) -> Option<NamedFigure> {
         errors: table.numbers(name).to_vec(),
         low: table.numbers("low").to_vec(),
         high: table.numbers("high").to_vec(),
+        spread_low: Vec::new(),
+        spread_high: Vec::new(),
         tips: strength_tips(table, &[(name, label), ("chosen predictors", "predictors")]),
         // The error of the mean alone comes from the outer parts; this curve from the inner ones.
         baseline: None,

@@ -204,9 +204,7 @@ fn openings(context: &Context<'_>, chain: &Chain<'_>) -> Paragraph {
         .iter()
         .filter(|opening| Some(&opening.cell) == title.as_ref())
         .count();
-    Paragraph::of(match count {
-        0 | 1 => "It had been opened once.",
-        2 => "It had been opened twice.",
-        _ => "It had been opened more than twice; the ledger of the study lists the openings.",
-    })
+    Paragraph::of("Openings of the sealed set counted so far: ")
+        .counted("openings of the sealed set", count)
+        .text(".")
 }

@@ -32,7 +32,11 @@ fn counts<T>(items: &[T], name: &str, meaning: &str, get: impl Fn(&T) -> usize) 
 
 fn tables(facts: &mut Facts, roles: &Roles) {
     let sources = &roles.sources;
-    facts.push(Fact::count("tables", sources.len(), "How many tables were read."));
+    facts.push(Fact::count(
+        "tables",
+        sources.len(),
+        "How many tables were read.",
+    ));
     let orientation = |used: Option<Orientation>| match used {
         Some(Orientation::SamplesInColumns) => "samples in columns",
         Some(Orientation::SamplesInRows) | None => "samples in rows",
@@ -40,31 +44,69 @@ fn tables(facts: &mut Facts, roles: &Roles) {
     facts.push(Fact::table(
         "source files",
         vec![
-            FactColumn::texts("file", texts(sources, |s| s.file.clone()), "The file's name."),
-            FactColumn::texts("sheet", texts(sources, |s| s.sheet.clone()), "The sheet of a workbook."),
+            FactColumn::texts(
+                "file",
+                texts(sources, |s| s.file.clone()),
+                "The file's name.",
+            ),
+            FactColumn::texts(
+                "sheet",
+                texts(sources, |s| s.sheet.clone()),
+                "The sheet of a workbook.",
+            ),
             counts(sources, "bytes", "The file's size in bytes.", |s| s.bytes),
-            FactColumn::texts("sha-256", texts(sources, |s| s.hash.clone()), "The SHA-256 of the file's bytes."),
+            FactColumn::texts(
+                "sha-256",
+                texts(sources, |s| s.hash.clone()),
+                "The SHA-256 of the file's bytes.",
+            ),
             FactColumn::texts(
                 "orientation",
                 texts(sources, |s| orientation(s.used.orientation).to_owned()),
                 "Whether a sample is a row or a column of the file.",
             ),
-            counts(sources, "rows read", "How many samples or things the table describes.", |s| s.shape.0),
-            counts(sources, "columns read", "How many columns the table has.", |s| s.shape.1),
+            counts(
+                sources,
+                "rows read",
+                "How many samples or things the table describes.",
+                |s| s.shape.0,
+            ),
+            counts(
+                sources,
+                "columns read",
+                "How many columns the table has.",
+                |s| s.shape.1,
+            ),
         ],
         "The files that were read, with what identifies them.",
     ));
     let findings = &roles.findings;
     let place = |finding: &crate::table::finding::Finding| {
-        finding.places.first().map(ToString::to_string).unwrap_or_default()
+        finding
+            .places
+            .first()
+            .map(ToString::to_string)
+            .unwrap_or_default()
     };
     facts.push(Fact::table(
         "import findings",
         vec![
-            FactColumn::texts("finding", texts(findings, finding::sentence), "What was found."),
+            FactColumn::texts(
+                "finding",
+                texts(findings, finding::sentence),
+                "What was found.",
+            ),
             counts(findings, "count", "How often it was found.", |f| f.count),
-            FactColumn::texts("places", texts(findings, place), "Where it was found first."),
-            FactColumn::texts("treatment", texts(findings, |f| finding::treatment(f).to_owned()), "What was done about it."),
+            FactColumn::texts(
+                "places",
+                texts(findings, place),
+                "Where it was found first.",
+            ),
+            FactColumn::texts(
+                "treatment",
+                texts(findings, |f| finding::treatment(f).to_owned()),
+                "What was done about it.",
+            ),
         ],
         "What was found while reading the tables, and what was done about it.",
     ));
@@ -75,16 +117,42 @@ fn tables(facts: &mut Facts, roles: &Roles) {
     facts.push(Fact::table(
         "join report",
         vec![
-            FactColumn::texts("table", texts(joins, |(s, _)| s.file.clone()), "The table that was joined."),
+            FactColumn::texts(
+                "table",
+                texts(joins, |(s, _)| s.file.clone()),
+                "The table that was joined.",
+            ),
             FactColumn::texts(
                 "key",
-                texts(joins, |(s, _)| s.join.as_ref().map(|j| j.left.clone()).unwrap_or_default()),
+                texts(joins, |(s, _)| {
+                    s.join.as_ref().map(|j| j.left.clone()).unwrap_or_default()
+                }),
                 "The column on which it was joined.",
             ),
-            counts(joins, "matched", "How many samples found a row in the joined table.", |(_, r)| r.matched),
-            counts(joins, "only left", "How many names stand only in the tables before.", |(_, r)| r.only_left.len()),
-            counts(joins, "only right", "How many names stand only in the joined table.", |(_, r)| r.only_right.len()),
-            counts(joins, "repeated", "How many names stand in the joined table more than once.", |(_, r)| r.repeated_right.len()),
+            counts(
+                joins,
+                "matched",
+                "How many samples found a row in the joined table.",
+                |(_, r)| r.matched,
+            ),
+            counts(
+                joins,
+                "only left",
+                "How many names stand only in the tables before.",
+                |(_, r)| r.only_left.len(),
+            ),
+            counts(
+                joins,
+                "only right",
+                "How many names stand only in the joined table.",
+                |(_, r)| r.only_right.len(),
+            ),
+            counts(
+                joins,
+                "repeated",
+                "How many names stand in the joined table more than once.",
+                |(_, r)| r.repeated_right.len(),
+            ),
             FactColumn::texts(
                 "only left names",
                 texts(joins, |(_, r)| shown(&r.only_left)),
@@ -118,30 +186,74 @@ const fn seen(outcome: OutcomeSeen) -> &'static str {
 
 fn acts(facts: &mut Facts, settings: &Data) {
     let exclusions = settings.exclusions.as_slice();
-    facts.push(Fact::count("samples excluded", exclusions.len(), "How many samples were excluded, each with a reason."));
+    facts.push(Fact::count(
+        "samples excluded",
+        exclusions.len(),
+        "How many samples were excluded, each with a reason.",
+    ));
     if !exclusions.is_empty() {
         facts.push(Fact::table(
             "exclusions",
             vec![
-                FactColumn::texts("sample", texts(exclusions, |e| e.sample.clone()), "The excluded sample."),
-                FactColumn::texts("reason", texts(exclusions, |e| e.reason.clone()), "Why it was excluded."),
-                FactColumn::texts("outcome seen", texts(exclusions, |e| seen(e.outcome).to_owned()), "Whether the outcome had been seen."),
+                FactColumn::texts(
+                    "sample",
+                    texts(exclusions, |e| e.sample.clone()),
+                    "The excluded sample.",
+                ),
+                FactColumn::texts(
+                    "reason",
+                    texts(exclusions, |e| e.reason.clone()),
+                    "Why it was excluded.",
+                ),
+                FactColumn::texts(
+                    "outcome seen",
+                    texts(exclusions, |e| seen(e.outcome).to_owned()),
+                    "Whether the outcome had been seen.",
+                ),
             ],
             "The samples that were excluded.",
         ));
     }
     let corrections = settings.corrections.as_slice();
-    facts.push(Fact::count("values corrected", corrections.len(), "How many values were corrected, each with a reason."));
+    facts.push(Fact::count(
+        "values corrected",
+        corrections.len(),
+        "How many values were corrected, each with a reason.",
+    ));
     if !corrections.is_empty() {
         facts.push(Fact::table(
             "corrections",
             vec![
-                FactColumn::texts("sample", texts(corrections, |c| c.sample.clone()), "The sample."),
-                FactColumn::texts("column", texts(corrections, |c| c.column.clone()), "The column."),
-                FactColumn::texts("from", texts(corrections, |c| c.from.clone()), "The value that was found."),
-                FactColumn::texts("to", texts(corrections, |c| c.to.clone()), "The value that it should be."),
-                FactColumn::texts("reason", texts(corrections, |c| c.reason.clone()), "Why it was corrected."),
-                FactColumn::texts("outcome seen", texts(corrections, |c| seen(c.outcome).to_owned()), "Whether the outcome had been seen."),
+                FactColumn::texts(
+                    "sample",
+                    texts(corrections, |c| c.sample.clone()),
+                    "The sample.",
+                ),
+                FactColumn::texts(
+                    "column",
+                    texts(corrections, |c| c.column.clone()),
+                    "The column.",
+                ),
+                FactColumn::texts(
+                    "from",
+                    texts(corrections, |c| c.from.clone()),
+                    "The value that was found.",
+                ),
+                FactColumn::texts(
+                    "to",
+                    texts(corrections, |c| c.to.clone()),
+                    "The value that it should be.",
+                ),
+                FactColumn::texts(
+                    "reason",
+                    texts(corrections, |c| c.reason.clone()),
+                    "Why it was corrected.",
+                ),
+                FactColumn::texts(
+                    "outcome seen",
+                    texts(corrections, |c| seen(c.outcome).to_owned()),
+                    "Whether the outcome had been seen.",
+                ),
             ],
             "The values that were corrected.",
         ));
@@ -149,39 +261,93 @@ fn acts(facts: &mut Facts, settings: &Data) {
 }
 
 fn flow(facts: &mut Facts, settings: &Data, data: &Dataset) {
-    facts.push(Fact::count("samples read", data.table.n_rows(), "How many samples the first table holds."));
-    facts.push(Fact::count("samples", data.analysed.len(), "How many samples are analysed: those read, less the excluded and the sealed."));
+    facts.push(Fact::count(
+        "samples read",
+        data.table.n_rows(),
+        "How many samples the first table holds.",
+    ));
+    facts.push(Fact::count(
+        "samples",
+        data.analysed.len(),
+        "How many samples are analysed: those read, less the excluded and the sealed.",
+    ));
     let units = data.count_units(&data.analysed);
-    facts.push(Fact::count("units", units, "How many independent things the analysed samples belong to; the sample size that counts."));
+    facts.push(Fact::count(
+        "units",
+        units,
+        "How many independent things the analysed samples belong to; the sample size that counts.",
+    ));
     if let Some(column) = &data.unit_column {
-        facts.push(Fact::text("unit column", column.clone(), "The column that names the units."));
+        facts.push(Fact::text(
+            "unit column",
+            column.clone(),
+            "The column that names the units.",
+        ));
         let mut sizes = vec![0_usize; data.unit_names.len()];
-        data.analysed.iter().for_each(|&at| sizes[data.units[at]] += 1);
+        data.analysed
+            .iter()
+            .for_each(|&at| sizes[data.units[at]] += 1);
         sizes.retain(|size| *size > 0);
-        facts.push(Fact::count("samples per unit least", sizes.iter().copied().min().unwrap_or(0), "The smallest number of samples of one unit."));
-        facts.push(Fact::count("samples per unit most", sizes.iter().copied().max().unwrap_or(0), "The largest number of samples of one unit."));
+        facts.push(Fact::count(
+            "samples per unit least",
+            sizes.iter().copied().min().unwrap_or(0),
+            "The smallest number of samples of one unit.",
+        ));
+        facts.push(Fact::count(
+            "samples per unit most",
+            sizes.iter().copied().max().unwrap_or(0),
+            "The largest number of samples of one unit.",
+        ));
     }
     if let (Some(column), Some(batches)) = (&data.batch_column, &data.batches) {
         let mut present: Vec<usize> = data.analysed.iter().map(|&at| batches[at]).collect();
         present.sort_unstable();
         present.dedup();
-        facts.push(Fact::text("batch column", column.clone(), "The column that names the batches."));
-        facts.push(Fact::count("batches", present.len(), "How many batches the analysed samples come from."));
+        facts.push(Fact::text(
+            "batch column",
+            column.clone(),
+            "The column that names the batches.",
+        ));
+        facts.push(Fact::count(
+            "batches",
+            present.len(),
+            "How many batches the analysed samples come from.",
+        ));
     }
     if !data.sealed.is_empty() {
-        facts.push(Fact::count("sealed samples", data.sealed.len(), "How many samples are kept for one last check."));
-        facts.push(Fact::count("sealed units", data.count_units(&data.sealed), "How many units are kept for one last check."));
+        facts.push(Fact::count(
+            "sealed samples",
+            data.sealed.len(),
+            "How many samples are kept for one last check.",
+        ));
+        facts.push(Fact::count(
+            "sealed units",
+            data.count_units(&data.sealed),
+            "How many units are kept for one last check.",
+        ));
     }
     if settings.weight.is_some() {
-        facts.push(Fact::text("weight column", settings.weight.clone().unwrap_or_default(), "The column with sample weights."));
+        facts.push(Fact::text(
+            "weight column",
+            settings.weight.clone().unwrap_or_default(),
+            "The column with sample weights.",
+        ));
     }
 }
 
 fn outcome(facts: &mut Facts, data: &Dataset) {
     let info = &data.outcome;
-    facts.push(Fact::text("outcome", info.name.clone(), "What is predicted."));
+    facts.push(Fact::text(
+        "outcome",
+        info.name.clone(),
+        "What is predicted.",
+    ));
     if !info.unit.is_empty() {
-        facts.push(Fact::text("outcome unit", info.unit.clone(), "The unit of the outcome."));
+        facts.push(Fact::text(
+            "outcome unit",
+            info.unit.clone(),
+            "The unit of the outcome.",
+        ));
     }
     let kind = match data.response {
         Response::Measured(_) => "measured quantity",
@@ -190,9 +356,15 @@ fn outcome(facts: &mut Facts, data: &Dataset) {
         Response::Count { .. } => "count",
         Response::Time { .. } => "time to an event",
     };
-    facts.push(Fact::text("outcome kind", kind, "What sort of thing is predicted."));
+    facts.push(Fact::text(
+        "outcome kind",
+        kind,
+        "What sort of thing is predicted.",
+    ));
     let values: Vec<f64> = match &data.response {
-        Response::Measured(values) | Response::Count { count: values, .. } | Response::Time { time: values, .. } => {
+        Response::Measured(values)
+        | Response::Count { count: values, .. }
+        | Response::Time { time: values, .. } => {
             data.analysed.iter().map(|&at| values[at]).collect()
         }
         Response::YesNo(_) | Response::Classes { .. } => Vec::new(),
@@ -207,13 +379,35 @@ fn outcome(facts: &mut Facts, data: &Dataset) {
         let mut push = |name: &str, value: f64, meaning: &str| {
             facts.push(Fact::number(name, value, &info.unit, precision, meaning));
         };
-        push("outcome mean", mean, "The mean of the outcome over the analysed samples.");
-        push("outcome standard deviation", sd, "The standard deviation of the outcome over the analysed samples (divisor n − 1).");
-        push("outcome least", least, "The smallest outcome among the analysed samples.");
-        push("outcome most", most, "The largest outcome among the analysed samples.");
+        push(
+            "outcome mean",
+            mean,
+            "The mean of the outcome over the analysed samples.",
+        );
+        push(
+            "outcome standard deviation",
+            sd,
+            "The standard deviation of the outcome over the analysed samples (divisor n − 1).",
+        );
+        push(
+            "outcome least",
+            least,
+            "The smallest outcome among the analysed samples.",
+        );
+        push(
+            "outcome most",
+            most,
+            "The largest outcome among the analysed samples.",
+        );
     }
     if let Some(error) = info.reference_error {
-        facts.push(Fact::number("reference error", error, &info.unit, Precision::Significant(3), "The standard deviation of the reference method's own error, as stated by the user."));
+        facts.push(Fact::number(
+            "reference error",
+            error,
+            &info.unit,
+            Precision::Significant(3),
+            "The standard deviation of the reference method's own error, as stated by the user.",
+        ));
     }
     let members: Option<Vec<usize>> = match &data.response {
         Response::YesNo(events) => Some(events.iter().map(|event| usize::from(*event)).collect()),
@@ -222,35 +416,73 @@ fn outcome(facts: &mut Facts, data: &Dataset) {
     };
     if let Some(members) = members {
         let classes = &info.classes;
-        let count = |class: usize| data.analysed.iter().filter(|&&at| members[at] == class).count();
+        let count = |class: usize| {
+            data.analysed
+                .iter()
+                .filter(|&&at| members[at] == class)
+                .count()
+        };
         let index: Vec<usize> = (0..classes.len()).collect();
         facts.push(Fact::table(
             "outcome classes",
             vec![
                 FactColumn::texts("class", classes.clone(), "The class."),
-                counts(&index, "samples", "How many analysed samples are of this class.", |&class| count(class)),
+                counts(
+                    &index,
+                    "samples",
+                    "How many analysed samples are of this class.",
+                    |&class| count(class),
+                ),
             ],
             "The classes of the outcome.",
         ));
     }
     if let Response::Time { event, .. } = &data.response {
         let events = data.analysed.iter().filter(|&&at| event[at]).count();
-        facts.push(Fact::count("events", events, "How many analysed samples had the event."));
+        facts.push(Fact::count(
+            "events",
+            events,
+            "How many analysed samples had the event.",
+        ));
     }
 }
 
 fn predictors(facts: &mut Facts, settings: &Data, roles: &Roles) {
     let data = &roles.dataset;
-    facts.push(Fact::count("predictors", data.predictor_names.len(), "How many predictors there are before preparation."));
-    facts.push(Fact::text("predictor range", roles.predictor_range.clone(), "The predictors as ranges of columns."));
+    facts.push(Fact::count(
+        "predictors",
+        data.predictor_names.len(),
+        "How many predictors there are before preparation.",
+    ));
+    facts.push(Fact::text(
+        "predictor range",
+        roles.predictor_range.clone(),
+        "The predictors as ranges of columns.",
+    ));
     if !data.axis_unit.is_empty() {
-        facts.push(Fact::text("axis unit", data.axis_unit.clone(), "The unit of the predictors' axis."));
+        facts.push(Fact::text(
+            "axis unit",
+            data.axis_unit.clone(),
+            "The unit of the predictors' axis.",
+        ));
     }
-    facts.push(Fact::count("predictors ignored", settings.ignored.len(), "How many columns were left out by choice."));
+    facts.push(Fact::count(
+        "predictors ignored",
+        settings.ignored.len(),
+        "How many columns were left out by choice.",
+    ));
     if !roles.text_columns.is_empty() {
-        facts.push(Fact::text("text columns", shown(&roles.text_columns), "Columns that hold text and were therefore not taken as predictors."));
+        facts.push(Fact::text(
+            "text columns",
+            shown(&roles.text_columns),
+            "Columns that hold text and were therefore not taken as predictors.",
+        ));
     }
-    facts.push(Fact::count("covariates", data.covariate_names.len(), "How many columns are always in the model, unpenalised."));
+    facts.push(Fact::count(
+        "covariates",
+        data.covariate_names.len(),
+        "How many columns are always in the model, unpenalised.",
+    ));
     if !data.covariate_names.is_empty() {
         facts.push(Fact::text("covariate names", data.covariate_names.join(", "), "The columns that are always in the model; a category is one column per level but its first."));
     }
@@ -263,7 +495,11 @@ fn gaps(facts: &mut Facts, data: &Dataset) {
     let cells = (n * p) as f64;
     let is_analysed = |row: usize| rows.binary_search(&row).is_ok();
     let side = |wanted: Side| {
-        data.samples.limits.iter().filter(|l| l.side == wanted && is_analysed(l.row)).count()
+        data.samples
+            .limits
+            .iter()
+            .filter(|l| l.side == wanted && is_analysed(l.row))
+            .count()
     };
     let (below, above) = (side(Side::Below), side(Side::Above));
     let mut not_numbers = 0;
@@ -275,16 +511,50 @@ fn gaps(facts: &mut Facts, data: &Dataset) {
         let limits = if data.samples.limits.is_empty() {
             0
         } else {
-            data.samples.limits.iter().filter(|l| l.column == column && is_analysed(l.row)).count()
+            data.samples
+                .limits
+                .iter()
+                .filter(|l| l.column == column && is_analysed(l.row))
+                .count()
         };
         largest = largest.max(gaps - limits);
     }
     let missing = not_numbers - below - above;
     let share = |count: usize| count as f64 / cells;
-    facts.push(Fact::count("missing values", missing, "How many predictor values of the analysed samples are missing."));
-    facts.push(Fact::number("missing share", share(missing), "", Precision::Percent(1), "The share of predictor values that is missing."));
-    facts.push(Fact::number("largest missing share", largest as f64 / n as f64, "", Precision::Percent(0), "The largest share that is missing of one predictor."));
-    facts.push(Fact::count("below-limit values", below, "How many predictor values are only known to lie below a limit."));
-    facts.push(Fact::number("below-limit share", share(below), "", Precision::Percent(1), "The share of predictor values that is only known to lie below a limit."));
-    facts.push(Fact::count("above-limit values", above, "How many predictor values are only known to lie above a limit."));
+    facts.push(Fact::count(
+        "missing values",
+        missing,
+        "How many predictor values of the analysed samples are missing.",
+    ));
+    facts.push(Fact::number(
+        "missing share",
+        share(missing),
+        "",
+        Precision::Percent(1),
+        "The share of predictor values that is missing.",
+    ));
+    facts.push(Fact::number(
+        "largest missing share",
+        largest as f64 / n as f64,
+        "",
+        Precision::Percent(0),
+        "The largest share that is missing of one predictor.",
+    ));
+    facts.push(Fact::count(
+        "below-limit values",
+        below,
+        "How many predictor values are only known to lie below a limit.",
+    ));
+    facts.push(Fact::number(
+        "below-limit share",
+        share(below),
+        "",
+        Precision::Percent(1),
+        "The share of predictor values that is only known to lie below a limit.",
+    ));
+    facts.push(Fact::count(
+        "above-limit values",
+        above,
+        "How many predictor values are only known to lie above a limit.",
+    ));
 }

@@ -132,11 +132,13 @@ pub fn evaluate(
 
 fn data(settings: &Data, inputs: &Inputs<'_>, work: &Work<'_>) -> Result<Outcome, Ended> {
     let joined = tables::read_and_join(settings, inputs, &work.part(0.0..0.8))?;
-    work.step(8, 10)?;
-    let roles = roles::assign(settings, joined)?;
-    work.step(9, 10)?;
+    let roles = roles::assign(settings, joined, inputs.threads, &work.part(0.8..1.0))?;
     let mut facts = Facts::new();
     facts::publish(&mut facts, settings, &roles);
     let caveats = design::caveats(&roles.dataset, &roles.findings, &facts);
-    Ok(Outcome { gives: Gives::Data(Arc::new(roles.dataset)), facts, caveats })
+    Ok(Outcome {
+        gives: Gives::Data(Arc::new(roles.dataset)),
+        facts,
+        caveats,
+    })
 }

@@ -24,7 +24,9 @@ pub struct Found {
 }
 
 /// Texts that mean “yes” where nobody said which text does, in lower case.
-const YES: [&str; 9] = ["1", "yes", "y", "true", "t", "positive", "pos", "event", "present"];
+const YES: [&str; 9] = [
+    "1", "yes", "y", "true", "t", "positive", "pos", "event", "present",
+];
 
 /// Finds the outcome of the given rows.
 ///
@@ -33,9 +35,11 @@ const YES: [&str; 9] = ["1", "yes", "y", "true", "t", "positive", "pos", "event"
 /// kind says.
 pub fn find(settings: &Data, table: &Table, rows: &[usize], file: &str) -> Result<Found, Problem> {
     let Some(outcome) = &settings.outcome else {
-        return Err(Problem::new("no-outcome", "It has not been said yet what is predicted.")
-            .at(Place::file(file))
-            .mend("Choose the column with the outcome."));
+        return Err(
+            Problem::new("no-outcome", "It has not been said yet what is predicted.")
+                .at(Place::file(file))
+                .mend("Choose the column with the outcome."),
+        );
     };
     let name = &outcome.column;
     let at = table.position(name).ok_or_else(|| {
@@ -45,7 +49,11 @@ pub fn find(settings: &Data, table: &Table, rows: &[usize], file: &str) -> Resul
         problem
     })?;
     let column = &table.columns()[at];
-    let unit = outcome.unit.clone().or_else(|| column.unit.clone()).unwrap_or_default();
+    let unit = outcome
+        .unit
+        .clone()
+        .or_else(|| column.unit.clone())
+        .unwrap_or_default();
     let mut info = OutcomeInfo {
         name: name.clone(),
         unit,
@@ -54,9 +62,8 @@ pub fn find(settings: &Data, table: &Table, rows: &[usize], file: &str) -> Resul
     };
     let mut columns = vec![name.clone()];
     let values = |column: &str| numbers(table, column, rows, file, "outcome");
-    let texts = || -> Vec<Option<String>> {
-        rows.iter().map(|&row| text_of(column, row)).collect()
-    };
+    let texts =
+        || -> Vec<Option<String>> { rows.iter().map(|&row| text_of(column, row)).collect() };
     let (response, strata, missing) = match &outcome.kind {
         OutcomeKind::Measured => {
             let values = values(name)?;
@@ -68,10 +75,15 @@ pub fn find(settings: &Data, table: &Table, rows: &[usize], file: &str) -> Resul
             let levels = levels(&texts);
             let event = event_text(&levels, event.as_deref(), name, file)?;
             let other = levels.iter().find(|level| **level != event);
-            info.classes = vec![other.cloned().unwrap_or_else(|| "no".to_owned()), event.clone()];
+            info.classes = vec![
+                other.cloned().unwrap_or_else(|| "no".to_owned()),
+                event.clone(),
+            ];
             let missing = places(&texts, Option::is_none);
-            let is_event: Vec<bool> =
-                texts.iter().map(|text| text.as_deref() == Some(event.as_str())).collect();
+            let is_event: Vec<bool> = texts
+                .iter()
+                .map(|text| text.as_deref() == Some(event.as_str()))
+                .collect();
             let strata = is_event.iter().map(|event| usize::from(*event)).collect();
             (Response::YesNo(is_event), Some(strata), missing)
         }
@@ -81,17 +93,26 @@ pub fn find(settings: &Data, table: &Table, rows: &[usize], file: &str) -> Resul
             let missing = places(&texts, Option::is_none);
             let class: Vec<usize> = texts
                 .iter()
-                .map(|text| levels.iter().position(|level| Some(level) == text.as_ref()).unwrap_or(0))
+                .map(|text| {
+                    levels
+                        .iter()
+                        .position(|level| Some(level) == text.as_ref())
+                        .unwrap_or(0)
+                })
                 .collect();
             info.classes.clone_from(&levels);
-            let response = Response::Classes { class: class.clone(), n_classes: levels.len() };
+            let response = Response::Classes {
+                class: class.clone(),
+                n_classes: levels.len(),
+            };
             (response, Some(class), missing)
         }
         OutcomeKind::Count { exposure } => {
             let count = values(name)?;
             let missing = places(&count, |value| value.is_nan());
-            if let Some(at) =
-                count.iter().position(|value| *value < 0.0 || value.fract() != 0.0 && !value.is_nan())
+            if let Some(at) = count
+                .iter()
+                .position(|value| *value < 0.0 || value.fract() != 0.0 && !value.is_nan())
             {
                 return Err(Problem::new(
                     "not-a-count",
@@ -100,15 +121,23 @@ pub fn find(settings: &Data, table: &Table, rows: &[usize], file: &str) -> Resul
                         number::text(count[at], Precision::Full)
                     ),
                 )
-                .at(table.place(rows[at], table.position(name).expect("the column was found")))
-                .mend("Correct the value with a reason, or treat the outcome as a measured quantity."));
+                .at(table.place(
+                    rows[at],
+                    table.position(name).expect("the column was found"),
+                ))
+                .mend(
+                    "Correct the value with a reason, or treat the outcome as a measured quantity.",
+                ));
             }
             let offset = match exposure {
                 None => None,
                 Some(exposure) => {
                     columns.push(exposure.clone());
                     let exposures = values(exposure)?;
-                    if exposures.iter().any(|value| value.is_nan() || *value <= 0.0) {
+                    if exposures
+                        .iter()
+                        .any(|value| value.is_nan() || *value <= 0.0)
+                    {
                         return Err(Problem::new(
                             "exposure",
                             format!("The exposure “{exposure}” must be above 0 for every sample."),
@@ -131,18 +160,36 @@ pub fn find(settings: &Data, table: &Table, rows: &[usize], file: &str) -> Resul
             missing.sort_unstable();
             missing.dedup();
             let happened = event_text(&levels(&texts), None, event, file)?;
-            let event: Vec<bool> =
-                texts.iter().map(|text| text.as_deref() == Some(happened.as_str())).collect();
+            let event: Vec<bool> = texts
+                .iter()
+                .map(|text| text.as_deref() == Some(happened.as_str()))
+                .collect();
             let strata = event.iter().map(|event| usize::from(*event)).collect();
-            let response = Response::Time { time, event, strata: None, ties: Ties::Efron };
+            let response = Response::Time {
+                time,
+                event,
+                strata: None,
+                ties: Ties::Efron,
+            };
             (response, Some(strata), missing)
         }
     };
-    Ok(Found { response, info, strata, missing, outcome_columns: columns })
+    Ok(Found {
+        response,
+        info,
+        strata,
+        missing,
+        outcome_columns: columns,
+    })
 }
 
 fn places<T>(values: &[T], wanted: impl Fn(&T) -> bool) -> Vec<usize> {
-    values.iter().enumerate().filter(|(_, value)| wanted(value)).map(|(at, _)| at).collect()
+    values
+        .iter()
+        .enumerate()
+        .filter(|(_, value)| wanted(value))
+        .map(|(at, _)| at)
+        .collect()
 }
 
 fn levels(texts: &[Option<String>]) -> Vec<String> {
@@ -160,7 +207,14 @@ fn event_text(
     file: &str,
 ) -> Result<String, Problem> {
     let place = || Place::file(file).with_column(column);
-    let shown = || levels.iter().take(6).cloned().collect::<Vec<_>>().join("”, “");
+    let shown = || {
+        levels
+            .iter()
+            .take(6)
+            .cloned()
+            .collect::<Vec<_>>()
+            .join("”, “")
+    };
     if levels.len() > 2 {
         return Err(Problem::new(
             "not-yes-or-no",
@@ -178,7 +232,10 @@ fn event_text(
             Some(level) => Ok(level.clone()),
             None => Err(Problem::new(
                 "no-such-event",
-                format!("“{event}” should mean “yes”, but “{column}” holds “{}”.", shown()),
+                format!(
+                    "“{event}” should mean “yes”, but “{column}” holds “{}”.",
+                    shown()
+                ),
             )
             .at(place())
             .mend("Choose one of these values.")),
@@ -191,7 +248,10 @@ fn event_text(
         .ok_or_else(|| {
             Problem::new(
                 "which-is-yes",
-                format!("It is not clear which value of “{column}” means “yes”: “{}”.", shown()),
+                format!(
+                    "It is not clear which value of “{column}” means “yes”: “{}”.",
+                    shown()
+                ),
             )
             .at(place())
             .mend("Choose the value that means “yes”.")

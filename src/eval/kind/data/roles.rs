@@ -2,6 +2,8 @@
 
 use crate::base::number::{self, Precision};
 use crate::base::problem::{Place, Problem};
+use crate::base::thread::Threads;
+use crate::base::work::Work;
 use crate::eval::kind::Ended;
 use crate::eval::kind::data::Dataset;
 use crate::eval::kind::data::outcome::{self, Found};
@@ -47,15 +49,27 @@ const LEAST_SAMPLES: usize = 3;
 ///
 /// # Errors
 /// When a column that has a role does not exist or cannot have it.
-pub fn assign(settings: &Data, joined: Joined) -> Result<Roles, Ended> {
-    let Joined { mut table, n_first, mut findings, sources, joins } = joined;
+pub fn assign(
+    settings: &Data,
+    joined: Joined,
+    threads: Threads,
+    work: &Work<'_>,
+) -> Result<Roles, Ended> {
+    let Joined {
+        mut table,
+        n_first,
+        mut findings,
+        sources,
+        joins,
+    } = joined;
     let file = sources[0].file.clone();
     let all_names = sample_names(settings, &table, &file)?;
     for correction in settings.corrections.iter() {
         let row = named(&all_names, &correction.sample, &file, "corrected")?;
         let column = position(&table, &correction.column, &file)?;
-        correct::set(&mut table, row, column, &correction.from, &correction.to).map_err(|found| {
-            Problem::new(
+        correct::set(&mut table, row, column, &correction.from, &correction.to).map_err(
+            |found| {
+                Problem::new(
                 "correction-does-not-fit",
                 format!(
                     "The correction of “{}” for “{}” expects “{}”, but the table holds “{found}”.",
@@ -64,17 +78,27 @@ pub fn assign(settings: &Data, joined: Joined) -> Result<Roles, Ended> {
             )
             .at(Place::file(&file).with_column(&correction.column))
             .mend("Take the correction back, or record it anew for the value that is there.")
-        })?;
+            },
+        )?;
     }
     let mut excluded = BTreeSet::new();
     for exclusion in settings.exclusions.iter() {
         let _ = excluded.insert(named(&all_names, &exclusion.sample, &file, "excluded")?);
     }
-    let table_rows: Vec<usize> =
-        (0..table.n_rows()).filter(|row| !excluded.contains(row)).collect();
-    let names: Vec<String> = table_rows.iter().map(|&row| all_names[row].clone()).collect();
-    let Found { response, info, strata, missing, outcome_columns } =
-        outcome::find(settings, &table, &table_rows, &file)?;
+    let table_rows: Vec<usize> = (0..table.n_rows())
+        .filter(|row| !excluded.contains(row))
+        .collect();
+    let names: Vec<String> = table_rows
+        .iter()
+        .map(|&row| all_names[row].clone())
+        .collect();
+    let Found {
+        response,
+        info,
+        strata,
+        missing,
+        outcome_columns,
+    } = outcome::find(settings, &table, &table_rows, &file)?;
     if !missing.is_empty() {
         let missing: Vec<String> = missing.iter().map(|&at| names[at].clone()).collect();
         return Err(outcome_missing(settings, &info.name, &missing, &file).into());
@@ -96,7 +120,15 @@ pub fn assign(settings: &Data, joined: Joined) -> Result<Roles, Ended> {
         None => None,
     };
     let (covariates, covariate_names) = covariates(settings, &table, &table_rows, &names, &file)?;
-    let sealed = sealed(settings, &table, &table_rows, &names, &units, &unit_names, &file)?;
+    let sealed = sealed(
+        settings,
+        &table,
+        &table_rows,
+        &names,
+        &units,
+        &unit_names,
+        &file,
+    )?;
     let analysed: Vec<usize> = (0..names.len()).filter(|at| !sealed.contains(at)).collect();
     if analysed.len() < LEAST_SAMPLES {
         return Err(Problem::new(
@@ -114,11 +146,16 @@ pub fn assign(settings: &Data, joined: Joined) -> Result<Roles, Ended> {
     outcome::varies(&response, &info, &analysed, &file)?;
     let (columns, text_columns) =
         predictor_columns(settings, &table, n_first, &outcome_columns, &file)?;
-    let predictor_names: Vec<String> =
-        columns.iter().map(|&at| table.columns()[at].name.clone()).collect();
+    let predictor_names: Vec<String> = columns
+        .iter()
+        .map(|&at| table.columns()[at].name.clone())
+        .collect();
     let refs: Vec<&str> = predictor_names.iter().map(String::as_str).collect();
     let found_axis = axis::of_names(&refs).filter(|axis| axis.is_monotone());
-    let axis_unit = found_axis.as_ref().and_then(|axis| axis.unit.clone()).unwrap_or_default();
+    let axis_unit = found_axis
+        .as_ref()
+        .and_then(|axis| axis.unit.clone())
+        .unwrap_or_default();
     let mut samples = predictors(&table, &columns, &table_rows);
     samples.axis = found_axis.map(|axis| axis.positions);
     samples.companions = Companions {
@@ -128,8 +165,11 @@ pub fn assign(settings: &Data, joined: Joined) -> Result<Roles, Ended> {
         covariates: (covariates.ncols() > 0).then(|| covariates.clone()),
     };
     let ranges = axis::ranges(&table, &columns);
-    let predictor_range =
-        ranges.iter().map(ToString::to_string).collect::<Vec<_>>().join(", ");
+    let predictor_range = ranges
+        .iter()
+        .map(ToString::to_string)
+        .collect::<Vec<_>>()
+        .join(", ");
     findings.extend(find::with_roles(
         &table,
         &FindRoles {
@@ -138,12 +178,18 @@ pub fn assign(settings: &Data, joined: Joined) -> Result<Roles, Ended> {
             unit: settings.unit.as_deref(),
             batch: settings.batch.as_deref(),
             order: settings.order.as_deref(),
-            outcome: settings.outcome.as_ref().map(|outcome| outcome.column.as_str()),
+            outcome: settings
+                .outcome
+                .as_ref()
+                .map(|outcome| outcome.column.as_str()),
             predictors: &columns,
         },
-    ));
-    let (batches, batch_names) =
-        batches.map_or((None, Vec::new()), |(batches, names)| (Some(batches), names));
+        threads,
+        work,
+    )?);
+    let (batches, batch_names) = batches.map_or((None, Vec::new()), |(batches, names)| {
+        (Some(batches), names)
+    });
     let dataset = Dataset {
         table: Arc::new(table),
         table_rows,
@@ -168,7 +214,14 @@ pub fn assign(settings: &Data, joined: Joined) -> Result<Roles, Ended> {
         sealed: sealed.into_iter().collect(),
         subject: settings.subject,
     };
-    Ok(Roles { dataset, findings, sources, joins, text_columns, predictor_range })
+    Ok(Roles {
+        dataset,
+        findings,
+        sources,
+        joins,
+        text_columns,
+        predictor_range,
+    })
 }
 
 /// The position of a column, or the problem that it does not exist.
@@ -181,7 +234,9 @@ pub(super) fn position(table: &Table, name: &str, file: &str) -> Result<usize, P
         )
         .at(Place::file(file));
         if let Some(alike) = alike {
-            problem = problem.mend(format!("Choose another column; “{alike}” is named most alike."));
+            problem = problem.mend(format!(
+                "Choose another column; “{alike}” is named most alike."
+            ));
         } else {
             problem = problem.mend("Choose another column.");
         }
@@ -192,7 +247,10 @@ pub(super) fn position(table: &Table, name: &str, file: &str) -> Result<usize, P
 /// The column that is named most alike: equal but for case, blanks and signs, or beginning alike.
 fn alike(table: &Table, name: &str) -> Option<String> {
     let bare = |text: &str| {
-        text.chars().filter(|c| c.is_alphanumeric()).flat_map(char::to_lowercase).collect::<String>()
+        text.chars()
+            .filter(|c| c.is_alphanumeric())
+            .flat_map(char::to_lowercase)
+            .collect::<String>()
     };
     let wanted = bare(name);
     let names = || table.columns().iter().map(|column| column.name.as_str());
@@ -210,7 +268,9 @@ fn alike(table: &Table, name: &str) -> Option<String> {
 
 fn sample_names(settings: &Data, table: &Table, file: &str) -> Result<Vec<String>, Ended> {
     let Some(name) = &settings.sample_name else {
-        return Ok((0..table.n_rows()).map(|row| format!("sample {}", row + 1)).collect());
+        return Ok((0..table.n_rows())
+            .map(|row| format!("sample {}", row + 1))
+            .collect());
     };
     let column = &table.columns()[position(table, name, file)?];
     let mut names = Vec::with_capacity(column.len());
@@ -261,10 +321,19 @@ fn named(names: &[String], name: &str, file: &str, what: &str) -> Result<usize, 
 }
 
 fn outcome_missing(settings: &Data, outcome: &str, missing: &[String], file: &str) -> Failure {
-    let shown = missing.iter().take(8).cloned().collect::<Vec<_>>().join(", ");
+    let shown = missing
+        .iter()
+        .take(8)
+        .cloned()
+        .collect::<Vec<_>>()
+        .join(", ");
     let more = if missing.len() > 8 { ", …" } else { "" };
     let count = number::text(missing.len() as f64, Precision::Whole);
-    let samples = if missing.len() == 1 { "sample" } else { "samples" };
+    let samples = if missing.len() == 1 {
+        "sample"
+    } else {
+        "samples"
+    };
     let problem = Problem::new(
         "outcome-missing",
         format!("The outcome “{outcome}” is missing for {count} {samples}: {shown}{more}."),
@@ -342,7 +411,11 @@ pub(super) fn numbers(
     match &table.columns()[at].values {
         Values::Numbers(numbers) => Ok(rows.iter().map(|&row| numbers.values()[row]).collect()),
         Values::Texts(texts) => {
-            let first = rows.iter().copied().find(|&row| texts[row].is_some()).unwrap_or(0);
+            let first = rows
+                .iter()
+                .copied()
+                .find(|&row| texts[row].is_some())
+                .unwrap_or(0);
             let found = texts[first].clone().unwrap_or_default();
             Err(Problem::new(
                 "text-in-number-column",
@@ -362,11 +435,17 @@ fn weights(
     file: &str,
 ) -> Result<Vec<f64>, Problem> {
     let weights = numbers(table, column, rows, file, "weight")?;
-    match weights.iter().position(|weight| !weight.is_finite() || *weight < 0.0) {
+    match weights
+        .iter()
+        .position(|weight| !weight.is_finite() || *weight < 0.0)
+    {
         None => Ok(weights),
         Some(at) => Err(Problem::new(
             "weight",
-            format!("The weight of “{}” is not a number of 0 or more.", names[at]),
+            format!(
+                "The weight of “{}” is not a number of 0 or more.",
+                names[at]
+            ),
         )
         .at(Place::file(file).with_column(column))
         .mend("Correct the weight with a reason, or choose another column.")),
@@ -392,7 +471,9 @@ fn covariates(
                 format!("The covariate “{name}” is missing for “{}”.", names[at]),
             )
             .at(Place::file(file).with_column(name))
-            .mend("Correct the value with a reason, exclude the sample, or leave the covariate out.")
+            .mend(
+                "Correct the value with a reason, exclude the sample, or leave the covariate out.",
+            )
         };
         match &column.values {
             Values::Numbers(numbers) => {
@@ -412,18 +493,26 @@ fn covariates(
                 let levels: BTreeSet<&str> = texts.iter().copied().flatten().collect();
                 for level in levels.iter().skip(1) {
                     columns.push(
-                        texts.iter().map(|text| f64::from(u8::from(*text == Some(*level)))).collect(),
+                        texts
+                            .iter()
+                            .map(|text| f64::from(u8::from(*text == Some(*level))))
+                            .collect(),
                     );
                     column_names.push(format!("{name}: {level}"));
                 }
             }
         }
     }
-    let matrix = Matrix::from_fn(rows.len(), columns.len(), |row, column| columns[column][row]);
+    let matrix = Matrix::from_fn(rows.len(), columns.len(), |row, column| {
+        columns[column][row]
+    });
     Ok((matrix, column_names))
 }
 
-#[expect(clippy::too_many_arguments, reason = "the sealed set may be named by any of these")]
+#[expect(
+    clippy::too_many_arguments,
+    reason = "the sealed set may be named by any of these"
+)]
 fn sealed(
     settings: &Data,
     table: &Table,
@@ -446,7 +535,10 @@ fn sealed(
             if chosen.is_empty() {
                 return Err(Problem::new(
                     "nothing-sealed",
-                    format!("No sample has “{}” in the column “{column}”.", values.join("” or “")),
+                    format!(
+                        "No sample has “{}” in the column “{column}”.",
+                        values.join("” or “")
+                    ),
                 )
                 .at(Place::file(file).with_column(column))
                 .mend("Choose another value, or seal nothing."));
@@ -471,7 +563,9 @@ fn sealed(
     }
     // A unit is sealed as a whole: one of its samples on the other side would give it away.
     let sealed_units: BTreeSet<usize> = chosen.iter().map(|&at| units[at]).collect();
-    Ok((0..names.len()).filter(|&at| sealed_units.contains(&units[at])).collect())
+    Ok((0..names.len())
+        .filter(|&at| sealed_units.contains(&units[at]))
+        .collect())
 }
 
 /// The positions of the predictor columns, and the columns that hold text and were passed over.
@@ -491,7 +585,11 @@ fn predictor_columns(
     taken.extend(settings.covariates.iter().map(String::as_str));
     taken.extend(settings.ignored.iter().map(String::as_str));
     taken.extend(
-        settings.tables.iter().filter_map(|table| table.join.as_ref()).map(|join| join.left.as_str()),
+        settings
+            .tables
+            .iter()
+            .filter_map(|table| table.join.as_ref())
+            .map(|join| join.left.as_str()),
     );
     if let Sealed::Where { column, .. } = &settings.sealed {
         let _ = taken.insert(column);
@@ -549,12 +647,19 @@ fn predictors(table: &Table, columns: &[usize], rows: &[usize]) -> Samples {
             .map(|(row, censored)| (*row as usize, *censored))
             .collect();
         for (to, row) in rows.iter().enumerate() {
-            let Some(censored) = known.get(row) else { continue };
+            let Some(censored) = known.get(row) else {
+                continue;
+            };
             let (side, limit) = match censored {
                 Censored::Below(limit) => (Side::Below, *limit),
                 Censored::Above(limit) => (Side::Above, *limit),
             };
-            limits.push(Limit { row: to, column: at, side, limit });
+            limits.push(Limit {
+                row: to,
+                column: at,
+                side,
+                limit,
+            });
         }
     }
     Samples::new(Matrix::from_vec(rows.len(), columns.len(), values)).with_limits(limits)

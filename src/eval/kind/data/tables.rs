@@ -106,7 +106,10 @@ fn join(
     let Some(keys) = &source.join else {
         return Err(Problem::new(
             "no-join",
-            format!("It is not said on which column “{}” is joined.", source.file),
+            format!(
+                "It is not said on which column “{}” is joined.",
+                source.file
+            ),
         )
         .at(Place::file(&source.file))
         .mend("Choose a column of each table that names the same things.")
@@ -131,7 +134,11 @@ fn join(
             |error| {
                 Problem::new(
                     "join",
-                    format!("“{}” cannot be joined: {}", source.file, crate::eval::finding::join_error(&error)),
+                    format!(
+                        "“{}” cannot be joined: {}",
+                        source.file,
+                        crate::eval::finding::join_error(&error)
+                    ),
                 )
                 .at(Place::file(&source.file))
                 .mend("Choose other columns to join on, or mend the table.")
@@ -166,7 +173,11 @@ fn options(source: &TableSource, settings: &Data) -> Options {
     as_text.extend(settings.sample_name.clone());
     as_text.extend(settings.unit.clone());
     as_text.extend(settings.batch.clone());
-    for join in settings.tables.iter().filter_map(|table| table.join.as_ref()) {
+    for join in settings
+        .tables
+        .iter()
+        .filter_map(|table| table.join.as_ref())
+    {
         as_text.push(join.left.clone());
         as_text.push(join.right.clone());
     }

@@ -106,7 +106,11 @@ impl Fitted {
     #[must_use]
     pub fn bytes(&self) -> usize {
         let shares = Arc::ptr_eq(&self.last.samples.x, &self.prepared.samples.x);
-        let matrix = if shares { 0 } else { self.last.samples.x.len() * size_of::<f64>() };
+        let matrix = if shares {
+            0
+        } else {
+            self.last.samples.x.len() * size_of::<f64>()
+        };
         matrix + self.last.path.n_points() * self.prepared.data.names.len() * 16
     }
 }
@@ -149,29 +153,47 @@ fn fit(settings: &Fit, inputs: &Inputs<'_>, work: &Work<'_>) -> Result<Outcome, 
         Judge::Nested(plan) => {
             let params = parts_params(plan, settings.seed);
             let structure = prepared.data.structure();
-            Some(assign(&params, analysed, &structure, "outer").map_err(|error| {
-                trouble(ProcedureError::Plan { level: Level::Outer, error }.into())
-            })?)
+            Some(
+                assign(&params, analysed, &structure, "outer").map_err(|error| {
+                    trouble(
+                        ProcedureError::Plan {
+                            level: Level::Outer,
+                            error,
+                        }
+                        .into(),
+                    )
+                })?,
+            )
         }
     };
-    let last = final_fit(&prepared, &procedure, analysed, &work.part(0.0..first))
-        .map_err(trouble)?;
+    let last =
+        final_fit(&prepared, &procedure, analysed, &work.part(0.0..first)).map_err(trouble)?;
     let (last, mut tally) = last;
     let judged = match plan {
         None => None,
         Some(plan) => {
             let bar = work.part(first..1.0);
-            let held_out =
-                nested(&material, &procedure, &plan, "outer", inputs.threads, &bar).map_err(trouble)?;
+            let held_out = nested(&material, &procedure, &plan, "outer", inputs.threads, &bar)
+                .map_err(trouble)?;
             tally.merge(&held_out.tally);
             Some(Judged { plan, held_out })
         }
     };
-    let fitted = Fitted { prepared: Arc::clone(&prepared), settings: settings.clone(), last, judged, tally };
+    let fitted = Fitted {
+        prepared: Arc::clone(&prepared),
+        settings: settings.clone(),
+        last,
+        judged,
+        tally,
+    };
     let mut published = Facts::new();
     facts::publish(&mut published, &fitted);
     let caveats = judgement::caveats(&fitted, &published);
-    Ok(Outcome { gives: Gives::Fit(Arc::new(fitted)), facts: published, caveats })
+    Ok(Outcome {
+        gives: Gives::Fit(Arc::new(fitted)),
+        facts: published,
+        caveats,
+    })
 }
 
 /// The procedure on all analysed samples, as far as it is kept.
@@ -183,9 +205,20 @@ fn final_fit(
 ) -> Result<(FinalFit, Tally), crate::numeric::procedure::Halt> {
     let material = prepared.material();
     let split = Split::everything(analysed);
-    let tuned = tune(&material, procedure, &split, "final", Reach::WholeRange, work)?;
+    let tuned = tune(
+        &material,
+        procedure,
+        &split,
+        "final",
+        Reach::WholeRange,
+        work,
+    )?;
     let predicted = tuned.fit.predict(&material, analysed);
-    let fitted = predicted.column(tuned.strength_at).iter().copied().collect();
+    let fitted = predicted
+        .column(tuned.strength_at)
+        .iter()
+        .copied()
+        .collect();
     let PartFit { learnt, path } = tuned.fit;
     Ok((
         FinalFit {

@@ -48,9 +48,22 @@ const QUANTILE: f64 = 1.959_963_984_540_054;
 
 /// Gathers the outer fits over the analysed samples `rows`.
 #[must_use]
-pub fn performance(held_out: &HeldOut, data: &Dataset, rows: &[usize], observed: &[f64]) -> Performance {
-    let n_repeats = held_out.fits.iter().map(|fit| fit.repeat + 1).max().unwrap_or(0);
-    let place = |row: usize| rows.binary_search(&row).expect("held-out rows are analysed");
+pub fn performance(
+    held_out: &HeldOut,
+    data: &Dataset,
+    rows: &[usize],
+    observed: &[f64],
+) -> Performance {
+    let n_repeats = held_out
+        .fits
+        .iter()
+        .map(|fit| fit.repeat + 1)
+        .max()
+        .unwrap_or(0);
+    let place = |row: usize| {
+        rows.binary_search(&row)
+            .expect("held-out rows are analysed")
+    };
     let outcome: Vec<f64> = rows.iter().map(|&row| observed[row]).collect();
     let mut predicted = vec![0.0; rows.len()];
     let mut repeats = Vec::with_capacity(n_repeats);
@@ -101,7 +114,9 @@ pub fn errors_by_unit(
         baseline: vec![0.0; units.len()],
     };
     for (at, &row) in rows.iter().enumerate() {
-        let unit = units.binary_search(&data.units[row]).expect("every row has a unit");
+        let unit = units
+            .binary_search(&data.units[row])
+            .expect("every row has a unit");
         errors.sizes[unit] += 1;
         errors.model[unit] += model[at];
         errors.baseline[unit] += baseline[at];
@@ -122,7 +137,11 @@ pub fn interval(sums: &[f64], sizes: &[usize]) -> Interval {
         .zip(sizes)
         .map(|(sum, &size)| (sum - value * size as f64).powi(2))
         .sum();
-    let standard_error = if m > 1.0 { (square * m / (m - 1.0)).sqrt() / n } else { f64::NAN };
+    let standard_error = if m > 1.0 {
+        (square * m / (m - 1.0)).sqrt() / n
+    } else {
+        f64::NAN
+    };
     Interval {
         value,
         standard_error,
@@ -176,8 +195,16 @@ impl Measures {
 /// The mean of each measure over the repeats in which it is defined.
 fn mean_of(repeats: &[Measures]) -> Measures {
     let mean = |get: fn(&Measures) -> f64| {
-        let known: Vec<f64> = repeats.iter().map(get).filter(|value| value.is_finite()).collect();
-        if known.is_empty() { f64::NAN } else { known.iter().sum::<f64>() / known.len() as f64 }
+        let known: Vec<f64> = repeats
+            .iter()
+            .map(get)
+            .filter(|value| value.is_finite())
+            .collect();
+        if known.is_empty() {
+            f64::NAN
+        } else {
+            known.iter().sum::<f64>() / known.len() as f64
+        }
     };
     Measures {
         rmse: mean(|m| m.rmse),

@@ -24,9 +24,7 @@ pub fn numeric_procedure<'a>(settings: &Fit, prepared: &'a Prepared) -> Procedur
                     Rule::LowestError => choose::Rule::LowestError,
                     Rule::OneStandardError => choose::Rule::OneStandardError,
                     Rule::GeneralisedCrossValidation => choose::Rule::GeneralisedCrossValidation,
-                    Rule::ExtendedBic { gamma } => {
-                        choose::Rule::ExtendedBic { gamma: gamma.get() }
-                    }
+                    Rule::ExtendedBic { gamma } => choose::Rule::ExtendedBic { gamma: gamma.get() },
                 },
                 count: range.count as usize,
                 ratio: range.ratio.map(crate::base::real::Real::get),

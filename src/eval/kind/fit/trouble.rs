@@ -23,7 +23,9 @@ pub fn halted(halt: Halt, prepared: &Prepared, settings: &Fit) -> Ended {
         ProcedureError::Step { step, error } => {
             step_problem(&prepared.steps[step], step, &error, &prepared.data).into()
         }
-        ProcedureError::Plan { level, error } => plan_failure(level, &error, prepared, settings).into(),
+        ProcedureError::Plan { level, error } => {
+            plan_failure(level, &error, prepared, settings).into()
+        }
         ProcedureError::Missing { row, column, count } => Problem::new(
             "values-missing",
             format!(
@@ -106,7 +108,9 @@ fn plan_failure(level: Level, error: &PlanError, prepared: &Prepared, settings: 
         Level::Outer => "The outer parts cannot be drawn",
     };
     let why = match error {
-        PlanError::TooFewParts { parts, .. } => format!("{parts} parts are asked for, and at least 2 are needed"),
+        PlanError::TooFewParts { parts, .. } => {
+            format!("{parts} parts are asked for, and at least 2 are needed")
+        }
         PlanError::NoRepeats => "0 repeats are asked for, and at least 1 is needed".to_owned(),
         PlanError::TooFewUnits { units, parts } => format!(
             "{parts} parts are asked for, but there are only {units} independent samples ({word})"
@@ -121,14 +125,17 @@ fn plan_failure(level: Level, error: &PlanError, prepared: &Prepared, settings: 
             format!("{parts} parts are asked for, but only {batches} batches can be told apart")
         }
         PlanError::OneStratum { .. } => "all samples are of one class".to_owned(),
-        PlanError::RareStratum { units, parts, .. } => format!(
-            "a class has only {units} independent samples for {parts} parts"
-        ),
+        PlanError::RareStratum { units, parts, .. } => {
+            format!("a class has only {units} independent samples for {parts} parts")
+        }
         PlanError::TrainingLacksStratum { units, .. } => format!(
             "a training part would lack a class that occurs in only {units} independent samples"
         ),
         PlanError::UnitDivided { unit } => {
-            format!("“{}” would lie on both sides", prepared.data.unit_names[*unit])
+            format!(
+                "“{}” would lie on both sides",
+                prepared.data.unit_names[*unit]
+            )
         }
     };
     let mut problem = Problem::new("plan-not-feasible", format!("{what}: {why}."));

@@ -68,31 +68,37 @@ fn read(source: &Source<'_>, table: &FactTable, row: usize) -> Paragraph {
 }
 
 fn joined(source: &Source<'_>, table: &FactTable, row: usize) -> Paragraph {
-    let entry = |paragraph: Paragraph, column: &str| {
-        paragraph.entry(source.cell, "join report", table, row, column)
-    };
-    let said = entry(Paragraph::of("“"), "table");
-    let said = entry(said.text("” was joined on “"), "key");
-    let said = entry(said.text("”: "), "matched");
-    let said = entry(said.text(" samples found their row, "), "only left");
-    let said = entry(said.text(" did not, "), "only right");
-    let said = entry(
-        said.text(" rows of the joined table belonged to no sample, and "),
-        "repeated",
-    );
-    said.text(" names occurred in it more than once.")
+    let mut said = Paragraph::new();
+    for (before, column) in [
+        ("“", "table"),
+        ("” was joined on “", "key"),
+        ("” (samples that found their row: ", "matched"),
+        ("; samples that did not: ", "only left"),
+        ("; rows that belonged to no sample: ", "only right"),
+        ("; names that occurred in it more than once: ", "repeated"),
+    ] {
+        said = said
+            .text(before)
+            .entry(source.cell, "join report", table, row, column);
+    }
+    said.text(").")
 }
 
 fn flow(telling: &mut Telling, data: &Data, source: &Source<'_>) {
     let units = noun::unit(Some(data));
     let samples = noun::sample(Some(data));
-    telling.say(source.say(
-        &format!(
+    let read = if data.tables.len() > 1 {
+        format!(
             "Of {{samples read}} [{}|{}] read, {{samples joined}} remained after joining.",
             samples.one, samples.many
-        ),
-        &[],
-    ));
+        )
+    } else {
+        format!(
+            "{{samples read}} [{} was|{} were] read.",
+            samples.one, samples.many
+        )
+    };
+    telling.say(source.say(&read, &[]));
     if source.is_above_zero("samples excluded") {
         telling.say(source.say("{samples excluded} [was|were] excluded, with reasons.", &[]));
         acts(telling, source, "exclusions", "Excluded were");
@@ -110,11 +116,16 @@ fn flow(telling: &mut Telling, data: &Data, source: &Source<'_>) {
         acts(telling, source, "corrections", "Corrected were");
     }
     if source.is_above_zero("sealed samples") {
+        let of_units = if data.unit.is_some() {
+            format!(" of {{sealed units}} [{}|{}]", units.one, units.many)
+        } else {
+            String::new()
+        };
         telling.say(source.say(
             &format!(
-                "{{sealed samples}} [{}|{}] of {{sealed units}} [{}|{}] were sealed for one last \
-                 check and took no part in what follows.",
-                samples.one, samples.many, units.one, units.many
+                "{{sealed samples}} [{}|{}]{of_units} stayed sealed for one last check and took no \
+                 part in what follows.",
+                samples.one, samples.many
             ),
             &[],
         ));

@@ -132,7 +132,7 @@ fn unit(sentence: Sentence, outcome: &Outcome, facts: Option<&Facts>) -> Sentenc
         .unit
         .as_deref()
         .or(found)
-        .unwrap_or("without a unit of its own");
+        .unwrap_or("no unit stated");
     sentence
         .text(", ")
         .word(Slot::Data(DataSlot::OutcomeUnit), text, Editor::Text)
@@ -287,10 +287,36 @@ fn acts(data: &Data) -> Sentence {
             counted(n_exclusions, "sample", "samples"),
             Editor::Acts,
         )
-        .text(format!(
-            " {} excluded, each with a reason.",
-            verb(n_exclusions)
-        ))
+        .text(format!(" {} excluded", verb(n_exclusions)))
+        .text(if n_corrections + n_exclusions > 0 {
+            ", each with a reason."
+        } else {
+            "."
+        })
+}
+
+/// The plain statement that both exports carry where more than a number may hang on the study.
+#[must_use]
+pub const fn caution(subject: Subject) -> Option<&'static str> {
+    match subject {
+        Subject::Ordinary => None,
+        Subject::Health => Some(
+            "The model was developed on the samples described and has not been evaluated \
+             elsewhere. It is not by itself a basis for decisions about people or animals. Local \
+             rules and licensed practice come first.",
+        ),
+        Subject::Safety => Some(
+            "The model was developed on the samples described and has not been evaluated \
+             elsewhere. It is not by itself a basis for decisions about plant, machines or food. \
+             Local rules and licensed practice come first.",
+        ),
+        Subject::Compliance => Some(
+            "The model was developed on the samples described and has not been evaluated \
+             elsewhere. What it is worth holds for the material, range and instrument described; \
+             the procedure or authority in charge decides whether it may replace the reference \
+             method.",
+        ),
+    }
 }
 
 fn subject(subject: Subject) -> Sentence {

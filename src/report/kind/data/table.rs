@@ -64,10 +64,9 @@ pub fn read(data: &Data) -> Sentence {
             sentence = named(sentence, data);
         }
         if let Some(join) = &table.join {
-            sentence =
-                sentence
-                    .text(" on ")
-                    .column(slot(TableSlot::JoinLeft), Some(&join.left), "");
+            sentence = sentence
+                .text(if table.is_workbook() { ", on " } else { " on " })
+                .column(slot(TableSlot::JoinLeft), Some(&join.left), "");
         }
     }
     if data.tables.is_empty() {

@@ -109,7 +109,7 @@ fn model(telling: &mut Telling, fit: &Fit, source: &Source<'_>, chain: &Chain<'_
                  which it arrived; the outcome was not scaled.",
             ),
         }
-        .text(" Coefficients are reported on the scale of the predictors as they entered."),
+        .text(" Coefficients are reported on the scale that the predictors had before."),
     );
     telling.end();
 }
@@ -304,7 +304,7 @@ fn performance(telling: &mut Telling, source: &Source<'_>, unit: &Noun) {
     if source.has("nested rmse low") && source.has("nested rmse high") {
         telling.say(source.say(
             &format!(
-                "The interval for the root mean squared error, over {}, runs from {{nested rmse \
+                "The ⟨95 %⟩ interval for the root mean squared error, over {}, runs from {{nested rmse \
                  low}} to {{nested rmse high}}",
                 unit.many
             ),
@@ -316,7 +316,7 @@ fn performance(telling: &mut Telling, source: &Source<'_>, unit: &Noun) {
             Paragraph::new()
         })
         .text(
-            "; it describes the procedure on samples of this number, not the final fitted model \
+            "; it describes the procedure on studies of this size, not the final fitted model \
              itself.",
         ));
     }

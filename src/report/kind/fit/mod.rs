@@ -102,6 +102,7 @@ pub fn sentences(context: &Context<'_>, fit: &Fit) -> Vec<Sentence> {
 
 fn model(context: &Context<'_>, fit: &Fit, outcome: &str) -> Sentence {
     let slot = Slot::Fit(FitSlot::Penalty);
+    let mut lasso_shares = None;
     let sentence = match &fit.penalty {
         Penalty::Ridge => {
             Sentence::new()
@@ -113,25 +114,27 @@ fn model(context: &Context<'_>, fit: &Fit, outcome: &str) -> Sentence {
             .choice(slot, "lasso", &PENALTIES),
         Penalty::ElasticNet { shares } => {
             let texts: Vec<String> = shares.iter().map(|share| word::real(*share)).collect();
-            let before = if shares.len() == 1 {
-                " with the lasso share "
-            } else {
-                " with the best of the lasso shares "
-            };
+            lasso_shares = Some((shares.len(), noun::list(&texts)));
             Sentence::new()
                 .text("Fit an ")
                 .choice(slot, "elastic net", &PENALTIES)
-                .text(before)
-                .word(Slot::Fit(FitSlot::Shares), noun::list(&texts), Editor::List)
         }
     };
+    let sentence = sentence.text(format!(" of {outcome} on ")).cell(
+        Slot::Fit(FitSlot::Input),
+        word::cell(context, fit.input, "samples still to be chosen"),
+        &word::SAMPLES,
+    );
+    let Some((count, texts)) = lasso_shares else {
+        return sentence.text(".");
+    };
     sentence
-        .text(format!(" of {outcome} on "))
-        .cell(
-            Slot::Fit(FitSlot::Input),
-            word::cell(context, fit.input, "samples still to be chosen"),
-            &word::SAMPLES,
-        )
+        .text(if count == 1 {
+            ", with the lasso share "
+        } else {
+            ", with the best of the lasso shares "
+        })
+        .word(Slot::Fit(FitSlot::Shares), texts, Editor::List)
         .text(".")
 }
 

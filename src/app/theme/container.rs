@@ -91,3 +91,12 @@ pub fn hairline(theme: &Theme) -> rule::Style {
         snap: true,
     }
 }
+
+/// The bar beside a quotation.
+#[must_use]
+pub fn rule_like(theme: &Theme) -> container::Style {
+    container::Style {
+        background: Some(Background::Color(theme::colors(theme).hairline)),
+        ..container::Style::default()
+    }
+}

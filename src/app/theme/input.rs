@@ -68,3 +68,12 @@ pub fn scroller(theme: &Theme, status: scrollable::Status) -> scrollable::Style 
     style.horizontal_rail = rail;
     style
 }
+
+/// A narrow bar for such a list.
+#[must_use]
+pub fn narrow() -> scrollable::Direction {
+    let bar = scrollable::Scrollbar::new()
+        .width(space::TIGHT + space::AIR)
+        .scroller_width(space::TIGHT + space::AIR);
+    scrollable::Direction::Vertical(bar)
+}

@@ -508,12 +508,12 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for List<'a, M> {
                 shell.invalidate_layout();
                 shell.request_redraw();
             }
-            Event::Window(window::Event::RedrawRequested(_)) => {
-                if tree.state.downcast_ref::<State>().reveals {
-                    self.reveal(tree, layout, renderer);
-                    shell.invalidate_layout();
-                    shell.request_redraw();
-                }
+            Event::Window(window::Event::RedrawRequested(_))
+                if tree.state.downcast_ref::<State>().reveals =>
+            {
+                self.reveal(tree, layout, renderer);
+                shell.invalidate_layout();
+                shell.request_redraw();
             }
             _ => {}
         }

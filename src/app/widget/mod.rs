@@ -2,6 +2,7 @@
 
 pub mod focus;
 pub mod grid;
+pub mod inert;
 pub mod list;
 pub mod picture;
 pub mod press;

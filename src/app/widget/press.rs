@@ -169,11 +169,11 @@ impl<'a, M: Clone + 'a> Widget<M, iced::Theme, iced::Renderer> for Press<'a, M> 
                 }
             }
             Event::Mouse(mouse::Event::ButtonReleased(mouse::Button::Left))
-            | Event::Touch(touch::Event::FingerLifted { .. }) => {
-                if std::mem::take(&mut state.is_pressed) && is_over {
-                    shell.publish(on_press.clone());
-                    shell.capture_event();
-                }
+            | Event::Touch(touch::Event::FingerLifted { .. })
+                if std::mem::take(&mut state.is_pressed) && is_over =>
+            {
+                shell.publish(on_press.clone());
+                shell.capture_event();
             }
             Event::Keyboard(keyboard::Event::KeyPressed { key, modifiers, .. })
                 if state.focus.0

@@ -30,6 +30,8 @@ pub enum Role {
     Plain,
     /// Words that stand out.
     Strong,
+    /// Words that are stressed.
+    Emphasis,
     /// Words that can be edited.
     Editable,
     /// Words that are being edited.
@@ -38,6 +40,8 @@ pub enum Role {
     Fact,
     /// A fact that does not exist.
     Missing,
+    /// A fact that is still to come.
+    Pending,
 }
 
 /// A piece of a sentence.
@@ -143,10 +147,11 @@ impl<'a, M> Sentence<'a, M> {
     fn color(&self, role: Role) -> Color {
         let colors = self.mode.colors();
         let color = match role {
-            Role::Plain | Role::Strong | Role::Fact => colors.ink,
+            Role::Plain | Role::Strong | Role::Emphasis | Role::Fact => colors.ink,
             Role::Editable | Role::Open if self.on_press.is_some() => colors.accent,
             Role::Editable | Role::Open => colors.ink,
             Role::Missing => colors.attention,
+            Role::Pending => colors.quiet,
         };
         match self.force {
             Force::Current => color,
@@ -169,9 +174,13 @@ impl<'a, M> Sentence<'a, M> {
             .map(|piece| {
                 let font = match piece.role {
                     Role::Strong => self.setting.strong(),
-                    Role::Plain | Role::Editable | Role::Open | Role::Fact | Role::Missing => {
-                        self.setting.font()
-                    }
+                    Role::Emphasis => text::ITALIC,
+                    Role::Plain
+                    | Role::Editable
+                    | Role::Open
+                    | Role::Fact
+                    | Role::Missing
+                    | Role::Pending => self.setting.font(),
                 };
                 Span::new(piece.text.as_str())
                     .font(font)
@@ -374,10 +383,12 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for Sentence<'a, M> {
                 _ if is_hovered => Some(colors.hover),
                 Role::Plain
                 | Role::Strong
+                | Role::Emphasis
                 | Role::Editable
                 | Role::Open
                 | Role::Fact
-                | Role::Missing => None,
+                | Role::Missing
+                | Role::Pending => None,
             };
             let is_focused = state.focuses.get(at).is_some_and(|focus| focus.0);
             if ground.is_none() && !is_focused {

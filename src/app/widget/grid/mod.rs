@@ -424,7 +424,7 @@ impl<'a, M> Grid<'a, M> {
                 let share = rows / self.source.n_rows().max(1) as f32;
                 let length = (view.body.height * share).max(space::GAP);
                 let at = state.first.row as f32 / last.row.max(1) as f32;
-                (last.row > 0).then(|| Rectangle {
+                (last.row > 0).then_some(Rectangle {
                     x: view.body.x + view.body.width + space::AIR,
                     y: view.body.y + at * (view.body.height - length),
                     width: space::TIGHT,
@@ -435,7 +435,7 @@ impl<'a, M> Grid<'a, M> {
                 let all = state.starts.last().copied().unwrap_or(1.0).max(1.0);
                 let length = (view.body.width * view.body.width / all).max(space::GAP);
                 let at = state.first.column as f32 / last.column.max(1) as f32;
-                (last.column > 0).then(|| Rectangle {
+                (last.column > 0).then_some(Rectangle {
                     x: view.body.x + at * (view.body.width - length),
                     y: view.body.y + view.body.height + space::AIR,
                     width: length,

@@ -28,7 +28,7 @@ use crate::app::screen::start::{self, Start};
 use crate::app::screen::study::{self, StudyScreen};
 use crate::app::screen::welcome::{self, Welcome};
 use crate::app::session::Following;
-use crate::app::theme::{Mode, space};
+use crate::app::theme::Mode;
 use crate::app::widget::Element;
 use crate::app::widget::inert::Inert;
 use crate::base::problem::Problem;
@@ -121,6 +121,8 @@ pub struct App {
     scale: f32,
     following: Following,
     preferences: Preferences,
+    /// Where the preferences are kept; nowhere in tests.
+    folder: Option<PathBuf>,
     rescued: Vec<Rescued>,
     /// What is done once the study has been saved.
     then: Then,
@@ -133,33 +135,40 @@ pub struct App {
 impl App {
     /// The window's first state, on a study if one is named.
     pub fn new(study: Option<PathBuf>) -> (Self, Task<Message>) {
-        let preferences = Preferences::folder_of_user()
-            .map_or_else(Preferences::default, |folder| Preferences::load(&folder));
-        let mode = match preferences.theme {
-            crate::store::preferences::Theme::Dark => Mode::Dark,
-            crate::store::preferences::Theme::Light | crate::store::preferences::Theme::System => {
-                Mode::Light
-            }
-        };
-        let mut app = Self {
-            screen: Screen::Welcome(Welcome::default()),
-            dialog: None,
-            mode,
-            scale: preferences.text_scale as f32 / 100.0,
-            following: Following::AsIEdit,
-            preferences,
-            rescued: files::left_behind(),
-            then: Then::Stay,
-            size: FIRST,
-            window: None,
-            kept: 0,
-        };
+        let folder = Preferences::folder_of_user();
+        let preferences = folder
+            .as_ref()
+            .map_or_else(Preferences::default, |folder| Preferences::load(folder));
+        let mut app = Self::with(preferences, folder, files::left_behind());
         let welcome = app.show_welcome();
         let task = match study {
             Some(path) => files::open(path).map(Message::Opened),
             None => welcome,
         };
         (app, Task::batch([task, beat()]))
+    }
+
+    /// The window of a user with these preferences.
+    fn with(preferences: Preferences, folder: Option<PathBuf>, rescued: Vec<Rescued>) -> Self {
+        let mode = match preferences.theme {
+            crate::store::preferences::Theme::Dark => Mode::Dark,
+            crate::store::preferences::Theme::Light
+            | crate::store::preferences::Theme::System => Mode::Light,
+        };
+        Self {
+            screen: Screen::Welcome(Welcome::default()),
+            dialog: None,
+            mode,
+            scale: preferences.text_scale as f32 / 100.0,
+            following: Following::AsIEdit,
+            preferences,
+            folder,
+            rescued,
+            then: Then::Stay,
+            size: FIRST,
+            window: None,
+            kept: 0,
+        }
     }
 
     /// The title of the window.
@@ -277,6 +286,3 @@ pub fn open(study: Option<PathBuf>) -> Result<(), Problem> {
             .details(error.to_string())
     })
 }
-
-/// The least width at which the page has a margin, for tests.
-pub const FOLD: f32 = space::FOLD;

@@ -13,7 +13,7 @@ use crate::app::{App, Dialog, Message, Screen, Then, beat};
 use crate::base::problem::Problem;
 use crate::export;
 use crate::report::Context;
-use crate::store::preferences::{Preferences, Theme};
+use crate::store::preferences::Theme;
 use crate::study::Study;
 use iced::widget::operation;
 use iced::{Task, window};
@@ -175,9 +175,9 @@ impl App {
     }
 
     fn save_preferences(&self) {
-        if let Some(folder) = Preferences::folder_of_user() {
+        if let Some(folder) = &self.folder {
             // Preferences that cannot be written cost only themselves.
-            let _ = self.preferences.save(&folder);
+            let _ = self.preferences.save(folder);
         }
     }
 

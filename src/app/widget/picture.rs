@@ -100,33 +100,17 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for Shown<'a, M> {
         tree::State::new(State::default())
     }
 
-    fn diff(&self, tree: &mut Tree) {
-        let state = tree.state.downcast_mut::<State>();
-        if state.made_of != Some((self.hash, self.mode)) {
-            state.marks.clear();
-            // One more than runs: the last is for the turned words.
-            let n_caches = runs(&self.picture.marks).len() + 1;
-            state.marks.resize_with(n_caches, canvas::Cache::new);
-            state.highlight.clear();
-            state.hovered = None;
-            state.made_of = Some((self.hash, self.mode));
-        }
-        if state.highlighted != self.highlight {
-            state.highlight.clear();
-            state.highlighted.clone_from(&self.highlight);
-        }
-    }
-
     fn size(&self) -> Size<Length> {
         Size::new(Length::Shrink, Length::Shrink)
     }
 
     fn layout(
         &mut self,
-        _tree: &mut Tree,
+        tree: &mut Tree,
         _renderer: &iced::Renderer,
         _limits: &layout::Limits,
     ) -> layout::Node {
+        self.follow(tree.state.downcast_mut::<State>());
         let size = self.picture.size;
         layout::Node::new(Size::new(size.width as f32, size.height as f32))
     }
@@ -269,7 +253,7 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for Shown<'a, M> {
         }
         for word in &self.picture.words {
             if word.turn == Turn::Level {
-                level(renderer, word, origin, shown, self.mode);
+                level(renderer, word, origin, self.mode);
             }
         }
         if self.is_paled {
@@ -321,6 +305,23 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for Shown<'a, M> {
 }
 
 impl<'a, M: 'a> Shown<'a, M> {
+    /// Forgets what was painted of another picture.
+    fn follow(&self, state: &mut State) {
+        if state.made_of != Some((self.hash, self.mode)) {
+            state.marks.clear();
+            // One more than runs: the last is for the turned words.
+            let n_caches = runs(&self.picture.marks).len() + 1;
+            state.marks.resize_with(n_caches, canvas::Cache::new);
+            state.highlight.clear();
+            state.hovered = None;
+            state.made_of = Some((self.hash, self.mode));
+        }
+        if state.highlighted != self.highlight {
+            state.highlight.clear();
+            state.highlighted.clone_from(&self.highlight);
+        }
+    }
+
     /// The upright line under the pointer while the strength is dragged, with its value.
     fn draw_drag(
         &self,
@@ -421,7 +422,7 @@ fn told(
     });
 }
 
-fn level(renderer: &mut iced::Renderer, word: &Word, origin: Vector, shown: Rectangle, mode: Mode) {
+fn level(renderer: &mut iced::Renderer, word: &Word, origin: Vector, mode: Mode) {
     let size = word.size as f32;
     let line = size * 1.5;
     let at = Point::new(
@@ -446,7 +447,8 @@ fn level(renderer: &mut iced::Renderer, word: &Word, origin: Vector, shown: Rect
         },
         at + origin,
         mode.colors().ink(word.ink),
-        shown,
+        // The toolkit clips a text by its layer only where this says that it reaches beyond.
+        region(word.rect().grown(1.0)) + origin,
     );
 }
 

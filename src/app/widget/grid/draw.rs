@@ -297,10 +297,11 @@ impl<'a, M> Grid<'a, M> {
         area: Rectangle,
     ) {
         let colors = theme::colors(theme);
+        // The names begin where the words above the grid do.
         let field = |y: f32| Rectangle {
-            x: names.x,
+            x: names.x - space::SMALL,
             y,
-            width: names.width,
+            width: names.width + space::SMALL,
             height: space::ROW,
         };
         set(
@@ -350,9 +351,12 @@ fn set(renderer: &mut iced::Renderer, set: &Set<'_>, area: Rectangle) {
         Align::End => set.field.x + set.field.width - space::SMALL,
     };
     let y = set.field.y + (set.field.height - text::SMALL_LINE) / 2.0;
-    let Some(clip) = set.field.intersection(&area.shrink(NUDGE)) else {
+    if !set.field.intersects(&area) {
         return;
-    };
+    }
+    // The toolkit clips a text by its layer only where its bounds reach beyond the layer; a field
+    // at the edge of the body does so by the nudge alone, and is taken in by as much.
+    let clip = set.field.shrink(2.0 * NUDGE);
     let is_ascii = words.is_ascii();
     renderer.fill_text(
         iced::advanced::Text {

@@ -307,14 +307,16 @@ impl Mapping {
         let air = 1e-9;
         let (first, last) = ((self.low - air).ceil(), (self.high + air).floor());
         let decades = (last - first + 1.0).max(0.0) as usize;
+        // One way of writing for the whole axis: plain numbers if none of them is long.
         let is_plain = self.low > -4.5 && self.high < 5.5;
+        let write = if is_plain { plain_ratio } else { power_ratio };
         let mut ticks = Vec::new();
         let mut push = |digit: f64, exponent: i32| {
             let even = digit.log10() + f64::from(exponent);
             if even >= self.low - air && even <= self.high + air {
                 ticks.push(Tick {
                     share: self.even_share(even).clamp(0.0, 1.0),
-                    text: ratio_text(digit, exponent, is_plain),
+                    text: write(digit, exponent),
                 });
             }
         };
@@ -364,18 +366,17 @@ impl Kind {
     }
 }
 
-fn ratio_text(digit: f64, exponent: i32, is_plain: bool) -> String {
-    if is_plain {
-        let places = (-exponent).clamp(0, 12) as u8;
-        number::text(digit * 10f64.powi(exponent), Precision::Decimals(places))
-    } else if digit == 1.0 {
-        number::power_of_ten(exponent)
+fn plain_ratio(digit: f64, exponent: i32) -> String {
+    let places = (-exponent).clamp(0, 12) as u8;
+    number::text(digit * 10f64.powi(exponent), Precision::Decimals(places))
+}
+
+fn power_ratio(digit: f64, exponent: i32) -> String {
+    let power = number::power_of_ten(exponent);
+    if digit == 1.0 {
+        power
     } else {
-        format!(
-            "{} × {}",
-            number::text(digit, Precision::Whole),
-            number::power_of_ten(exponent)
-        )
+        format!("{} × {power}", number::text(digit, Precision::Whole))
     }
 }
 

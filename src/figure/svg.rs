@@ -238,11 +238,12 @@ fn letters(word: &Word) -> String {
 }
 
 fn font(face: Face) -> String {
-    let mut font = format!(
-        "font-family=\"{}, {}\"",
-        face.family(),
-        Face::Symbols.family()
-    );
+    // The generic family is for readers' programs on machines that lack the font.
+    let generic = match face {
+        Face::Sans | Face::SansStrong | Face::Symbols => "sans-serif",
+        Face::Serif | Face::SerifItalic | Face::SerifStrong => "serif",
+    };
+    let mut font = format!("font-family=\"{}, {generic}\"", face.family());
     if face.weight() != 400 {
         let _ = write!(font, " font-weight=\"{}\"", face.weight());
     }

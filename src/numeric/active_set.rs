@@ -56,14 +56,15 @@ pub(crate) struct ActiveSet {
 
 impl ActiveSet {
     /// Solves the problem from the present coefficients. `floor` is the size of a correlation that
-    /// is rounding only.
+    /// is rounding only; `prepare` fills a slot's HX and square before the slot becomes active.
     ///
     /// # Errors
     /// [`Cancelled`] when the work was called off.
     pub(crate) fn solve(
         &mut self,
-        problem: &Quadratic,
+        problem: &mut Quadratic,
         floor: f64,
+        prepare: &mut dyn FnMut(&mut Quadratic, usize),
         work: &Work<'_>,
     ) -> Result<Ended, Cancelled> {
         self.correlation.resize(problem.n_slots(), f64::INFINITY);
@@ -97,6 +98,7 @@ impl ActiveSet {
             newest.clear();
             for slot in entrants.into_iter().take(limit) {
                 newest.push(slot);
+                prepare(problem, slot);
                 if !self.enter(problem, slot) {
                     barred.push(slot);
                 }
@@ -297,6 +299,27 @@ impl ActiveSet {
         let _ = self.signs.remove(at);
         let _ = self.b.remove(at);
         self.events += 1;
+    }
+
+    /// The degrees of freedom of the active coefficients: the trace of G(G + ridge)⁻¹ for the G of
+    /// the problem that was solved last.
+    pub(crate) fn effective(&self, problem: &Quadratic) -> f64 {
+        let k = self.members.len();
+        let mut lost = 0.0;
+        for (at, &slot) in self.members.iter().enumerate() {
+            let mut unit = vec![0.0; k];
+            unit[at] = 1.0;
+            self.factor.solve_transposed(&mut unit);
+            lost += problem.ridge[slot] * lanes::dot(&unit, &unit);
+        }
+        k as f64 - lost
+    }
+
+    /// Says that a slot has been filled anew, so that nothing is known of it.
+    pub(crate) fn expect_new(&mut self, slot: usize) {
+        if let Some(c) = self.correlation.get_mut(slot) {
+            *c = f64::INFINITY;
+        }
     }
 
     /// The active slots with their coefficients.

@@ -154,7 +154,7 @@ mod tests {
             let x: Vec<f64> = (0..length * count).map(|_| dice.normal()).collect();
             let target: Vec<f64> = (0..length).map(|_| dice.normal()).collect();
             let column = |k: usize| &x[k * length..(k + 1) * length];
-            let problem = Quadratic {
+            let mut problem = Quadratic {
                 length,
                 along: (0..count).map(|k| lanes::dot(column(k), &target)).collect(),
                 square: (0..count)
@@ -170,7 +170,10 @@ mod tests {
             };
             let work = Work::unattended();
             let mut search = ActiveSet::default();
-            assert_eq!(search.solve(&problem, 1e-14, &work), Ok(Ended::Settled));
+            assert_eq!(
+                search.solve(&mut problem, 1e-14, &mut |_, _| (), &work),
+                Ok(Ended::Settled)
+            );
             let mut b = vec![0.0; count];
             assert_eq!(descend(&problem, &mut b, 1e-12, &work), Ok(true));
             let mut exact = vec![0.0; count];

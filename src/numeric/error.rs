@@ -34,6 +34,8 @@ pub enum FitError {
     Strength(f64),
     /// Only one class has training rows, so nothing can be told apart.
     OneClass,
+    /// A class has no training rows.
+    EmptyClass(usize),
     /// No training row has an event.
     NoEvents,
     /// All training counts are zero.
@@ -75,8 +77,6 @@ pub enum Ingredient {
 /// What has no method here, for [`FitError`].
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub enum Unsupported {
-    /// The kind of outcome.
-    Outcome,
     /// Sign constraints with a lasso share of 0.
     SignsInRidge,
     /// Sign constraints with classes.

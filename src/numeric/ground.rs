@@ -28,6 +28,8 @@ pub(crate) struct Ground<'a> {
     pub(crate) share: Vec<f64>,
     /// √v, for the m rows.
     pub(crate) root: Vec<f64>,
+    /// The sum of the sample weights.
+    pub(crate) total: f64,
     /// The mean of each predictor on the training rows.
     pub(crate) mean: Vec<f64>,
     /// 1 over the scale of each predictor; 0 for what cannot enter the fit.
@@ -83,6 +85,7 @@ impl<'a> Ground<'a> {
             rows,
             share,
             root,
+            total,
             mean: Vec::new(),
             inverse_scale: Vec::new(),
             factors: task.factors,
@@ -198,6 +201,18 @@ impl<'a> Ground<'a> {
                 #[inline(always)]
                 || lanes::shifted_dot_body(column, mean, g),
             )
+    }
+
+    /// Spreads values of the training rows over all n samples, less v times their sum. As the
+    /// predictors are centred under v, that changes no product with them.
+    pub(crate) fn spread_centered(&self, mut values: Vec<f64>) -> Vec<f64> {
+        let sum: f64 = values.iter().sum();
+        for (value, v) in values.iter_mut().zip(&self.share) {
+            *value -= sum * v;
+        }
+        let mut all = Vec::new();
+        self.spread(&values, &mut all);
+        all
     }
 
     /// Spreads values of the training rows over all n samples, with zeros on the others.

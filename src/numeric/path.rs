@@ -4,6 +4,7 @@ use crate::base::work::Work;
 use crate::numeric::error::{FitError, Ingredient, Unsupported};
 use crate::numeric::freedom::Freedom;
 use crate::numeric::gaussian;
+use crate::numeric::glm;
 use crate::numeric::ground::{Ground, Penalised};
 use crate::numeric::matrix::Matrix;
 use crate::numeric::penalty::Sign;
@@ -84,7 +85,8 @@ impl Info {
 /// Coefficients in the units of predictors and covariates.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Coefficients {
-    /// The intercept. Zero for times, which have none.
+    /// The intercept. For times, which have none, it makes the linear predictor zero at the means
+    /// of the training rows.
     pub intercept: f64,
     /// One for each covariate.
     pub covariates: Vec<f64>,
@@ -96,10 +98,10 @@ pub struct Coefficients {
 #[derive(Clone, Debug)]
 pub(crate) struct Linear {
     /// At the means of the predictors, and zero covariates.
-    intercept: f64,
-    covariates: Vec<f64>,
+    pub(crate) intercept: f64,
+    pub(crate) covariates: Vec<f64>,
     /// Not zero, rising.
-    predictors: Vec<(usize, f64)>,
+    pub(crate) predictors: Vec<(usize, f64)>,
 }
 
 /// One fit of a path.
@@ -118,14 +120,19 @@ impl Point {
         covariates: Vec<f64>,
         predictors: Vec<(usize, f64)>,
     ) -> Self {
-        Self {
+        Self::several(
             info,
-            linear: vec![Linear {
+            vec![Linear {
                 intercept,
                 covariates,
                 predictors,
             }],
-        }
+        )
+    }
+
+    /// A fit with one linear predictor for each class.
+    pub(crate) fn several(info: Info, linear: Vec<Linear>) -> Self {
+        Self { info, linear }
     }
 }
 
@@ -184,7 +191,7 @@ pub struct Path {
 /// and covariate coefficients a carry no penalty; z are the predictors in the task's scaling.
 ///
 /// A share of 0 is ridge: one decomposition gives every strength (see [`ridge`]). Otherwise see
-/// [`gaussian`](crate::numeric::gaussian). Strengths may come in any order and the fits are returned
+/// [`gaussian`]. Strengths may come in any order and the fits are returned
 /// in that order. At strength 0 nothing is penalised; predictors that depend on earlier ones get 0.
 ///
 /// # Errors
@@ -220,8 +227,46 @@ pub fn fit_path(
         Response::YesNo(_)
         | Response::Classes { .. }
         | Response::Count { .. }
-        | Response::Time { .. } => Err(FitError::Unsupported(Unsupported::Outcome).into()),
+        | Response::Time { .. } => other(task, share, strengths, params, work),
     }
+}
+
+/// Fits of outcomes that are not measured quantities.
+fn other(
+    task: &Task<'_>,
+    share: f64,
+    strengths: &[f64],
+    params: &Params,
+    work: &Work<'_>,
+) -> Result<Path, Stop> {
+    let ground = Ground::new(task, Penalised::ByWeight, work)?;
+    let (order, falling) = falling(strengths);
+    let n_positive = falling.partition_point(|&strength| strength > 0.0);
+    let positive = &falling[..n_positive];
+    let (mut points, mut dual) = (Vec::new(), None);
+    if share == 0.0 && n_positive > 0 {
+        let fits = glm::ridge(&ground, task.response, positive, params, work)?;
+        points = fits.points;
+        dual = fits.dual;
+    } else if n_positive > 0 {
+        points = glm::walk(&ground, task.response, share, positive, params, work)?;
+    }
+    if n_positive < falling.len() {
+        let ground = Ground::new(task, Penalised::None, work)?;
+        let point = glm::unpenalised(&ground, task.response, work)?;
+        points.resize(falling.len(), point);
+    }
+    let n_linear = points.first().map_or(1, |point| point.linear.len());
+    Ok(Path {
+        predictors: task.predictors.clone(),
+        strengths: strengths.to_vec(),
+        scales: Scales::of(&ground, &points),
+        points: in_order_of(points, &order),
+        dual: dual.map(|dual| dual.reordered(&order, n_linear)),
+        shortcuts: None,
+        freedom: None,
+        n_linear,
+    })
 }
 
 fn measured(
@@ -347,7 +392,7 @@ impl Path {
         if let Some(dual) = &self.dual {
             linear
                 .predictors
-                .extend(dual.standardised(&self.predictors, at));
+                .extend(dual.standardised(&self.predictors, at * self.n_linear + class));
             linear.predictors.sort_by_key(|(j, _)| *j);
         }
         linear

@@ -68,6 +68,31 @@ impl Quadratic {
         lanes::subtract_columns(self.h_columns(), slots, b, out);
     }
 
+    /// For the correlations of the used slots: the largest over its threshold, at least 1, and
+    /// Σ excess²/(2 ridge).
+    pub(crate) fn infeasibility(&self, c: &[f64]) -> (f64, f64) {
+        let (mut worst, mut excess) = (1.0_f64, 0.0);
+        for (&slot, &c) in self.used.iter().zip(c) {
+            if let Some(over) = self.excess(slot, c)
+                && over > 0.0
+            {
+                worst = worst.max(c.abs() / self.lasso[slot]);
+                if self.ridge[slot] > 0.0 {
+                    excess += over * over / (2.0 * self.ridge[slot]);
+                }
+            }
+        }
+        (worst, excess)
+    }
+
+    /// The penalty of a solution.
+    pub(crate) fn penalty(&self, solution: &[(usize, f64)]) -> f64 {
+        solution
+            .iter()
+            .map(|&(slot, b)| self.lasso[slot] * b.abs() + 0.5 * self.ridge[slot] * b * b)
+            .sum()
+    }
+
     /// The excess of a slot's correlation c over what the penalty holds down, and the sign with
     /// which it would enter: `None` when its sign rule forbids that sign.
     pub(crate) fn excess(&self, slot: usize, c: f64) -> Option<f64> {

@@ -1,8 +1,9 @@
 //! The range of penalty strengths: from where the penalty empties the model, downwards.
 
 use crate::base::work::Work;
-use crate::numeric::error::{FitError, Stop, Unsupported};
+use crate::numeric::error::{FitError, Stop};
 use crate::numeric::gaussian::NOTHING_LEFT;
+use crate::numeric::glm::Null;
 use crate::numeric::ground::{Ground, Penalised};
 use crate::numeric::lanes;
 use crate::numeric::response::Response;
@@ -29,6 +30,9 @@ impl Default for RangeParams {
     }
 }
 
+/// A slope of a loss of size about 1 that is rounding only.
+const ROUNDING: f64 = 1e-14;
+
 /// No range goes below this share of the largest eigenvalue: in double precision there is nothing
 /// left to tell apart there.
 const LOWEST: f64 = 1e-10;
@@ -39,7 +43,8 @@ const LOWEST: f64 = 1e-10;
 /// no all-zero point. There the range starts at the sum of the eigenvalues of K = ZZ'/n, where the
 /// penalised predictors have less than one degree of freedom together, and ends at `ratio` times the
 /// smallest eigenvalue that is not zero, where nearly all of them are free; but never below 1e-10 of
-/// the largest.
+/// the largest. For other outcomes than measured ones both ends are multiplied by the
+/// curvature of the null model's loss.
 ///
 /// Gives an empty list when no predictor can enter.
 ///
@@ -74,13 +79,23 @@ fn ridge_ends(task: &Task<'_>, ratio: f64) -> Result<(f64, f64), FitError> {
     let spectrum = never_cancelled(Spectrum::new(&ground, &ground.basis(), &work))?;
     let top = spectrum.values.first().copied().unwrap_or(0.0);
     let sum: f64 = spectrum.values.iter().sum();
+    let curvature = match task.response {
+        Response::Measured(_) => 1.0,
+        Response::YesNo(_)
+        | Response::Classes { .. }
+        | Response::Count { .. }
+        | Response::Time { .. } => {
+            never_cancelled(Null::new(&ground, task.response, &work))?.curvature()
+        }
+    };
     let smallest = spectrum
         .values
         .iter()
         .copied()
         .filter(|d| *d > 1e-12 * top)
         .fold(top, f64::min);
-    Ok((sum, (ratio * smallest).max(LOWEST * top)))
+    let last = (ratio * smallest).max(LOWEST * top);
+    Ok((curvature * sum, curvature * last))
 }
 
 /// The smallest strength at which no penalised predictor is in the model:
@@ -121,7 +136,15 @@ pub fn all_zero_point(task: &Task<'_>, share: f64) -> Result<f64, FitError> {
         Response::YesNo(_)
         | Response::Classes { .. }
         | Response::Count { .. }
-        | Response::Time { .. } => Err(FitError::Unsupported(Unsupported::Outcome)),
+        | Response::Time { .. } => {
+            let null = never_cancelled(Null::new(&ground, task.response, &work))?;
+            let tops = null
+                .residuals(&ground)
+                .into_iter()
+                .map(|g| largest(&ground, &g));
+            let top = tops.fold(0.0, f64::max);
+            Ok(if top > ROUNDING { top / share } else { 0.0 })
+        }
     }
 }
 

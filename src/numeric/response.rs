@@ -1,6 +1,8 @@
 //! The outcome of all samples, and what a linear predictor says about it.
 
+use crate::numeric::cox::Cox;
 use crate::numeric::error::{FitError, Ingredient};
+use crate::numeric::loss::{Loss, entropy, log_one_plus_exp, logistic};
 use crate::numeric::samples::OutcomeValues;
 use crate::numeric::task::numbers;
 
@@ -154,4 +156,78 @@ impl Response {
             }
         }
     }
+}
+
+impl Response {
+    /// What linear predictors say of a sample (offset not included in them): the mean of a measured
+    /// outcome; the probability of yes; the probability of each class; the mean count, with the
+    /// sample's offset; for times the hazard relative to a linear predictor of zero.
+    #[must_use]
+    pub fn means(&self, sample: usize, eta: &[f64]) -> Vec<f64> {
+        match self {
+            Self::Measured(_) => eta.to_vec(),
+            Self::YesNo(_) => vec![logistic(eta[0])],
+            Self::Classes { .. } => {
+                let top = eta.iter().fold(f64::NEG_INFINITY, |top, eta| top.max(*eta));
+                let sizes: Vec<f64> = eta.iter().map(|eta| (eta - top).exp()).collect();
+                let sum: f64 = sizes.iter().sum();
+                sizes.iter().map(|size| size / sum).collect()
+            }
+            Self::Count { offset, .. } => {
+                let offset = offset.as_ref().map_or(0.0, |offset| offset[sample]);
+                vec![(eta[0] + offset).exp()]
+            }
+            Self::Time { .. } => vec![eta[0].exp()],
+        }
+    }
+
+    /// The deviance of one sample at its linear predictors: twice its loss above the smallest there
+    /// can be. For a measured outcome the squared error. `None` for times, whose loss is of all
+    /// samples together: see [`deviance_of_times`].
+    #[must_use]
+    pub fn deviance(&self, sample: usize, eta: &[f64]) -> Option<f64> {
+        match self {
+            Self::Measured(y) => Some((y[sample] - eta[0]) * (y[sample] - eta[0])),
+            Self::YesNo(yes) => {
+                let eta = if yes[sample] { -eta[0] } else { eta[0] };
+                Some(2.0 * log_one_plus_exp(eta))
+            }
+            Self::Classes { class, .. } => {
+                let top = eta.iter().fold(f64::NEG_INFINITY, |top, eta| top.max(*eta));
+                let sum: f64 = eta.iter().map(|eta| (eta - top).exp()).sum();
+                Some(2.0 * (top + sum.ln() - eta[class[sample]]))
+            }
+            Self::Count { count, offset } => {
+                let y = count[sample];
+                let zeta = eta[0] + offset.as_ref().map_or(0.0, |offset| offset[sample]);
+                Some(2.0 * (zeta.exp() - y * zeta - y + entropy(y)))
+            }
+            Self::Time { .. } => None,
+        }
+    }
+}
+
+/// Minus twice the log partial likelihood of some samples at their linear predictors, without a
+/// penalty and not divided by anything. `None` when the response is no time, or holds no event.
+#[must_use]
+pub fn deviance_of_times(response: &Response, rows: &[usize], eta: &[f64]) -> Option<f64> {
+    let Response::Time {
+        time,
+        event,
+        strata,
+        ties,
+    } = response
+    else {
+        return None;
+    };
+    let known: Vec<(f64, bool, usize)> = rows
+        .iter()
+        .map(|&row| (time[row], event[row], strata.as_ref().map_or(0, |s| s[row])))
+        .collect();
+    if known.iter().all(|(_, event, _)| !event) {
+        return None;
+    }
+    let m = rows.len() as f64;
+    let mut loss = Cox::new(&known, vec![1.0 / m; rows.len()], m, *ties);
+    Some(2.0 * m * loss.evaluate(eta))
 }

@@ -7,6 +7,10 @@ use crate::study::cell::CellId;
 
 /// A piece of an answer.
 #[derive(Clone, Debug)]
+#[expect(
+    clippy::large_enum_variant,
+    reason = "an answer has a few dozen pieces, and figures are most of what they hold"
+)]
 pub enum Block {
     /// A heading inside the cell.
     Heading(String),

@@ -265,7 +265,7 @@ pub fn data_facts(data: &Data) -> Facts {
             vec![
                 words("sample", &["W007-b", "W044-c"]),
                 words("reason", &["probe touched the rind"; 2]),
-                words("outcome seen", &["after", "after"]),
+                words("outcome seen", &["after the outcome was seen", "not said"]),
             ],
         );
     }
@@ -278,7 +278,7 @@ pub fn data_facts(data: &Data) -> Facts {
                 words("from", &["31.2"]),
                 words("to", &["3.12"]),
                 words("reason", &["decimal point lost"]),
-                words("outcome seen", &["before"]),
+                words("outcome seen", &["before the outcome was seen"]),
             ],
         );
     }
@@ -538,6 +538,7 @@ pub fn question_facts(ask: &Ask) -> Facts {
                         ("largest eigenvalue", 412.0),
                         ("smallest positive eigenvalue", 1.1e-6),
                         ("condition number", f64::INFINITY),
+                        ("penalty added", 11.1),
                         ("penalised condition number", 13_200.0),
                         ("effective degrees of freedom", 31.2),
                         ("participation ratio", 2.61),
@@ -678,8 +679,8 @@ fn ladder(seal: crate::study::settings::question::Seal) -> Facts {
                         "apparent",
                         "tuning",
                         "nested",
-                        "whole caves held out",
-                        "sealed wheels",
+                        "whole batches held out",
+                        "sealed set",
                     ],
                 ),
                 words(

@@ -5,7 +5,7 @@ use widefold::figure::shape::{
     histogram, ladder, learning, profile, reliability, residual, roc, spectrum, stand_ins,
     survival, trace,
 };
-use widefold::figure::{Figure, Meaning, Note, Tip};
+use widefold::figure::{Figure, Meaning, Note, Scale, Tip};
 
 use crate::sample::Dice;
 
@@ -349,6 +349,13 @@ fn groups(from: &mut Source) -> Figure {
         caption: from.caption(),
         names: from.name(),
         values: from.name(),
+        scale: [
+            Scale::Linear,
+            Scale::Log10,
+            Scale::Log10AndZero,
+            Scale::Percent,
+        ][from.count % 4]
+            .clone(),
         columns: vec![from.name()],
         rule: Some((from.number(), from.name())),
         groups,

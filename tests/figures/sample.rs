@@ -7,7 +7,7 @@ use widefold::figure::shape::{
     histogram, ladder, learning, profile, reliability, residual, roc, spectrum, stand_ins,
     survival, trace,
 };
-use widefold::figure::{Figure, Meaning, Note, Tip};
+use widefold::figure::{Figure, Meaning, Note, Scale, Tip};
 
 /// Every kind of figure, by the name of its snapshot.
 pub fn all() -> Vec<(&'static str, Figure)> {
@@ -22,6 +22,7 @@ pub fn all() -> Vec<(&'static str, Figure)> {
         ("profile", profile()),
         ("profile-sparse", sparse_profile()),
         ("distribution", distribution()),
+        ("distribution-of-strengths", strengths()),
         ("roc", roc()),
         ("confusion", confusion()),
         ("survival", survival()),
@@ -506,6 +507,7 @@ fn distribution() -> Figure {
         caption: Caption::titled("Nested error of each outer part"),
         names: "fit".to_owned(),
         values: "error, g/100 g".to_owned(),
+        scale: Scale::Linear,
         columns: vec!["mean".to_owned()],
         rule: Some((0.79, "mean only".to_owned())),
         groups: vec![
@@ -514,6 +516,32 @@ fn distribution() -> Figure {
             group("salt elastic net", 0.33, 0.042, "0.33"),
         ],
         more: "{} more".to_owned(),
+    }
+    .figure()
+}
+
+fn strengths() -> Figure {
+    let mut dice = Dice::new(37);
+    let mut group = |name: &str, middle: f64, spread: f64, words: &str| distribution::Group {
+        name: name.to_owned(),
+        values: (0..50)
+            .map(|_| middle * 10f64.powf(spread * dice.normal()))
+            .collect(),
+        middle: Some(middle),
+        cells: vec![words.to_owned()],
+        tip: Some(thing(name)),
+    };
+    distribution::Distributions {
+        caption: Caption::titled("How firmly is the strength chosen?"),
+        names: "rule".to_owned(),
+        values: "penalty strength λ, g/100 g".to_owned(),
+        scale: Scale::Log10,
+        columns: vec!["median".to_owned()],
+        groups: vec![
+            group("lowest error", 0.0312, 0.2, "0.0312"),
+            group("one standard error", 0.121, 0.12, "0.121"),
+        ],
+        ..distribution::Distributions::default()
     }
     .figure()
 }

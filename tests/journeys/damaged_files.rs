@@ -170,14 +170,13 @@ fn each_damage_that_leaves_a_study_is_told_and_the_rest_opens() {
     assert_eq!(remarks("cut.widefold", cut), ["archive-cut-off"]);
     let table = find(&good, b"sources/");
     let cut = &good[..table + 90];
-    assert_eq!(
-        remarks("cut.widefold", cut),
-        ["archive-cut-off", "table-damaged", "table-missing"]
-            .into_iter()
-            .filter(|code| remarks("cut.widefold", cut).contains(code))
-            .collect::<Vec<_>>()
-    );
-    assert!(remarks("cut.widefold", cut).len() > 1);
+    let mut codes = remarks("cut.widefold", cut);
+    codes.sort();
+    codes.dedup();
+    // The first table is cut through; those behind it are gone.
+    let one = ["archive-cut-off", "table-damaged"];
+    let both = ["archive-cut-off", "table-damaged", "table-missing"];
+    assert!(codes == one || codes == both, "{codes:?}");
     let opened = open("cut.widefold", cut).unwrap();
     assert_eq!(opened.study.cells().len(), n_cells);
 
@@ -228,7 +227,7 @@ fn each_damage_that_leaves_a_study_is_told_and_the_rest_opens() {
 
 #[test]
 fn each_slip_of_a_hand_is_told_with_its_place() {
-    let cases: [(&str, &str, &str); 16] = [
+    let cases: [(&str, &str, &str); 19] = [
         (r#"{"kind": "fitt"}"#, "unknown-kind", "“fitt”"),
         (r#"{}"#, "unknown-kind", "of which kind"),
         (r#"7"#, "unknown-kind", "of which kind"),
@@ -246,6 +245,21 @@ fn each_slip_of_a_hand_is_told_with_its_place() {
             r#"{"kind": "fit", "choose": {"inner": {"parts": 1e300}}}"#,
             "cell-not-read",
             "cells[0].choose.inner.parts",
+        ),
+        (
+            r#"{"kind": "fit", "choose": {"strengths": 4000000000}}"#,
+            "cell-not-read",
+            "1000",
+        ),
+        (
+            r#"{"kind": "fit", "strength": -2}"#,
+            "cell-not-read",
+            "0 or more",
+        ),
+        (
+            r#"{"kind": "prepare", "steps": [{"step": "savitzky-golay", "window": 4, "degree": 2, "derivative": 1}]}"#,
+            "cell-not-read",
+            "odd",
         ),
         (
             r#"{"kind": "fit", "strength": 1, "choose": {}}"#,

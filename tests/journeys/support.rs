@@ -66,12 +66,32 @@ impl Dice {
             let number = match self.below(4) {
                 0 => f64::from_bits(self.roll()),
                 1 => self.below(10) as f64,
-                _ => self.roll() as f64 / u64::MAX as f64,
+                _ => self.share(),
             };
             if let Some(real) = Real::new(number) {
                 return real;
             }
         }
+    }
+
+    /// A number between 0 and 1, with all its digits.
+    pub fn share(&mut self) -> f64 {
+        self.roll() as f64 / u64::MAX as f64
+    }
+
+    /// A number between two others.
+    pub fn between(&mut self, least: f64, most: f64) -> Real {
+        Real::new(least + self.share() * (most - least)).unwrap()
+    }
+
+    /// A positive number of any size, with all its digits.
+    pub fn size(&mut self) -> Real {
+        Real::new(self.real().get().abs()).unwrap()
+    }
+
+    /// A whole number between two others, both ends included.
+    pub fn count(&mut self, least: usize, most: usize) -> u32 {
+        (least + self.below(most - least + 1)) as u32
     }
 
     /// Words as people write them, the awkward ones included.
@@ -245,12 +265,12 @@ pub fn any_settings(
                     seal: dice.one_of(&[Seal::Closed, Seal::Opened]),
                 },
                 5 => Ask::ChosenAgain {
-                    pairs: dice.roll() as u32,
-                    threshold: dice.real(),
+                    pairs: dice.count(5, 5000),
+                    threshold: dice.between(0.51, 1.0),
                     seed: dice.roll(),
                 },
                 _ => Ask::StandIns {
-                    correlation: dice.real(),
+                    correlation: dice.between(0.1, 1.0),
                 },
             },
         }),
@@ -397,22 +417,28 @@ fn any_data(tables: &[TableSource], dice: &mut Dice) -> Data {
 fn any_step(dice: &mut Dice) -> Step {
     match dice.below(11) {
         0 => Step::Log {
-            offset: dice.real(),
+            offset: dice.size(),
         },
         1 => Step::StandardNormalVariate,
         2 => Step::SavitzkyGolay {
-            window: dice.roll() as u32,
-            degree: dice.roll() as u32,
-            derivative: dice.roll() as u32,
+            window: 2 * dice.count(5, 250) + 1,
+            degree: dice.count(2, 9),
+            derivative: dice.count(0, 2),
         },
         3 => Step::Detrend {
-            degree: dice.roll() as u32,
+            degree: dice.count(0, 9),
         },
         4 => Step::ScatterCorrection,
-        5 => Step::MissingShareFilter { most: dice.real() },
-        6 => Step::NearConstantFilter { least: dice.real() },
+        5 => Step::MissingShareFilter {
+            most: dice.between(0.0, 1.0),
+        },
+        6 => Step::NearConstantFilter {
+            least: dice.between(0.0, 1.0),
+        },
         7 => Step::MedianImputation,
-        8 => Step::BelowLimit { share: dice.real() },
+        8 => Step::BelowLimit {
+            share: dice.between(0.0, 1.0),
+        },
         9 => Step::Center,
         _ => Step::UnitVariance,
     }
@@ -427,8 +453,8 @@ fn any_fit(study: &Study, dice: &mut Dice) -> Fit {
             Scheme::LeaveOneUnitOut,
             Scheme::Blocks,
         ]),
-        parts: dice.roll() as u32,
-        repeats: dice.roll() as u32,
+        parts: dice.count(2, 1000),
+        repeats: dice.count(1, 1000),
     };
     Fit {
         input: any_link(study, dice),
@@ -436,22 +462,29 @@ fn any_fit(study: &Study, dice: &mut Dice) -> Fit {
             0 => Penalty::Ridge,
             1 => Penalty::Lasso,
             _ => Penalty::ElasticNet {
-                shares: dice.some(4, Dice::real),
+                shares: {
+                    let mut shares = dice.some(4, |dice| dice.between(0.001, 0.999));
+                    shares.push(Real::constant(0.5));
+                    shares.sort();
+                    shares
+                },
             },
         },
         scaling: dice.one_of(&[Scaling::UnitVariance, Scaling::AsPrepared]),
         strength: match dice.below(3) {
-            0 => Strength::ByHand(dice.real()),
+            0 => Strength::ByHand(dice.size()),
             _ => Strength::Chosen {
                 rule: match dice.below(4) {
                     0 => Rule::LowestError,
                     1 => Rule::OneStandardError,
                     2 => Rule::GeneralisedCrossValidation,
-                    _ => Rule::ExtendedBic { gamma: dice.real() },
+                    _ => Rule::ExtendedBic {
+                        gamma: dice.between(0.0, 1.0),
+                    },
                 },
                 range: PenaltyRange {
-                    count: dice.roll() as u32,
-                    ratio: dice.maybe(Dice::real),
+                    count: dice.count(2, 1000),
+                    ratio: dice.maybe(|dice| dice.between(1e-9, 0.99)),
                 },
                 inner: plan(dice),
             },

@@ -2,6 +2,8 @@
 
 /// Lasso and elastic net, measured outcome.
 mod gaussian;
+/// All other outcomes.
+mod other;
 /// Ridge, measured outcome.
 mod ridge;
 /// Reading the tables and values, and comparing.

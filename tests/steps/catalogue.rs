@@ -405,7 +405,7 @@ fn low_rank_fills_agree_and_are_close_to_the_truth() {
     let truth = numbers(&block["truth"]);
     for (at, cell) in cells.iter().enumerate() {
         let value = filled.x[(cell[0] as usize, cell[1] as usize)];
-        // The iteration ends when fills change by less than 1e-5 of their size.
+        // The iteration ends when fills change by less than 1e-4 of their spread.
         close(value, expected[at], 1e-3);
         close(value, truth[at], 0.02);
     }

@@ -3,7 +3,7 @@
 
 use std::borrow::Cow;
 use std::sync::Arc;
-use widefold::base::work::Work;
+use widefold::base::work::{CancelSource, Work};
 use widefold::numeric::matrix::Matrix;
 use widefold::numeric::parts::{Split, Structure};
 use widefold::numeric::random::Random;
@@ -373,6 +373,28 @@ fn every_example_changes_its_samples() {
     for_every_example(|step, samples| {
         let changed = apply(&learn(step, samples, &outcome()), samples);
         assert!(!is_same(&changed, samples), "{step:?}");
+    });
+}
+
+#[test]
+fn work_that_was_called_off_ends_every_step() {
+    let source = CancelSource::new();
+    let report = |_: f32| ();
+    let work = Work::new(source.token(), &report);
+    source.cancel();
+    for_every_example(|step, samples| {
+        let split = split();
+        let outcome = outcome();
+        let part = split
+            .training_part(samples)
+            .with_outcome(Some(OutcomeValues::Numbers(&outcome)));
+        let end = step
+            .learn(&part, &work)
+            .and_then(|learned| learned.apply(Cow::Borrowed(samples), &work).map(drop));
+        // Cutting regions is one look at the axis, over before anyone could call it off.
+        if step.kind() != StepKind::CutRegions {
+            assert_eq!(end, Err(StepStop::Cancelled), "{step:?}");
+        }
     });
 }
 

@@ -5,8 +5,10 @@ use std::borrow::Cow;
 use std::sync::Arc;
 use widefold::base::work::{CancelSource, Work};
 use widefold::numeric::matrix::Matrix;
+use widefold::numeric::measure::area_under_curve;
 use widefold::numeric::parts::{PartsParams, Scheme, Split, Structure, assign};
 use widefold::numeric::proof::{Breach, Proof};
+use widefold::numeric::random::Random;
 use widefold::numeric::samples::{Companions, OutcomeValues, Samples};
 use widefold::numeric::step::*;
 
@@ -223,4 +225,58 @@ fn the_outcome_reaches_only_the_training_part() {
     };
     assert_eq!(seen, expected);
     close(part.value(2, 0), samples.x[(100, 0)], 0.0);
+}
+
+/// The area under the curve of held-out sums over the chosen predictors, each with the sign of
+/// its difference between the classes, over data sets of pure noise.
+fn area_on_noise(learn_from: impl Fn(&Split, &[usize]) -> Split) -> f64 {
+    let (n, p, sets) = (60, 2000, 12);
+    let rows: Vec<usize> = (0..n).collect();
+    let class: Vec<usize> = (0..n).map(|row| row % 2).collect();
+    let structure = Structure {
+        strata: Some(&class),
+        ..Structure::of_units(&rows)
+    };
+    let work = Work::unattended();
+    let chain = Chain::new(vec![OutcomeFilter::new(20).unwrap().into()]);
+    let mut sum = 0.0;
+    for set in 0..sets {
+        let mut random = Random::new(4, "noise", set);
+        let samples = Samples::new(Matrix::from_fn(n, p, |_, _| random.normal()));
+        let params = PartsParams {
+            scheme: Scheme::Balanced,
+            parts: 5,
+            repeats: 1,
+            seed: set,
+        };
+        let mut scores = vec![0.0; n];
+        for split in assign(&params, &rows, &structure, "noise")
+            .unwrap()
+            .splits(0)
+        {
+            let outcome = Some(OutcomeValues::Classes(&class));
+            let from = learn_from(&split, &rows);
+            let prepared = chain.prepare(&from, &samples, outcome, &work).unwrap();
+            for column in prepared.samples.active_columns() {
+                let x = samples.column(column);
+                let sign = |&row: &usize| if class[row] == 1 { x[row] } else { -x[row] };
+                let slope: f64 = split.training().iter().map(sign).sum();
+                for &row in split.held_out() {
+                    scores[row] += slope * x[row];
+                }
+            }
+        }
+        let is_event: Vec<bool> = class.iter().map(|&class| class == 1).collect();
+        sum += area_under_curve(&is_event, &scores).unwrap();
+    }
+    sum / f64::from(sets as u32)
+}
+
+#[test]
+fn a_filter_by_outcome_finds_nothing_in_noise_unless_it_leaks() {
+    let honest = area_on_noise(|split, _| split.clone());
+    assert!((honest - 0.5).abs() < 0.07, "{honest}");
+    // Learnt outside the parts, as a planted leak: pure noise looks like a perfect test.
+    let leaky = area_on_noise(|_, rows| Split::everything(rows));
+    assert!(leaky > 0.93, "{leaky}");
 }

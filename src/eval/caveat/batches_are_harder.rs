@@ -10,7 +10,8 @@ const FALL: f64 = 0.2;
 /// cure it (Soneson, Gerster & Delorenzi 2014).
 #[must_use]
 pub fn check(nested: f64, batch: f64, word: &str) -> Option<Caveat> {
-    if !(nested - batch >= FALL) {
+    let fall = nested - batch;
+    if fall.is_nan() || fall < FALL {
         return None;
     }
     let show = |value| number::text(value, Precision::Decimals(2));

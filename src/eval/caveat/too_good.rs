@@ -11,7 +11,8 @@ const R2: f64 = 0.98;
 #[must_use]
 pub fn check(r2: f64, rmse: f64, reference_error: Option<f64>, unit: &str) -> Option<Caveat> {
     let below = reference_error.filter(|error| rmse < *error);
-    if !(r2 >= R2) && below.is_none() {
+    let is_high = r2 >= R2;
+    if !is_high && below.is_none() {
         return None;
     }
     let against = below.map_or_else(String::new, |error| {

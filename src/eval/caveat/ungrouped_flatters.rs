@@ -10,7 +10,8 @@ const RISE: f64 = 0.05;
 /// overestimate: Tougui et al. 2021).
 #[must_use]
 pub fn check(split: f64, nested: f64, word: &str) -> Option<Caveat> {
-    if !(split - nested >= RISE) {
+    let rise = split - nested;
+    if rise.is_nan() || rise < RISE {
         return None;
     }
     let show = |value| number::text(value, Precision::Decimals(2));

@@ -11,7 +11,7 @@ const HALF_WIDTH: f64 = 0.20;
 #[must_use]
 pub fn check(low: f64, high: f64) -> Option<Caveat> {
     let half = (high - low) / 2.0;
-    if !(half >= HALF_WIDTH) {
+    if half.is_nan() || half < HALF_WIDTH {
         return None;
     }
     Some(

@@ -2,18 +2,15 @@
 
 use crate::figure::ink::Ink;
 use crate::figure::layout::frame::Frame;
-use crate::figure::layout::{style, thin};
-use crate::figure::picture::{Mark, Point, Rect, Region, Stroke};
+use crate::figure::layout::{bars, style, thin};
+use crate::figure::picture::{Mark, Point, Region, Stroke};
 use crate::figure::{At, Dot, End, Label, Layer, Role, Tip, Weight};
 
 /// From so many points on, dots are small.
-const MANY: usize = 150;
+pub(super) const MANY: usize = 150;
 
 /// From so many points on, dots are tiny and those on each other are merged.
-const VERY_MANY: usize = 1500;
-
-/// Bars narrower than this are painted as one area.
-const NARROWEST_BAR: f64 = 2.5;
+pub(super) const VERY_MANY: usize = 1500;
 
 /// The smallest region that a pointer can hit with ease: its radius.
 const EASY: f64 = 6.0;
@@ -102,13 +99,13 @@ pub(super) fn paint(layer: &Layer, frame: &Frame, out: &mut Painted) {
             tip,
         } => {
             let places = stairs(&pairs(frame, x, y));
-            let style = (*role, Weight::Normal);
+            let style = (*role, Weight::Strong);
             line(frame, out, style, places, label.as_ref(), tip.as_ref());
         }
         Layer::Band { role, x, low, high } => band(frame, out, *role, x, low, high),
         Layer::Interval { role, x, low, high } => interval(frame, out, *role, x, low, high),
-        Layer::Bars { role, x, y, tips } => bars(frame, out, *role, x, y, tips),
-        Layer::Bins { role, edges, y } => bins(frame, out, *role, edges, y),
+        Layer::Bars { role, x, y, tips } => bars::bars(frame, out, *role, x, y, tips),
+        Layer::Bins { role, edges, y } => bars::bins(frame, out, *role, edges, y),
         Layer::Rule { role, at, label } => rule(frame, out, *role, *at, label),
         Layer::Identity { label } => identity(frame, out, label),
         Layer::Mark {
@@ -118,8 +115,8 @@ pub(super) fn paint(layer: &Layer, frame: &Frame, out: &mut Painted) {
             label,
             tip,
         } => mark(frame, out, *role, (*x, *y), label, tip.as_ref()),
-        Layer::Rug { role, x, tips } => rug(frame, out, *role, x, tips),
-        Layer::Columns { x, tips } => columns(frame, out, x, tips),
+        Layer::Rug { role, x, tips } => bars::rug(frame, out, *role, x, tips),
+        Layer::Columns { x, tips } => bars::columns(frame, out, x, tips),
         Layer::Text { role, x, y, text } => {
             if let Some(at) = frame.at(*x, *y).filter(|at| frame.holds(*at)) {
                 out.wishes.push(Wish {
@@ -139,7 +136,8 @@ pub(super) fn paint(layer: &Layer, frame: &Frame, out: &mut Painted) {
     }
 }
 
-fn pairs(frame: &Frame, x: &[f64], y: &[f64]) -> Vec<Option<Point>> {
+/// The places of pairs of numbers.
+pub(super) fn pairs(frame: &Frame, x: &[f64], y: &[f64]) -> Vec<Option<Point>> {
     x.iter().zip(y).map(|(x, y)| frame.at(*x, *y)).collect()
 }
 
@@ -214,7 +212,6 @@ fn line(
     label: Option<&Label>,
     tip: Option<&Tip>,
 ) {
-    let is_outside = places.iter().flatten().any(|at| !frame.holds(*at));
     let stroke = match weight {
         Weight::Strong | Weight::Normal | Weight::Fine => {
             Stroke::solid(style::mark_ink(role), style::line_width(weight))
@@ -265,7 +262,7 @@ fn line(
             stroke,
         });
     }
-    clipped(frame, out, is_outside, marks);
+    clipped(frame, out, marks);
 }
 
 fn is_one_of_many(weight: Weight) -> bool {
@@ -322,11 +319,6 @@ fn band(frame: &Frame, out: &mut Painted, role: Role, x: &[f64], low: &[f64], hi
             .map(|(own, other)| other.and(*own))
             .collect()
     };
-    let is_outside = lows
-        .iter()
-        .chain(&highs)
-        .flatten()
-        .any(|at| !frame.holds(*at));
     let lower = thin::pieces(both(&lows, &highs).into_iter());
     let upper = thin::pieces(both(&highs, &lows).into_iter());
     let mut marks = Vec::new();
@@ -343,7 +335,7 @@ fn band(frame: &Frame, out: &mut Painted, role: Role, x: &[f64], low: &[f64], hi
             ink: style::band_ink(role),
         });
     }
-    clipped(frame, out, is_outside, marks);
+    clipped(frame, out, marks);
 }
 
 fn interval(frame: &Frame, out: &mut Painted, role: Role, x: &[f64], low: &[f64], high: &[f64]) {
@@ -362,107 +354,6 @@ fn interval(frame: &Frame, out: &mut Painted, role: Role, x: &[f64], low: &[f64]
             points,
             stroke: Stroke::solid(style::mark_ink(role), 1.5),
         });
-    }
-}
-
-fn bars(frame: &Frame, out: &mut Painted, role: Role, x: &[f64], y: &[f64], tips: &[Tip]) {
-    let places = pairs(frame, x, y);
-    let edges = edges(frame, x);
-    let narrowest = edges
-        .iter()
-        .flatten()
-        .map(|(left, right)| right - left)
-        .fold(f64::INFINITY, f64::min);
-    let gap = if narrowest < NARROWEST_BAR {
-        0.0
-    } else {
-        (narrowest * 0.3).clamp(1.0, 10.0)
-    };
-    for (at, (place, edge)) in places.iter().zip(&edges).enumerate() {
-        let (Some(place), Some((left, right))) = (place, edge) else {
-            continue;
-        };
-        let rect = standing(frame, left + gap / 2.0, right - gap / 2.0, place.y);
-        if rect.width > 0.0 && rect.height > 0.0 {
-            out.marks.push(Mark::Rect {
-                rect,
-                radius: 0.0,
-                fill: Some(bar_ink(role)),
-                stroke: None,
-            });
-        }
-        out.busy.push(*place);
-        if let Some(tip) = tips.get(at) {
-            let column = Rect::new(*left, frame.plot.y, right - left, frame.plot.height);
-            out.spots.push((Region::Rect(column), tip.clone()));
-        }
-    }
-}
-
-/// Bars of the background are paler than its lines: they cover more.
-fn bar_ink(role: Role) -> Ink {
-    match role {
-        Role::Quiet => Ink::QuietBar,
-        Role::Series(_) | Role::Pale(_) | Role::Chosen | Role::Caution | Role::Reference => {
-            style::mark_ink(role)
-        }
-    }
-}
-
-/// A bar that stands on the base (or hangs from it), cut to the area of the data.
-fn standing(frame: &Frame, left: f64, right: f64, y: f64) -> Rect {
-    let plot = frame.plot;
-    let (left, right) = (left.max(plot.x), right.min(plot.right()));
-    let (base, y) = (frame.base(), y.clamp(plot.y, plot.bottom()));
-    Rect::new(left, base.min(y), right - left, (base - y).abs())
-}
-
-/// The stretch of each position: from the middle of its neighbours, cut to the area of the data.
-fn edges(frame: &Frame, x: &[f64]) -> Vec<Option<(f64, f64)>> {
-    let places: Vec<Option<f64>> = x.iter().map(|x| frame.at_x(*x)).collect();
-    let mut sorted: Vec<f64> = places.iter().flatten().copied().collect();
-    sorted.sort_by(f64::total_cmp);
-    sorted.dedup();
-    let plot = frame.plot;
-    places
-        .into_iter()
-        .map(|place| {
-            let place = place?;
-            let nth = sorted.partition_point(|other| *other < place);
-            let before = nth.checked_sub(1).and_then(|at| sorted.get(at));
-            let after = sorted.get(nth + 1);
-            let reach = |other: Option<&f64>| other.map(|other| (other - place).abs() / 2.0);
-            // The outermost reach as far outwards as inwards; a single one takes a tenth.
-            let left = reach(before).or(reach(after)).unwrap_or(plot.width / 20.0);
-            let right = reach(after).or(reach(before)).unwrap_or(plot.width / 20.0);
-            let (left, right) = (
-                (place - left).max(plot.x),
-                (place + right).min(plot.right()),
-            );
-            (right > left).then_some((left, right))
-        })
-        .collect()
-}
-
-fn bins(frame: &Frame, out: &mut Painted, role: Role, edges: &[f64], y: &[f64]) {
-    for (pair, height) in edges.windows(2).zip(y) {
-        let (Some(left), Some(right)) = (frame.at_x(pair[0]), frame.at_x(pair[1])) else {
-            continue;
-        };
-        let Some(top) = frame.at_y(*height) else {
-            continue;
-        };
-        let gap = if right - left < 4.0 { 0.0 } else { 0.5 };
-        let rect = standing(frame, left + gap, right - gap, top);
-        if rect.width > 0.0 && rect.height > 0.0 {
-            out.marks.push(Mark::Rect {
-                rect,
-                radius: 0.0,
-                fill: Some(bar_ink(role)),
-                stroke: None,
-            });
-            out.busy.push(Point::new((left + right) / 2.0, top));
-        }
     }
 }
 
@@ -564,67 +455,21 @@ fn mark(
     }
 }
 
-fn rug(frame: &Frame, out: &mut Painted, role: Role, x: &[f64], tips: &[Tip]) {
-    let radius = if x.len() > MANY {
-        style::TINY_DOT
-    } else {
-        style::SMALL_DOT
-    };
-    let plot = frame.plot;
-    let room = (plot.height - 2.0 * radius).max(0.0) * 0.8;
-    let places: Vec<Option<Point>> = x
-        .iter()
-        .enumerate()
-        .map(|(at, x)| {
-            let x = frame.at_x(*x)?;
-            let y = plot.y + plot.height / 2.0 + thin::strewn(at) * room;
-            Some(Point::new(x, y)).filter(|at| frame.holds(*at))
-        })
-        .collect();
-    let kept = if places.len() > VERY_MANY {
-        thin::dots(&places, 1.0)
-    } else {
-        (0..places.len()).collect()
-    };
-    for at in kept {
-        let Some(center) = places[at] else { continue };
-        out.marks.push(Mark::Disc {
-            center,
-            radius,
-            fill: Some(style::dot_ink(role)),
-            stroke: None,
-        });
-        out.busy.push(center);
-        if let Some(tip) = tips.get(at) {
-            out.spots.push((
-                Region::Disc {
-                    center,
-                    radius: radius + 1.0,
-                },
-                tip.clone(),
-            ));
+/// Puts lines and areas on the sheet, cut to the area of the data where they reach beyond it.
+fn clipped(frame: &Frame, out: &mut Painted, marks: Vec<Mark>) {
+    let is_inside = |mark: &Mark| match mark {
+        Mark::Line { points, .. } | Mark::Area { points, .. } => {
+            points.iter().all(|at| frame.holds(*at))
         }
-    }
-}
-
-fn columns(frame: &Frame, out: &mut Painted, x: &[f64], tips: &[Tip]) {
-    let plot = frame.plot;
-    for (edge, tip) in edges(frame, x).into_iter().zip(tips) {
-        if let Some((left, right)) = edge {
-            let rect = Rect::new(left, plot.y, right - left, plot.height);
-            out.spots.push((Region::Rect(rect), tip.clone()));
-        }
-    }
-}
-
-/// Puts marks on the sheet, cut to the area of the data where they reach beyond it.
-fn clipped(frame: &Frame, out: &mut Painted, is_outside: bool, marks: Vec<Mark>) {
-    if is_outside {
+        Mark::Disc { center, .. } => frame.holds(*center),
+        Mark::Rect { rect, .. } | Mark::Clip { rect, .. } => frame.plot.covers(rect),
+    };
+    if marks.iter().all(is_inside) {
+        out.marks.extend(marks);
+    } else {
         out.marks.push(Mark::Clip {
             rect: frame.plot,
             marks,
         });
-    } else {
-        out.marks.extend(marks);
     }
 }

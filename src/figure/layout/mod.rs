@@ -1,5 +1,7 @@
 //! Layout: a figure and a size in, a picture out. All decisions about places are made here.
 
+mod axes;
+mod bars;
 mod ends;
 mod frame;
 mod layer;

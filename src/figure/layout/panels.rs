@@ -3,18 +3,18 @@
 use crate::figure::axis::{Ends, Mapping, Tick};
 use crate::figure::font::Face;
 use crate::figure::ink::Ink;
-use crate::figure::layout::ends::{self, Wish as EndWish};
+use crate::figure::layout::axes::{self, Margins};
 use crate::figure::layout::frame::{self, Frame};
-use crate::figure::layout::layer::{self, EndName, Painted};
+use crate::figure::layout::layer::{self, Painted};
 use crate::figure::layout::place;
-use crate::figure::layout::sheet::{Placed, Sheet};
+use crate::figure::layout::sheet::Sheet;
 use crate::figure::layout::{Shown, style};
 use crate::figure::metrics;
 use crate::figure::picture::{Anchor, Mark, Point, Rect, Ruler, Stroke};
 use crate::figure::{Axis, End, Figure, Height, Layer, Panel, Quantity, Zero};
 
 /// The height of a panel that stands alone on a page.
-const NATURAL_PANEL: f64 = 190.0;
+const NATURAL_PANEL: f64 = 196.0;
 /// The height of a square panel on a page, at most.
 const NATURAL_SQUARE: f64 = 320.0;
 /// Between panels.
@@ -25,18 +25,8 @@ const STRIP_GAP: f64 = 6.0;
 const WIDEST_MARGIN: f64 = 0.34;
 /// The least width for numbers beside a square panel.
 const ASIDE: f64 = 150.0;
-/// Between the written numbers of a horizontal axis.
-const TICK_AIR: f64 = 18.0;
 /// The room that a vertical axis wants for each of its numbers.
-const TICK_PITCH: f64 = 34.0;
-
-/// Where the margins are.
-struct Margins {
-    left: f64,
-    right: f64,
-    /// On which side the numbers of the vertical axes stand.
-    numbers: End,
-}
+const TICK_PITCH: f64 = 22.0;
 
 /// Lays panels out below each other.
 pub(super) fn lay(panels: &[Panel], figure: &Figure, room: Rect, sheet: &mut Sheet) -> Shown {
@@ -84,11 +74,11 @@ pub(super) fn lay(panels: &[Panel], figure: &Figure, room: Rect, sheet: &mut She
             .unwrap_or(group.start);
         let (above, last) = (&frames[group.start], &frames[bearer]);
         rulers(&panels[group.start], above, last, sheet);
-        x_axis(&panels[group.start], above, last, sheet);
+        axes::x_axis(&panels[group.start], above, last, sheet);
         let mut drops = Vec::new();
         for at in group.clone() {
             let (panel, frame) = (&panels[at], &frames[at]);
-            grid(panel, frame, sheet);
+            axes::grid(panel, frame, sheet);
             let mut painted = Painted::default();
             for part in &panel.layers {
                 layer::paint(part, frame, &mut painted);
@@ -109,8 +99,8 @@ pub(super) fn lay(panels: &[Panel], figure: &Figure, room: Rect, sheet: &mut She
                     .collect();
                 sheet.marks(own);
             }
-            y_axis(panel, frame, &margins, sheet);
-            end_names(&painted.ends, frame, &margins, sheet);
+            axes::y_axis(panel, frame, &margins, sheet);
+            axes::end_names(&painted.ends, frame, &margins, sheet);
             sheet.marks(std::mem::take(&mut painted.marks));
             for (region, tip) in painted.spots.drain(..) {
                 sheet.spot(region, &tip);
@@ -202,14 +192,6 @@ fn x_axis_of(panels: &[Panel], at: usize) -> Option<&Axis> {
         .find_map(|panel| panel.x.as_ref())
 }
 
-/// Whether a panel is a strip under another one, without numbers along its vertical axis.
-fn is_strip(panel: &Panel) -> bool {
-    match panel.height {
-        Height::Strip | Height::Line => true,
-        Height::Share(_) | Height::Square => false,
-    }
-}
-
 /// Runs of panels that share a horizontal axis.
 fn groups(panels: &[Panel]) -> Vec<std::ops::Range<usize>> {
     let mut starts: Vec<usize> = (0..panels.len())
@@ -298,7 +280,7 @@ fn x_mappings(panels: &[Panel]) -> Vec<Mapping> {
         }
         let has_dots = members
             .iter()
-            .any(|panel| !is_strip(panel) && panel.layers.iter().any(wants_air));
+            .any(|panel| !axes::is_strip(panel) && panel.layers.iter().any(wants_air));
         let ends = if has_dots { Ends::Padded } else { Ends::Exact };
         let map = Mapping::new(axis, values.into_iter(), ends);
         maps.extend(group.map(|_| map.clone()));
@@ -354,26 +336,23 @@ fn y_ticks(panel: &Panel, map: &Mapping, height: f64) -> Vec<Tick> {
     match panel.height {
         Height::Strip | Height::Line => Vec::new(),
         Height::Share(_) => map.ticks((height / TICK_PITCH).floor().clamp(2.0, 7.0) as usize),
-        Height::Square => map.ticks(square_ticks(height)),
+        Height::Square => map.ticks(axes::square_ticks(height)),
     }
-}
-
-/// How many numbers are written along either axis of a square.
-fn square_ticks(side: f64) -> usize {
-    (side / 46.0).floor().clamp(2.0, 6.0) as usize
 }
 
 fn margins(panels: &[Panel], y_ticks: &[Vec<Tick>], x_maps: &[Mapping], width: f64) -> Margins {
     let small = |text: &str| metrics::width(text, Face::Sans, style::SMALL);
     let widest = |widths: &mut dyn Iterator<Item = f64>| widths.fold(0.0, f64::max);
     let numbers = widest(&mut y_ticks.iter().flatten().map(|tick| small(&tick.text)));
-    let strips =
-        widest(&mut panels.iter().filter(|panel| is_strip(panel)).map(
-            |panel| match panel.height {
+    let strips = widest(
+        &mut panels
+            .iter()
+            .filter(|panel| axes::is_strip(panel))
+            .map(|panel| match panel.height {
                 Height::Line => small(&panel.y.heading()) + style::GAP,
                 Height::Strip | Height::Share(_) | Height::Square => small(&panel.y.heading()),
-            },
-        ));
+            }),
+    );
     let names = |end: End| {
         widest(
             &mut panels
@@ -448,245 +427,6 @@ fn rulers(panel: &Panel, first: &Frame, last: &Frame, sheet: &mut Sheet) {
             low,
             high,
         });
-    }
-}
-
-/// The grid of a panel: level lines; upright ones only where both axes are numbers alike.
-fn grid(panel: &Panel, frame: &Frame, sheet: &mut Sheet) {
-    let plot = frame.plot;
-    let level = |y: f64, ink: Ink| Mark::Line {
-        points: vec![Point::new(plot.x, y), Point::new(plot.right(), y)],
-        stroke: Stroke::solid(ink, style::HAIR),
-    };
-    let crisp = |place: f64| place.floor() + 0.5;
-    match panel.height {
-        Height::Strip | Height::Line => {}
-        Height::Share(_) | Height::Square => {
-            for tick in &frame.y_ticks {
-                let y = crisp(plot.bottom() - tick.share * plot.height).min(plot.bottom() - 0.5);
-                sheet.mark(level(y, Ink::Grid));
-            }
-        }
-    }
-    if panel.height == Height::Square {
-        for tick in frame.x.ticks(square_ticks(plot.width)) {
-            let x = crisp(plot.x + tick.share * plot.width).min(plot.right() - 0.5);
-            sheet.mark(Mark::Line {
-                points: vec![Point::new(x, plot.y), Point::new(x, plot.bottom())],
-                stroke: Stroke::solid(Ink::Grid, style::HAIR),
-            });
-        }
-    }
-    let stands = panel.layers.iter().any(|part| match part {
-        Layer::Bars { .. } | Layer::Bins { .. } => true,
-        Layer::Points { .. }
-        | Layer::Line { .. }
-        | Layer::Steps { .. }
-        | Layer::Band { .. }
-        | Layer::Interval { .. }
-        | Layer::Rule { .. }
-        | Layer::Identity { .. }
-        | Layer::Mark { .. }
-        | Layer::Rug { .. }
-        | Layer::Columns { .. }
-        | Layer::Text { .. } => false,
-    });
-    let y_ends = frame.y.ends();
-    let has_zero_line = match panel.height {
-        Height::Share(_) => true,
-        Height::Strip | Height::Line | Height::Square => false,
-    };
-    let crosses_zero = y_ends.0 < 0.0 && y_ends.1 > 0.0 && has_zero_line;
-    if stands || crosses_zero {
-        let y = crisp(frame.base()).clamp(plot.y + 0.5, plot.bottom() - 0.5);
-        sheet.mark(level(y, Ink::Axis));
-    }
-}
-
-/// The numbers and the heading of a vertical axis.
-fn y_axis(panel: &Panel, frame: &Frame, margins: &Margins, sheet: &mut Sheet) {
-    let plot = frame.plot;
-    if is_strip(panel) {
-        // Numbers in a line of text are centred on their places, the first at the very edge.
-        let away = match panel.height {
-            Height::Line => 2.0 * style::GAP,
-            Height::Strip | Height::Share(_) | Height::Square => style::GAP,
-        };
-        let at = Point::new(plot.x - away, plot.y + plot.height / 2.0 + style::BASELINE);
-        let _ = sheet.fitted(
-            &panel.y.heading(),
-            at,
-            Anchor::End,
-            style::SMALL,
-            (Ink::QuietText, Face::Sans),
-            at.x,
-        );
-        return;
-    }
-    // Numbers are right-aligned on either side, so that their decimal marks stand below each
-    // other.
-    let widest = frame
-        .y_ticks
-        .iter()
-        .map(|tick| metrics::width(&tick.text, Face::Sans, style::SMALL))
-        .fold(0.0, f64::max);
-    let (x, room) = match margins.numbers {
-        End::Left => (plot.x - style::GAP, plot.x - style::GAP),
-        End::Right => (plot.right() + style::GAP + widest, widest),
-    };
-    for tick in &frame.y_ticks {
-        let y = plot.bottom() - tick.share * plot.height + style::BASELINE;
-        let _ = sheet.fitted(
-            &tick.text,
-            Point::new(x, y),
-            Anchor::End,
-            style::SMALL,
-            (Ink::QuietText, Face::Sans),
-            room,
-        );
-    }
-    let factor = frame.y.factor();
-    let heading = [panel.y.heading(), factor]
-        .iter()
-        .filter(|part| !part.is_empty())
-        .cloned()
-        .collect::<Vec<String>>()
-        .join(" ");
-    let (at, anchor) = match margins.numbers {
-        End::Left => (Point::new(0.0, plot.y - 12.0), Anchor::Start),
-        End::Right => (Point::new(sheet.size().width, plot.y - 12.0), Anchor::End),
-    };
-    let width = sheet.size().width;
-    let _ = sheet.fitted(
-        &heading,
-        at,
-        anchor,
-        style::SMALL,
-        (Ink::QuietText, Face::Sans),
-        width,
-    );
-}
-
-/// The numbers and the heading of the horizontal axis that a run of panels shares.
-fn x_axis(panel: &Panel, first: &Frame, last: &Frame, sheet: &mut Sheet) {
-    let Some(axis) = panel.x.as_ref() else {
-        return;
-    };
-    let plot = last.plot;
-    let width = first.plot.width;
-    let small = |text: &str| metrics::width(text, Face::Sans, style::SMALL);
-    let widest = |ticks: &[Tick]| {
-        ticks
-            .iter()
-            .map(|tick| small(&tick.text))
-            .fold(0.0, f64::max)
-    };
-    // As many numbers as have room, measured on a generous first try.
-    let tried = first.x.ticks(6);
-    let pitch = widest(&tried) + TICK_AIR;
-    let most = match panel.height {
-        Height::Square => square_ticks(width),
-        Height::Share(_) | Height::Strip | Height::Line => {
-            (width / pitch).floor().clamp(2.0, 8.0) as usize
-        }
-    };
-    let ticks = first.x.ticks(most);
-    let pitch = (width / ticks.len().max(1) as f64).max(1.0);
-    let is_names = match axis.scale {
-        crate::figure::Scale::Names(_) => true,
-        crate::figure::Scale::Linear
-        | crate::figure::Scale::Percent
-        | crate::figure::Scale::Log10
-        | crate::figure::Scale::Log10AndZero => false,
-    };
-    // Names are cut short if that leaves a word; otherwise only some of them are written.
-    let (every, room) = if !is_names {
-        (1, f64::INFINITY)
-    } else if pitch >= 56.0 || pitch >= widest(&ticks) + style::GAP {
-        (1, pitch - style::GAP)
-    } else {
-        let every = ((widest(&ticks).min(80.0) + style::GAP) / pitch)
-            .ceil()
-            .max(1.0);
-        (every as usize, every * pitch - style::GAP)
-    };
-    let baseline = plot.bottom() + 17.0;
-    for tick in ticks.iter().step_by(every) {
-        let x = plot.x + tick.share * plot.width;
-        let _ = sheet.fitted(
-            &tick.text,
-            Point::new(x, baseline),
-            Anchor::Middle,
-            style::SMALL,
-            (Ink::QuietText, Face::Sans),
-            room,
-        );
-        if !is_names {
-            let x = (x.floor() + 0.5).min(plot.right() - 0.5);
-            sheet.mark(Mark::Line {
-                points: vec![
-                    Point::new(x, plot.bottom()),
-                    Point::new(x, plot.bottom() + 3.0),
-                ],
-                stroke: Stroke::solid(Ink::Axis, style::HAIR),
-            });
-        }
-    }
-    let heading = [axis.heading(), first.x.factor()]
-        .iter()
-        .filter(|part| !part.is_empty())
-        .cloned()
-        .collect::<Vec<String>>()
-        .join(" ");
-    if heading.is_empty() {
-        return;
-    }
-    let at = Point::new(plot.right(), baseline + style::SMALL_LINE);
-    let _ = sheet.fitted(
-        &heading,
-        at,
-        Anchor::End,
-        style::SMALL,
-        (Ink::QuietText, Face::Sans),
-        plot.right(),
-    );
-}
-
-/// Names at the ends of lines, with a fine stroke to the line where they had to move.
-fn end_names(names: &[EndName], frame: &Frame, margins: &Margins, sheet: &mut Sheet) {
-    let plot = frame.plot;
-    for end in [End::Left, End::Right] {
-        let wishes: Vec<EndWish> = names
-            .iter()
-            .enumerate()
-            .filter(|(_, name)| name.label.end == end)
-            .map(|(at, name)| EndWish { at, y: name.y })
-            .collect();
-        let (edge, away, anchor, room) = match end {
-            End::Left => (plot.x, -1.0, Anchor::End, margins.left),
-            End::Right => (plot.right(), 1.0, Anchor::Start, margins.right),
-        };
-        for wish in ends::spread(wishes, plot.y, plot.bottom()) {
-            let name = &names[wish.at];
-            let at = Point::new(edge + away * (style::GAP + 2.0), wish.y + style::BASELINE);
-            let placed = sheet.fitted(
-                &name.label.text,
-                at,
-                anchor,
-                style::SMALL,
-                (style::text_ink(name.role), Face::Sans),
-                room - style::GAP - 2.0,
-            );
-            if placed == Placed::Yes && (wish.y - name.y).abs() > 3.0 {
-                sheet.mark(Mark::Line {
-                    points: vec![
-                        Point::new(edge + away * 1.5, name.y),
-                        Point::new(edge + away * style::GAP, wish.y),
-                    ],
-                    stroke: Stroke::solid(style::mark_ink(name.role), 0.75),
-                });
-            }
-        }
     }
 }
 

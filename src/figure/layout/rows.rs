@@ -215,7 +215,7 @@ fn plan(rows: &Rows, room: Rect) -> Plan {
 }
 
 fn mapping(rows: &Rows) -> Mapping {
-    let mut axis = Axis::linear("", "").with_zero(Zero::Shown);
+    let mut axis = Axis::scaled("", "", rows.scale.clone()).with_zero(Zero::Shown);
     axis.range = rows.range;
     let is_dots = has_numbers(rows);
     if is_dots {

@@ -139,9 +139,10 @@ pub(super) fn lay(tiles: &Tiles, room: Rect, sheet: &mut Sheet) -> Shown {
             .texts
             .iter()
             .all(|text| metrics::width(text, Face::Sans, style::SMALL) + 6.0 <= plan.width);
+    let texts: &[String] = if has_texts { &tiles.texts } else { &[] };
     for row in 0..n_rows.div_ceil(merged) {
         for column in 0..n_columns.div_ceil(plan.merged) {
-            tile(&grid, row, column, has_texts, sheet);
+            tile(&grid, row, column, texts, sheet);
         }
     }
     key(&grid, room, sheet);
@@ -210,7 +211,7 @@ impl Grid<'_> {
     }
 }
 
-fn tile(grid: &Grid<'_>, row: usize, column: usize, has_texts: bool, sheet: &mut Sheet) {
+fn tile(grid: &Grid<'_>, row: usize, column: usize, texts: &[String], sheet: &mut Sheet) {
     let whole = grid.rect(row, column);
     let at = row * grid.down * grid.tiles.columns.len() + column * grid.across;
     if grid.across == 1
@@ -235,7 +236,7 @@ fn tile(grid: &Grid<'_>, row: usize, column: usize, has_texts: bool, sheet: &mut
         fill: Some(Ink::Heat(level)),
         stroke: None,
     });
-    if has_texts && let Some(text) = grid.tiles.texts.get(at) {
+    if let Some(text) = texts.get(at) {
         let middle = Point::new(
             rect.x + rect.width / 2.0,
             rect.y + rect.height / 2.0 + style::BASELINE,

@@ -1,7 +1,7 @@
 //! Values as dots, a row for each group.
 
 use crate::figure::shape::Caption;
-use crate::figure::{Align, Bar, Body, Column, Figure, Role, Row, Rows, Stress, Tip, Track};
+use crate::figure::{Align, Bar, Body, Column, Figure, Role, Row, Rows, Scale, Stress, Tip, Track};
 
 /// What a figure of distributions is built from.
 #[derive(Clone, Debug, Default, PartialEq)]
@@ -12,6 +12,8 @@ pub struct Distributions {
     pub names: String,
     /// The heading of the dots, with their unit.
     pub values: String,
+    /// How the values become places: penalty strengths are compared by their ratios.
+    pub scale: Scale,
     /// The headings of the columns of text.
     pub columns: Vec<String>,
     /// A value to compare with, and its name.
@@ -59,6 +61,7 @@ impl Distributions {
         self.caption.figure(Body::Rows(Rows {
             names: self.names.clone(),
             bars: self.values.clone(),
+            scale: self.scale.clone(),
             range: None,
             track: Track::Hidden,
             rule: self.rule.clone(),

@@ -1,7 +1,7 @@
 //! How often each predictor is chosen when samples are drawn anew.
 
 use crate::figure::shape::Caption;
-use crate::figure::{Align, Bar, Body, Column, Figure, Role, Row, Rows, Stress, Tip, Track};
+use crate::figure::{Align, Bar, Body, Column, Figure, Role, Row, Rows, Scale, Stress, Tip, Track};
 
 /// What rows of selection frequencies are built from.
 #[derive(Clone, Debug, Default, PartialEq)]
@@ -64,6 +64,7 @@ impl Frequencies {
         self.caption.figure(Body::Rows(Rows {
             names: self.names.clone(),
             bars: self.bars.clone(),
+            scale: Scale::Percent,
             range: Some((0.0, 1.0)),
             track: Track::Shown,
             rule: self.threshold.clone(),

@@ -1,7 +1,7 @@
 //! The ladder of honesty: the same measure, judged more and more strictly.
 
 use crate::figure::shape::Caption;
-use crate::figure::{Align, Bar, Body, Column, Figure, Role, Row, Rows, Stress, Tip, Track};
+use crate::figure::{Align, Bar, Body, Column, Figure, Role, Row, Rows, Scale, Stress, Tip, Track};
 
 /// What a ladder is built from.
 #[derive(Clone, Debug, Default, PartialEq)]
@@ -80,6 +80,7 @@ impl Ladder {
         self.caption.figure(Body::Rows(Rows {
             names: self.names.clone(),
             bars: String::new(),
+            scale: Scale::Linear,
             range: self.range,
             track: Track::Hidden,
             rule: None,

@@ -1,9 +1,7 @@
 //! The share without an event over time, a stepped line for each group.
 
 use crate::figure::shape::{Caption, Heading};
-use crate::figure::{
-    Axis, Body, End, Figure, Height, Label, Layer, Panel, Role, Scale, Weight, Zero,
-};
+use crate::figure::{Axis, Body, End, Figure, Height, Label, Layer, Panel, Role, Scale, Zero};
 
 /// What survival curves are built from.
 #[derive(Clone, Debug, Default, PartialEq)]
@@ -51,12 +49,10 @@ impl Survival {
             layers.push(Layer::Band { role, x, low, high });
         }
         for (nth, group) in self.groups.iter().enumerate() {
-            let (x, y) = stairs(&group.times, &group.shares);
-            layers.push(Layer::Line {
+            layers.push(Layer::Steps {
                 role: Role::Series((nth % 250) as u8),
-                x,
-                y,
-                weight: Weight::Strong,
+                x: group.times.clone(),
+                y: group.shares.clone(),
                 label: Some(Label {
                     text: group.name.clone(),
                     end: End::Right,

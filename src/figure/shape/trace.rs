@@ -1,7 +1,9 @@
 //! The coefficients against the penalty strength, and how many are not zero.
 
 use crate::figure::shape::{Caption, Choice, Counts, Heading, count_strip};
-use crate::figure::{At, Body, End, Figure, Label, Layer, Panel, Quantity, Role, Tip, Weight};
+use crate::figure::{
+    At, Body, End, Figure, Height, Label, Layer, Panel, Quantity, Role, Tip, Weight,
+};
 
 /// What a coefficient trace is built from.
 #[derive(Clone, Debug, Default, PartialEq)]
@@ -84,7 +86,9 @@ impl Trace {
             });
         }
         let x = self.strength.log().of(Quantity::Strength);
-        let mut panels = vec![Panel::new(x, self.coefficient.linear(), layers)];
+        let mut panel = Panel::new(x, self.coefficient.linear(), layers);
+        panel.height = Height::Share(1.25);
+        let mut panels = vec![panel];
         panels.extend(count_strip(
             &self.counts,
             &self.strengths,

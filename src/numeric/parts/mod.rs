@@ -51,8 +51,9 @@ pub struct Structure<'a> {
     pub units: &'a [usize],
     /// The batch of each sample.
     pub batches: Option<&'a [usize]>,
-    /// The class of each sample, or whether its event was observed. When given, every training
-    /// part must hold every stratum that occurs among the rows.
+    /// The class of each sample, or whether its event was observed. When given, at least two
+    /// must occur among the rows (events are no strata where everyone had one), and every
+    /// training part must hold every stratum that does.
     pub strata: Option<&'a [usize]>,
     /// The order value (time or position of measurement) of each sample.
     pub order: Option<&'a [f64]>,

@@ -12,7 +12,7 @@ use std::sync::Arc;
 
 /// Low-rank imputation (after Troyanskaya et al. 2001, SVDimpute): in the training part, gaps
 /// are filled with the mean, then again and again with what the first `rank` principal
-/// components say, until the fills change by less than one part in 10⁵ of their spread. Any
+/// components say, until the fills change by less than one part in 10⁴ of their spread. Any
 /// sample, training or held-out, is then completed from its known values by the components as
 /// learnt.
 #[derive(Clone, Debug, PartialEq, Eq)]
@@ -20,8 +20,8 @@ pub struct LowRankImputation {
     rank: usize,
 }
 
-const MOST_PASSES: usize = 500;
-const TOLERANCE: f64 = 1e-5;
+const MOST_PASSES: usize = 400;
+const TOLERANCE: f64 = 1e-4;
 
 impl LowRankImputation {
     /// The first `rank` components, 1 to 100.

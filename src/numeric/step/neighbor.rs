@@ -148,17 +148,21 @@ impl NearestImputation {
 
 /// Not a number when no value is known to both.
 fn distance(a: &[f64], b: &[f64]) -> f64 {
-    let (mut sum, mut shared) = (0.0, 0_usize);
-    for (a, b) in a.iter().zip(b) {
-        let difference = a - b;
-        if !difference.is_nan() {
-            sum += difference * difference;
-            shared += 1;
+    // Eight sums side by side, always the same way, let the processor work on several at once.
+    const LANES: usize = 8;
+    let (mut sums, mut counts) = ([0.0; LANES], [0.0; LANES]);
+    for (a, b) in a.chunks(LANES).zip(b.chunks(LANES)) {
+        for (lane, (a, b)) in a.iter().zip(b).enumerate() {
+            let square = (a - b) * (a - b);
+            let is_shared = !square.is_nan();
+            sums[lane] += if is_shared { square } else { 0.0 };
+            counts[lane] += if is_shared { 1.0 } else { 0.0 };
         }
     }
-    if shared == 0 {
+    let shared: f64 = counts.iter().sum();
+    if shared == 0.0 {
         f64::NAN
     } else {
-        (a.len() as f64 / shared as f64 * sum).sqrt()
+        (a.len() as f64 / shared * sums.iter().sum::<f64>()).sqrt()
     }
 }

@@ -111,11 +111,11 @@ pub fn answer(chain: &Chain<'_>, question: &Question, source: &Source<'_>) -> Pa
 #[must_use]
 pub fn blocks(chain: &Chain<'_>, question: &Question, source: &Source<'_>) -> Vec<Block> {
     match &question.ask {
-        Ask::LeastSquares => least_squares::blocks(source),
+        Ask::LeastSquares => least_squares::blocks(chain, source),
         Ask::ErrorCurve => error_curve::blocks(source),
         Ask::CoefficientTrace => coefficient_trace::blocks(source),
         Ask::Agreement => agreement::blocks(chain, source),
-        Ask::Ladder { .. } => ladder::blocks(source),
+        Ask::Ladder { .. } => ladder::blocks(chain, source),
         Ask::ChosenAgain { .. } => chosen_again::blocks(source),
         Ask::StandIns { .. } => stand_ins::blocks(source),
     }
@@ -130,7 +130,7 @@ pub fn methods(
     source: &Source<'_>,
 ) -> Vec<Paragraph> {
     match &question.ask {
-        Ask::LeastSquares => least_squares::methods(source),
+        Ask::LeastSquares => least_squares::methods(chain, source),
         Ask::ErrorCurve => error_curve::methods(source),
         Ask::CoefficientTrace => coefficient_trace::methods(source),
         Ask::Agreement => agreement::methods(chain, source),

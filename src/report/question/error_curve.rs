@@ -8,6 +8,10 @@ use crate::report::noun;
 use crate::report::question::{choice, strength_tips};
 use crate::report::tell::{Source, Telling};
 
+/// Below this gain over the strongest penalty the curve counts as flat: the convention of the
+/// caveat on flat curves, as is one standard error.
+const FLAT_SHARE: f64 = 0.02;
+
 /// From which interquartile range of the logarithm (base ten) on the choice counts as loose: the
 /// convention of the caveat on unsteady strengths.
 const LOOSE: f64 = 0.5;
@@ -15,10 +19,20 @@ const LOOSE: f64 = 0.5;
 /// The answer in one sentence.
 #[must_use]
 pub fn answer(source: &Source<'_>) -> Paragraph {
-    let start = if source
+    let is_flat = source
         .value("curve improvement")
-        .is_some_and(|gain| gain < 0.02)
-    {
+        .is_some_and(|gain| gain < FLAT_SHARE)
+        || source
+            .value("standard errors below the strongest")
+            .is_some_and(|count| count < 1.0);
+    if !source.has("curve improvement") {
+        return source.say(
+            "The rule takes the strength {chosen strength}; it needs no held-out parts, so that \
+             there is no held-out error to show.",
+            &[],
+        );
+    }
+    let start = if is_flat {
         source.say(
             "Hardly any penalty does better than the strongest, so that the chosen strength \
              ({chosen strength}) is close to arbitrary",
@@ -26,8 +40,8 @@ pub fn answer(source: &Source<'_>) -> Paragraph {
         )
     } else {
         source.say(
-            "The error is lowest near the strength {chosen strength}, {curve improvement|%} below \
-             that at the strongest penalty",
+            "At the chosen strength, {chosen strength}, the squared error lies {curve \
+             improvement|%} or nearly so below that at the strongest penalty",
             &[],
         )
     };
@@ -56,9 +70,13 @@ pub fn blocks(source: &Source<'_>) -> Vec<Block> {
         "lowest error standard error",
         "one-standard-error strength",
         "curve improvement",
+        "standard errors below the strongest",
         "strength log10 interquartile range",
         "strength least",
         "strength most",
+        "share of outer fits at the edge",
+        "fewest chosen predictors",
+        "most chosen predictors",
     ]);
     blocks.push(Block::Grid(Grid::of_facts(
         "How firmly the strength is chosen",
@@ -175,8 +193,8 @@ pub fn methods(source: &Source<'_>) -> Vec<Paragraph> {
     if source.has("lowest error") {
         telling.say(source.say(
             "The error over the strengths had its lowest value {lowest error} (standard error \
-             {lowest error standard error}), {curve improvement|%} below that at the strongest \
-             penalty.",
+             {lowest error standard error}); the squared error there was {curve improvement|%} \
+             below that at the strongest penalty.",
             &[],
         ));
     }

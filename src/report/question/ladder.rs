@@ -15,6 +15,16 @@ use crate::study::settings::data::Sealed;
 pub fn answer(chain: &Chain<'_>, source: &Source<'_>) -> Paragraph {
     let unit = noun::unit(chain.settings());
     let batch = noun::batch(chain.settings());
+    if !source.has("nested r²") {
+        return source.say(
+            &format!(
+                "On its own {} the model seems to explain {{apparent r²|%}}, which flatters it; it \
+                 was not judged on {} that it has not seen.",
+                unit.many, unit.many
+            ),
+            &[],
+        );
+    }
     let mut said = source.say(
         &format!(
             "On its own {} the model seems to explain {{apparent r²|%}}, on {} that it has not \
@@ -37,8 +47,11 @@ pub fn answer(chain: &Chain<'_>, source: &Source<'_>) -> Paragraph {
 
 /// The rest of the answer.
 #[must_use]
-pub fn blocks(source: &Source<'_>) -> Vec<Block> {
-    let mut blocks: Vec<Block> = figure(source).map(Block::Figure).into_iter().collect();
+pub fn blocks(chain: &Chain<'_>, source: &Source<'_>) -> Vec<Block> {
+    let mut blocks: Vec<Block> = figure(chain, source)
+        .map(Block::Figure)
+        .into_iter()
+        .collect();
     blocks
         .extend(Grid::of_table("The ladder", source.cell, source.facts, "ladder").map(Block::Grid));
     let sealed = source.given(&[
@@ -58,9 +71,11 @@ pub fn blocks(source: &Source<'_>) -> Vec<Block> {
     blocks
 }
 
-fn figure(source: &Source<'_>) -> Option<NamedFigure> {
+fn figure(chain: &Chain<'_>, source: &Source<'_>) -> Option<NamedFigure> {
     let table = source.rows("ladder")?;
-    let steps: Vec<Step> = (0..table.n_rows()).map(|row| step(table, row)).collect();
+    let steps: Vec<Step> = (0..table.n_rows())
+        .map(|row| step(table, row, chain))
+        .collect();
     let error = table
         .column("rmse")
         .map_or_else(|| "RMSE".to_owned(), |column| with_comma(&column.unit));
@@ -104,7 +119,7 @@ fn range(table: &FactTable) -> Option<(f64, f64)> {
     (lowest >= 0.0 && lowest.is_finite()).then_some((0.0, 1.0))
 }
 
-fn step(table: &FactTable, row: usize) -> Step {
+fn step(table: &FactTable, row: usize, chain: &Chain<'_>) -> Step {
     let name = table.texts("step").get(row).cloned().unwrap_or_default();
     let number = |column: &str| table.numbers(column).get(row).copied().unwrap_or(f64::NAN);
     let text = |column: &str| {
@@ -136,11 +151,24 @@ fn step(table: &FactTable, row: usize) -> Step {
         .column("rmse")
         .map_or_else(String::new, |column| column.shown(row));
     Step {
-        name,
+        name: in_words(&name, chain),
         known,
         text: text("r²"),
         cells: vec![rmse],
         tip: None,
+    }
+}
+
+/// The name of a step in the study's own words.
+fn in_words(name: &str, chain: &Chain<'_>) -> String {
+    let unit = noun::unit(chain.settings());
+    match name {
+        "whole batches held out" => {
+            format!("whole {} held out", noun::batch(chain.settings()).many)
+        }
+        "rows split" => format!("{} split between parts", unit.many),
+        "sealed set" => format!("sealed {}", unit.many),
+        other => other.to_owned(),
     }
 }
 
@@ -151,20 +179,31 @@ pub fn methods(context: &Context<'_>, chain: &Chain<'_>, source: &Source<'_>) ->
     let batch = noun::batch(chain.settings());
     let mut telling = Telling::new();
     telling.say(source.say(
-        &format!(
-            "The share of variation explained was found in steps of rising honesty: {{apparent r²}} \
-             on the samples that the model was fitted to (apparent), {{tuning r²}} on the inner \
-             held-out parts that chose the strength (tuning; both flatter) and {{nested r²}} on \
-             outer held-out parts with {} kept together (nested).",
-            unit.many
-        ),
+        "The share of variation explained was {apparent r²} on the samples that the model was \
+         fitted to (apparent), which flatters.",
         &[],
     ));
+    if source.has("tuning r²") {
+        telling.say(source.say(
+            "On the inner held-out parts that chose the strength it was {tuning r²} (tuning), which \
+             flatters too.",
+            &[],
+        ));
+    }
+    if source.has("nested r²") {
+        telling.say(source.say(
+            &format!(
+                "On outer held-out parts with {} kept together it was {{nested r²}} (nested).",
+                unit.many
+            ),
+            &[],
+        ));
+    }
     if source.has("ungrouped r²") {
         telling.say(source.say(
             &format!(
                 "Had samples of one {} been split between parts, {{ungrouped r²}} would have been \
-                 claimed, which flatters too.",
+                 claimed.",
                 unit.one
             ),
             &[],

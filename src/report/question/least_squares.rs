@@ -5,7 +5,9 @@ use crate::figure::shape::spectrum::Spectrum;
 use crate::figure::shape::{Caption, Heading};
 use crate::figure::{Meaning, Tip};
 use crate::report::block::{Block, Grid, NamedFigure, Paragraph};
+use crate::report::chain::Chain;
 use crate::report::tell::{Source, Telling};
+use crate::study::settings::fit::Penalty;
 
 /// The answer in one sentence.
 #[must_use]
@@ -19,16 +21,23 @@ pub fn answer(source: &Source<'_>) -> Paragraph {
         )
     } else {
         source.say(
-            "Least squares has an answer here, but a fragile one: the largest eigenvalue is \
-             {condition number} times the smallest; the penalty brings that down to {penalised \
-             condition number} times.",
+            "Least squares has one answer here, but it can be a fragile one: the largest eigenvalue \
+             is {condition number} times the smallest.",
             &[],
         )
     }
 }
 
+/// Whether the penalty has no squared part, so that it makes the answer unique in another way: by
+/// leaving predictors out. What a ridge penalty of the same strength would do is shown instead.
+fn is_lasso(chain: &Chain<'_>) -> bool {
+    chain
+        .fit
+        .is_some_and(|(_, fit)| matches!(fit.penalty, Penalty::Lasso))
+}
+
 /// The facts of the grid.
-const NUMBERS: [&str; 11] = [
+const NUMBERS: [&str; 12] = [
     "samples",
     "predictors",
     "rank",
@@ -37,6 +46,7 @@ const NUMBERS: [&str; 11] = [
     "smallest positive eigenvalue",
     "condition number",
     "penalised condition number",
+    "penalty added",
     "chosen strength",
     "effective degrees of freedom",
     "participation ratio",
@@ -44,8 +54,11 @@ const NUMBERS: [&str; 11] = [
 
 /// The rest of the answer.
 #[must_use]
-pub fn blocks(source: &Source<'_>) -> Vec<Block> {
-    let mut blocks: Vec<Block> = figure(source).map(Block::Figure).into_iter().collect();
+pub fn blocks(chain: &Chain<'_>, source: &Source<'_>) -> Vec<Block> {
+    let mut blocks: Vec<Block> = figure(chain, source)
+        .map(Block::Figure)
+        .into_iter()
+        .collect();
     let numbers = source
         .facts
         .all()
@@ -60,7 +73,7 @@ pub fn blocks(source: &Source<'_>) -> Vec<Block> {
     blocks
 }
 
-fn figure(source: &Source<'_>) -> Option<NamedFigure> {
+fn figure(chain: &Chain<'_>, source: &Source<'_>) -> Option<NamedFigure> {
     let table = source.rows("spectrum")?;
     let eigenvalues = table.numbers("eigenvalue");
     let text = |column: &str, row: usize| {
@@ -68,10 +81,15 @@ fn figure(source: &Source<'_>) -> Option<NamedFigure> {
             .column(column)
             .map_or_else(String::new, |column| column.shown(row))
     };
+    let lifted = if is_lasso(chain) {
+        "with a ridge penalty of the chosen strength"
+    } else {
+        "with the penalty"
+    };
     let tip = |row: usize| {
         let direction = format!("direction {}", text("direction", row));
         let words = format!(
-            "{direction}: eigenvalue {}, with the penalty {}, share left {}",
+            "{direction}: eigenvalue {}, {lifted} {}, share left {}",
             text("eigenvalue", row),
             text("penalised eigenvalue", row),
             text("shrinkage factor", row)
@@ -80,10 +98,9 @@ fn figure(source: &Source<'_>) -> Option<NamedFigure> {
     };
     let shape = Spectrum {
         caption: Caption {
-            title: "Eigenvalues of the predictors’ cross-products, without and with the penalty"
-                .to_owned(),
+            title: format!("Eigenvalues of the predictors’ cross-products, without and {lifted}"),
             description: format!(
-                "{} directions, from the strongest to the weakest, with and without the penalty.",
+                "{} directions, from the strongest to the weakest.",
                 number::text(eigenvalues.len() as f64, Precision::Whole)
             ),
             empty: "No spectrum is known.".to_owned(),
@@ -93,7 +110,11 @@ fn figure(source: &Source<'_>) -> Option<NamedFigure> {
         eigenvalues: eigenvalues.to_vec(),
         own_label: "without penalty".to_owned(),
         lifted: table.numbers("penalised eigenvalue").to_vec(),
-        lifted_label: "with penalty".to_owned(),
+        lifted_label: if is_lasso(chain) {
+            "with a ridge penalty".to_owned()
+        } else {
+            "with penalty".to_owned()
+        },
         factor: "share left".to_owned(),
         factors: table.numbers("shrinkage factor").to_vec(),
         tips: (0..eigenvalues.len()).map(tip).collect(),
@@ -102,7 +123,7 @@ fn figure(source: &Source<'_>) -> Option<NamedFigure> {
         name: "spectrum".to_owned(),
         figure: shape.figure(),
         reading: Paragraph::of(
-            "How many independent directions the data really have, and which of them the penalty \
+            "How many independent directions the data really have, and which of them a penalty \
              mutes.",
         ),
     })
@@ -110,7 +131,7 @@ fn figure(source: &Source<'_>) -> Option<NamedFigure> {
 
 /// The paragraphs of the methods.
 #[must_use]
-pub fn methods(source: &Source<'_>) -> Vec<Paragraph> {
+pub fn methods(chain: &Chain<'_>, source: &Source<'_>) -> Vec<Paragraph> {
     let mut telling = Telling::new();
     telling.say(source.say(
         "The cross-products of the centred and scaled predictors (⟨XᵀX⟩, {predictors} rows and \
@@ -119,11 +140,23 @@ pub fn methods(source: &Source<'_>) -> Vec<Paragraph> {
          rank.",
         &[],
     ));
+    telling.say(if is_lasso(chain) {
+        source.say(
+            "Their condition number was {condition number}; that of the predictors alone that the \
+             lasso chose at the strength {chosen strength} was {penalised condition number}. A \
+             ridge penalty of the same strength would add {penalty added} to every eigenvalue.",
+            &[],
+        )
+    } else {
+        source.say(
+            "Their condition number was {condition number}; with {penalty added} added to every \
+             eigenvalue by the squared part of the penalty at the chosen strength {chosen strength} \
+             it was {penalised condition number}.",
+            &[],
+        )
+    });
     telling.say(source.say(
-        "Their condition number was {condition number}; with the chosen strength {chosen strength} \
-         added to every eigenvalue (in the scaling of the objective) it was {penalised condition \
-         number}, and the squared penalty of that strength would leave {effective degrees of \
-         freedom} effective degrees of freedom.",
+        "The final fit used {effective degrees of freedom} effective degrees of freedom.",
         &[],
     ));
     telling.done()

@@ -181,7 +181,7 @@ fn paragraphs(report: &CellReport) -> Vec<Paragraph> {
     all
 }
 
-fn table<'f>(context: &'f Context<'_>, cell: CellId, fact: &str) -> Option<FactTable> {
+fn table(context: &Context<'_>, cell: CellId, fact: &str) -> Option<FactTable> {
     match &context.outcome(cell)?.facts.get(fact)?.value {
         FactValue::Table(table) => Some(table.clone()),
         FactValue::Number(_) | FactValue::Text(_) => None,

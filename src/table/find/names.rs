@@ -64,10 +64,10 @@ pub fn repeats(table: &Table, samples: usize) -> Option<Finding> {
     );
     finding.add_column(&table.columns()[samples].name);
     for (row, (label, stem)) in labels.iter().zip(&stems).enumerate() {
-        if let (Some(label), Some(stem)) = (label, stem) {
-            if counts[stem.as_str()] > 1 {
-                finding.add(|| table.place(row, samples), label);
-            }
+        if let (Some(label), Some(stem)) = (label, stem)
+            && counts[stem.as_str()] > 1
+        {
+            finding.add(|| table.place(row, samples), label);
         }
     }
     Some(finding)
@@ -95,10 +95,11 @@ pub fn stems(labels: &[Option<String>]) -> Option<Vec<Option<String>>> {
         }
     }
     let named: usize = members.values().map(Vec::len).sum();
+    // The same name twice is a repeated name, not a repeat of a unit.
     let with_siblings: usize = members
         .values()
+        .filter(|labels| labels.iter().any(|label| label != &labels[0]))
         .map(Vec::len)
-        .filter(|&count| count > 1)
         .sum();
     // Fewer than three units: “K-1 … K-40” is a count of samples of one sort, not of repeats.
     // And a unit of more than half of all samples is a sort of samples, too.
@@ -150,12 +151,12 @@ fn stem(label: &str) -> Option<&str> {
         return None;
     }
     // “K-1 rep 2”: the word may stand apart from its number.
-    if word.is_empty() {
-        if let Some(cut) = stem.rfind(['_', '-', '.', ' ']) {
-            let before = stem[cut + 1..].to_lowercase();
-            if WORDS.contains(&before.as_str()) && cut > 0 {
-                return Some(&stem[..cut]);
-            }
+    if word.is_empty()
+        && let Some(cut) = stem.rfind(['_', '-', '.', ' '])
+    {
+        let before = stem[cut + 1..].to_lowercase();
+        if WORDS.contains(&before.as_str()) && cut > 0 {
+            return Some(&stem[..cut]);
         }
     }
     Some(stem)

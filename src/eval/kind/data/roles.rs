@@ -509,10 +509,6 @@ fn covariates(
     Ok((matrix, column_names))
 }
 
-#[expect(
-    clippy::too_many_arguments,
-    reason = "the sealed set may be named by any of these"
-)]
 fn sealed(
     settings: &Data,
     table: &Table,

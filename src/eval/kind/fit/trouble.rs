@@ -72,6 +72,7 @@ fn fit_problem(error: FitError) -> Problem {
         FitError::OneClass => {
             "A training part holds a single class, so nothing can be told apart.".to_owned()
         }
+        FitError::EmptyClass(_) => "A training part lacks one of the classes.".to_owned(),
         FitError::NoEvents => "A training part holds no event.".to_owned(),
         FitError::NoCounts => "All counts of a training part are 0.".to_owned(),
         FitError::Strength(strength) => format!(

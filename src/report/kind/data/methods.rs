@@ -62,7 +62,7 @@ fn read(source: &Source<'_>, table: &FactTable, row: usize) -> Paragraph {
     }
     said = entry(said.text(" ("), "bytes").text(" bytes, ");
     said = entry(said.formula("SHA-256").text(" "), "sha-256").text("; ");
-    said = entry(said, "rows read").text(" rows and ");
+    said = entry(said, "rows read").text(" samples or things in ");
     said = entry(said, "columns read").text(" columns; ");
     entry(said, "orientation").text(").")
 }
@@ -73,8 +73,8 @@ fn joined(source: &Source<'_>, table: &FactTable, row: usize) -> Paragraph {
         ("“", "table"),
         ("” was joined on “", "key"),
         ("” (samples that found their row: ", "matched"),
-        ("; samples that did not: ", "only left"),
-        ("; rows that belonged to no sample: ", "only right"),
+        ("; names only in the tables before: ", "only left"),
+        ("; names only in this table: ", "only right"),
         ("; names that occurred in it more than once: ", "repeated"),
     ] {
         said = said
@@ -87,7 +87,7 @@ fn joined(source: &Source<'_>, table: &FactTable, row: usize) -> Paragraph {
 fn flow(telling: &mut Telling, data: &Data, source: &Source<'_>) {
     let units = noun::unit(Some(data));
     let samples = noun::sample(Some(data));
-    let read = if data.tables.len() > 1 {
+    let read = if data.tables.len() > 1 && source.has("samples joined") {
         format!(
             "Of {{samples read}} [{}|{}] read, {{samples joined}} remained after joining.",
             samples.one, samples.many
@@ -187,7 +187,15 @@ fn acts(telling: &mut Telling, source: &Source<'_>, fact: &str, opening: &str) {
             said = entry(said.text("” to “"), "to").text("”");
         }
         said = entry(said.text(" (reason: "), "reason");
-        said = entry(said.text("; outcome seen: "), "outcome seen").text(")");
+        let is_said = table
+            .texts("outcome seen")
+            .get(row)
+            .is_some_and(|seen| seen != "not said");
+        said = if is_said {
+            entry(said.text("; "), "outcome seen").text(")")
+        } else {
+            said.text("; not said whether the outcome had been seen)")
+        };
     }
     telling.say(said.text("."));
 }
@@ -199,11 +207,11 @@ fn outcome(telling: &mut Telling, source: &Source<'_>) {
         .is_some_and(|unit| !unit.is_empty());
     telling.say(if unit {
         source.say(
-            "The outcome was “{outcome}”, a {outcome kind} in {outcome unit}.",
+            "The outcome was “{outcome}” ({outcome kind}), in {outcome unit}.",
             &[],
         )
     } else {
-        source.say("The outcome was “{outcome}”, a {outcome kind}.", &[])
+        source.say("The outcome was “{outcome}” ({outcome kind}).", &[])
     });
     if source.has("outcome mean") {
         telling.say(source.say(
@@ -254,13 +262,19 @@ fn predictors(telling: &mut Telling, source: &Source<'_>) {
             &[],
         ));
     }
+    if source.has("weight column") {
+        telling.say(source.say(
+            "Samples were weighted by the column “{weight column}”.",
+            &[],
+        ));
+    }
     if source.is_above_zero("missing values") {
         telling.say(source.say(
             "{missing values} of the predictors’ values ({missing share}) were missing, at most \
              {largest missing share} for one predictor.",
             &[],
         ));
-    } else {
+    } else if source.value("missing values") == Some(0.0) {
         telling.say(source.say("No value of a predictor was missing.", &[]));
     }
     if source.is_above_zero("below-limit values") {

@@ -184,23 +184,27 @@ fn plan(source: &Source<'_>, plan: Plan, unit: &Noun, batch: &Noun, level: &str)
     } else {
         String::new()
     };
+    let whole = |unit: &Noun| {
+        if unit.one == "sample" {
+            "samples".to_owned()
+        } else {
+            format!("whole {}", unit.many)
+        }
+    };
     let pattern = match plan.scheme {
         Scheme::Units => format!(
-            "{{{level} parts}} {level} parts of whole {} at random{drawn}",
-            unit.many
+            "{{{level} parts}} {level} parts of {} at random{drawn}",
+            whole(unit)
         ),
         Scheme::Balanced => format!(
-            "{{{level} parts}} {level} parts of whole {} at random, balanced by the outcome{drawn}",
-            unit.many
+            "{{{level} parts}} {level} parts of {} at random, balanced by the outcome{drawn}",
+            whole(unit)
         ),
-        Scheme::WholeBatches => format!(
-            "{{{level} parts}} {level} parts, each of them one whole {}",
-            batch.one
-        ),
-        Scheme::LeaveOneUnitOut => format!(
-            "{{{level} parts}} {level} parts, each of them one {}",
-            unit.one
-        ),
+        // These schemes fix the number of parts, whatever number is written down.
+        Scheme::WholeBatches => format!("each {} held out in turn as an {level} part", batch.one),
+        Scheme::LeaveOneUnitOut => {
+            format!("each {} held out in turn as an {level} part", unit.one)
+        }
         Scheme::Blocks => format!(
             "{{{level} parts}} {level} parts of {} that follow each other in order of measurement",
             unit.many
@@ -253,15 +257,16 @@ fn judged(telling: &mut Telling, fit: &Fit, source: &Source<'_>, unit: &Noun, ba
         telling.end();
         return;
     };
+    let is_by_hand = matches!(fit.strength, Strength::ByHand(_));
     telling.say(
-        source
-            .say(
-                "The whole procedure, choice of strength included, was judged by nested \
-                 cross-validation with ",
-                &[],
-            )
-            .and(plan(source, outer, unit, batch, "outer"))
-            .text("."),
+        Paragraph::of(if is_by_hand {
+            "The whole procedure was judged by cross-validation with "
+        } else {
+            "The whole procedure, choice of strength included, was judged by nested \
+             cross-validation with "
+        })
+        .and(plan(source, outer, unit, batch, "outer"))
+        .text("."),
     );
     telling.say(Paragraph::of(format!(
         "No {} was divided between a training part and its held-out part at either level.",
@@ -271,10 +276,15 @@ fn judged(telling: &mut Telling, fit: &Fit, source: &Source<'_>, unit: &Noun, ba
     let holds = source.value("proof violations") == Some(0.0)
         && source.facts.words("judged") == Some("nested cross-validation");
     if holds {
-        telling.say(source.say(
+        telling.say(Paragraph::of(if is_by_hand {
+            "All learned steps were repeated within each outer training part."
+        } else {
             "All learned steps and the choice of strength were repeated within each outer training \
-             part; a check at run time of {learned steps checked} learned [step|steps] in {fits \
-             checked} [fit|fits] found none that had been learnt from a held-out sample.",
+             part."
+        }));
+        telling.say(source.say(
+            "A check at run time of {learned steps checked} learned [step|steps] in {fits checked} \
+             [fit|fits] found none that had been learnt from a held-out sample.",
             &[],
         ));
     }
@@ -291,14 +301,22 @@ fn seed(telling: &mut Telling, source: &Source<'_>) {
 }
 
 fn performance(telling: &mut Telling, source: &Source<'_>, unit: &Noun) {
+    let spread = if source.has("nested rmse spread") {
+        " (standard deviation over repeats {nested rmse spread})"
+    } else {
+        ""
+    };
     telling.say(source.say(
-        "On held-out samples the root mean squared error was {nested rmse} (standard deviation over \
-         repeats {nested rmse spread}) and the mean absolute error {nested mae}.",
+        &format!(
+            "On held-out samples the root mean squared error was {{nested rmse}}{spread} and the \
+             mean absolute error {{nested mae}}, over all samples of a repeat and averaged over \
+             repeats."
+        ),
         &[],
     ));
     telling.say(source.say(
-        "⟨R²⟩ was {nested r²}, defined as ⟨1 − SSE/SST⟩, the squared errors of held-out predictions \
-         over the squared deviations of the outcome from its mean.",
+        "⟨R²⟩ was {nested r²}, defined as ⟨1 − SSE/SST⟩: the squared errors of held-out predictions \
+         over the squared deviations of the outcome from the mean of the samples analysed.",
         &[],
     ));
     if source.has("nested rmse low") && source.has("nested rmse high") {

@@ -10,6 +10,7 @@ pub mod question;
 pub mod study;
 pub mod words;
 
+use crate::base::problem::Problem;
 use crate::store::format::FindTable;
 use crate::store::format::place::{At, Fault, Fields};
 use crate::study::cell::{CellId, Kind};
@@ -18,6 +19,9 @@ use crate::study::settings::Settings;
 use crate::study::settings::compare::Compare;
 use crate::study::settings::data::TableSource;
 use crate::study::settings::score::Score;
+use crate::study::settings::slot::Slot;
+use crate::study::settings::slot::fit::FitSlot;
+use crate::study::settings::slot::question::QuestionSlot;
 use serde_json::Value;
 
 pub use crate::store::format::v1::group::Group;
@@ -90,6 +94,27 @@ pub fn read_settings(
         }),
         Kind::Prose => Settings::Prose(prose::read(fields, reading)?),
     })
+}
+
+/// The first number in settings that lies outside what the one door to settings takes.
+///
+/// Counts without bounds could ask for more memory or time than there is. Seeds are spared: each
+/// is as good as any other. So are the settings of tables, which the reader of tables judges.
+#[must_use]
+pub fn out_of_bounds(settings: &Settings) -> Option<Problem> {
+    let is_judged = |slot: &Slot| match slot {
+        Slot::Fit(FitSlot::Seed) | Slot::Question(QuestionSlot::Seed) => false,
+        Slot::Prepare(_) | Slot::Fit(_) | Slot::Question(_) => slot.bounds().is_some(),
+        Slot::Data(_) | Slot::Compare(_) | Slot::Score(_) | Slot::Prose(_) => false,
+    };
+    settings
+        .slots()
+        .iter()
+        .filter(|slot| is_judged(slot))
+        .find_map(|slot| {
+            let value = settings.value(slot)?;
+            settings.with(slot, value).err()
+        })
 }
 
 /// Writes settings into the group of their cell.

@@ -4,7 +4,7 @@ use crate::base::problem::{Place, Problem};
 use crate::store::format::place::{At, Fault, Fields, Notes, way};
 use crate::store::format::v1::kept::{Positions, put_back};
 use crate::store::format::v1::{
-    Group, Reading, Writing, kind_of, kind_word, read_settings, write_settings,
+    Group, Reading, Writing, kind_of, kind_word, out_of_bounds, read_settings, write_settings,
 };
 use crate::store::format::{FindTable, Read};
 use crate::study::Study;
@@ -234,7 +234,16 @@ fn read_cell(entry: &At<'_>, outline: &Outline, reading: &Reading<'_>) -> (Setti
         let _ = (fields.get("id"), fields.get("kind"), fields.text("title")?);
         let settings = read_settings(kind, &mut fields, reading)?;
         fields.done();
-        Ok(settings)
+        match out_of_bounds(&settings) {
+            Some(problem) => {
+                let mut mend = problem.mend.join(" ");
+                if mend.is_empty() {
+                    mend = "Correct the number.".to_owned();
+                }
+                Err(At::top(entry.value(), &notes).fault(&problem.found, &mend))
+            }
+            None => Ok(settings),
+        }
     };
     let way_here = outline.way.clone();
     match read() {

@@ -138,10 +138,7 @@ fn slice(text: &str, start: usize, end: usize) -> &str {
 }
 
 fn trimmed_field<'a>(text: &'a str, field: &Field) -> Cow<'a, str> {
-    match field.text(text) {
-        Cow::Borrowed(text) => Cow::Borrowed(text),
-        Cow::Owned(text) => Cow::Owned(text),
-    }
+    field.text(text)
 }
 
 /// What each column is taken for, by its name and its first values.
@@ -646,12 +643,12 @@ fn across<'a>(
     let mut is_long = false;
     let found = scan(manner, record, |index, hit| {
         let Some(row) = index.checked_sub(first_sample) else {
-            if Some(index) == body.unit_column {
-                if let Hit::Other(field) = hit {
-                    let unit = field.text(manner.text);
-                    let unit = trimmed(&unit);
-                    raw.unit = (!unit.is_empty()).then(|| unit.to_owned());
-                }
+            if Some(index) == body.unit_column
+                && let Hit::Other(field) = hit
+            {
+                let unit = field.text(manner.text);
+                let unit = trimmed(&unit);
+                raw.unit = (!unit.is_empty()).then(|| unit.to_owned());
             }
             return;
         };

@@ -171,12 +171,20 @@ impl Harness {
         self.cache = Some(interface.into_cache());
     }
 
-    /// Where the first text that contains `words` lies, if it is on the page.
+    /// Where the smallest text that contains `words` lies, if it can be seen.
     pub fn find<'a, M: 'a>(&mut self, view: Element<'a, M>, words: &str) -> Option<Rectangle> {
         let mut find = Find {
             words: words.to_owned(),
+            window: Rectangle::with_size(self.size),
             found: None,
         };
+        self.operate(view, &mut find);
+        find.found
+    }
+
+    /// Where the thing lies that has the focus.
+    pub fn focused<'a, M: 'a>(&mut self, view: Element<'a, M>) -> Option<Rectangle> {
+        let mut find = crate::app::widget::focus::Find::default();
         self.operate(view, &mut find);
         find.found
     }
@@ -200,6 +208,7 @@ impl Harness {
 /// Looks for the smallest text that contains some words.
 struct Find {
     words: String,
+    window: Rectangle,
     found: Option<Rectangle>,
 }
 
@@ -212,7 +221,8 @@ impl<T> Operation<T> for Find {
         let is_smaller = self
             .found
             .is_none_or(|found| bounds.width * bounds.height < found.width * found.height);
-        if text.contains(&self.words) && is_smaller {
+        let is_seen = self.window.contains(bounds.center());
+        if text.contains(&self.words) && is_smaller && is_seen {
             self.found = Some(bounds);
         }
     }

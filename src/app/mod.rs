@@ -152,8 +152,9 @@ impl App {
     fn with(preferences: Preferences, folder: Option<PathBuf>, rescued: Vec<Rescued>) -> Self {
         let mode = match preferences.theme {
             crate::store::preferences::Theme::Dark => Mode::Dark,
-            crate::store::preferences::Theme::Light
-            | crate::store::preferences::Theme::System => Mode::Light,
+            crate::store::preferences::Theme::Light | crate::store::preferences::Theme::System => {
+                Mode::Light
+            }
         };
         Self {
             screen: Screen::Welcome(Welcome::default()),

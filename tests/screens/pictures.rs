@@ -66,7 +66,10 @@ fn holds(name: &str, shot: &Shot) {
     if !is_same {
         let left: PathBuf = root.join(format!("target/screens/{name}-actual.png"));
         write(&left, shot);
-        panic!("{name} differs from what was looked at; see {}", left.display());
+        panic!(
+            "{name} differs from what was looked at; see {}",
+            left.display()
+        );
     }
 }
 

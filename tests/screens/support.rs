@@ -1,6 +1,7 @@
 //! A window on a small invented study, and hands to work it with.
 
 use std::sync::Arc;
+use std::sync::Mutex;
 use widefold::app::App;
 use widefold::app::harness::{Harness, press};
 use widefold::app::session::Opened;
@@ -14,7 +15,6 @@ use widefold::eval::start::{Wishes, start};
 use widefold::store::Record;
 use widefold::study::settings::Settings;
 use widefold::study::settings::fit::{Fit, Judge, Plan, Scheme, Strength};
-use std::sync::Mutex;
 
 /// A window and what lies behind it.
 pub struct Bench {
@@ -39,7 +39,10 @@ fn table() -> String {
     for dish in 1..=24 {
         let readings: Vec<f64> = (0..30).map(|_| noise()).collect();
         let sweetness = 5.0 + 2.0 * readings[2] - 1.5 * readings[7] + 0.2 * noise();
-        text.push_str(&format!("\ndish {dish:02},oven {},{sweetness:.3}", dish % 3 + 1));
+        text.push_str(&format!(
+            "\ndish {dish:02},oven {},{sweetness:.3}",
+            dish % 3 + 1
+        ));
         for reading in readings {
             text.push_str(&format!(",{reading:.4}"));
         }
@@ -208,6 +211,13 @@ impl Bench {
         let mut focus = iced::advanced::widget::operation::focusable::focus::<()>(field);
         self.harness.operate(self.app.view(), &mut focus);
         self.act(&[]);
+    }
+
+    /// Whether a text that contains some words has the focus.
+    pub fn has_focus(&mut self, words: &str) -> bool {
+        let text = self.harness.find(self.app.view(), words);
+        let focus = self.harness.focused(self.app.view());
+        matches!((text, focus), (Some(text), Some(focus)) if text.intersects(&focus))
     }
 
     /// Moves the focus on, as the Tab key does.

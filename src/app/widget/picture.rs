@@ -83,7 +83,7 @@ struct State {
     /// One for each run of marks.
     marks: Vec<canvas::Cache>,
     made_of: Option<(ContentHash, Mode)>,
-    hovered: Option<(Point, Spot)>,
+    hovered: Option<Spot>,
     /// Where the strength is being dragged to, from the left of the picture.
     drag: Option<f32>,
     pressed: Option<Point>,
@@ -139,13 +139,9 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for Shown<'a, M> {
                     }
                     return;
                 }
-                let hovered = inside.and_then(|at| {
-                    let spot = self.picture.spot_at(place(at))?;
-                    Some((at, spot.clone()))
-                });
-                let was = state.hovered.as_ref().map(|(_, spot)| &spot.text);
-                if was != hovered.as_ref().map(|(_, spot)| &spot.text) {
-                    state.hovered = hovered;
+                let hovered = inside.and_then(|at| self.picture.spot_at(place(at)));
+                if state.hovered.as_ref() != hovered {
+                    state.hovered = hovered.cloned();
                     shell.request_redraw();
                 }
             }
@@ -204,7 +200,7 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for Shown<'a, M> {
         theme: &iced::Theme,
         _style: &renderer::Style,
         layout: Layout<'_>,
-        _cursor: mouse::Cursor,
+        cursor: mouse::Cursor,
         viewport: &Rectangle,
     ) {
         let state = tree.state.downcast_ref::<State>();
@@ -272,8 +268,10 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for Shown<'a, M> {
         }
         if let Some(x) = state.drag {
             self.draw_drag(renderer, theme, state, bounds, shown, x);
-        } else if let Some((at, spot)) = &state.hovered {
-            told(renderer, theme, &spot.text, *at + origin, shown);
+        } else if let Some(at) = cursor.position_over(shown)
+            && let Some(spot) = self.picture.spot_at(place(at - origin))
+        {
+            told(renderer, theme, &spot.text, at, shown);
         }
     }
 
@@ -425,8 +423,10 @@ fn told(
 fn level(renderer: &mut iced::Renderer, word: &Word, origin: Vector, mode: Mode) {
     let size = word.size as f32;
     let line = size * 1.5;
+    // Always set from the left: the toolkit takes what changed of a text to lie to the right of
+    // its place, whatever its alignment.
     let at = Point::new(
-        word.at.x as f32,
+        word.rect().x as f32,
         word.at.y as f32 - text::baseline(size, line),
     );
     renderer.fill_text(
@@ -436,11 +436,7 @@ fn level(renderer: &mut iced::Renderer, word: &Word, origin: Vector, mode: Mode)
             size: Pixels(size),
             line_height: LineHeight::Absolute(Pixels(line)),
             font: text::face(word.face),
-            align_x: match word.anchor {
-                Anchor::Start => iced::advanced::text::Alignment::Left,
-                Anchor::Middle => iced::advanced::text::Alignment::Center,
-                Anchor::End => iced::advanced::text::Alignment::Right,
-            },
+            align_x: iced::advanced::text::Alignment::Left,
             align_y: alignment::Vertical::Top,
             shaping: iced::advanced::text::Shaping::Auto,
             wrapping: Wrapping::None,

@@ -208,7 +208,9 @@ impl<'a, M: Clone + 'a> Widget<M, iced::Theme, iced::Renderer> for Press<'a, M> 
         viewport: &Rectangle,
     ) {
         let state = tree.state.downcast_ref::<State>();
-        let hover = match (&self.on_press, state.is_hovered) {
+        // Asked now and not remembered: a page that scrolls moves things away from the pointer.
+        let shown = layout.bounds().intersection(viewport).unwrap_or_default();
+        let hover = match (&self.on_press, cursor.is_over(shown)) {
             (None, _) => Hover::Off,
             (Some(_), true) => Hover::Over,
             (Some(_), false) => Hover::Away,

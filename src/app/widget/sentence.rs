@@ -366,7 +366,7 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for Sentence<'a, M> {
         theme: &iced::Theme,
         _style: &renderer::Style,
         layout: Layout<'_>,
-        _cursor: mouse::Cursor,
+        cursor: mouse::Cursor,
         viewport: &Rectangle,
     ) {
         let state = tree.state.downcast_ref::<State>();
@@ -376,8 +376,12 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for Sentence<'a, M> {
         };
         let colors = theme::colors(theme);
         let origin = layout.position() - Point::ORIGIN;
+        // Asked now and not remembered: a page that scrolls moves words away from the pointer.
+        let hovered = cursor
+            .position_over(shown)
+            .and_then(|at| state.word_at(at - origin));
         for (at, piece) in self.pieces.iter().enumerate() {
-            let is_hovered = state.hovered == Some(at) && self.is_pressable(at);
+            let is_hovered = hovered == Some(at) && self.is_pressable(at);
             let ground = match piece.role {
                 Role::Open if self.on_press.is_some() => Some(colors.selected),
                 _ if is_hovered => Some(colors.hover),

@@ -346,9 +346,14 @@ fn set(renderer: &mut iced::Renderer, set: &Set<'_>, area: Rectangle) {
     if words.is_empty() {
         return;
     }
+    // Always set from the left: the toolkit takes what changed of a text to lie to the right of
+    // its place, whatever its alignment. Figures have no kerning, so that this is exact for them.
     let x = match set.align {
         Align::Start => set.field.x + space::SMALL,
-        Align::End => set.field.x + set.field.width - space::SMALL,
+        Align::End => {
+            let width = metrics::width(&words, set.face, size) as f32;
+            set.field.x + set.field.width - space::SMALL - width
+        }
     };
     let y = set.field.y + (set.field.height - text::SMALL_LINE) / 2.0;
     if !set.field.intersects(&area) {
@@ -365,10 +370,7 @@ fn set(renderer: &mut iced::Renderer, set: &Set<'_>, area: Rectangle) {
             size: Pixels(text::SMALL),
             line_height: LineHeight::Absolute(Pixels(text::SMALL_LINE)),
             font: set.font,
-            align_x: match set.align {
-                Align::Start => iced::advanced::text::Alignment::Left,
-                Align::End => iced::advanced::text::Alignment::Right,
-            },
+            align_x: iced::advanced::text::Alignment::Left,
             align_y: alignment::Vertical::Top,
             shaping: if is_ascii {
                 Shaping::Basic
@@ -377,7 +379,7 @@ fn set(renderer: &mut iced::Renderer, set: &Set<'_>, area: Rectangle) {
             },
             wrapping: Wrapping::None,
         },
-        Point::new(x.round(), y.round()),
+        Point::new(x, y.round()),
         set.color,
         clip,
     );

@@ -29,6 +29,8 @@ const WHEEL_ROWS: f32 = 3.0;
 const WHEEL_COLUMNS: f32 = 1.0;
 /// The narrowest and the widest a column gets.
 const WIDTHS: (f32, f32) = (56.0, 220.0);
+/// The widest that a last column of words gets.
+const WIDEST: f32 = 640.0;
 /// How many names are measured for the width of the name column.
 const MEASURED: usize = 400;
 /// Two presses within this time open a value.
@@ -395,7 +397,14 @@ impl<'a, M> Grid<'a, M> {
                 metrics::width(&remark, Face::Sans, size) as f32
             });
             let width = name.max(fields).max(remark) + 2.0 * space::SMALL;
-            start += width.clamp(WIDTHS.0, WIDTHS.1).round();
+            // Words in the last column have all the room that is left.
+            let is_last = column + 1 == source.n_columns();
+            let widest = if is_last && source.align(column) == Align::Start {
+                WIDEST
+            } else {
+                WIDTHS.1
+            };
+            start += width.clamp(WIDTHS.0, widest).round();
             state.starts.push(start);
         }
         let names = (0..source.n_rows().min(MEASURED))

@@ -107,7 +107,7 @@ pub fn roles(table: &Table) -> Proposals {
         .iter()
         .map(|&at| &table.columns()[at])
         .find(|column| says(&column.name, ORDER))
-        .map(|column| by_name(column));
+        .map(by_name);
     for &at in &free {
         let column = &table.columns()[at];
         if says(&column.name, BATCH) && repeats(column) {

@@ -81,8 +81,8 @@ pub fn batch(table: &Table, outcome: usize, batch: usize) -> Vec<Finding> {
             let Some(numbers) = column.as_numbers() else {
                 return findings;
             };
-            if let Some((eta, corrected, count)) = eta_squared(numbers.values(), &batches) {
-                if eta >= ETA_SQUARED && corrected >= ETA_SQUARED / 2.0 {
+            if let Some((eta, corrected, count)) = eta_squared(numbers.values(), &batches)
+                && eta >= ETA_SQUARED && corrected >= ETA_SQUARED / 2.0 {
                     let strength = Association::EtaSquared(eta);
                     report(
                         FindingKind::BatchWithOutcome {
@@ -92,7 +92,6 @@ pub fn batch(table: &Table, outcome: usize, batch: usize) -> Vec<Finding> {
                         count,
                     );
                 }
-            }
         }
     }
     findings

@@ -64,11 +64,10 @@ pub fn repeats(table: &Table, samples: usize) -> Option<Finding> {
     );
     finding.add_column(&table.columns()[samples].name);
     for (row, (label, stem)) in labels.iter().zip(&stems).enumerate() {
-        if let (Some(label), Some(stem)) = (label, stem) {
-            if counts[stem.as_str()] > 1 {
+        if let (Some(label), Some(stem)) = (label, stem)
+            && counts[stem.as_str()] > 1 {
                 finding.add(|| table.place(row, samples), label);
             }
-        }
     }
     Some(finding)
 }
@@ -151,14 +150,13 @@ fn stem(label: &str) -> Option<&str> {
         return None;
     }
     // “K-1 rep 2”: the word may stand apart from its number.
-    if word.is_empty() {
-        if let Some(cut) = stem.rfind(['_', '-', '.', ' ']) {
+    if word.is_empty()
+        && let Some(cut) = stem.rfind(['_', '-', '.', ' ']) {
             let before = stem[cut + 1..].to_lowercase();
             if WORDS.contains(&before.as_str()) && cut > 0 {
                 return Some(&stem[..cut]);
             }
         }
-    }
     Some(stem)
 }
 

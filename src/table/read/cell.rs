@@ -299,7 +299,7 @@ pub fn is_unit(text: &str) -> bool {
     };
     is_wrapped
         || WHOLE.contains(&bare)
-        || bare.split('/').all(|part| known(part)) && bare.contains('/')
+        || bare.split('/').all(&known) && bare.contains('/')
         || bare.split([' ', '·', '*']).all(known) && bare.contains([' ', '·', '*'])
 }
 

@@ -188,8 +188,8 @@ pub fn field(text: &[u8], at: usize, end: usize, dialect: Dialect) -> Field {
         .iter()
         .position(|&byte| !dialect.is_padding(byte))
         .map_or(end, |padding| at + padding);
-    if first < end && text[first] == QUOTE && first < dialect.quotes_until {
-        if let Some(close) = closing(&text[..end], first + 1) {
+    if first < end && text[first] == QUOTE && first < dialect.quotes_until
+        && let Some(close) = closing(&text[..end], first + 1) {
             let next = rest(text, close + 1, end, dialect);
             let is_bare = text[close + 1..next]
                 .iter()
@@ -210,7 +210,6 @@ pub fn field(text: &[u8], at: usize, end: usize, dialect: Dialect) -> Field {
                 next,
             };
         }
-    }
     let next = if dialect.delimiter == Delimiter::Blanks {
         rest(text, at, end, dialect)
     } else {

@@ -1,6 +1,7 @@
 //! Delimited text: from letters to columns, in parallel.
 
 mod body;
+mod sideways;
 
 use crate::base::layout::{DecimalMark, Delimiter, Grouping, Orientation, UnitsRow};
 use crate::base::problem::Place;
@@ -129,12 +130,12 @@ fn without_declaration(text: &str) -> (&str, Option<Delimiter>) {
         ("sep=|", Delimiter::Bar),
     ];
     for (line, delimiter) in known {
-        if let Some(rest) = text.strip_prefix(line) {
-            if rest.starts_with(['\n', '\r']) {
-                // The line stays, so that rows are counted as in the file; it holds no delimiter
-                // of its own and is left out as a line above the header.
-                return (text, Some(delimiter));
-            }
+        if let Some(rest) = text.strip_prefix(line)
+            && rest.starts_with(['\n', '\r'])
+        {
+            // The line stays, so that rows are counted as in the file; it holds no delimiter
+            // of its own and is left out as a line above the header.
+            return (text, Some(delimiter));
         }
     }
     (text, None)

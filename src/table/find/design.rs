@@ -82,16 +82,18 @@ pub fn batch(table: &Table, outcome: usize, batch: usize) -> Vec<Finding> {
                 return findings;
             };
             if let Some((eta, corrected, count)) = eta_squared(numbers.values(), &batches)
-                && eta >= ETA_SQUARED && corrected >= ETA_SQUARED / 2.0 {
-                    let strength = Association::EtaSquared(eta);
-                    report(
-                        FindingKind::BatchWithOutcome {
-                            batch: name.clone(),
-                            strength,
-                        },
-                        count,
-                    );
-                }
+                && eta >= ETA_SQUARED
+                && corrected >= ETA_SQUARED / 2.0
+            {
+                let strength = Association::EtaSquared(eta);
+                report(
+                    FindingKind::BatchWithOutcome {
+                        batch: name.clone(),
+                        strength,
+                    },
+                    count,
+                );
+            }
         }
     }
     findings

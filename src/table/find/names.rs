@@ -65,9 +65,10 @@ pub fn repeats(table: &Table, samples: usize) -> Option<Finding> {
     finding.add_column(&table.columns()[samples].name);
     for (row, (label, stem)) in labels.iter().zip(&stems).enumerate() {
         if let (Some(label), Some(stem)) = (label, stem)
-            && counts[stem.as_str()] > 1 {
-                finding.add(|| table.place(row, samples), label);
-            }
+            && counts[stem.as_str()] > 1
+        {
+            finding.add(|| table.place(row, samples), label);
+        }
     }
     Some(finding)
 }
@@ -151,12 +152,13 @@ fn stem(label: &str) -> Option<&str> {
     }
     // “K-1 rep 2”: the word may stand apart from its number.
     if word.is_empty()
-        && let Some(cut) = stem.rfind(['_', '-', '.', ' ']) {
-            let before = stem[cut + 1..].to_lowercase();
-            if WORDS.contains(&before.as_str()) && cut > 0 {
-                return Some(&stem[..cut]);
-            }
+        && let Some(cut) = stem.rfind(['_', '-', '.', ' '])
+    {
+        let before = stem[cut + 1..].to_lowercase();
+        if WORDS.contains(&before.as_str()) && cut > 0 {
+            return Some(&stem[..cut]);
         }
+    }
     Some(stem)
 }
 

@@ -139,11 +139,13 @@ pub fn read(
     let work = work.part(0.1..1.0);
     let mut outcome = text::read(&letters.text, file_name, &options, threads, &work)?;
     if let Ok(reading) = &mut outcome
-        && is_guessed && letters.encoding != Encoding::Utf8 {
-            let kind = FindingKind::OtherEncoding(letters.encoding);
-            let finding = Finding::new(kind, Treatment::ReadAsSuch).counting(1);
-            reading.findings.insert(0, finding);
-        }
+        && is_guessed
+        && letters.encoding != Encoding::Utf8
+    {
+        let kind = FindingKind::OtherEncoding(letters.encoding);
+        let finding = Finding::new(kind, Treatment::ReadAsSuch).counting(1);
+        reading.findings.insert(0, finding);
+    }
     Ok(outcome)
 }
 

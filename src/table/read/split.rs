@@ -188,28 +188,31 @@ pub fn field(text: &[u8], at: usize, end: usize, dialect: Dialect) -> Field {
         .iter()
         .position(|&byte| !dialect.is_padding(byte))
         .map_or(end, |padding| at + padding);
-    if first < end && text[first] == QUOTE && first < dialect.quotes_until
-        && let Some(close) = closing(&text[..end], first + 1) {
-            let next = rest(text, close + 1, end, dialect);
-            let is_bare = text[close + 1..next]
-                .iter()
-                .all(|&byte| dialect.is_padding(byte));
-            if is_bare {
-                return Field {
-                    start: first + 1,
-                    end: close,
-                    is_doubled: memchr(QUOTE, &text[first + 1..close]).is_some(),
-                    next,
-                };
-            }
-            // Letters behind the closing mark: nothing may get lost, so the marks are letters too.
+    if first < end
+        && text[first] == QUOTE
+        && first < dialect.quotes_until
+        && let Some(close) = closing(&text[..end], first + 1)
+    {
+        let next = rest(text, close + 1, end, dialect);
+        let is_bare = text[close + 1..next]
+            .iter()
+            .all(|&byte| dialect.is_padding(byte));
+        if is_bare {
             return Field {
-                start: first,
-                end: next,
-                is_doubled: false,
+                start: first + 1,
+                end: close,
+                is_doubled: memchr(QUOTE, &text[first + 1..close]).is_some(),
                 next,
             };
         }
+        // Letters behind the closing mark: nothing may get lost, so the marks are letters too.
+        return Field {
+            start: first,
+            end: next,
+            is_doubled: false,
+            next,
+        };
+    }
     let next = if dialect.delimiter == Delimiter::Blanks {
         rest(text, at, end, dialect)
     } else {

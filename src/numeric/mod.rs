@@ -25,6 +25,7 @@ pub mod quadratic;
 pub mod range;
 pub mod response;
 pub mod ridge;
+pub mod sample_space;
 pub mod scan;
 pub mod shortcut;
 pub mod task;

@@ -67,6 +67,8 @@ pub(crate) struct Spectrum {
     right: Option<(Vec<usize>, Matrix)>,
     /// K before the unpenalised columns were taken out, where there are more than the intercept.
     raw: Option<Matrix>,
+    /// The number of penalised predictors.
+    n_predictors: usize,
     /// What was decomposed: Z̃F^(−1/2) of narrow data, K of wide data.
     whole: Matrix,
 }
@@ -108,6 +110,7 @@ impl Spectrum {
         Ok(Self {
             values: values[..size].iter().map(|s| s * s).collect(),
             vectors: vectors.columns(0, size).into_owned(),
+            n_predictors: penalised.len(),
             right: Some((penalised, right.columns(0, size).into_owned())),
             raw: None,
             whole: columns,
@@ -166,6 +169,7 @@ impl Spectrum {
         Ok(Self {
             values: values.iter().rev().map(|d| d.max(0.0)).collect(),
             vectors: full,
+            n_predictors: penalised.len(),
             right: None,
             raw,
             whole: gram,
@@ -344,6 +348,11 @@ pub(crate) fn fit(
         Some((_, b)) => spectrum.narrow_gaps(&target, b, strengths),
         None => spectrum.wide_gaps(&target, &alpha, strengths),
     };
+    let n_dual = if direct.is_some() || null == 0.0 {
+        0
+    } else {
+        spectrum.n_predictors
+    };
     for (at, &strength) in strengths.iter().enumerate() {
         let residual = residuals.column(at);
         let loss = 0.5 * residual.norm_squared();
@@ -381,13 +390,6 @@ pub(crate) fn fit(
         predictors.retain(|(_, b)| *b != 0.0);
         predictors.sort_by_key(|(j, _)| *j);
         let relative_gap = if null > 0.0 { gaps[at] / null } else { 0.0 };
-        let n_dual = if direct.is_some() || null == 0.0 {
-            0
-        } else {
-            (0..ground.predictors.n_predictors())
-                .filter(|&j| ground.reach(j) > 0.0)
-                .count()
-        };
         let info = Info {
             relative_gap,
             settled: relative_gap <= params.relative_gap,

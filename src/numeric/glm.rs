@@ -6,7 +6,9 @@
 
 use crate::base::work::Work;
 use crate::numeric::active_set::ActiveSet;
+use crate::numeric::dual::Dual;
 use crate::numeric::error::{FitError, Stop};
+use crate::numeric::features::Features;
 use crate::numeric::frontier::{Frontier, Level, Proof, Within, capacity, worst};
 use crate::numeric::ground::Ground;
 use crate::numeric::loss;
@@ -15,7 +17,6 @@ use crate::numeric::newton::{Newton, Standing};
 use crate::numeric::path::{Info, Linear, Params, Point};
 use crate::numeric::penalty::Sign;
 use crate::numeric::response::Response;
-use crate::numeric::ridge::{Dual, Features};
 use crate::numeric::scan::BATCH;
 use crate::numeric::working::Working;
 

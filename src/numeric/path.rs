@@ -1,6 +1,7 @@
 //! Fits over a falling sequence of penalty strengths, each started from the last.
 
 use crate::base::work::Work;
+use crate::numeric::dual::Dual;
 use crate::numeric::error::{FitError, Ingredient, Unsupported};
 use crate::numeric::freedom::Freedom;
 use crate::numeric::gaussian;
@@ -10,7 +11,7 @@ use crate::numeric::matrix::Matrix;
 use crate::numeric::penalty::Sign;
 use crate::numeric::predictors::Predictors;
 use crate::numeric::response::Response;
-use crate::numeric::ridge::{self, Dual};
+use crate::numeric::ridge;
 use crate::numeric::shortcut::Shortcuts;
 use crate::numeric::task::Task;
 

@@ -36,7 +36,7 @@ pub(crate) struct Null {
     /// The null loss less the smallest loss there can be.
     pub(crate) scale: f64,
     /// The number of unpenalised columns that count.
-    rank: usize,
+    pub(crate) rank: usize,
 }
 
 impl Null {
@@ -97,7 +97,8 @@ fn free_rank(ground: &Ground<'_>, free: &[Vec<f64>]) -> usize {
     crate::numeric::basis::Basis::new(ground.n_rows(), free.iter().cloned()).rank()
 }
 
-fn spread(ground: &Ground<'_>, residual: &[f64]) -> Vec<Vec<f64>> {
+/// A residual of all classes over all samples, class by class, each of sum zero.
+pub(crate) fn spread(ground: &Ground<'_>, residual: &[f64]) -> Vec<Vec<f64>> {
     residual
         .chunks_exact(ground.n_rows())
         .map(|r| ground.spread_centered(r.to_vec()))

@@ -14,6 +14,7 @@ pub mod frontier;
 pub mod gaussian;
 pub mod glm;
 pub mod ground;
+pub mod grouped;
 pub mod lanes;
 pub mod loss;
 pub mod matrix;

@@ -3,11 +3,13 @@
 mod facts;
 mod performance;
 mod procedure;
+mod tables;
 mod trouble;
 
-pub use facts::{error_curve, error_digits, outer_choices};
+pub use facts::error_digits;
 pub use performance::{Interval, Measures, Performance, errors_by_unit, interval, performance};
 pub use procedure::{numeric_procedure, parts_params};
+pub use tables::{error_curve, outer_choices};
 pub use trouble::halted;
 
 use crate::base::problem::Problem;

@@ -10,8 +10,9 @@
 //! | 2 | [`eval`] | from a study to its outcomes |
 //! | 3 | [`report`] | what a cell has to say, once for all readers |
 //! | 4 | [`export`], [`store`] | blocks into files; studies on disk |
-//! | 5 | [`cli`] | commands without a window |
+//! | 5 | [`app`], [`cli`] | the window; commands without a window |
 
+pub mod app;
 pub mod base;
 pub mod cli;
 pub mod eval;

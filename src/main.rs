@@ -3,8 +3,11 @@
 use std::process::ExitCode;
 
 fn main() -> ExitCode {
-    widefold::cli::run(|_study| {
-        eprintln!("The window is not built yet. “widefold --help” lists the commands.");
-        ExitCode::FAILURE
+    widefold::cli::run(|study| match widefold::app::open(study) {
+        Ok(()) => ExitCode::SUCCESS,
+        Err(problem) => {
+            eprintln!("{problem}");
+            ExitCode::FAILURE
+        }
     })
 }

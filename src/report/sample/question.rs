@@ -1,3 +1,4 @@
+<<<<<<< HEAD
 //! Made-up facts of the longer questions: the ladder, chosen again, stand-ins.
 
 use crate::base::number::Precision;
@@ -6,6 +7,151 @@ use crate::report::sample::{UNIT, Writer, column, whole, words};
 use crate::study::settings::question::Seal;
 
 pub fn ladder(seal: Seal) -> Facts {
+=======
+//! The facts of the questions, written by hand.
+
+use crate::base::number::Precision;
+use crate::eval::fact::Facts;
+use crate::report::sample::{UNIT, Writer, column, error_curve, whole, words};
+use crate::study::settings::question::{Ask, Seal};
+
+/// What the evaluation of a question publishes.
+pub fn question_facts(ask: &Ask) -> Facts {
+    let three = Precision::Significant(3);
+    let two = Precision::Decimals(2);
+    let strength = Writer(Facts::new()).numbers("", three, &[("chosen strength", 0.0312)]);
+    match ask {
+        Ask::LeastSquares => {
+            strength
+                .counts(&[
+                    ("samples", 356),
+                    ("predictors", 700),
+                    ("rank", 355),
+                    ("zero eigenvalues", 345),
+                ])
+                .numbers(
+                    "",
+                    three,
+                    &[
+                        ("largest eigenvalue", 412.0),
+                        ("smallest positive eigenvalue", 1.1e-6),
+                        ("condition number", f64::INFINITY),
+                        ("penalty added", 11.1),
+                        ("penalised condition number", 13_200.0),
+                        ("effective degrees of freedom", 31.2),
+                        ("participation ratio", 2.61),
+                    ],
+                )
+                .table(
+                    "spectrum",
+                    vec![
+                        whole("direction", &[1.0, 2.0, 3.0]),
+                        column("eigenvalue", "", three, &[412.0, 20.0, 0.0]),
+                        column("penalised eigenvalue", "", three, &[412.03, 20.03, 0.0312]),
+                        column("shrinkage factor", "", three, &[0.9999, 0.998, 0.0]),
+                    ],
+                )
+                .0
+        }
+        Ask::ErrorCurve => {
+            strength
+                .counts(&[("chosen predictors", 5)])
+                .numbers(
+                    UNIT,
+                    two,
+                    &[
+                        ("lowest error", 0.27),
+                        ("lowest error standard error", 0.02),
+                    ],
+                )
+                .numbers(
+                    "",
+                    three,
+                    &[
+                        ("one-standard-error strength", 0.0501),
+                        ("strength log10 interquartile range", 0.204),
+                        ("strength least", 0.0121),
+                        ("strength most", 0.0702),
+                    ],
+                )
+                .numbers("", Precision::Percent(0), &[("curve improvement", 0.56)])
+                .table("error curve", error_curve())
+                .0
+        }
+        Ask::CoefficientTrace => {
+            strength
+                .counts(&[
+                    ("predictors ever chosen", 131),
+                    ("chosen predictors", 5),
+                    ("sign changes", 4),
+                ])
+                .table(
+                    "trace",
+                    vec![
+                        words("predictor", &["1452 nm", "1452 nm", "1150 nm"]),
+                        column("strength", "", three, &[0.1, 0.0312, 0.0312]),
+                        column(
+                            "standardised coefficient",
+                            UNIT,
+                            three,
+                            &[-0.2, -0.31, 0.22],
+                        ),
+                    ],
+                )
+                .table(
+                    "trace strengths",
+                    vec![
+                        column("strength", "", three, &[0.994, 0.1, 0.0312]),
+                        whole("chosen predictors", &[0.0, 1.0, 2.0]),
+                    ],
+                )
+                .0
+        }
+        Ask::Agreement => {
+            Writer(Facts::new())
+                .numbers(
+                    UNIT,
+                    two,
+                    &[
+                        ("nested rmse", 0.276),
+                        ("nested mae", 0.221),
+                        ("bias", -0.012),
+                        ("sep", 0.275),
+                        ("intercept", -0.08),
+                        ("reference error", 0.12),
+                    ],
+                )
+                .numbers(
+                    "",
+                    two,
+                    &[
+                        ("nested r²", 0.80),
+                        ("slope", 1.03),
+                        ("slope low", 0.95),
+                        ("slope high", 1.11),
+                        ("correlation", 0.90),
+                    ],
+                )
+                .table(
+                    "held-out predictions",
+                    vec![
+                        words("sample", &["W001-a", "W001-b", "W002-a"]),
+                        words("unit", &["W001", "W001", "W002"]),
+                        words("batch", &["north", "north", "south"]),
+                        column("observed", UNIT, two, &[2.91, 2.91, 3.4]),
+                        column("predicted", UNIT, two, &[2.8, 2.95, 3.2]),
+                    ],
+                )
+                .0
+        }
+        Ask::Ladder { seal } => ladder(*seal),
+        Ask::ChosenAgain { .. } => chosen_again(),
+        Ask::StandIns { .. } => stand_ins(),
+    }
+}
+
+fn ladder(seal: Seal) -> Facts {
+>>>>>>> 6cf347aa0d16b57a4fac2f86da2b9e42582fc20b
     let two = Precision::Decimals(2);
     let opened = seal == Seal::Opened;
     let sealed = if opened { 0.69 } else { f64::NAN };
@@ -56,7 +202,11 @@ pub fn ladder(seal: Seal) -> Facts {
     writer.0
 }
 
+<<<<<<< HEAD
 pub fn chosen_again() -> Facts {
+=======
+fn chosen_again() -> Facts {
+>>>>>>> 6cf347aa0d16b57a4fac2f86da2b9e42582fc20b
     let two = Precision::Decimals(2);
     Writer(Facts::new())
         .counts(&[
@@ -126,7 +276,11 @@ pub fn chosen_again() -> Facts {
         .0
 }
 
+<<<<<<< HEAD
 pub fn stand_ins() -> Facts {
+=======
+fn stand_ins() -> Facts {
+>>>>>>> 6cf347aa0d16b57a4fac2f86da2b9e42582fc20b
     Writer(Facts::new())
         .counts(&[
             ("chosen predictors", 5),

@@ -7,6 +7,7 @@ use crate::eval::fact::{Fact, FactColumn, Facts};
 use crate::eval::outcome::{Gives, Outcome};
 use crate::eval::standing::{Standing, Standings, State};
 use crate::report::Context;
+use crate::report::sample::question::question_facts;
 use crate::study::Study;
 use crate::study::cell::{Cell, CellId};
 use crate::study::ledger::Ledger;
@@ -519,6 +520,7 @@ fn error_curve() -> Vec<FactColumn> {
         whole("chosen predictors", &[0.0, 3.0, 5.0, 19.0, 118.0]),
     ]
 }
+<<<<<<< HEAD:src/report/sample.rs
 
 pub fn question_facts(ask: &Ask) -> Facts {
     let three = Precision::Significant(3);
@@ -653,3 +655,5 @@ pub fn question_facts(ask: &Ask) -> Facts {
         Ask::StandIns { .. } => question::stand_ins(),
     }
 }
+=======
+>>>>>>> 6cf347aa0d16b57a4fac2f86da2b9e42582fc20b:src/report/sample/mod.rs

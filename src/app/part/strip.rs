@@ -1,0 +1,76 @@
+//! The strip at the bottom: what is working, how far it is, and a way to stop it; or what was
+//! last said.
+
+use crate::app::run::Run;
+use crate::app::theme::button::Look;
+use crate::app::theme::{container, space, text};
+use crate::app::widget::Element;
+use crate::app::widget::press;
+use crate::app::widget::progress;
+use crate::base::number::{self, Precision};
+use crate::study::Study;
+use iced::widget::{column, row, rule, space as gap};
+use iced::{Alignment, Length, Padding};
+use std::time::Duration;
+
+/// What can be done in the strip.
+#[derive(Clone, Debug)]
+pub enum Message {
+    /// Stops the run under way.
+    Stop,
+    /// Takes what was said away.
+    Dismiss,
+}
+
+/// The strip. What a run is at comes first; else what was last said.
+#[must_use]
+pub fn view<'a>(
+    study: &'a Study,
+    run: Option<&Run>,
+    said: Option<&'a str>,
+    state: &'a str,
+) -> Element<'a, Message> {
+    let working = run.and_then(Run::working);
+    let line = match (working, said) {
+        (Some(working), _) => {
+            let title = study
+                .cell(working.id)
+                .map_or("a removed cell", |cell| cell.title.as_str());
+            let share = number::text(f64::from(working.share), Precision::Percent(0));
+            let left = working.left().map_or_else(String::new, |left| {
+                format!(", about {} left", in_words(left))
+            });
+            row![
+                text::body(title),
+                progress::bar(working.share, space::PROGRESS_LENGTH),
+                text::quiet(format!("{share}{left}")),
+                press::words("Stop", Message::Stop).look(Look::Attention),
+            ]
+        }
+        (None, Some(said)) => row![text::body(said), press::words("Dismiss", Message::Dismiss),],
+        (None, None) => row![text::quiet(state)],
+    };
+    let line = line
+        .spacing(space::GAP)
+        .align_y(Alignment::Center)
+        .width(Length::Fill)
+        .height(Length::Fill)
+        .padding(Padding::from([0.0, space::GAP + space::SMALL]));
+    column![
+        rule::horizontal(space::HAIR).style(container::hairline),
+        row![line, gap().width(space::GAP)].height(space::HEAD - space::SMALL),
+    ]
+    .into()
+}
+
+/// A time that is left, no finer than anybody needs.
+fn in_words(time: Duration) -> String {
+    let seconds = time.as_secs();
+    if seconds < 10 {
+        format!("{} s", seconds.max(1))
+    } else if seconds < 90 {
+        format!("{} s", seconds.div_ceil(5) * 5)
+    } else {
+        format!("{} min", seconds.div_ceil(60))
+    }
+}

@@ -1,0 +1,386 @@
+//! How a grid is drawn.
+
+use crate::app::theme::{self, space, text};
+use crate::app::widget::focus;
+use crate::app::widget::grid::{Align, At, Bar, Condition, Grid, State, View};
+use crate::figure::font::Face;
+use crate::figure::metrics;
+use iced::advanced::renderer::{Quad, Renderer as _};
+use iced::advanced::text::{LineHeight, Renderer as _, Shaping, Wrapping};
+use iced::{Background, Border, Color, Font, Pixels, Point, Rectangle, Size, alignment};
+
+/// The largest invisible amount by which a layer is moved.
+const NUDGE: f32 = 0.04;
+/// After how many scroll positions the amounts begin anew.
+const NUDGES: usize = 997;
+
+/// A text in a field.
+struct Set<'a> {
+    text: &'a str,
+    field: Rectangle,
+    font: Font,
+    face: Face,
+    color: Color,
+    align: Align,
+}
+
+impl<'a, M> Grid<'a, M> {
+    /// Draws what can be seen, in layers of its own.
+    pub(super) fn paint(
+        &self,
+        state: &State,
+        renderer: &mut iced::Renderer,
+        theme: &iced::Theme,
+        bounds: Rectangle,
+        viewport: &Rectangle,
+    ) {
+        let view = self.view(state, bounds);
+        let Some(shown) = bounds
+            .expand(space::AIR + space::BAR)
+            .intersection(viewport)
+        else {
+            return;
+        };
+        let nudge = (state.first.row * 31 + state.first.column * 7) % NUDGES;
+        let nudge = NUDGE * (nudge as f32 + 1.0) / NUDGES as f32;
+        self.paint_frame(state, renderer, theme, bounds, view);
+        if state.focus.0 {
+            focus::ring(renderer, theme, bounds.shrink(space::AIR + space::BAR));
+        }
+        let layer = |renderer: &mut iced::Renderer,
+                     area: Rectangle,
+                     paint: &dyn Fn(&mut iced::Renderer, Rectangle)| {
+            let area = Rectangle {
+                width: (area.width - nudge).max(0.0),
+                ..area
+            };
+            if let Some(area) = area.intersection(&shown) {
+                renderer.with_layer(area, |renderer| paint(renderer, area));
+            }
+        };
+        layer(renderer, view.body, &|renderer, area| {
+            self.paint_body(state, renderer, theme, view, area);
+        });
+        let head = Rectangle {
+            y: bounds.y,
+            height: self.head_height(),
+            ..view.body
+        };
+        layer(renderer, head, &|renderer, area| {
+            self.paint_head(state, renderer, theme, view, head, area);
+        });
+        let names = Rectangle {
+            x: bounds.x,
+            y: bounds.y,
+            width: state.names,
+            height: bounds.height - space::SMALL,
+        };
+        layer(renderer, names, &|renderer, area| {
+            self.paint_names(state, renderer, theme, view, names, area);
+        });
+    }
+
+    fn paint_frame(
+        &self,
+        state: &State,
+        renderer: &mut iced::Renderer,
+        theme: &iced::Theme,
+        bounds: Rectangle,
+        view: View,
+    ) {
+        let colors = theme::colors(theme);
+        let mut line = |x: f32, y: f32, width: f32, height: f32, color: Color| {
+            renderer.fill_quad(
+                Quad {
+                    bounds: Rectangle {
+                        x: x.round(),
+                        y: y.round(),
+                        width,
+                        height,
+                    },
+                    ..Quad::default()
+                },
+                Background::Color(color),
+            );
+        };
+        let width = bounds.width - space::SMALL;
+        line(
+            bounds.x,
+            view.body.y - space::HAIR,
+            width,
+            space::HAIR,
+            colors.hairline,
+        );
+        line(
+            bounds.x,
+            bounds.y + bounds.height - space::SMALL,
+            width,
+            space::HAIR,
+            colors.hairline,
+        );
+        for bar in [Bar::Rows, Bar::Columns] {
+            if let Some(bar) = self.bar(state, view, bar) {
+                renderer.fill_quad(
+                    Quad {
+                        bounds: bar,
+                        border: Border {
+                            radius: space::AIR.into(),
+                            ..Border::default()
+                        },
+                        ..Quad::default()
+                    },
+                    Background::Color(colors.hairline),
+                );
+            }
+        }
+    }
+
+    fn paint_body(
+        &self,
+        state: &State,
+        renderer: &mut iced::Renderer,
+        theme: &iced::Theme,
+        view: View,
+        area: Rectangle,
+    ) {
+        let colors = theme::colors(theme);
+        let from = state.starts.get(state.first.column).copied().unwrap_or(0.0);
+        let place = |at: At| {
+            let start = state.starts[at.column];
+            Rectangle {
+                x: view.body.x + start - from,
+                y: view.body.y + (at.row - state.first.row) as f32 * space::ROW,
+                width: state.starts[at.column + 1] - start,
+                height: space::ROW,
+            }
+        };
+        if let Some((low, high)) = Self::selection(state) {
+            let last = At {
+                row: (state.first.row + view.n_rows).saturating_sub(1),
+                column: (state.first.column + view.n_columns).saturating_sub(1),
+            };
+            let low = At {
+                row: low.row.max(state.first.row),
+                column: low.column.max(state.first.column),
+            };
+            let high = At {
+                row: high.row.min(last.row),
+                column: high.column.min(last.column),
+            };
+            if low.row <= high.row && low.column <= high.column {
+                let (first, last) = (place(low), place(high));
+                renderer.fill_quad(
+                    Quad {
+                        bounds: Rectangle {
+                            x: first.x,
+                            y: first.y,
+                            width: last.x + last.width - first.x,
+                            height: last.y + last.height - first.y,
+                        },
+                        ..Quad::default()
+                    },
+                    Background::Color(colors.selected),
+                );
+            }
+        }
+        for row in state.first.row..state.first.row + view.n_rows {
+            for column in state.first.column..state.first.column + view.n_columns {
+                let field = self.source.field(row, column);
+                let color = match field.condition {
+                    Condition::Known => colors.ink,
+                    Condition::Missing => colors.quiet,
+                    Condition::BelowLimit | Condition::AboveLimit => colors.attention,
+                    Condition::Corrected => colors.accent,
+                };
+                let at = place(At { row, column });
+                set(
+                    renderer,
+                    &Set {
+                        text: &field.text,
+                        field: at,
+                        font: text::SANS,
+                        face: Face::Sans,
+                        color,
+                        align: self.source.align(column),
+                    },
+                    area,
+                );
+                if field.condition == Condition::Corrected {
+                    renderer.fill_quad(
+                        Quad {
+                            bounds: Rectangle {
+                                x: at.x + space::AIR,
+                                y: at.y + space::TIGHT,
+                                width: space::BAR,
+                                height: at.height - space::SMALL,
+                            },
+                            ..Quad::default()
+                        },
+                        Background::Color(colors.accent),
+                    );
+                }
+            }
+        }
+    }
+
+    fn paint_head(
+        &self,
+        state: &State,
+        renderer: &mut iced::Renderer,
+        theme: &iced::Theme,
+        view: View,
+        head: Rectangle,
+        area: Rectangle,
+    ) {
+        let colors = theme::colors(theme);
+        let from = state.starts.get(state.first.column).copied().unwrap_or(0.0);
+        for column in state.first.column..state.first.column + view.n_columns {
+            let start = state.starts[column];
+            let field = Rectangle {
+                x: head.x + start - from,
+                y: head.y,
+                width: state.starts[column + 1] - start,
+                height: space::ROW,
+            };
+            if state.hovered_head == Some(column) {
+                renderer.fill_quad(
+                    Quad {
+                        bounds: Rectangle {
+                            height: head.height - space::HAIR,
+                            ..field
+                        },
+                        ..Quad::default()
+                    },
+                    Background::Color(colors.hover),
+                );
+            }
+            let align = self.source.align(column);
+            set(
+                renderer,
+                &Set {
+                    text: &self.source.column(column),
+                    field,
+                    font: text::STRONG,
+                    face: Face::SansStrong,
+                    color: colors.ink,
+                    align,
+                },
+                area,
+            );
+            if let Some(remark) = self.source.remark(column) {
+                set(
+                    renderer,
+                    &Set {
+                        text: &remark,
+                        field: Rectangle {
+                            y: field.y + text::SMALL_LINE,
+                            ..field
+                        },
+                        font: text::SANS,
+                        face: Face::Sans,
+                        color: colors.accent,
+                        align,
+                    },
+                    area,
+                );
+            }
+        }
+    }
+
+    fn paint_names(
+        &self,
+        state: &State,
+        renderer: &mut iced::Renderer,
+        theme: &iced::Theme,
+        view: View,
+        names: Rectangle,
+        area: Rectangle,
+    ) {
+        let colors = theme::colors(theme);
+        // The names begin where the words above the grid do.
+        let field = |y: f32| Rectangle {
+            x: names.x - space::SMALL,
+            y,
+            width: names.width + space::SMALL,
+            height: space::ROW,
+        };
+        set(
+            renderer,
+            &Set {
+                text: &self.source.corner(),
+                field: field(names.y),
+                font: text::STRONG,
+                face: Face::SansStrong,
+                color: colors.ink,
+                align: Align::Start,
+            },
+            area,
+        );
+        for at in 0..view.n_rows {
+            set(
+                renderer,
+                &Set {
+                    text: &self.source.row(state.first.row + at),
+                    field: field(view.body.y + at as f32 * space::ROW),
+                    font: text::SANS,
+                    face: Face::Sans,
+                    color: colors.quiet,
+                    align: Align::Start,
+                },
+                area,
+            );
+        }
+    }
+}
+
+fn set(renderer: &mut iced::Renderer, set: &Set<'_>, area: Rectangle) {
+    let room = set.field.width - 2.0 * space::SMALL;
+    let size = f64::from(text::SMALL);
+    // Kerning and rounding make a text that just fits a little wider or narrower.
+    let fits = metrics::width(set.text, set.face, size) <= f64::from(room) + 1.0;
+    let words = if fits {
+        set.text.to_owned()
+    } else {
+        metrics::fitted(set.text, set.face, size, f64::from(room))
+    };
+    if words.is_empty() {
+        return;
+    }
+    // Always set from the left: the toolkit takes what changed of a text to lie to the right of
+    // its place, whatever its alignment. Figures have no kerning, so that this is exact for them.
+    let x = match set.align {
+        Align::Start => set.field.x + space::SMALL,
+        Align::End => {
+            let width = metrics::width(&words, set.face, size) as f32;
+            set.field.x + set.field.width - space::SMALL - width
+        }
+    };
+    let y = set.field.y + (set.field.height - text::SMALL_LINE) / 2.0;
+    if !set.field.intersects(&area) {
+        return;
+    }
+    // The toolkit clips a text by its layer only where its bounds reach beyond the layer; a field
+    // at the edge of the body does so by the nudge alone, and is taken in by as much.
+    let clip = set.field.shrink(2.0 * NUDGE);
+    let is_ascii = words.is_ascii();
+    renderer.fill_text(
+        iced::advanced::Text {
+            content: words,
+            bounds: Size::new(f32::INFINITY, text::SMALL_LINE),
+            size: Pixels(text::SMALL),
+            line_height: LineHeight::Absolute(Pixels(text::SMALL_LINE)),
+            font: set.font,
+            align_x: iced::advanced::text::Alignment::Left,
+            align_y: alignment::Vertical::Top,
+            shaping: if is_ascii {
+                Shaping::Basic
+            } else {
+                Shaping::Advanced
+            },
+            wrapping: Wrapping::None,
+        },
+        Point::new(x, y.round()),
+        set.color,
+        clip,
+    );
+}

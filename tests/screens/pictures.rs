@@ -1,0 +1,83 @@
+//! Widgets as they were looked at, in light and dark: strict pictures.
+//!
+//! A missing picture fails unless `UPDATE=1`; a channel may be off by one; what differs is left in
+//! the target folder.
+
+use iced::widget::{column, container};
+use std::path::{Path, PathBuf};
+use widefold::app::harness::{Harness, Shot};
+use widefold::app::theme::{Mode, text};
+use widefold::app::widget::sentence::{Piece, Role, Sentence, Setting};
+use widefold::app::widget::{Element, press, progress};
+
+fn sample<'a>(mode: Mode) -> Element<'a, usize> {
+    let piece = |text: &str, role| Piece {
+        text: text.to_owned(),
+        role,
+    };
+    let sentence = vec![
+        piece("Fit a ", Role::Plain),
+        piece("lasso", Role::Open),
+        piece(" of ", Role::Plain),
+        piece("sweetness", Role::Editable),
+        piece(" among ", Role::Plain),
+        piece("100", Role::Editable),
+        piece(" values.", Role::Plain),
+    ];
+    let answer = vec![piece("It explains 80 % of the variation.", Role::Fact)];
+    let page = column![
+        text::title("Sweet dishes"),
+        Sentence::new(sentence, Setting::Reading, mode).on_press(|at| at),
+        Sentence::new(answer, Setting::Answer, mode),
+        progress::bar(0.6, 200.0),
+        press::main("Bring up to date", 0),
+    ]
+    .spacing(12)
+    .padding(20);
+    container(page).into()
+}
+
+#[test]
+fn a_sentence_and_what_stands_around_it_look_as_they_were_looked_at() {
+    for (mode, name) in [(Mode::Light, "light"), (Mode::Dark, "dark")] {
+        let mut window = Harness::new(400.0, 220.0, mode);
+        let shot = window.shot(sample(mode), 1.0);
+        holds(&format!("sentence-{name}"), &shot);
+    }
+}
+
+/// Compares a picture with the one that was looked at.
+fn holds(name: &str, shot: &Shot) {
+    let root = Path::new(env!("CARGO_MANIFEST_DIR"));
+    let expected = root.join(format!("tests/snapshots/screens/{name}.png"));
+    if std::env::var("UPDATE").is_ok_and(|update| update == "1") {
+        write(&expected, shot);
+        return;
+    }
+    let picture = image::open(&expected)
+        .unwrap_or_else(|_| panic!("there is no {}; UPDATE=1 makes it", expected.display()))
+        .to_rgba8();
+    let is_same = picture.dimensions() == (shot.width, shot.height)
+        && picture
+            .as_raw()
+            .iter()
+            .zip(&shot.pixels)
+            .all(|(one, other)| one.abs_diff(*other) <= 1);
+    if !is_same {
+        let left: PathBuf = root.join(format!("target/screens/{name}-actual.png"));
+        write(&left, shot);
+        panic!(
+            "{name} differs from what was looked at; see {}",
+            left.display()
+        );
+    }
+}
+
+fn write(path: &Path, shot: &Shot) {
+    let folder = path.parent().expect("a picture lies in a folder");
+    std::fs::create_dir_all(folder).unwrap();
+    let pixels = shot.pixels.clone();
+    let picture = image::RgbaImage::from_raw(shot.width, shot.height, pixels)
+        .expect("a shot has four bytes for each pixel");
+    picture.save(path).unwrap();
+}

@@ -1,0 +1,148 @@
+//! A study is read and changed on its page.
+
+use crate::support::Bench;
+use iced::keyboard::key::Named;
+use widefold::app::Message;
+use widefold::app::shortcut::Shortcut;
+use widefold::study::settings::fit::Penalty;
+
+#[test]
+fn a_recorded_study_is_shown_with_its_results_and_nothing_runs() {
+    let mut bench = Bench::new(1280.0, 800.0);
+    assert!(bench.sees("Sweet dishes"));
+    let session = bench.app.study().expect("a study is open").session();
+    assert!(session.run().is_none());
+    assert!(!session.is_modified());
+    let title = bench.fit_title();
+    bench.go_to(&title);
+    assert!(bench.sees("current"));
+}
+
+#[test]
+fn a_word_is_changed_by_pressing_it_and_undo_takes_it_back() {
+    let mut bench = Bench::new(1280.0, 800.0);
+    let title = bench.fit_title();
+    bench.go_to(&title);
+    bench.press("lasso");
+    bench.press("ridge");
+    assert_eq!(bench.fit().penalty, Penalty::Ridge);
+    assert_eq!(bench.undo_label().as_deref(), Some("change penalty"));
+    let _ = bench.app.update(Message::Shortcut(Shortcut::Undo));
+    assert_eq!(bench.fit().penalty, Penalty::Lasso);
+    assert_eq!(bench.undo_label(), None);
+}
+
+#[test]
+fn what_draws_on_a_changed_word_is_due_at_once() {
+    let mut bench = Bench::new(1280.0, 800.0);
+    let title = bench.fit_title();
+    bench.go_to(&title);
+    bench.press("lasso");
+    bench.press("ridge");
+    let session = bench.app.study().expect("a study is open").session();
+    assert!(session.is_due());
+    let state = |title: &str| {
+        let id = session.study().titled(title).expect("the cell is there").id;
+        session.standings().get(id).state.word()
+    };
+    assert_eq!(state(&title), "due");
+    assert_eq!(state("How honest?"), "due");
+    let data = &session.study().cells()[session
+        .study()
+        .cells()
+        .iter()
+        .position(|cell| cell.settings.kind() == widefold::study::cell::Kind::Data)
+        .expect("there is data")];
+    assert_eq!(session.standings().get(data.id).state.word(), "current");
+}
+
+#[test]
+fn a_draft_that_cannot_stand_stays_in_the_editor_with_what_would_mend_it() {
+    let mut bench = Bench::new(1280.0, 1400.0);
+    let title = bench.fit_title();
+    bench.go_to(&title);
+    let before = bench.fit();
+    // The number of strengths.
+    bench.press("20");
+    let set = "More";
+    assert!(bench.sees(set));
+    bench.tab_to_field();
+    bench.type_letters("x");
+    bench.key(Named::Enter);
+    assert!(bench.sees("Less"), "the editor is still open");
+    assert_eq!(bench.fit(), before);
+    let _ = bench.app.update(Message::Shortcut(Shortcut::Escape));
+    assert!(!bench.sees("Less"), "escape closes it");
+}
+
+#[test]
+fn words_are_reached_and_pressed_by_the_keyboard_alone() {
+    let mut bench = Bench::new(1280.0, 800.0);
+    let title = bench.fit_title();
+    bench.go_to(&title);
+    let mut n_steps = 0;
+    while !bench.has_focus("lasso") || n_steps == 0 {
+        n_steps += 1;
+        assert!(n_steps < 300, "the word was never reached");
+        bench.tab();
+    }
+    bench.key(Named::Space);
+    bench.tab();
+    assert!(bench.sees("elastic net"), "the choices are open");
+}
+
+#[test]
+fn the_reading_view_hides_every_control() {
+    let mut bench = Bench::new(1280.0, 800.0);
+    assert!(bench.sees("Bring up to date"));
+    let _ = bench.app.update(Message::Shortcut(Shortcut::Read));
+    bench.act(&[]);
+    assert!(!bench.sees("Bring up to date"));
+    assert!(!bench.sees("Write"));
+    assert!(bench.sees("Leave the reading view"));
+}
+
+#[test]
+fn closing_with_unsaved_changes_asks_first() {
+    let mut bench = Bench::new(1280.0, 800.0);
+    let title = bench.fit_title();
+    bench.go_to(&title);
+    bench.press("lasso");
+    bench.press("ridge");
+    let _ = bench.app.update(Message::Shortcut(Shortcut::Close));
+    bench.act(&[]);
+    assert!(bench.sees("changes that have not been saved"));
+    bench.press("Stay");
+    assert!(bench.app.study().is_some());
+    let _ = bench.app.update(Message::Shortcut(Shortcut::Close));
+    bench.act(&[]);
+    bench.press("Give the changes up");
+    assert!(bench.app.study().is_none());
+}
+
+#[test]
+fn cells_are_added_renamed_moved_and_removed() {
+    let mut bench = Bench::new(1280.0, 800.0);
+    let n_cells = |bench: &Bench| {
+        let study = bench.app.study().expect("a study is open");
+        study.session().study().cells().len()
+    };
+    let before = n_cells(&bench);
+    let title = bench.fit_title();
+    bench.go_to(&title);
+    bench.press("More");
+    bench.press("Duplicate");
+    assert_eq!(n_cells(&bench), before + 1);
+    let label = format!("duplicate {title}");
+    assert_eq!(bench.undo_label().as_deref(), Some(label.as_str()));
+    let _ = bench.app.update(Message::Shortcut(Shortcut::Undo));
+    assert_eq!(n_cells(&bench), before);
+}
+
+#[test]
+fn a_narrow_window_folds_the_margin_and_hides_nothing() {
+    let mut bench = Bench::new(820.0, 900.0);
+    let title = bench.fit_title();
+    bench.go_to(&title);
+    assert!(bench.sees("lasso"));
+}

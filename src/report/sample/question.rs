@@ -1,13 +1,3 @@
-<<<<<<< HEAD
-//! Made-up facts of the longer questions: the ladder, chosen again, stand-ins.
-
-use crate::base::number::Precision;
-use crate::eval::fact::Facts;
-use crate::report::sample::{UNIT, Writer, column, whole, words};
-use crate::study::settings::question::Seal;
-
-pub fn ladder(seal: Seal) -> Facts {
-=======
 //! The facts of the questions, written by hand.
 
 use crate::base::number::Precision;
@@ -151,7 +141,6 @@ pub fn question_facts(ask: &Ask) -> Facts {
 }
 
 fn ladder(seal: Seal) -> Facts {
->>>>>>> 6cf347aa0d16b57a4fac2f86da2b9e42582fc20b
     let two = Precision::Decimals(2);
     let opened = seal == Seal::Opened;
     let sealed = if opened { 0.69 } else { f64::NAN };
@@ -202,11 +191,7 @@ fn ladder(seal: Seal) -> Facts {
     writer.0
 }
 
-<<<<<<< HEAD
-pub fn chosen_again() -> Facts {
-=======
 fn chosen_again() -> Facts {
->>>>>>> 6cf347aa0d16b57a4fac2f86da2b9e42582fc20b
     let two = Precision::Decimals(2);
     Writer(Facts::new())
         .counts(&[
@@ -276,11 +261,7 @@ fn chosen_again() -> Facts {
         .0
 }
 
-<<<<<<< HEAD
-pub fn stand_ins() -> Facts {
-=======
 fn stand_ins() -> Facts {
->>>>>>> 6cf347aa0d16b57a4fac2f86da2b9e42582fc20b
     Writer(Facts::new())
         .counts(&[
             ("chosen predictors", 5),

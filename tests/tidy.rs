@@ -16,7 +16,7 @@ const FLOORS: &[&[&str]] = &[
 /// Where each outside crate may be named: a folder of `src`, or one file.
 const OUTSIDE: &[(&str, &[&str])] = &[
     ("calamine", &["table/read"]),
-    ("chrono", &["cli/clock.rs"]),
+    ("chrono", &["cli/clock.rs", "app/disk.rs"]),
     ("clap", &["cli"]),
     ("csv", &["table/read"]),
     ("encoding_rs", &["table/read"]),
@@ -25,7 +25,6 @@ const OUTSIDE: &[(&str, &[&str])] = &[
     ("flate2", &["table/read"]),
     ("iced", &["app"]),
     ("iced_runtime", &["app"]),
-    ("image", &["app", "export/picture.rs"]),
     ("indicatif", &["cli"]),
     ("memchr", &["table/read"]),
     ("nalgebra", &["numeric"]),

@@ -228,6 +228,8 @@ struct State {
     focus: Focus,
     /// Where each column begins, and where the last ends, from the left of the body.
     starts: Vec<f32>,
+    /// How wide the last column would like to be.
+    last_width: f32,
     names: f32,
     measured: Option<(u64, usize, usize)>,
     first: At,
@@ -404,7 +406,9 @@ impl<'a, M> Grid<'a, M> {
             } else {
                 WIDTHS.1
             };
-            start += width.clamp(WIDTHS.0, widest).round();
+            let width = width.clamp(WIDTHS.0, widest).round();
+            state.last_width = width;
+            start += width;
             state.starts.push(start);
         }
         let names = (0..source.n_rows().min(MEASURED))
@@ -423,6 +427,14 @@ impl<'a, M> Grid<'a, M> {
         state.cursor = state
             .cursor
             .filter(|at| at.row <= last_row && at.column <= last_column);
+    }
+
+    /// A wide last column takes the room that is left, so that it can be seen whole.
+    fn fit_last(&self, state: &mut State, body: f32) {
+        if let [.., start, end] = &mut state.starts[..] {
+            let room = (body - *start).floor().max(WIDTHS.1);
+            *end = *start + state.last_width.min(room);
+        }
     }
 
     fn bar(&self, state: &State, view: View, bar: Bar) -> Option<Rectangle> {
@@ -527,6 +539,7 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for Grid<'a, M> {
     ) -> layout::Node {
         let state = tree.state.downcast_mut::<State>();
         self.measure(state);
+        self.fit_last(state, limits.max().width - state.names - space::SMALL);
         let head = self.head_height();
         let rows = ((self.height - head - space::SMALL) / space::ROW).floor();
         let rows = rows.max(1.0).min(self.source.n_rows().max(1) as f32);

@@ -9,7 +9,7 @@ use crate::cli::{NOT_DONE, today};
 use crate::eval::desk::{MEMO_BUDGET, Snapshot, evaluate};
 use crate::eval::memo::Memo;
 use crate::eval::standing::{Event, Standings, State};
-use crate::store::{self, Opened, Record};
+use crate::store::{self, Opened};
 use crate::study::Study;
 use crate::study::ledger::Ledger;
 use std::process::ExitCode;
@@ -24,7 +24,7 @@ pub fn run(arguments: &Update) -> Result<ExitCode, Problem> {
     opened.problems.iter().for_each(super::say);
     let standings = bring_up_to_date(&mut opened);
     let path = arguments.output.as_ref().unwrap_or(&arguments.study);
-    let record = Record::from(&opened.study, &standings);
+    let record = opened.record.updated(&opened.study, &standings);
     store::save(path, &opened.study, &opened.shelf, &opened.ledger, &record)?;
     Ok(report(&opened.study, &standings))
 }

@@ -144,7 +144,16 @@ impl Working {
             .used
             .iter()
             .filter(|&&slot| !is_active[slot])
-            .map(|&slot| (correlation[slot].abs() / self.problem.lasso[slot], slot))
+            .map(|&slot| {
+                // What came in last has not been looked at yet, and stays.
+                let c = correlation.get(slot).copied().unwrap_or(f64::INFINITY);
+                let closeness = if c.is_finite() {
+                    c.abs() / self.problem.lasso[slot]
+                } else {
+                    f64::INFINITY
+                };
+                (closeness, slot)
+            })
             .collect();
         idle.sort_by(|a, b| b.0.total_cmp(&a.0).then(a.1.cmp(&b.1)));
         for (_, slot) in idle.into_iter().skip(limit) {

@@ -45,8 +45,9 @@ pub struct Table {
     origins: Vec<Origin>,
     /// For each column its origin and, in a sideways file, its row there (else 0).
     source: Vec<(u16, u32)>,
-    /// Positions of the columns by name.
-    index: std::collections::HashMap<String, usize>,
+    /// Positions of the columns in the order of their names: a fifth of the memory of a map, which
+    /// counts when there are 200,000 columns.
+    by_name: Vec<u32>,
 }
 
 impl Table {
@@ -69,27 +70,35 @@ impl Table {
         let n_rows = columns.first().map_or(0, Column::len);
         let mut table = Self {
             n_rows,
-            columns: Vec::new(),
             origins: vec![origin],
-            source: Vec::new(),
-            index: std::collections::HashMap::with_capacity(columns.len()),
+            ..Self::default()
         };
-        for (column, source) in columns.into_iter().zip(source) {
-            table.push(column, source);
-        }
+        table.add(columns, source);
         table
     }
 
-    fn push(&mut self, column: Column, source: (u16, u32)) {
-        assert_eq!(
-            column.len(),
-            self.n_rows,
+    /// Adds columns at the end, each with its origin and its row there.
+    pub(crate) fn add(&mut self, columns: Vec<Column>, source: Vec<(u16, u32)>) {
+        assert!(
+            columns.iter().all(|column| column.len() == self.n_rows),
             "the columns of a table have one length"
         );
-        let before = self.index.insert(column.name.clone(), self.columns.len());
-        assert!(before.is_none(), "the columns of a table have unlike names");
-        self.columns.push(column);
-        self.source.push(source);
+        if self.columns.is_empty() {
+            self.columns = columns;
+        } else {
+            self.columns.extend(columns);
+        }
+        self.source.extend(source);
+        let columns = &self.columns;
+        self.by_name = (0..columns.len() as u32).collect();
+        self.by_name
+            .sort_unstable_by_key(|&at| columns[at as usize].name.as_str());
+        assert!(
+            self.by_name
+                .windows(2)
+                .all(|pair| { columns[pair[0] as usize].name != columns[pair[1] as usize].name }),
+            "the columns of a table have unlike names"
+        );
     }
 
     /// The number of samples.
@@ -113,7 +122,10 @@ impl Table {
     /// The position of the column of this name.
     #[must_use]
     pub fn position(&self, name: &str) -> Option<usize> {
-        self.index.get(name).copied()
+        self.by_name
+            .binary_search_by_key(&name, |&at| self.columns[at as usize].name.as_str())
+            .ok()
+            .map(|found| self.by_name[found] as usize)
     }
 
     /// The files the columns came from.
@@ -166,7 +178,7 @@ impl Table {
             columns: self.columns.iter().map(|c| c.take(rows)).collect(),
             origins: self.origins.iter().map(|o| o.take(rows)).collect(),
             source: self.source.clone(),
-            index: self.index.clone(),
+            by_name: self.by_name.clone(),
         }
     }
 
@@ -181,9 +193,10 @@ impl Table {
             origins: self.origins.clone(),
             ..Self::default()
         };
-        for &at in columns {
-            table.push(self.columns[at].clone(), self.source[at]);
-        }
+        table.add(
+            columns.iter().map(|&at| self.columns[at].clone()).collect(),
+            columns.iter().map(|&at| self.source[at]).collect(),
+        );
         table
     }
 }

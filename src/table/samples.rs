@@ -2,7 +2,7 @@
 
 use crate::table::column::{Column, Numbers, Values};
 use crate::table::{Lines, Origin, Table};
-use std::collections::{BTreeMap, BTreeSet, HashMap};
+use std::collections::{BTreeMap, BTreeSet, HashMap, HashSet};
 
 /// Whether capitals tell keys apart.
 #[derive(Clone, Copy, Debug, Default, PartialEq, Eq, Hash)]
@@ -259,29 +259,31 @@ fn widened(
     table
         .origins
         .extend(right.origins.iter().map(|origin| looked_up(origin, rows)));
-    for (at, column) in right
-        .columns()
-        .iter()
-        .enumerate()
-        .filter(|(at, _)| *at != right_key)
-    {
-        let name = free_name(&table, right, &column.name);
+    let mut taken: HashSet<String> = left.columns().iter().map(|c| c.name.clone()).collect();
+    let (mut columns, mut sources) = (Vec::new(), Vec::new());
+    for (at, column) in right.columns().iter().enumerate() {
+        if at == right_key {
+            continue;
+        }
+        let name = free_name(&taken, right, &column.name);
+        let _ = taken.insert(name.clone());
         if name != column.name {
             report.renamed.push((column.name.clone(), name.clone()));
         }
         let (origin, line) = right.source[at];
-        let joined = Column {
+        columns.push(Column {
             name,
             unit: column.unit.clone(),
             values: values(column, rows),
-        };
-        table.push(joined, (first_origin + origin, line));
+        });
+        sources.push((first_origin + origin, line));
     }
+    table.add(columns, sources);
     table
 }
 
-fn free_name(table: &Table, right: &Table, name: &str) -> String {
-    let is_free = |name: &str| table.position(name).is_none();
+fn free_name(taken: &HashSet<String>, right: &Table, name: &str) -> String {
+    let is_free = |name: &str| !taken.contains(name);
     if is_free(name) {
         return name.to_owned();
     }

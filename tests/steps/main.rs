@@ -1,8 +1,9 @@
 //! Preparation steps, measures and stability against reference values, and the laws of steps.
 
-mod catalogue; // the rest of the catalogue against general-purpose libraries
+mod catalogue; // steps on rows and along the axis against general-purpose libraries
 mod class; // the class of every step, and that nothing is learnt from held-out samples
 mod interval; // intervals for a new sample, and for the error of a procedure
+mod learned; // steps that learn from samples against general-purpose libraries
 mod measure; // measures against reference values
 mod order; // remarks on the order of steps
 mod preprocess; // steps against reference values

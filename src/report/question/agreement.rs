@@ -1,6 +1,5 @@
 //! Do predictions match observations?
 
-use crate::base::number::{self, Precision};
 use crate::eval::fact::FactTable;
 use crate::figure::shape::agreement::Agreement;
 use crate::figure::shape::{Caption, Heading};
@@ -82,17 +81,9 @@ fn figure(chain: &Chain<'_>, source: &Source<'_>) -> Option<NamedFigure> {
     let unit = table
         .column("observed")
         .map_or_else(String::new, |column| column.unit.clone());
-    let two = |name: &str| {
-        source
-            .value(name)
-            .map(|value| number::text(value, Precision::Significant(2)))
-    };
+    // The slope stands among the numbers beside the figure, where nothing can cover it.
     let line = match (source.value("intercept"), source.value("slope")) {
-        (Some(intercept), Some(slope)) => Some((
-            intercept,
-            slope,
-            format!("slope {}", two("slope").unwrap_or_default()),
-        )),
+        (Some(intercept), Some(slope)) => Some((intercept, slope, String::new())),
         (Some(_) | None, None) | (None, Some(_)) => None,
     };
     let note = |name: &str, label: &str| {
@@ -120,6 +111,7 @@ fn figure(chain: &Chain<'_>, source: &Source<'_>) -> Option<NamedFigure> {
             note("nested rmse", "RMSE"),
             note("nested r²", "R²"),
             note("bias", "average difference"),
+            note("slope", "slope of the line"),
         ]
         .into_iter()
         .flatten()
@@ -182,13 +174,14 @@ fn tips(table: &FactTable) -> Vec<Tip> {
 pub fn methods(chain: &Chain<'_>, source: &Source<'_>) -> Vec<Paragraph> {
     let units = noun::unit(chain.settings()).many;
     let mut telling = Telling::new();
-    telling.say(source.say(
-        &format!(
-            "Agreement was examined on held-out predictions, each the mean over repeats, with \
-             {units} kept together."
-        ),
-        &[],
-    ));
+    let together = if chain.settings().is_some_and(|data| data.unit.is_some()) {
+        format!(", with {units} kept together")
+    } else {
+        String::new()
+    };
+    telling.say(Paragraph::of(format!(
+        "Agreement was examined on held-out predictions, each the mean over repeats{together}."
+    )));
     telling.say(source.say(
         "The average difference (predicted minus observed) was {bias}; the standard deviation of \
          the differences about it (standard error of prediction) was {sep}.",

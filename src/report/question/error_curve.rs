@@ -40,8 +40,8 @@ pub fn answer(source: &Source<'_>) -> Paragraph {
         )
     } else {
         source.say(
-            "At the chosen strength, {chosen strength}, the squared error lies {curve \
-             improvement|%} or nearly so below that at the strongest penalty",
+            "At the chosen strength, {chosen strength}, the error is among the lowest; the lowest \
+             squared error lies {curve improvement|%} below that at the strongest penalty",
             &[],
         )
     };

@@ -191,11 +191,13 @@ pub fn methods(context: &Context<'_>, chain: &Chain<'_>, source: &Source<'_>) ->
         ));
     }
     if source.has("nested r²") {
+        let together = if chain.settings().is_some_and(|data| data.unit.is_some()) {
+            format!(" with {} kept together", unit.many)
+        } else {
+            String::new()
+        };
         telling.say(source.say(
-            &format!(
-                "On outer held-out parts with {} kept together it was {{nested r²}} (nested).",
-                unit.many
-            ),
+            &format!("On outer held-out parts{together} it was {{nested r²}} (nested)."),
             &[],
         ));
     }
@@ -224,7 +226,9 @@ pub fn methods(context: &Context<'_>, chain: &Chain<'_>, source: &Source<'_>) ->
              bias}, slope {sealed slope}).",
             &[],
         ));
-        telling.say(openings(context, chain));
+        if let Some(said) = openings(context, chain) {
+            telling.say(said);
+        }
     } else if chain
         .settings()
         .is_some_and(|data| data.sealed != Sealed::Nothing)
@@ -235,7 +239,7 @@ pub fn methods(context: &Context<'_>, chain: &Chain<'_>, source: &Source<'_>) ->
 }
 
 /// How often the sealed set has been opened, from what was counted.
-fn openings(context: &Context<'_>, chain: &Chain<'_>) -> Paragraph {
+fn openings(context: &Context<'_>, chain: &Chain<'_>) -> Option<Paragraph> {
     let title = chain.data.map(|(id, _)| context.title(id));
     let count = context
         .ledger
@@ -243,7 +247,9 @@ fn openings(context: &Context<'_>, chain: &Chain<'_>) -> Paragraph {
         .iter()
         .filter(|opening| Some(&opening.cell) == title.as_ref())
         .count();
-    Paragraph::of("Openings of the sealed set counted so far: ")
-        .counted("openings of the sealed set", count)
-        .text(".")
+    (count > 0).then(|| {
+        Paragraph::of("Openings of the sealed set counted so far: ")
+            .counted("openings of the sealed set", count)
+            .text(".")
+    })
 }

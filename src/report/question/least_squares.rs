@@ -133,13 +133,23 @@ fn figure(chain: &Chain<'_>, source: &Source<'_>) -> Option<NamedFigure> {
 #[must_use]
 pub fn methods(chain: &Chain<'_>, source: &Source<'_>) -> Vec<Paragraph> {
     let mut telling = Telling::new();
-    telling.say(source.say(
-        "The cross-products of the centred and scaled predictors (⟨XᵀX⟩, {predictors} rows and \
-         columns) from {samples} samples had the rank {rank} and {zero eigenvalues} eigenvalues of \
-         zero, so that least squares determines the coefficients only in as many directions as the \
-         rank.",
-        &[],
-    ));
+    telling.say(
+        source
+            .say(
+                "The cross-products of the predictors as the penalty sees them (⟨XᵀX⟩, \
+                 {predictors} rows and columns) from {samples} samples had the rank {rank}",
+                &[],
+            )
+            .and(if source.is_above_zero("zero eigenvalues") {
+                source.say(
+                    " and {zero eigenvalues} [eigenvalue|eigenvalues] of zero, so that least \
+                     squares determines the coefficients only in as many directions as the rank.",
+                    &[],
+                )
+            } else {
+                Paragraph::of(", so that least squares has one answer.")
+            }),
+    );
     telling.say(if is_lasso(chain) {
         source.say(
             "Their condition number was {condition number}; that of the predictors alone that the \

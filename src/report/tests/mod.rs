@@ -4,6 +4,7 @@ mod snapshot;
 
 use crate::base::problem::Problem;
 use crate::eval::fact::{FactTable, FactValue};
+use crate::eval::kind::step::{class_name, numeric_step};
 use crate::report::block::{Block, Item, ItemMark, Paragraph, Span};
 use crate::report::sample::Bench;
 use crate::report::sentence::{Editor, Piece, Sentence};
@@ -13,6 +14,7 @@ use crate::study::link::Link;
 use crate::study::prose::Prose;
 use crate::study::settings::Settings;
 use crate::study::settings::fit::{Fit, Judge, Penalty};
+use crate::study::settings::prepare::Step;
 use crate::study::settings::question::{Ask, Seal};
 use crate::study::settings::slot::Slot;
 use crate::study::settings::slot::Value;
@@ -490,4 +492,16 @@ fn a_refusal_from_the_settings_is_a_whole_sentence() {
         )
         .expect_err("no such penalty");
     assert_is_sentence(&problem.found);
+}
+
+#[test]
+fn a_step_is_of_the_class_that_the_numbers_are_computed_by() {
+    for step in Step::catalogue() {
+        let computed = numeric_step(&step).expect("the usual settings are lawful");
+        assert_eq!(
+            step.class().words(),
+            class_name(computed.class()),
+            "{step:?}"
+        );
+    }
 }

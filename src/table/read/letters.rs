@@ -106,7 +106,8 @@ pub fn is_binary(text: &str) -> bool {
         .filter(|&byte| byte < 0x20 && !matches!(byte, b'\t' | b'\n' | b'\r' | 0x0c | 0x1a))
         .count();
     let broken = look.chars().filter(|&letter| letter == '\u{fffd}').count();
-    look.contains('\0') || (strange + broken) * 50 > look.chars().count()
+    let all = look.chars().count();
+    look.contains('\0') || strange * 50 > all || broken * 5 > all
 }
 
 /// What a file is by its first bytes, when it is no table that can be read.

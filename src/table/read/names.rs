@@ -2,7 +2,7 @@
 
 use crate::base::problem::Place;
 use crate::table::finding::{Finding, FindingKind, Treatment};
-use std::collections::HashMap;
+use std::collections::{HashMap, HashSet};
 
 /// Names for columns from what stands in the header, and which had to be changed because another
 /// column has them. `place` says where a column's name stands; `first` is the number of the first column in the file.
@@ -11,6 +11,15 @@ pub fn unlike(
     first: usize,
     place: impl Fn(usize) -> Place,
 ) -> (Vec<String>, Option<Finding>) {
+    // The usual case, without a copy of every name.
+    let mut seen: HashSet<&str> = HashSet::with_capacity(heads.len());
+    if heads
+        .iter()
+        .all(|head| !head.is_empty() && seen.insert(head))
+    {
+        return (heads.to_vec(), None);
+    }
+    drop(seen);
     let mut repeated = Finding::new(FindingKind::RepeatedNames, Treatment::Renamed);
     let mut taken: HashMap<&str, usize> = HashMap::with_capacity(heads.len());
     for head in heads {

@@ -8,7 +8,7 @@ use crate::base::thread::Threads;
 use crate::base::work::{Cancelled, Work};
 use crate::table::finding::{Finding, FindingKind, Treatment};
 use crate::table::read::below::{self, TailRow};
-use crate::table::read::cell::{Sort, sort, trimmed};
+use crate::table::read::cell::{sort, trimmed};
 use crate::table::read::error::ReadError;
 use crate::table::read::layout::{self, HeadCell, HeadRow, Layout};
 use crate::table::read::raw::{RawLines, RawTable};
@@ -103,8 +103,9 @@ pub fn read(
         orientation: Some(layout.orientation),
         ..options.clone()
     };
-    let plan = plan(manner, &records, &head, &layout, file_name, findings);
-    let raw = body::read(&plan, &used, threads, &work.part(0.15..0.8))?;
+    let body = plan(manner, records, &head, &layout, file_name, findings);
+    drop(head);
+    let raw = body::read(body, &used, threads, &work.part(0.15..0.8))?;
     let raw = match raw {
         Ok(raw) => raw,
         Err(error) => return Ok(Err(error)),
@@ -190,7 +191,7 @@ fn texts(manner: Manner<'_>, record: Record) -> Vec<String> {
 /// What is known before the values are read.
 fn plan<'a>(
     manner: Manner<'a>,
-    records: &[Record],
+    mut records: Vec<Record>,
     head: &[HeadRow],
     layout: &Layout,
     file_name: &str,
@@ -228,10 +229,12 @@ fn plan<'a>(
     if header.is_none() {
         findings.push(Finding::new(FindingKind::NoHeader, Treatment::Renamed).counting(1));
     }
-    let units = units(manner, records, layout, width, &mut findings, file_name);
+    let is_unnamed = heads.iter().map(String::is_empty).collect();
+    let units = units(manner, &records, layout, width, &mut findings, file_name);
 
     // Samples: without notes below, blank rows, and the header once more.
-    let mut body: Vec<Record> = records.get(layout.first..).unwrap_or(&[]).to_vec();
+    let _ = records.drain(..layout.first.min(records.len()));
+    let mut body = records;
     let tail: Vec<TailRow> = body[body.len().saturating_sub(below::ROWS)..]
         .iter()
         .map(|&record| tail_row(manner, record))
@@ -273,7 +276,7 @@ fn plan<'a>(
                 .with_column(&(layout.left + at + 1).to_string())
         })
     } else {
-        (heads.clone(), None)
+        (heads, None)
     };
     findings.extend(of_names);
     let mut broken = Finding::new(FindingKind::BrokenLetters, Treatment::Kept);
@@ -297,7 +300,7 @@ fn plan<'a>(
         manner,
         records: body,
         names,
-        heads,
+        is_unnamed,
         units,
         left: layout.left,
         width,
@@ -357,19 +360,6 @@ fn tail_row(manner: Manner<'_>, record: Record) -> TailRow {
         ControlFlow::Continue(())
     });
     row
-}
-
-/// Whether most of these texts, where they are filled, are labels.
-fn are_labels(sorts: impl Iterator<Item = Sort>) -> bool {
-    let (mut labels, mut quantities) = (0, 0);
-    for sort in sorts {
-        if sort.is_quantity() {
-            quantities += 1;
-        } else if !sort.is_nothing() {
-            labels += 1;
-        }
-    }
-    labels > quantities
 }
 
 /// A table as found, before it is settled what its columns hold.

@@ -240,7 +240,7 @@ fn predictors(telling: &mut Telling, source: &Source<'_>) {
         .is_some_and(|range| !range.is_empty());
     telling.say(if range {
         source.say(
-            "{predictors} [predictor was|predictors were] available ({predictor range}).",
+            "{predictors} [predictor was|predictors were] available: {predictor range}.",
             &[],
         )
     } else {

@@ -269,7 +269,7 @@ fn judged(telling: &mut Telling, fit: &Fit, source: &Source<'_>, unit: &Noun, ba
         .text("."),
     );
     telling.say(Paragraph::of(format!(
-        "No {} was divided between a training part and its held-out part at either level.",
+        "The plan of parts divides no {} at either level.",
         unit.one
     )));
     // The claim is made only where the run-time check has found nothing against it.

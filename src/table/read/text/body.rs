@@ -14,7 +14,7 @@ use crate::table::read::names;
 use crate::table::read::number;
 use crate::table::read::raw::{Odd, Plan, Raw, RawLines, RawTable, Stored};
 use crate::table::read::split::{self, Field, Record};
-use crate::table::read::text::{Found, Manner, are_labels, row_lines};
+use crate::table::read::text::{Found, Manner, row_lines};
 use std::borrow::Cow;
 use std::sync::Mutex;
 
@@ -35,8 +35,8 @@ pub struct Body<'a> {
     pub records: Vec<Record>,
     /// The names of the columns from `left` on; sideways: the whole header.
     pub names: Vec<String>,
-    /// The heads of all columns as they stand in the file.
-    pub heads: Vec<String>,
+    /// Which columns of the file have no name.
+    pub is_unnamed: Vec<bool>,
     /// The units of all columns, or none.
     pub units: Vec<String>,
     /// The first column that is filled.
@@ -62,7 +62,7 @@ struct Uneven {
 
 /// Reads the values.
 pub fn read<'a>(
-    body: &Body<'a>,
+    body: Body<'a>,
     options: &Options,
     threads: Threads,
     work: &Work<'_>,
@@ -73,7 +73,7 @@ pub fn read<'a>(
         }));
     }
     match options.orientation {
-        Some(Orientation::SamplesInColumns) => sideways(body, options, threads, work),
+        Some(Orientation::SamplesInColumns) => sideways(&body, options, threads, work),
         Some(Orientation::SamplesInRows) | None => upright(body, options, threads, work),
     }
 }
@@ -144,35 +144,38 @@ fn trimmed_field<'a>(text: &'a str, field: &Field) -> Cow<'a, str> {
 /// What each column is taken for, by its name and its first values.
 fn plans(body: &Body<'_>, options: &Options) -> Vec<Plan> {
     let manner = body.manner;
-    let n_columns = body.names.len();
-    let mut sorts: Vec<Vec<Sort>> = vec![Vec::new(); n_columns];
+    // For each column, labels less quantities.
+    let mut balance = vec![0_i8; body.names.len()];
     for &record in body.records.iter().take(LOOK) {
         let _ = scan(manner, record, |index, hit| {
-            let Some(sorts) = index
-                .checked_sub(body.left)
-                .and_then(|at| sorts.get_mut(at))
-            else {
+            let slot = index.checked_sub(body.left);
+            let Some(balance) = slot.and_then(|slot| balance.get_mut(slot)) else {
                 return;
             };
-            sorts.push(match hit {
+            let sort = match hit {
                 Hit::Number { value, .. } => Sort::Number(value),
                 Hit::Other(field) => sort(&field.text(manner.text), manner.mark, manner.grouping),
-            });
+            };
+            if sort.is_quantity() {
+                *balance -= 1;
+            } else if !sort.is_nothing() {
+                *balance += 1;
+            }
         });
     }
     let as_text = decide::set(&options.as_text);
     let as_numbers = decide::set(&options.as_numbers);
     body.names
         .iter()
-        .zip(&sorts)
-        .map(|(name, sorts)| {
+        .zip(&balance)
+        .map(|(name, balance)| {
             if as_text.contains(name.as_str()) {
                 Plan::Labels
             } else if as_numbers.contains(name.as_str()) {
                 Plan::SurelyNumbers
             } else if names_samples(name) {
                 Plan::Names
-            } else if are_labels(sorts.iter().copied()) {
+            } else if *balance > 0 {
                 Plan::PerhapsLabels
             } else {
                 Plan::Numbers
@@ -181,17 +184,42 @@ fn plans(body: &Body<'_>, options: &Options) -> Vec<Plan> {
         .collect()
 }
 
-type Strip<'s> = Mutex<Option<Vec<&'s mut [f64]>>>;
+/// What is left of all columns, from which one piece of rows after the other is taken off: whoever
+/// comes next gets the next rows. One slice for each column and thread, where slices for all pieces
+/// beforehand would take a quarter of the memory of a wide table.
+struct Tails<'s> {
+    next: usize,
+    columns: Vec<&'s mut [f64]>,
+}
+
+impl<'s> Tails<'s> {
+    /// The number of the next piece, and its share of every column.
+    fn take(&mut self, rows_each: usize) -> (usize, Vec<&'s mut [f64]>) {
+        let piece = self.next;
+        self.next += 1;
+        let share = self
+            .columns
+            .iter_mut()
+            .map(|tail| {
+                let rows = rows_each.min(tail.len());
+                let (share, rest) = std::mem::take(tail).split_at_mut(rows);
+                *tail = rest;
+                share
+            })
+            .collect();
+        (piece, share)
+    }
+}
 
 /// Samples in rows.
 fn upright<'a>(
-    body: &Body<'a>,
+    mut body: Body<'a>,
     options: &Options,
     threads: Threads,
     work: &Work<'_>,
 ) -> Result<Found<'a>, Cancelled> {
-    let (n_rows, n_columns) = (body.records.len(), body.names.len());
-    let plans = plans(body, options);
+    let n_rows = body.records.len();
+    let plans = plans(&body, options);
     let mut values: Vec<Vec<f64>> = plans
         .iter()
         .map(|plan| {
@@ -202,49 +230,46 @@ fn upright<'a>(
             }
         })
         .collect();
-    let rows_each = rows_each(body);
+    let rows_each = rows_each(&body);
+    let tails = Mutex::new(Tails {
+        next: 0,
+        columns: values.iter_mut().map(Vec::as_mut_slice).collect(),
+    });
     let n_pieces = n_rows.div_ceil(rows_each);
-    let mut shares: Vec<Vec<&mut [f64]>> = (0..n_pieces)
-        .map(|_| Vec::with_capacity(n_columns))
-        .collect();
-    for column in &mut values {
-        let mut pieces = column.chunks_mut(rows_each);
-        for share in &mut shares {
-            share.push(pieces.next().unwrap_or(&mut []));
-        }
-    }
-    let shares: Vec<Strip<'_>> = shares
-        .into_iter()
-        .map(|share| Mutex::new(Some(share)))
-        .collect();
-    let pieces = in_order(threads, n_pieces, &work.part(0.0..0.9), |piece| {
-        let mut share = shares[piece]
+    let mut pieces = in_order(threads, n_pieces, &work.part(0.0..0.9), |_| {
+        let (piece, mut share) = tails
             .lock()
-            .expect("nobody panics while holding a share")
-            .take()
-            .expect("every piece is read once");
+            .expect("nobody panics while taking a share")
+            .take(rows_each);
         let first = piece * rows_each;
         let records = &body.records[first..n_rows.min(first + rows_each)];
-        strip(body, records, first, &mut share, work)
+        Ok((piece, strip(&body, records, first, &mut share, work)?))
     })?;
-    drop(shares);
+    drop(tails);
+    // Threads take pieces in any order; what they found is put into the order of the file.
+    pieces.sort_by_key(|(piece, _)| *piece);
     let mut odd: Vec<Vec<Odd<'a>>> = plans.iter().map(|_| Vec::new()).collect();
     let mut uneven = Uneven::default();
-    for (pieces, lines) in pieces {
+    for (_, (pieces, lines)) in pieces {
         for (column, value) in pieces {
             odd[column as usize].push(value);
         }
         uneven.short.extend(lines.short);
         uneven.long.extend(lines.long);
     }
-    let mut columns: Vec<Raw<'a>> = Vec::with_capacity(n_columns);
-    for (at, ((plan, values), odd)) in plans.into_iter().zip(values).zip(odd).enumerate() {
+    let mut findings = std::mem::take(&mut body.findings);
+    findings.extend(uneven_rows(&body, uneven));
+    let names = std::mem::take(&mut body.names);
+    let mut columns: Vec<Raw<'a>> = Vec::with_capacity(names.len());
+    let parts = names.into_iter().zip(plans).zip(values).zip(odd);
+    for (at, (((name, plan), values), odd)) in parts.enumerate() {
+        let in_file = at + body.left;
         columns.push(Raw {
-            name: body.names[at].clone(),
-            is_unnamed: body.heads.get(at + body.left).is_none_or(String::is_empty),
+            name,
+            is_unnamed: body.is_unnamed.get(in_file).copied().unwrap_or(true),
             unit: body
                 .units
-                .get(at + body.left)
+                .get(in_file)
                 .filter(|unit| !unit.is_empty())
                 .cloned(),
             line: 0,
@@ -253,9 +278,7 @@ fn upright<'a>(
             odd,
         });
     }
-    retext(body, &mut columns, threads, &work.part(0.9..1.0))?;
-    let mut findings = body.findings.clone();
-    findings.extend(uneven_rows(body, uneven));
+    retext(&body, &mut columns, threads, &work.part(0.9..1.0))?;
     Ok(Ok(RawTable {
         sheet: None,
         is_typed: false,

@@ -31,6 +31,8 @@ const WHEEL_COLUMNS: f32 = 1.0;
 const WIDTHS: (f32, f32) = (56.0, 220.0);
 /// The widest that a last column of words gets.
 const WIDEST: f32 = 640.0;
+/// How many columns are few.
+const FEW: usize = 4;
 /// How many names are measured for the width of the name column.
 const MEASURED: usize = 400;
 /// Two presses within this time open a value.
@@ -417,8 +419,14 @@ impl<'a, M> Grid<'a, M> {
                 metrics::width(&source.corner(), Face::SansStrong, size),
                 f64::max,
             );
+        // Beside few columns there is room for long names.
+        let widest = if source.n_columns() <= FEW {
+            WIDEST / 2.0
+        } else {
+            WIDTHS.1
+        };
         state.names = (names as f32 + 2.0 * space::SMALL)
-            .clamp(WIDTHS.0, WIDTHS.1)
+            .clamp(WIDTHS.0, widest)
             .round();
         let last_row = source.n_rows().saturating_sub(1);
         let last_column = source.n_columns().saturating_sub(1);

@@ -57,9 +57,10 @@ pub fn decimals_for(size: f64, digits: u8) -> u8 {
     (f64::from(digits) - 1.0 - exponent).clamp(0.0, 12.0) as u8
 }
 
-/// The pattern with which a workbook shows a number as [`text`] would.
+/// The pattern with which a workbook shows a number as [`text`] would. Workbooks have no pattern
+/// for significant digits, so that it depends on the number's size.
 #[must_use]
-pub fn workbook_format(precision: Precision) -> String {
+pub fn workbook_format(value: f64, precision: Precision) -> String {
     let decimals = |count: u8| {
         if count == 0 {
             String::new()
@@ -70,8 +71,15 @@ pub fn workbook_format(precision: Precision) -> String {
     match precision {
         Precision::Whole => "#,##0".to_owned(),
         Precision::Decimals(count) => format!("0{}", decimals(count)),
-        // Workbooks have no format for significant digits; General keeps the value whole.
-        Precision::Significant(_) | Precision::Full => "General".to_owned(),
+        Precision::Significant(digits) => {
+            let is_plain = value == 0.0 || (1e-5..1e7).contains(&value.abs());
+            if is_plain {
+                format!("0{}", decimals(decimals_for(value, digits.max(1))))
+            } else {
+                format!("0{}E+00", decimals(digits.saturating_sub(1)))
+            }
+        }
+        Precision::Full => "General".to_owned(),
         Precision::Percent(count) => format!("0{} %", decimals(count)),
     }
 }
@@ -191,6 +199,15 @@ mod tests {
     fn powers_of_ten_have_raised_exponents() {
         assert_eq!(power_of_ten(-12), "10⁻¹²");
         assert_eq!(power_of_ten(3), "10³");
+    }
+
+    #[test]
+    fn a_workbook_shows_significant_digits_by_the_size_of_the_number() {
+        let three = Precision::Significant(3);
+        assert_eq!(workbook_format(0.005_658, three), "0.00000");
+        assert_eq!(workbook_format(41.2, three), "0.0");
+        assert_eq!(workbook_format(1.3e-14, three), "0.00E+00");
+        assert_eq!(workbook_format(0.8, Precision::Percent(1)), "0.0 %");
     }
 
     #[test]

@@ -1,7 +1,7 @@
 //! `start`: makes a ready study from tables.
 
 use crate::base::layout::Orientation;
-use crate::base::problem::{Place, Problem};
+use crate::base::problem::Problem;
 use crate::base::real::Real;
 use crate::base::thread::Threads;
 use crate::base::work::Work;
@@ -9,8 +9,12 @@ use crate::cli::arguments::{ChoiceName, KindName, PenaltyName, Start};
 use crate::eval::start::{Wishes, start};
 use crate::store::{self, Record};
 use crate::study::ledger::Ledger;
+use crate::study::settings::Settings;
 use crate::study::settings::data::OutcomeKind;
-use crate::study::settings::fit::{Fit, Judge, Penalty, Rule, Strength};
+use crate::study::settings::fit::{Fit, Penalty};
+use crate::study::settings::slot::fit::FitSlot;
+use crate::study::settings::slot::{Slot, Value};
+use crate::study::source::SourceId;
 use std::path::Path;
 use std::process::ExitCode;
 use std::sync::Arc;
@@ -31,6 +35,12 @@ pub fn run(arguments: &Start) -> Result<ExitCode, Problem> {
     let wishes = wishes(arguments)?;
     let started = start(&tables, &wishes, Threads::all(), &Work::unattended())
         .expect("nobody calls unattended work off")?;
+    let mut shelf = started.shelf;
+    for ((file, bytes), path) in tables.iter().zip(&arguments.tables) {
+        // A readable study names its tables by path, so that they need not be copied beside it.
+        let whole = std::path::absolute(path).unwrap_or_else(|_| path.clone());
+        shelf.came_from(&SourceId::of(bytes), file, &whole);
+    }
     for note in &started.notes {
         eprintln!("{note}");
     }
@@ -38,7 +48,7 @@ pub fn run(arguments: &Start) -> Result<ExitCode, Problem> {
     store::save(
         &arguments.output,
         &started.study,
-        &started.shelf,
+        &shelf,
         &Ledger::default(),
         &nothing,
     )?;
@@ -97,65 +107,74 @@ fn title(path: &Path) -> String {
     })
 }
 
+/// The fit that is wished for. Every number passes the same door as in the window, so that what
+/// is written can be opened.
 fn fit(arguments: &Start) -> Result<Fit, Problem> {
-    let mut fit = Fit::default();
-    let share = |value: f64| {
-        Real::new(value)
-            .filter(|share| share.get() > 0.0 && share.get() < 1.0)
-            .ok_or_else(|| {
-                Problem::new(
-                    "lasso-share",
-                    format!("The lasso share must be above 0 and below 1; “{value}” was given."),
-                )
-                .at(Place::nowhere())
-                .mend("Use --penalty ridge for 0 and --penalty lasso for 1.")
-            })
-    };
-    let mut shares = arguments
-        .lasso_share
-        .iter()
-        .map(|s| share(*s))
-        .collect::<Result<Vec<_>, _>>()?;
-    shares.sort();
-    shares.dedup();
-    fit.penalty = match arguments.penalty {
+    let mut shares = arguments.lasso_share.clone();
+    let penalty = match arguments.penalty {
         PenaltyName::Ridge => Penalty::Ridge,
         // A share given without a penalty can only mean an elastic net.
         PenaltyName::Lasso if shares.is_empty() => Penalty::Lasso,
         PenaltyName::Lasso | PenaltyName::ElasticNet => {
             if shares.is_empty() {
-                shares.push(Real::constant(0.5));
+                shares.push(0.5);
             }
-            Penalty::ElasticNet { shares }
+            Penalty::ElasticNet {
+                shares: vec![Real::constant(0.5)],
+            }
         }
     };
+    let is_net = matches!(penalty, Penalty::ElasticNet { .. });
+    let mut settings = Settings::Fit(Fit {
+        penalty,
+        ..Fit::default()
+    });
+    let mut set = |slot: FitSlot, value: Value| -> Result<(), Problem> {
+        settings = settings.with(&Slot::Fit(slot), value)?;
+        Ok(())
+    };
+    if is_net {
+        let words: Vec<String> = shares.iter().map(f64::to_string).collect();
+        set(FitSlot::Shares, Value::Text(words.join("; ")))?;
+    }
     if let Some(strength) = arguments.strength {
-        let real = Real::new(strength)
-            .filter(|s| s.get() >= 0.0)
-            .ok_or_else(|| {
-                Problem::new(
-                    "strength",
-                    format!("The penalty strength must be 0 or more; “{strength}” was given."),
-                )
-                .mend("Give another strength, or leave it to a rule.")
-            })?;
-        fit.strength = Strength::ByHand(real);
-    } else if let Strength::Chosen { rule, inner, .. } = &mut fit.strength {
-        *rule = match arguments.choice {
-            ChoiceName::LowestError => Rule::LowestError,
-            ChoiceName::OneSe => Rule::OneStandardError,
-            ChoiceName::Gcv => Rule::GeneralisedCrossValidation,
-            ChoiceName::Ebic => Rule::ExtendedBic {
-                gamma: Real::constant(0.5),
-            },
+        set(FitSlot::Strength, Value::Text(strength.to_string()))?;
+    } else {
+        let name = match arguments.choice {
+            ChoiceName::LowestError => "lowest-error",
+            ChoiceName::OneSe => "one-se",
+            ChoiceName::Gcv => "gcv",
+            ChoiceName::Ebic => "ebic",
         };
-        inner.parts = arguments.parts.unwrap_or(inner.parts).max(2);
-        inner.repeats = arguments.repeats.unwrap_or(inner.repeats).max(1);
+        set(FitSlot::Choice, Value::Choice(name.to_owned()))?;
+        if matches!(
+            arguments.choice,
+            ChoiceName::LowestError | ChoiceName::OneSe
+        ) {
+            if let Some(parts) = arguments.parts {
+                set(FitSlot::InnerParts, Value::Whole(parts.into()))?;
+            }
+            if let Some(repeats) = arguments.repeats {
+                set(FitSlot::InnerRepeats, Value::Whole(repeats.into()))?;
+            }
+        }
     }
-    if let Judge::Nested(plan) = &mut fit.judge {
-        plan.parts = arguments.outer_parts.unwrap_or(plan.parts).max(2);
-        plan.repeats = arguments.outer_repeats.unwrap_or(plan.repeats).max(1);
+    if let Some(parts) = arguments.outer_parts {
+        set(FitSlot::OuterParts, Value::Whole(parts.into()))?;
     }
-    fit.seed = arguments.seed.unwrap_or(fit.seed);
-    Ok(fit)
+    if let Some(repeats) = arguments.outer_repeats {
+        set(FitSlot::OuterRepeats, Value::Whole(repeats.into()))?;
+    }
+    if let Some(seed) = arguments.seed {
+        set(FitSlot::Seed, Value::Whole(seed))?;
+    }
+    match settings {
+        Settings::Fit(fit) => Ok(fit),
+        Settings::Data(_)
+        | Settings::Prepare(_)
+        | Settings::Question(_)
+        | Settings::Compare(_)
+        | Settings::Score(_)
+        | Settings::Prose(_) => unreachable!("a word of a fit leaves it a fit"),
+    }
 }

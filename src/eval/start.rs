@@ -674,9 +674,11 @@ fn fit_settings(wishes: &Wishes, shape: &Shape, prepared: CellId, notes: &mut Ve
         let kept = units - units.div_ceil(plan.parts.max(1));
         if let Strength::Chosen { rule, inner, .. } = &mut fit.strength {
             let needs = matches!(rule, Rule::LowestError | Rule::OneStandardError);
-            if needs && inner.parts > kept {
-                notes.push(format!("Only {kept} independent samples in a training part: {kept} inner parts are drawn."));
-                inner.parts = kept.max(2);
+            if needs && kept >= 2 && inner.parts > kept {
+                notes.push(format!(
+                    "Only {kept} independent samples in a training part: {kept} inner parts are drawn."
+                ));
+                inner.parts = kept;
             }
         }
     }

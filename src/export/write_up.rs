@@ -32,6 +32,9 @@ const MOST_ROWS: usize = 40;
 /// How wide a figure is laid out, in the units of its text size.
 const WIDTH: f64 = 680.0;
 
+/// The air around a figure in a file; on the page the page gives it.
+const MARGIN: f64 = 16.0;
+
 /// Pixels per unit of a figure in a file.
 const PIXELS: f64 = 2.0;
 
@@ -303,7 +306,8 @@ impl Page<'_> {
             file_name(&self.context.title(id)),
             file_name(&figure.name)
         );
-        let picture = layout(&figure.figure, natural_size(&figure.figure, WIDTH));
+        let picture =
+            layout(&figure.figure, natural_size(&figure.figure, WIDTH)).with_margin(MARGIN);
         let bytes = png(&svg(&picture, &Palette::paper()), PIXELS)?;
         self.figures.push((name.clone(), bytes));
         let reading = inline(&figure.reading);

@@ -9,7 +9,9 @@
 use crate::base::work::{Cancelled, Work};
 use crate::numeric::factor::Factor;
 use crate::numeric::lanes;
+use crate::numeric::matrix;
 use crate::numeric::quadratic::Quadratic;
+use crate::numeric::sample_space::{Change, SampleSpace};
 
 /// A newcomer whose pivot is below this share of its square lies in the span of the active ones,
 /// as far as the factor can tell after refinement.
@@ -45,6 +47,8 @@ pub(crate) struct ActiveSet {
     /// Their signs: 1, −1, or 0 where neither penalty nor rule cares about the sign.
     signs: Vec<f64>,
     factor: Factor,
+    /// In place of the factor when more are active than there are samples.
+    space: Option<SampleSpace>,
     /// t − HXb.
     pub(crate) residual: Vec<f64>,
     /// xⱼ'(t − HXb) of each slot, as of the last look.
@@ -130,7 +134,7 @@ impl ActiveSet {
                 .zip(&self.signs)
                 .map(|(&slot, sign)| problem.along[slot] - problem.lasso[slot] * sign)
                 .collect();
-            self.factor.solve(&mut goal);
+            self.solve_equations(problem, &mut goal);
             let mut step = 1.0;
             let mut leaves = None;
             for (at, (&goal, &sign)) in goal.iter().zip(&self.signs).enumerate() {
@@ -149,7 +153,7 @@ impl ActiveSet {
             for (b, goal) in self.b.iter_mut().zip(&goal) {
                 *b += step * (goal - *b);
             }
-            self.leave(at);
+            self.leave(problem, at);
         }
     }
 
@@ -173,7 +177,7 @@ impl ActiveSet {
                 return;
             }
             before = worst;
-            self.factor.solve(&mut c);
+            self.solve_equations(problem, &mut c);
             for ((b, step), sign) in self.b.iter_mut().zip(&c).zip(&self.signs) {
                 // A refinement never changes a sign: that is for the next round to decide.
                 if *sign == 0.0 || (*b + step) * sign >= 0.0 {
@@ -271,12 +275,28 @@ impl ActiveSet {
             }
             b_new += direction * step;
             self.scratch = cross;
-            self.leave(at);
+            self.leave(problem, at);
+        }
+    }
+
+    /// Replaces a right-hand side by the solution of the active equations.
+    fn solve_equations(&self, problem: &Quadratic, vector: &mut [f64]) {
+        match &self.space {
+            Some(space) => space.solve(problem, &self.members, vector),
+            None => self.factor.solve(vector),
         }
     }
 
     /// Appends a slot's column to the factor if its pivot allows.
     fn try_append(&mut self, problem: &Quadratic, slot: usize, cross: &mut Vec<f64>) -> f64 {
+        if self.space.is_none() && SampleSpace::suits(problem, self.members.len()) {
+            self.space = Some(SampleSpace::new(problem, &self.members));
+        }
+        if let Some(space) = &mut self.space {
+            // With a ridge weight nothing lies in the span of the others.
+            space.change(problem, slot, Change::Comes);
+            return f64::INFINITY;
+        }
         lanes::chosen_dots(
             problem.h_columns(),
             &self.members,
@@ -293,8 +313,11 @@ impl ActiveSet {
         if is_indifferent { 0.0 } else { direction }
     }
 
-    fn leave(&mut self, at: usize) {
-        self.factor.remove(at);
+    fn leave(&mut self, problem: &Quadratic, at: usize) {
+        match &mut self.space {
+            Some(space) => space.change(problem, self.members[at], Change::Goes),
+            None => self.factor.remove(at),
+        }
         let _ = self.members.remove(at);
         let _ = self.signs.remove(at);
         let _ = self.b.remove(at);
@@ -304,6 +327,9 @@ impl ActiveSet {
     /// The degrees of freedom of the active coefficients: the trace of G(G + ridge)⁻¹ for the G of
     /// the problem that was solved last.
     pub(crate) fn effective(&self, problem: &Quadratic) -> f64 {
+        if let Some(space) = &self.space {
+            return space.effective();
+        }
         let k = self.members.len();
         let mut lost = 0.0;
         for (at, &slot) in self.members.iter().enumerate() {
@@ -342,7 +368,7 @@ impl ActiveSet {
         for at in (0..self.members.len()).rev() {
             let b = wanted[self.members[at]];
             if b == 0.0 {
-                self.leave(at);
+                self.leave(problem, at);
             } else {
                 self.b[at] = b;
                 self.signs[at] = self.sign_of(problem, self.members[at], b.signum());
@@ -369,8 +395,29 @@ impl ActiveSet {
         self.signs.clear();
         self.b.clear();
         self.correlation.resize(problem.n_slots(), f64::INFINITY);
-        for &(slot, b) in solution {
-            self.append_at(problem, slot, b);
+        self.space = None;
+        if SampleSpace::suits(problem, solution.len()) {
+            for &(slot, b) in solution {
+                self.push(problem, slot, b);
+            }
+            self.space = Some(SampleSpace::new(problem, &self.members));
+            return;
+        }
+        // All products at once: much cheaper than column by column.
+        let slots: Vec<usize> = solution.iter().map(|(slot, _)| *slot).collect();
+        let gram = matrix::transposed_product(
+            &problem.block(&problem.x, &slots),
+            &problem.block(problem.h_columns(), &slots),
+        );
+        let mut kept: Vec<usize> = Vec::with_capacity(slots.len());
+        for (at, &(slot, b)) in solution.iter().enumerate() {
+            let mut cross: Vec<f64> = kept.iter().map(|&k| gram[(at, k)]).collect();
+            let diagonal = problem.square[slot] + problem.ridge[slot];
+            let least = SPANNED * diagonal;
+            if self.factor.append(&mut cross, diagonal, least) > least {
+                kept.push(at);
+                self.push(problem, slot, b);
+            }
         }
     }
 
@@ -382,10 +429,14 @@ impl ActiveSet {
         self.scratch = cross;
         let diagonal = problem.square[slot] + problem.ridge[slot];
         if pivot > SPANNED * diagonal {
-            let sign = self.sign_of(problem, slot, b.signum());
-            self.members.push(slot);
-            self.signs.push(sign);
-            self.b.push(b);
+            self.push(problem, slot, b);
         }
+    }
+
+    fn push(&mut self, problem: &Quadratic, slot: usize, b: f64) {
+        let sign = self.sign_of(problem, slot, b.signum());
+        self.members.push(slot);
+        self.signs.push(sign);
+        self.b.push(b);
     }
 }

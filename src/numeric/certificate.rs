@@ -1,7 +1,7 @@
 //! How far a solution can be from the best, in plain arithmetic that shares nothing with the solvers.
 
 use crate::numeric::error::{FitError, Ingredient};
-use crate::numeric::path::Coefficients;
+use crate::numeric::path::{Coefficients, Grouping};
 use crate::numeric::response::{Response, Ties};
 use crate::numeric::task::{Scaling, Task};
 
@@ -34,7 +34,7 @@ pub fn certify(
     certify_classes(task, share, strength, std::slice::from_ref(solution))
 }
 
-/// The same for a solution with one set of coefficients a class (penalised class by class).
+/// The same for a solution with one set of coefficients a class, penalised class by class.
 ///
 /// # Errors
 /// What is wrong with the task, or another number of solutions than the task has classes.
@@ -43,6 +43,20 @@ pub fn certify_classes(
     share: f64,
     strength: f64,
     solution: &[Coefficients],
+) -> Result<Certificate, FitError> {
+    certify_grouping(task, share, strength, solution, Grouping::Apart)
+}
+
+/// The same for classes under either grouping.
+///
+/// # Errors
+/// What is wrong with the task, or another number of solutions than the task has classes.
+pub fn certify_grouping(
+    task: &Task<'_>,
+    share: f64,
+    strength: f64,
+    solution: &[Coefficients],
+    grouping: Grouping,
 ) -> Result<Certificate, FitError> {
     task.check()?;
     let part = Part::new(task)?;
@@ -62,7 +76,20 @@ pub fn certify_classes(
     }
     let eta: Vec<Vec<f64>> = solution.iter().map(|one| part.linear(one)).collect();
     let state = State::of(task.response, &part.rows, &part.v, task, &eta);
-    Ok(examine(&part, &state, share, strength, solution))
+    let penalty = Penalty {
+        share,
+        strength,
+        grouping,
+    };
+    Ok(examine(&part, &state, penalty, solution))
+}
+
+/// The penalty that a solution is examined under.
+#[derive(Clone, Copy)]
+struct Penalty {
+    share: f64,
+    strength: f64,
+    grouping: Grouping,
 }
 
 /// Training rows and weights, taken from the task anew.
@@ -174,10 +201,14 @@ impl Worst {
 fn examine(
     part: &Part<'_>,
     state: &State<'_>,
-    share: f64,
-    strength: f64,
+    penalty: Penalty,
     solution: &[Coefficients],
 ) -> Certificate {
+    let Penalty {
+        share,
+        strength,
+        grouping,
+    } = penalty;
     let task = part.task;
     let product = |column: &[f64], class: usize| -> f64 {
         column
@@ -226,34 +257,51 @@ fn examine(
         .collect();
     for j in 0..task.predictors.n_predictors() {
         let column = part.column(j);
-        for (class, listed) in coefficients.iter_mut().enumerate() {
-            let raw = listed.next_if(|(at, _)| *at == j).map_or(0.0, |(_, b)| b);
-            let Some(column) = &column else {
-                if raw != 0.0 {
-                    worst.see(f64::INFINITY, Some(j));
-                }
-                continue;
-            };
-            let b = raw * column.scale;
-            let factor = task.factors.map_or(1.0, |factors| factors[j]) * strength;
-            let (lasso, ridge) = (factor * share, factor * (1.0 - share));
-            let c = product(&column.z, class);
-            penalty += lasso * b.abs() + 0.5 * ridge * b * b;
-            if factor == 0.0 {
-                worst.see(c.abs() / unit, Some(j));
-                continue;
+        let raw: Vec<f64> = coefficients
+            .iter_mut()
+            .map(|listed| listed.next_if(|(at, _)| *at == j).map_or(0.0, |(_, b)| b))
+            .collect();
+        let Some(column) = &column else {
+            if raw.iter().any(|b| *b != 0.0) {
+                worst.see(f64::INFINITY, Some(j));
             }
-            let violation = if b == 0.0 {
-                (c.abs() - lasso).max(0.0)
+            continue;
+        };
+        let b: Vec<f64> = raw.iter().map(|b| b * column.scale).collect();
+        let c: Vec<f64> = (0..b.len())
+            .map(|class| product(&column.z, class))
+            .collect();
+        let factor = task.factors.map_or(1.0, |factors| factors[j]) * strength;
+        if factor == 0.0 {
+            for c in c {
+                worst.see(c.abs() / unit, Some(j));
+            }
+            continue;
+        }
+        let (lasso, ridge) = (factor * share, factor * (1.0 - share));
+        let groups: Vec<(&[f64], &[f64])> = match grouping {
+            Grouping::Apart => b.chunks(1).zip(c.chunks(1)).collect(),
+            Grouping::Together => vec![(&b, &c)],
+        };
+        for (b, c) in groups {
+            let length = |x: &[f64]| x.iter().map(|x| x * x).sum::<f64>().sqrt();
+            let (size, pull) = (length(b), length(c));
+            penalty += lasso * size + 0.5 * ridge * size * size;
+            let violation = if size == 0.0 {
+                (pull - lasso).max(0.0)
             } else {
-                (c - lasso * b.signum() - ridge * b).abs()
+                let off = b
+                    .iter()
+                    .zip(c)
+                    .map(|(b, c)| c - lasso * b / size - ridge * b);
+                length(&off.collect::<Vec<f64>>())
             };
             worst.see(violation / unit, Some(j));
-            let over = (c.abs() - lasso).max(0.0);
+            let over = (pull - lasso).max(0.0);
             if ridge > 0.0 {
                 excess += over * over / (2.0 * ridge);
             } else if over > 0.0 {
-                shrink = shrink.min(lasso / c.abs());
+                shrink = shrink.min(lasso / pull);
             }
         }
     }

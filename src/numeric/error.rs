@@ -79,10 +79,8 @@ pub enum Ingredient {
 pub enum Unsupported {
     /// Sign constraints with a lasso share of 0.
     SignsInRidge,
-    /// Sign constraints with classes.
+    /// Sign constraints on classes that are penalised together.
     SignsWithClasses,
-    /// Penalty strength 0 for classes.
-    ClassesWithoutPenalty,
 }
 
 /// Why a computation ended early: it was called off, or it could not be done.

@@ -76,6 +76,39 @@ impl Factor {
         pivot
     }
 
+    /// G ← G + xx', by Givens rotations.
+    pub(crate) fn add_outer(&mut self, mut x: Vec<f64>) {
+        let mut turns: Vec<(f64, f64)> = Vec::with_capacity(self.size);
+        for (k, left) in x.iter_mut().enumerate() {
+            let column = &mut self.entries[start(k)..start(k + 1)];
+            for (r, &(cos, sin)) in column.iter_mut().zip(&turns) {
+                let upper = *r;
+                *r = cos * upper + sin * *left;
+                *left = cos * *left - sin * upper;
+            }
+            let length = column[k].hypot(*left);
+            turns.push((column[k] / length, *left / length));
+            column[k] = length;
+        }
+    }
+
+    /// G ← G − xx', by hyperbolic rotations in the stable mixed form; G must stay positive.
+    pub(crate) fn subtract_outer(&mut self, mut x: Vec<f64>) {
+        let mut turns: Vec<(f64, f64)> = Vec::with_capacity(self.size);
+        for (k, left) in x.iter_mut().enumerate() {
+            let column = &mut self.entries[start(k)..start(k + 1)];
+            for (r, &(cos, sin)) in column.iter_mut().zip(&turns) {
+                *r = (*r - sin * *left) / cos;
+                *left = cos * *left - sin * *r;
+            }
+            let sin = *left / column[k];
+            // Rounding may push the pivot to nothing, never below.
+            let cos = ((1.0 - sin) * (1.0 + sin)).max(f64::EPSILON).sqrt();
+            column[k] *= cos;
+            turns.push((cos, sin));
+        }
+    }
+
     /// Takes out a row and column of G, by Givens rotations.
     pub(crate) fn remove(&mut self, at: usize) {
         let mut turns: Vec<(f64, f64)> = Vec::with_capacity(self.size - at);

@@ -6,7 +6,9 @@
 
 use crate::base::work::Work;
 use crate::numeric::active_set::ActiveSet;
+use crate::numeric::dual::Dual;
 use crate::numeric::error::{FitError, Stop};
+use crate::numeric::features::Features;
 use crate::numeric::frontier::{Frontier, Level, Proof, Within, capacity, worst};
 use crate::numeric::ground::Ground;
 use crate::numeric::loss;
@@ -15,7 +17,6 @@ use crate::numeric::newton::{Newton, Standing};
 use crate::numeric::path::{Info, Linear, Params, Point};
 use crate::numeric::penalty::Sign;
 use crate::numeric::response::Response;
-use crate::numeric::ridge::{Dual, Features};
 use crate::numeric::scan::BATCH;
 use crate::numeric::working::Working;
 
@@ -35,7 +36,7 @@ pub(crate) struct Null {
     /// The null loss less the smallest loss there can be.
     pub(crate) scale: f64,
     /// The number of unpenalised columns that count.
-    rank: usize,
+    pub(crate) rank: usize,
 }
 
 impl Null {
@@ -96,7 +97,8 @@ fn free_rank(ground: &Ground<'_>, free: &[Vec<f64>]) -> usize {
     crate::numeric::basis::Basis::new(ground.n_rows(), free.iter().cloned()).rank()
 }
 
-fn spread(ground: &Ground<'_>, residual: &[f64]) -> Vec<Vec<f64>> {
+/// A residual of all classes over all samples, class by class, each of sum zero.
+pub(crate) fn spread(ground: &Ground<'_>, residual: &[f64]) -> Vec<Vec<f64>> {
     residual
         .chunks_exact(ground.n_rows())
         .map(|r| ground.spread_centered(r.to_vec()))

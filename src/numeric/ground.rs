@@ -187,6 +187,12 @@ impl<'a> Ground<'a> {
     pub(crate) fn weighted(&self, j: usize, out: &mut [f64]) {
         let column = self.predictors.column(j);
         let (mean, inverse) = (self.mean[j], self.inverse_scale[j]);
+        if self.rows.len() == column.len() {
+            for ((z, x), root) in out.iter_mut().zip(column).zip(&self.root) {
+                *z = (x - mean) * inverse * root;
+            }
+            return;
+        }
         for ((z, &row), root) in out.iter_mut().zip(&self.rows).zip(&self.root) {
             *z = (column[row] - mean) * inverse * root;
         }

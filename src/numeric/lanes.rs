@@ -80,6 +80,40 @@ pub(crate) fn shifted_square_body(a: &[f64], shift: f64, b: &[f64]) -> f64 {
     reduce(sums)
 }
 
+/// The smallest and the largest value, and zero when all are finite (otherwise NaN); for use
+/// inside [`dispatch`].
+#[inline(always)]
+pub(crate) fn extremes_body(a: &[f64]) -> (f64, f64, f64) {
+    let (mut low, mut high, mut spoilt) = ([f64::INFINITY; 8], [f64::NEG_INFINITY; 8], [0.0; 8]);
+    let (blocks, rest) = a.as_chunks::<8>();
+    for x in blocks {
+        for lane in 0..8 {
+            low[lane] = if x[lane] < low[lane] {
+                x[lane]
+            } else {
+                low[lane]
+            };
+            high[lane] = if x[lane] > high[lane] {
+                x[lane]
+            } else {
+                high[lane]
+            };
+            // Zero for every finite value, NaN for every other.
+            spoilt[lane] += x[lane] * 0.0;
+        }
+    }
+    for x in rest {
+        low[0] = low[0].min(*x);
+        high[0] = high[0].max(*x);
+        spoilt[0] += x * 0.0;
+    }
+    (
+        low.into_iter().fold(f64::INFINITY, f64::min),
+        high.into_iter().fold(f64::NEG_INFINITY, f64::max),
+        spoilt.iter().sum(),
+    )
+}
+
 /// b ← b + factor · a; for use inside [`dispatch`].
 #[inline(always)]
 pub(crate) fn add_scaled_body(factor: f64, a: &[f64], b: &mut [f64]) {

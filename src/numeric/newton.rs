@@ -35,7 +35,7 @@ pub(crate) struct Newton {
     /// K.
     n_linear: usize,
     /// The unpenalised columns, each of length m.
-    free: Vec<Vec<f64>>,
+    pub(crate) free: Vec<Vec<f64>>,
     /// Their coefficients, class by class.
     pub(crate) a: Vec<f64>,
     /// The coefficient of each slot.
@@ -196,19 +196,7 @@ impl Newton {
         } else {
             self.loss.dual(1.0 / worst)
         };
-        let mut free_slope = 0.0_f64;
-        for residual in residual.chunks_exact(self.m) {
-            for column in &self.free {
-                let slope = lanes::dot(column, residual).abs();
-                let size: f64 = column
-                    .iter()
-                    .zip(residual)
-                    .map(|(u, r)| (u * r).abs())
-                    .sum();
-                // The absolute part is rounding, in a loss of size about 1.
-                free_slope = free_slope.max(slope / (size + 1e-4));
-            }
-        }
+        let free_slope = free_slope(&self.free, residual);
         Standing {
             loss,
             penalty,
@@ -407,8 +395,23 @@ impl Newton {
     }
 }
 
+/// The largest slope of what is not penalised, over the sum of its terms.
+pub(crate) fn free_slope(free: &[Vec<f64>], residual: &[f64]) -> f64 {
+    let mut largest = 0.0_f64;
+    for column in free {
+        for residual in residual.chunks_exact(column.len()) {
+            let slope = lanes::dot(column, residual).abs();
+            let terms = column.iter().zip(residual);
+            let size: f64 = terms.map(|(u, r)| (u * r).abs()).sum();
+            // The absolute part is rounding, in a loss of size about 1.
+            largest = largest.max(slope / (size + 1e-4));
+        }
+    }
+    largest
+}
+
 /// The unpenalised columns of all classes under a general H.
-struct FreePart {
+pub(crate) struct FreePart {
     /// Columns of length N, those that are kept.
     u: Vec<Vec<f64>>,
     hu: Vec<Vec<f64>>,
@@ -419,7 +422,7 @@ struct FreePart {
 }
 
 impl FreePart {
-    fn new(loss: &dyn Loss, free: &[Vec<f64>], m: usize) -> Self {
+    pub(crate) fn new(loss: &dyn Loss, free: &[Vec<f64>], m: usize) -> Self {
         let n_linear = loss.n_linear();
         let mut part = Self {
             u: Vec::new(),
@@ -447,16 +450,18 @@ impl FreePart {
         part
     }
 
-    fn products(&self, x: &[f64]) -> Vec<f64> {
+    /// U'x.
+    pub(crate) fn products(&self, x: &[f64]) -> Vec<f64> {
         self.u.iter().map(|u| lanes::dot(u, x)).collect()
     }
 
-    fn h_products(&self, x: &[f64]) -> Vec<f64> {
+    /// U'Hx.
+    pub(crate) fn h_products(&self, x: &[f64]) -> Vec<f64> {
         self.hu.iter().map(|h| lanes::dot(h, x)).collect()
     }
 
     /// (U'HU)⁻¹ of a vector over the kept columns, spread over all columns.
-    fn solve(&self, mut kept: Vec<f64>) -> Vec<f64> {
+    pub(crate) fn solve(&self, mut kept: Vec<f64>) -> Vec<f64> {
         self.factor.solve(&mut kept);
         let mut all = vec![0.0; self.n_columns];
         for (&at, value) in self.kept.iter().zip(kept) {
@@ -466,14 +471,14 @@ impl FreePart {
     }
 
     /// hx ← hx − HU·coefficients.
-    fn subtract(&self, coefficients: &[f64], hx: &mut [f64]) {
+    pub(crate) fn subtract(&self, coefficients: &[f64], hx: &mut [f64]) {
         for (&at, hu) in self.kept.iter().zip(&self.hu) {
             lanes::add_scaled(-coefficients[at], hu, hx);
         }
     }
 
     /// From Hx to (H − HU(U'HU)⁻¹U'H)x.
-    fn reduce(&self, x: &[f64], hx: &mut [f64]) {
+    pub(crate) fn reduce(&self, x: &[f64], hx: &mut [f64]) {
         let coefficients = self.solve(self.h_products(x));
         self.subtract(&coefficients, hx);
     }

@@ -50,9 +50,15 @@ impl Panels {
             }
             let column = &x.as_slice()[j * n..(j + 1) * n];
             // In units of half the range, so that no unit of measurement over- or underflows.
-            lanes::dispatch(
+            let (missed, size) = lanes::dispatch(
                 #[inline(always)]
-                || round_column(column, middle[j], half, &mut rounded, &mut missed),
+                || {
+                    round_column(column, middle[j], half, &mut rounded, &mut missed);
+                    (
+                        lanes::dot_body(&missed, &missed).sqrt(),
+                        lanes::dot_body(&rounded, &rounded).sqrt(),
+                    )
+                },
             );
             let panel = &mut bytes[j / WIDTH * n_pairs * PAIR..][..n_pairs * PAIR];
             let place = 2 * (j % WIDTH);
@@ -65,8 +71,8 @@ impl Panels {
             // The margin covers the rounding of `x − middle` and of the sums themselves: a few
             // units in the last place per sample, in units of half the range.
             let margin = 1e-14 * (n as f64).sqrt();
-            error[j] = half * (lanes::norm(&missed) + margin);
-            length[j] = half * (lanes::norm(&rounded) / 127.0) * (1.0 + 1e-12);
+            error[j] = half * (missed * (1.0 + 1e-12) + margin);
+            length[j] = half * (size / 127.0) * (1.0 + 1e-12);
         }
         Self {
             bytes,
@@ -97,9 +103,19 @@ impl Panels {
 /// q = round(127 (x − middle)/half) and what is missed, in units of `half`.
 #[inline(always)]
 fn round_column(column: &[f64], middle: f64, half: f64, rounded: &mut [f64], missed: &mut [f64]) {
-    for ((x, q), e) in column.iter().zip(rounded).zip(missed) {
-        let off = (x - middle) / half;
-        *q = (127.0 * off).round_ties_even();
-        *e = off - *q / 127.0;
+    let steps = 127.0 / half;
+    // The reciprocal of the smallest numbers overflows; then the division itself is taken.
+    if steps.is_finite() {
+        for ((x, q), e) in column.iter().zip(rounded).zip(missed) {
+            let off = (x - middle) * steps;
+            *q = off.round_ties_even();
+            *e = (off - *q) * (1.0 / 127.0);
+        }
+    } else {
+        for ((x, q), e) in column.iter().zip(rounded).zip(missed) {
+            let off = (x - middle) / half * 127.0;
+            *q = off.round_ties_even();
+            *e = (off - *q) * (1.0 / 127.0);
+        }
     }
 }

@@ -1,16 +1,18 @@
 //! Fits over a falling sequence of penalty strengths, each started from the last.
 
 use crate::base::work::Work;
+use crate::numeric::dual::Dual;
 use crate::numeric::error::{FitError, Ingredient, Unsupported};
 use crate::numeric::freedom::Freedom;
 use crate::numeric::gaussian;
 use crate::numeric::glm;
 use crate::numeric::ground::{Ground, Penalised};
+use crate::numeric::grouped;
 use crate::numeric::matrix::Matrix;
 use crate::numeric::penalty::Sign;
 use crate::numeric::predictors::Predictors;
 use crate::numeric::response::Response;
-use crate::numeric::ridge::{self, Dual};
+use crate::numeric::ridge;
 use crate::numeric::shortcut::Shortcuts;
 use crate::numeric::task::Task;
 
@@ -22,12 +24,25 @@ pub use crate::numeric::error::Stop;
 /// |---|---|---|
 /// | `relative_gap` | above 0 | 1e-8 |
 /// | `signs` | one for each predictor, or none | none |
+/// | `grouping` | apart or together; for classes only | apart |
 #[derive(Clone, Debug, PartialEq)]
 pub struct Params {
     /// A fit has settled when its duality gap is at most this share of the null model's loss.
     pub relative_gap: f64,
     /// The signs that coefficients may have; empty for no rule.
     pub signs: Vec<Sign>,
+    /// Whether the coefficients of a predictor in several classes are chosen together.
+    pub grouping: Grouping,
+}
+
+/// How the coefficients that a predictor has in several classes are penalised.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, Hash)]
+pub enum Grouping {
+    /// Each by itself: Σₖ |bⱼₖ|.
+    #[default]
+    Apart,
+    /// As one: ‖bⱼ‖, so that a predictor is in or out as a whole.
+    Together,
 }
 
 impl Default for Params {
@@ -35,6 +50,7 @@ impl Default for Params {
         Self {
             relative_gap: 1e-8,
             signs: Vec::new(),
+            grouping: Grouping::Apart,
         }
     }
 }
@@ -244,10 +260,17 @@ fn other(
     let n_positive = falling.partition_point(|&strength| strength > 0.0);
     let positive = &falling[..n_positive];
     let (mut points, mut dual) = (Vec::new(), None);
+    let has_classes = matches!(task.response, Response::Classes { .. });
+    let is_grouped = has_classes && params.grouping == Grouping::Together;
+    if is_grouped && params.signs.iter().any(|sign| *sign != Sign::Any) {
+        return Err(FitError::Unsupported(Unsupported::SignsWithClasses).into());
+    }
     if share == 0.0 && n_positive > 0 {
         let fits = glm::ridge(&ground, task.response, positive, params, work)?;
         points = fits.points;
         dual = fits.dual;
+    } else if n_positive > 0 && is_grouped {
+        points = grouped::walk(&ground, task.response, share, positive, params, work)?;
     } else if n_positive > 0 {
         points = glm::walk(&ground, task.response, share, positive, params, work)?;
     }

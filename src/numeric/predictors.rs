@@ -1,5 +1,6 @@
 //! The predictor matrix of all samples, with what every fit on it shares.
 
+use crate::numeric::lanes;
 use crate::numeric::matrix::Matrix;
 use crate::numeric::panels::Panels;
 use std::sync::{Arc, OnceLock};
@@ -92,13 +93,10 @@ impl Predictors {
 }
 
 fn middle_and_half(column: &[f64]) -> (f64, f64) {
-    let (mut low, mut high, mut spoilt) = (f64::INFINITY, f64::NEG_INFINITY, 0.0);
-    for &value in column {
-        low = low.min(value);
-        high = high.max(value);
-        // Zero for every finite value, NaN for every other: minimum and maximum skip NaN.
-        spoilt += value * 0.0;
-    }
+    let (low, high, spoilt) = lanes::dispatch(
+        #[inline(always)]
+        || lanes::extremes_body(column),
+    );
     if spoilt == 0.0 {
         // Halved first, so that the largest numbers do not overflow.
         let middle = 0.5 * low + 0.5 * high;

@@ -2,6 +2,7 @@
 //! few predictors of the working set.
 
 use crate::numeric::lanes;
+use crate::numeric::matrix::Matrix;
 use crate::numeric::penalty::Sign;
 
 /// Minimise, over the coefficients b of the columns in use,
@@ -59,6 +60,16 @@ impl Quadratic {
     /// A slot's column of HX.
     pub(crate) fn h_column(&self, slot: usize) -> &[f64] {
         &self.h_columns()[slot * self.length..(slot + 1) * self.length]
+    }
+
+    /// The columns of some slots side by side, from X or HX.
+    pub(crate) fn block(&self, columns: &[f64], slots: &[usize]) -> Matrix {
+        let length = self.length;
+        let mut block = Vec::with_capacity(length * slots.len());
+        for &slot in slots {
+            block.extend_from_slice(&columns[slot * length..(slot + 1) * length]);
+        }
+        Matrix::from_vec(length, slots.len(), block)
     }
 
     /// t − Σ bⱼ Hxⱼ over the given slots.

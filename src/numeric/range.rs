@@ -5,6 +5,7 @@ use crate::numeric::error::{FitError, Stop};
 use crate::numeric::gaussian::NOTHING_LEFT;
 use crate::numeric::glm::Null;
 use crate::numeric::ground::{Ground, Penalised};
+use crate::numeric::grouped;
 use crate::numeric::lanes;
 use crate::numeric::response::Response;
 use crate::numeric::ridge::Spectrum;
@@ -146,6 +147,25 @@ pub fn all_zero_point(task: &Task<'_>, share: f64) -> Result<f64, FitError> {
             Ok(if top > ROUNDING { top / share } else { 0.0 })
         }
     }
+}
+
+/// [`all_zero_point`] for classes that are penalised together: `max_j ‖gradient_j‖ / (share · f_j)`.
+/// For other outcomes the same as [`all_zero_point`].
+///
+/// # Errors
+/// What is wrong with the task.
+pub fn grouped_all_zero_point(task: &Task<'_>, share: f64) -> Result<f64, FitError> {
+    if !matches!(task.response, Response::Classes { .. }) {
+        return all_zero_point(task, share);
+    }
+    if !(0.0..=1.0).contains(&share) {
+        return Err(FitError::Share(share));
+    }
+    let work = Work::unattended();
+    let ground = never_cancelled(Ground::new(task, Penalised::ByWeight, &work))?;
+    let null = never_cancelled(Null::new(&ground, task.response, &work))?;
+    let top = grouped::top(&ground, &null);
+    Ok(if top > ROUNDING { top / share } else { 0.0 })
 }
 
 /// The largest |zⱼ'g|/fⱼ over the penalised predictors, exactly: bounds for all, then the contenders

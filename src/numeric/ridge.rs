@@ -12,49 +12,37 @@
 
 use crate::base::work::Work;
 use crate::numeric::basis::Basis;
+use crate::numeric::dual::Dual;
 use crate::numeric::error::Stop;
 use crate::numeric::gaussian::NOTHING_LEFT;
 use crate::numeric::ground::Ground;
 use crate::numeric::lanes;
 use crate::numeric::matrix::{self, Matrix};
 use crate::numeric::path::{Info, Params, Point};
-use crate::numeric::predictors::Predictors;
 use crate::numeric::shortcut::Shortcuts;
 
 /// Columns of one block of the Gram matrix: large enough for the product to run at full speed,
 /// small enough to stay in the cache.
-const BLOCK: usize = 1024;
+pub(crate) const BLOCK: usize = 1024;
 
 /// Up to this many predictors a training row, the columns themselves are decomposed.
-const NARROW: usize = 4;
+pub(crate) const NARROW: usize = 4;
 
 /// And so they are up to this many numbers, whatever the shape: spectra are of this size, and their
 /// Gram matrix has lost the small directions that count at weak penalties.
-const SMALL: usize = 250_000;
+pub(crate) const SMALL: usize = 250_000;
 
 /// A singular value below this share of the largest is rounding.
-const NO_DIRECTION: f64 = 1e-14;
+pub(crate) const NO_DIRECTION: f64 = 1e-14;
 
 /// Directions with less than this share of the largest eigenvalue count as empty at strength 0.
-const EMPTY: f64 = 1e-13;
+pub(crate) const EMPTY: f64 = 1e-13;
 
 /// The fits at all strengths.
 pub(crate) struct Fits {
     pub(crate) points: Vec<Point>,
     pub(crate) dual: Option<Dual>,
     pub(crate) shortcuts: Shortcuts,
-}
-
-/// Ridge coefficients in the space of the samples: bⱼ = zⱼ'α/fⱼ.
-#[derive(Clone, Debug)]
-pub(crate) struct Dual {
-    /// α, m × (strengths · classes).
-    alpha: Matrix,
-    rows: Vec<usize>,
-    mean: Vec<f64>,
-    inverse_scale: Vec<f64>,
-    /// inverse scale / penalty weight; zero for what is not penalised or not in the fit.
-    reach: Vec<f64>,
 }
 
 /// The spectrum of the penalised columns on the training rows.
@@ -67,6 +55,8 @@ pub(crate) struct Spectrum {
     right: Option<(Vec<usize>, Matrix)>,
     /// K before the unpenalised columns were taken out, where there are more than the intercept.
     raw: Option<Matrix>,
+    /// The number of penalised predictors.
+    n_predictors: usize,
     /// What was decomposed: Z̃F^(−1/2) of narrow data, K of wide data.
     whole: Matrix,
 }
@@ -108,6 +98,7 @@ impl Spectrum {
         Ok(Self {
             values: values[..size].iter().map(|s| s * s).collect(),
             vectors: vectors.columns(0, size).into_owned(),
+            n_predictors: penalised.len(),
             right: Some((penalised, right.columns(0, size).into_owned())),
             raw: None,
             whole: columns,
@@ -166,6 +157,7 @@ impl Spectrum {
         Ok(Self {
             values: values.iter().rev().map(|d| d.max(0.0)).collect(),
             vectors: full,
+            n_predictors: penalised.len(),
             right: None,
             raw,
             whole: gram,
@@ -344,6 +336,11 @@ pub(crate) fn fit(
         Some((_, b)) => spectrum.narrow_gaps(&target, b, strengths),
         None => spectrum.wide_gaps(&target, &alpha, strengths),
     };
+    let n_dual = if direct.is_some() || null == 0.0 {
+        0
+    } else {
+        spectrum.n_predictors
+    };
     for (at, &strength) in strengths.iter().enumerate() {
         let residual = residuals.column(at);
         let loss = 0.5 * residual.norm_squared();
@@ -381,13 +378,6 @@ pub(crate) fn fit(
         predictors.retain(|(_, b)| *b != 0.0);
         predictors.sort_by_key(|(j, _)| *j);
         let relative_gap = if null > 0.0 { gaps[at] / null } else { 0.0 };
-        let n_dual = if direct.is_some() || null == 0.0 {
-            0
-        } else {
-            (0..ground.predictors.n_predictors())
-                .filter(|&j| ground.reach(j) > 0.0)
-                .count()
-        };
         let info = Info {
             relative_gap,
             settled: relative_gap <= params.relative_gap,
@@ -436,193 +426,4 @@ fn slack(spectrum: &Spectrum, basis: &Basis, kept: &Matrix) -> Matrix {
         }
     }
     slack
-}
-
-/// The directions that the penalised predictors span in the space of the samples: Z F^(−½) = E V'
-/// with columns E, so that λ/2 Σ fⱼbⱼ² = λ/2 ‖β‖² for Zb = Eβ.
-pub(crate) struct Features {
-    /// E, m × r; not weighted.
-    pub(crate) columns: Matrix,
-    pub(crate) n_predictors: usize,
-    back: Back,
-}
-
-/// From β to coefficients.
-enum Back {
-    /// b = F^(−½) V β, for the listed predictors.
-    Right(Vec<usize>, Matrix),
-    /// b = F⁻¹ Z'α with α = E D⁻¹ β: the eigenvalues D.
-    Left(Vec<f64>),
-}
-
-impl Features {
-    /// Decomposes the penalised predictors.
-    ///
-    /// # Errors
-    /// When called off, or when a decomposition does not end.
-    pub(crate) fn new(ground: &Ground<'_>, work: &Work<'_>) -> Result<Self, Stop> {
-        let m = ground.n_rows();
-        let penalised: Vec<usize> = (0..ground.predictors.n_predictors())
-            .filter(|&j| ground.reach(j) > 0.0)
-            .collect();
-        let n_predictors = penalised.len();
-        let scaled = |j: usize, column: &mut [f64]| {
-            ground.standardised(j, column);
-            let root = ground.factor(j).sqrt();
-            for value in column {
-                *value /= root;
-            }
-        };
-        if n_predictors <= NARROW * m || n_predictors * m <= SMALL {
-            let mut columns = Matrix::zeros(m, n_predictors);
-            for (at, &j) in penalised.iter().enumerate() {
-                scaled(j, &mut columns.as_mut_slice()[at * m..(at + 1) * m]);
-            }
-            let (left, values, right) = matrix::thin_svd(&columns)?;
-            let least = NO_DIRECTION * values.first().copied().unwrap_or(0.0);
-            let size = values.partition_point(|s| *s > least);
-            let mut columns = left.columns(0, size).into_owned();
-            for (mut column, s) in columns.column_iter_mut().zip(&values) {
-                column *= *s;
-            }
-            let right = right.columns(0, size).into_owned();
-            return Ok(Self {
-                columns,
-                n_predictors,
-                back: Back::Right(penalised, right),
-            });
-        }
-        let mut gram = Matrix::zeros(m, m);
-        let mut block = vec![0.0; m * BLOCK.min(n_predictors)];
-        for some in penalised.chunks(BLOCK) {
-            work.check()?;
-            for (column, &j) in block.chunks_exact_mut(m).zip(some) {
-                scaled(j, column);
-            }
-            matrix::add_outer(&mut gram, &block[..m * some.len()]);
-        }
-        let (values, vectors) = matrix::symmetric_eigen(&gram)?;
-        let least = EMPTY * values.last().copied().unwrap_or(0.0);
-        let kept: Vec<usize> = (0..m).rev().filter(|&k| values[k] > least).collect();
-        let columns: Vec<_> = kept
-            .iter()
-            .map(|&k| vectors.column(k) * values[k].sqrt())
-            .collect();
-        Ok(Self {
-            columns: Matrix::from_columns(&columns),
-            n_predictors,
-            back: Back::Left(kept.iter().map(|&k| values[k]).collect()),
-        })
-    }
-
-    /// The coefficients of β (r × classes): listed for each class; or, for wide data, α (m × classes).
-    pub(crate) fn coefficients(
-        &self,
-        ground: &Ground<'_>,
-        beta: &Matrix,
-    ) -> Result<Vec<Vec<(usize, f64)>>, Matrix> {
-        match &self.back {
-            Back::Right(listed, right) => {
-                let b = matrix::product(right, beta);
-                let list = |class: usize| {
-                    let scaled = listed.iter().enumerate();
-                    let value = |k: usize, j: usize| b[(k, class)] / ground.factor(j).sqrt();
-                    scaled.map(|(k, &j)| (j, value(k, j))).collect()
-                };
-                Ok((0..beta.ncols()).map(list).collect())
-            }
-            Back::Left(values) => {
-                let scaled = Matrix::from_fn(beta.nrows(), beta.ncols(), |k, class| {
-                    beta[(k, class)] / values[k]
-                });
-                Err(matrix::product(&self.columns, &scaled))
-            }
-        }
-    }
-}
-
-impl Dual {
-    /// From α, not weighted: bⱼ = zⱼ'α/fⱼ.
-    pub(crate) fn new(ground: &Ground<'_>, alpha: Matrix) -> Self {
-        let p = ground.predictors.n_predictors();
-        Self {
-            alpha,
-            rows: ground.rows.clone(),
-            mean: ground.mean.clone(),
-            inverse_scale: ground.inverse_scale.clone(),
-            reach: (0..p).map(|j| ground.reach(j)).collect(),
-        }
-    }
-
-    /// With the strengths put back to where they stood before they were sorted; those beyond the
-    /// present ones (strength 0) get zeros.
-    pub(crate) fn reordered(self, order: &[usize], n_linear: usize) -> Self {
-        let mut alpha = Matrix::zeros(self.alpha.nrows(), order.len() * n_linear);
-        for (from, &to) in order.iter().enumerate() {
-            for class in 0..n_linear {
-                if from * n_linear + class < self.alpha.ncols() {
-                    alpha.set_column(
-                        to * n_linear + class,
-                        &self.alpha.column(from * n_linear + class),
-                    );
-                }
-            }
-        }
-        Self { alpha, ..self }
-    }
-
-    /// Mean and inverse scale of a predictor.
-    pub(crate) fn scale(&self, predictor: usize) -> (f64, f64) {
-        (self.mean[predictor], self.inverse_scale[predictor])
-    }
-
-    /// The coefficients of all penalised predictors at a strength: one pass over the matrix.
-    pub(crate) fn standardised(&self, predictors: &Predictors, at: usize) -> Vec<(usize, f64)> {
-        let mut g = vec![0.0; predictors.n_samples()];
-        for (&row, &a) in self.rows.iter().zip(self.alpha.column(at).iter()) {
-            g[row] = a;
-        }
-        let mut all = Vec::new();
-        for (j, &reach) in self.reach.iter().enumerate() {
-            if reach > 0.0 {
-                let (column, mean) = (predictors.column(j), self.mean[j]);
-                let product = lanes::dispatch(
-                    #[inline(always)]
-                    || lanes::shifted_dot_body(column, mean, &g),
-                );
-                all.push((j, reach * product));
-            }
-        }
-        all.retain(|(_, b)| *b != 0.0);
-        all
-    }
-
-    /// Σⱼ zⱼbⱼ for some rows, rows × strengths, through the products between rows.
-    pub(crate) fn predict(&self, predictors: &Predictors, rows: &[usize]) -> Matrix {
-        let (m, k) = (self.rows.len(), rows.len());
-        let penalised: Vec<usize> = (0..self.reach.len())
-            .filter(|&j| self.reach[j] > 0.0)
-            .collect();
-        let mut cross = Matrix::zeros(k, m);
-        let size = BLOCK.min(penalised.len());
-        let (mut left, mut right) = (vec![0.0; k * size], vec![0.0; m * size]);
-        for some in penalised.chunks(BLOCK) {
-            for (at, &j) in some.iter().enumerate() {
-                let column = predictors.column(j);
-                let mean = self.mean[j];
-                for (z, &row) in left[at * k..(at + 1) * k].iter_mut().zip(rows) {
-                    *z = (column[row] - mean) * self.inverse_scale[j];
-                }
-                for (z, &row) in right[at * m..(at + 1) * m].iter_mut().zip(&self.rows) {
-                    *z = (column[row] - mean) * self.reach[j];
-                }
-            }
-            matrix::add_cross(
-                &mut cross,
-                &left[..k * some.len()],
-                &right[..m * some.len()],
-            );
-        }
-        matrix::product(&cross, &self.alpha)
-    }
 }

@@ -20,8 +20,11 @@ pub fn check(facts: &Facts, index: Option<f64>) -> Vec<Caveat> {
             .map(crate::eval::fact::Fact::shown)
             .unwrap_or_default()
     };
-    let index_value = index.unwrap_or(0.0);
-    if index_value < GOOD && value("chosen predictors") > 0.0 {
+    // The index is not defined when every half chose all predictors, or none.
+    if let Some(index_value) = index
+        && index_value < GOOD
+        && value("chosen predictors") > 0.0
+    {
         let (severity, heading) = if index_value < POOR {
             (Severity::Caution, "The list is not stable")
         } else {

@@ -332,7 +332,12 @@ fn answers(
     context: &Context<'_>,
 ) -> Result<(), ExportError> {
     let mut sheet = Sheet::add(book, "Answers")?;
-    sheet.width(0, 34.0)?;
+    for (column, width) in [44.0, 24.0, 18.0, 60.0, 14.0, 14.0, 40.0, 40.0]
+        .into_iter()
+        .enumerate()
+    {
+        sheet.width(column as u16, width)?;
+    }
     for report in reports {
         let Some(cell) = context.study.cell(report.id) else {
             continue;
@@ -380,7 +385,13 @@ fn figures(
                 continue;
             };
             let size = natural_size(&figure.figure, WIDTH);
-            let bytes = png(&svg(&layout(&figure.figure, size), &Palette::paper()), 2.0)?;
+            let bytes = png(
+                &svg(
+                    &layout(&figure.figure, size).with_margin(8.0),
+                    &Palette::paper(),
+                ),
+                2.0,
+            )?;
             sheet.strong(&format!(
                 "{}: {}",
                 context.title(report.id),
@@ -432,8 +443,7 @@ fn caveat_sheet(book: &mut Workbook, context: &Context<'_>) -> Result<(), Export
         ],
     };
     let mut sheet = Sheet::add(book, "Caveats")?;
-    sheet.table(&table)?;
-    sheet.width(3, 90.0)
+    sheet.table(&table)
 }
 
 fn methods(

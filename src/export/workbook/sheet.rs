@@ -5,15 +5,21 @@ use crate::eval::fact::{Fact, FactColumn, FactTable, FactValues};
 use crate::export::error::ExportError;
 use crate::export::workbook::number_of;
 use rust_xlsxwriter::{Chart, Format, FormatAlign, Image, Workbook, Worksheet};
+use std::collections::BTreeMap;
 
 /// A sheet that is being filled.
 pub(super) struct Sheet<'a> {
     sheet: &'a mut Worksheet,
     row: u32,
+    /// The widths that were set, in letters, by column.
+    widths: BTreeMap<u16, f64>,
 }
 
 /// The longest name that a sheet may have.
 const MOST_LETTERS: usize = 31;
+
+/// The widest column of a table, in letters; longer words are wrapped.
+const WIDEST: f64 = 70.0;
 
 /// The most characters that a cell may hold.
 const MOST_TEXT: usize = 32_000;
@@ -45,11 +51,16 @@ impl<'a> Sheet<'a> {
         }
         let sheet = book.add_worksheet();
         let _ = sheet.set_name(&title)?;
-        Ok(Self { sheet, row: 0 })
+        Ok(Self {
+            sheet,
+            row: 0,
+            widths: BTreeMap::new(),
+        })
     }
 
     pub(super) fn width(&mut self, column: u16, width: f64) -> Result<(), ExportError> {
         let _ = self.sheet.set_column_width(column, width)?;
+        let _ = self.widths.insert(column, width);
         Ok(())
     }
 
@@ -76,7 +87,27 @@ impl<'a> Sheet<'a> {
 
     pub(super) fn text(&mut self, text: &str) -> Result<(), ExportError> {
         self.write(0, text, &words().set_text_wrap())?;
+        self.fit_height(&[(0, text)])?;
         self.row += 1;
+        Ok(())
+    }
+
+    /// Makes the present row as high as its wrapped words need. Not every program that opens a
+    /// workbook does it by itself.
+    fn fit_height(&mut self, texts: &[(u16, &str)]) -> Result<(), ExportError> {
+        /// The height of one line, in points.
+        const LINE: f64 = 15.0;
+        /// More lines than this are for the reader to unfold.
+        const MOST: f64 = 25.0;
+        let lines = |(column, text): &(u16, &str)| {
+            let width = self.widths.get(column).copied().unwrap_or(8.0);
+            // A tenth to spare: words do not break where the width ends.
+            (text.chars().count() as f64 * 1.1 / width).ceil()
+        };
+        let most = texts.iter().map(lines).fold(1.0, f64::max).min(MOST);
+        if most > 1.0 {
+            let _ = self.sheet.set_row_height(self.row, LINE * most)?;
+        }
         Ok(())
     }
 
@@ -99,6 +130,12 @@ impl<'a> Sheet<'a> {
                 self.write(column as u16, text, &words().set_text_wrap())?;
             }
         }
+        let placed: Vec<(u16, &str)> = texts
+            .iter()
+            .enumerate()
+            .map(|(at, text)| (at as u16, *text))
+            .collect();
+        self.fit_height(&placed)?;
         self.row += 1;
         Ok(())
     }
@@ -113,21 +150,22 @@ impl<'a> Sheet<'a> {
         }
         self.write(3, &fact.unit, &words())?;
         self.write(4, &fact.meaning, &words().set_text_wrap())?;
+        self.fit_height(&[(4, &fact.meaning)])?;
         self.row += 1;
         Ok(())
     }
 
     /// A table that fills the sheet from its first row, heads frozen.
     pub(super) fn table(&mut self, table: &FactTable) -> Result<(), ExportError> {
-        self.rows(table)?;
         for (at, column) in table.columns.iter().enumerate() {
             let longest = (0..column.values.len().min(200))
                 .map(|row| column.shown(row).chars().count())
                 .chain([head(column).chars().count()])
                 .max()
                 .unwrap_or(8);
-            self.width(at as u16, (longest as f64 + 2.0).clamp(8.0, 60.0))?;
+            self.width(at as u16, (longest as f64 + 2.0).clamp(8.0, WIDEST))?;
         }
+        self.rows(table)?;
         self.freeze(1)
     }
 
@@ -147,6 +185,16 @@ impl<'a> Sheet<'a> {
                     }
                 }
             }
+            let texts: Vec<(u16, &str)> = table
+                .columns
+                .iter()
+                .enumerate()
+                .filter_map(|(at, column)| match &column.values {
+                    FactValues::Texts(texts) => Some((at as u16, texts[row].as_str())),
+                    FactValues::Numbers(_) => None,
+                })
+                .collect();
+            self.fit_height(&texts)?;
             self.row += 1;
         }
         Ok(())
@@ -176,7 +224,7 @@ impl<'a> Sheet<'a> {
 
     fn number(&mut self, column: u16, value: f64, precision: Precision) -> Result<(), ExportError> {
         let format = Format::new()
-            .set_num_format(workbook_format(precision))
+            .set_num_format(workbook_format(value, precision))
             .set_align(FormatAlign::Top);
         let _ = self
             .sheet

@@ -1,14 +1,14 @@
 //! Paths of yes and no, classes, counts and times: certificates, invariance, hostile inputs.
 
 use crate::base::work::Work;
-use crate::numeric::certificate::certify_classes;
+use crate::numeric::certificate::{certify_classes, certify_grouping};
 use crate::numeric::designs::{Design, Dice, outcome, predictors};
 use crate::numeric::error::{FitError, Stop};
 use crate::numeric::matrix::Matrix;
-use crate::numeric::path::{Params, Path, fit_path};
+use crate::numeric::path::{Grouping, Params, Path, fit_path};
 use crate::numeric::penalty::Sign;
 use crate::numeric::predictors::Predictors;
-use crate::numeric::range::{RangeParams, all_zero_point, strength_range};
+use crate::numeric::range::{RangeParams, all_zero_point, grouped_all_zero_point, strength_range};
 use crate::numeric::response::{Response, Ties};
 use crate::numeric::task::{Scaling, Task};
 
@@ -373,4 +373,49 @@ fn what_cannot_be_fitted_is_said() {
     let stop = Data::new(x.clone(), yes).try_fit(1.0, &[0.0], &Params::default());
     let unbounded = FitError::Unbounded { strength: 0.0 };
     assert_eq!(stop.err(), Some(unbounded.into()));
+}
+
+#[test]
+fn classes_together_are_in_or_out_as_a_whole_and_certified() {
+    let params = Params {
+        grouping: Grouping::Together,
+        ..Params::default()
+    };
+    for (seed, design) in [Design::Independent, Design::Neighbours]
+        .into_iter()
+        .enumerate()
+    {
+        for (n, p) in [(45, 120), (60, 8)] {
+            let plain = random("class", design, n, p, seed as u64);
+            let full = with_everything(random("class", design, n, p, seed as u64));
+            for data in [plain, full] {
+                for share in [1.0, 0.5] {
+                    let top = grouped_all_zero_point(&data.task(), share).unwrap();
+                    let steps = 0..8;
+                    let strengths: Vec<f64> = steps.map(|k| top * 0.65_f64.powi(k)).collect();
+                    let path = data.try_fit(share, &strengths, &params).unwrap();
+                    let free = data.factors.is_some().then_some(2);
+                    for (at, &strength) in strengths.iter().enumerate() {
+                        let what = format!("{design:?} {n} x {p}, {share} {strength}");
+                        let info = path.info(at);
+                        assert!(info.settled, "{what}: {info:?}");
+                        let solution = path.class_coefficients(at);
+                        let task = data.task();
+                        let grouping = Grouping::Together;
+                        let found =
+                            certify_grouping(&task, share, strength, &solution, grouping).unwrap();
+                        assert!(found.gap < 1e-7, "{what}: {found:?}");
+                        assert!(found.worst_violation < 3e-3, "{what}: {found:?}");
+                        let listed = |class: usize| -> Vec<usize> {
+                            let chosen = solution[class].predictors.iter().map(|(j, _)| *j);
+                            chosen.filter(|j| Some(*j) != free).collect()
+                        };
+                        assert_eq!(listed(0), listed(1), "{what}");
+                        assert_eq!(listed(0), listed(2), "{what}");
+                        assert_eq!(listed(0).is_empty(), at == 0, "{what}");
+                    }
+                }
+            }
+        }
+    }
 }

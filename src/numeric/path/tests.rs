@@ -189,7 +189,7 @@ fn ridge_through_the_samples_equals_ridge_through_the_predictors() {
             column.apply(|v| *v = (*v - mean) / sd);
         }
         let mean = y.iter().sum::<f64>() / n as f64;
-        let centered = nalgebra::DVector::from_iterator(n, y.iter().map(|y| y - mean));
+        let centered = Matrix::from_iterator(n, 1, y.iter().map(|y| y - mean));
         for strength in [0.01, 0.7, 20.0] {
             let left = z.transpose() * &z / n as f64 + Matrix::identity(p, p) * strength;
             let right = z.transpose() * &centered / n as f64;

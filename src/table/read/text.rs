@@ -1,6 +1,7 @@
 //! Delimited text: from letters to columns, in parallel.
 
 mod body;
+mod sideways;
 
 use crate::base::layout::{DecimalMark, Delimiter, Grouping, Orientation, UnitsRow};
 use crate::base::problem::Place;

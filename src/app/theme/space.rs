@@ -10,7 +10,7 @@ pub const GAP: f32 = 16.0;
 pub const WIDE: f32 = 32.0;
 
 /// The width of the thread.
-pub const THREAD: f32 = 204.0;
+pub const THREAD: f32 = 212.0;
 /// The width of the page's text: about seventy letters of the serif.
 pub const PAGE: f32 = 704.0;
 /// The width of the margin's notes, and the least width of the margin.

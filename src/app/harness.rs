@@ -192,6 +192,11 @@ impl Harness {
     /// A picture of the view at a scale.
     pub fn shot<'a, M: 'a>(&mut self, view: Element<'a, M>, scale: f32) -> Shot {
         let _ = self.feed(view, &[]);
+        self.painted(scale)
+    }
+
+    /// A picture of what was drawn last, at a scale.
+    pub fn painted(&mut self, scale: f32) -> Shot {
         let width = (self.size.width * scale).round() as u32;
         let height = (self.size.height * scale).round() as u32;
         let pixels =

@@ -30,7 +30,7 @@ use crate::app::screen::welcome::{self, Welcome};
 use crate::app::session::Following;
 use crate::app::theme::Mode;
 use crate::app::widget::Element;
-use crate::app::widget::inert::Inert;
+use crate::app::widget::inert::{Inert, Reach};
 use crate::base::problem::Problem;
 use crate::figure::font::Face;
 use crate::store::preferences::Preferences;
@@ -229,8 +229,9 @@ impl App {
             Screen::Start(start) => start.view(self.size).map(Message::Start),
             Screen::Study(study) => study.view(self.mode).map(Message::Study),
         };
+        // The screen keeps its place in the tree, so that it is as it was when a dialog closes.
         let Some(dialog) = &self.dialog else {
-            return screen;
+            return stack![Inert::new(screen, Reach::Within)].into();
         };
         let content = match dialog {
             Dialog::Problem(problem) => problem::view(problem).map(Message::Problem),
@@ -244,7 +245,7 @@ impl App {
             Dialog::HandOver(hand_over) => hand_over.view().map(Message::HandOver),
             Dialog::Keys => key_page::view().map(Message::Keys),
         };
-        stack![Inert::new(screen), dialog::over(content)].into()
+        stack![Inert::new(screen, Reach::Beyond), dialog::over(content)].into()
     }
 }
 

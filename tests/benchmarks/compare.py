@@ -56,8 +56,8 @@ def ours(case, x, y, repeats):
     n, p = x.shape
     line = subprocess.run([solver, case, str(file), str(n), str(p), str(repeats)], stdout=subprocess.PIPE, text=True, check=True).stdout
     file.unlink()
-    seconds, passes, gap, count, settled, peak, before, busy = line.split()
-    return float(seconds), float(passes), float(gap), int(count), settled, float(peak), float(before), float(busy)
+    seconds, passes, gap, count, settled, peak, busy = line.split()
+    return float(seconds), float(passes), float(gap), int(count), settled, float(peak), float(busy)
 
 
 def timed(function):
@@ -136,12 +136,12 @@ for name, kind, n, p, case, repeats, other in CASES:
     if chosen and case not in chosen:
         continue
     x, z, y = design(kind, n, p)
-    mine, passes, gap, count, settled, peak, before, busy = ours(case, x, y, repeats)
+    mine, passes, gap, count, settled, peak, busy = ours(case, x, y, repeats)
     theirs = peer(other, z, y) if "--alone" not in chosen else None
     print(
         f"{name:26} {kind:16} {n:>5} x {p:<6} {str(other):>14} {mine:9.4f} {busy:9.4f} "
         + (f"{theirs:9.3f} {theirs / mine:6.0f}x" if theirs else f"{'':9} {'':7}")
-        + f" {passes:8.1f} {gap:8.0e} {count:6d} {peak - before + 1:6.2f}x"
+        + f" {passes:8.1f} {gap:8.0e} {count:6d} {peak:6.2f}x"
         + ("" if settled == "true" else "  NOT SETTLED"),
         flush=True,
     )

@@ -49,7 +49,7 @@ fn a_sentence_and_what_stands_around_it_look_as_they_were_looked_at() {
 /// Compares a picture with the one that was looked at.
 #[expect(
     clippy::disallowed_methods,
-    reason = "a test writes its pictures anew on request"
+    reason = "whoever looks at a picture says so when running the tests"
 )]
 fn holds(name: &str, shot: &Shot) {
     let root = Path::new(env!("CARGO_MANIFEST_DIR"));

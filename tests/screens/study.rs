@@ -146,3 +146,22 @@ fn a_narrow_window_folds_the_margin_and_hides_nothing() {
     bench.go_to(&title);
     assert!(bench.sees("lasso"));
 }
+
+#[test]
+fn a_dialog_that_closes_leaves_the_page_where_it_was() {
+    let mut bench = Bench::new(1280.0, 800.0);
+    let title = bench.fit_title();
+    bench.go_to(&title);
+    bench.act(&[
+        widefold::app::harness::moved(600.0, 400.0),
+        widefold::app::harness::wheel(0.0, -3.0),
+    ]);
+    let before = bench.place_of("chosen");
+    let _ = bench.app.update(Message::Shortcut(Shortcut::HandOver));
+    bench.act(&[]);
+    assert!(bench.sees("the workbook"));
+    let _ = bench.app.update(Message::Shortcut(Shortcut::Escape));
+    bench.act(&[]);
+    assert!(!bench.sees("the workbook"));
+    assert_eq!(bench.place_of("chosen"), before);
+}

@@ -213,6 +213,11 @@ impl Bench {
         self.act(&[]);
     }
 
+    /// Where some words can be seen.
+    pub fn place_of(&mut self, words: &str) -> Option<iced::Rectangle> {
+        self.harness.find(self.app.view(), words)
+    }
+
     /// Whether a text that contains some words has the focus.
     pub fn has_focus(&mut self, words: &str) -> bool {
         let text = self.harness.find(self.app.view(), words);

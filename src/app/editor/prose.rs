@@ -223,10 +223,8 @@ impl Prose {
         parts
             .push(
                 row![
-                    text::quiet(
-                        "Markdown; a brace { offers facts. Escape leaves the text as it was."
-                    )
-                    .width(Length::Fill),
+                    text::quiet("Markdown; a brace { offers facts; Ctrl Enter sets the text.")
+                        .width(Length::Fill),
                     press::words("Leave", Message::Leave),
                     press::main("Set", Message::Done),
                 ]

@@ -322,6 +322,7 @@ impl Start {
                 self.tables.retain(|known| known.name != taken.name);
                 self.tables.push(taken);
                 self.at = self.tables.len() - 1;
+                self.has_files = false;
                 self.refresh();
             }
             Err(problem) => self.problem = Some(problem),

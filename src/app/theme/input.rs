@@ -74,6 +74,7 @@ pub fn scroller(theme: &Theme, status: scrollable::Status) -> scrollable::Style 
 pub fn narrow() -> scrollable::Direction {
     let bar = scrollable::Scrollbar::new()
         .width(space::TIGHT + space::AIR)
-        .scroller_width(space::TIGHT + space::AIR);
+        .scroller_width(space::TIGHT + space::AIR)
+        .spacing(space::TIGHT);
     scrollable::Direction::Vertical(bar)
 }

@@ -4,6 +4,7 @@ use crate::app::theme::Mode;
 use crate::app::theme::{self, space, text};
 use crate::app::widget::Element;
 use crate::base::hash::ContentHash;
+use crate::figure::ink::Ink;
 use crate::figure::picture::{
     Anchor, Dash, Mark, Picture, Point as Place, Rect as Area, Spot, Stroke as Line, Turn, Word,
 };
@@ -15,7 +16,9 @@ use iced::advanced::text::{LineHeight, Renderer as _, Wrapping};
 use iced::advanced::widget::{Tree, Widget, tree};
 use iced::advanced::{Clipboard, Shell, mouse};
 use iced::widget::canvas::{self, Frame, LineDash, Path, Stroke};
-use iced::{Background, Border, Event, Length, Pixels, Point, Rectangle, Size, Vector, alignment};
+use iced::{
+    Background, Border, Color, Event, Length, Pixels, Point, Rectangle, Size, Vector, alignment,
+};
 use std::sync::Arc;
 
 /// How long the strokes and gaps of a broken line are.
@@ -78,11 +81,33 @@ impl<'a, M> Shown<'a, M> {
     }
 }
 
+/// How much of an ink is left of what is no longer current.
+const PALED: f32 = 0.45;
+
+/// How ink becomes colour.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+struct Brush {
+    mode: Mode,
+    is_paled: bool,
+}
+
+impl Brush {
+    fn ink(self, ink: Ink) -> Color {
+        let color = self.mode.colors().ink(ink);
+        let is_ground = matches!(ink, Ink::Ground);
+        if self.is_paled && !is_ground {
+            color.scale_alpha(PALED)
+        } else {
+            color
+        }
+    }
+}
+
 #[derive(Default)]
 struct State {
     /// One for each run of marks.
     marks: Vec<canvas::Cache>,
-    made_of: Option<(ContentHash, Mode)>,
+    made_of: Option<(ContentHash, Brush)>,
     hovered: Option<Spot>,
     /// Where the strength is being dragged to, from the left of the picture.
     drag: Option<f32>,
@@ -208,7 +233,6 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for Shown<'a, M> {
         let Some(shown) = bounds.intersection(viewport) else {
             return;
         };
-        let colors = self.mode.colors();
         let origin = layout.position() - Point::ORIGIN;
         let mut caches = state.marks.iter();
         for run in runs(&self.picture.marks) {
@@ -217,7 +241,7 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for Shown<'a, M> {
             let marks = cache.draw_with_bounds(renderer, seen, |frame| {
                 frame.translate(Vector::new(-seen.x, -seen.y));
                 for mark in run.marks {
-                    paint(frame, mark, self.mode);
+                    paint(frame, mark, self.brush());
                 }
             });
             renderer.with_translation(origin, |renderer| {
@@ -229,7 +253,7 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for Shown<'a, M> {
             let words = cache.draw(renderer, bounds.size(), |frame| {
                 for word in &self.picture.words {
                     if word.turn == Turn::Up {
-                        turned(frame, word, self.mode);
+                        turned(frame, word, self.brush());
                     }
                 }
             });
@@ -240,7 +264,7 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for Shown<'a, M> {
         if let Some(meaning) = &self.highlight {
             let marks = state.highlight.draw(renderer, bounds.size(), |frame| {
                 for mark in self.picture.highlight(meaning) {
-                    paint(frame, &mark, self.mode);
+                    paint(frame, &mark, self.brush());
                 }
             });
             renderer.with_translation(origin, |renderer| {
@@ -249,22 +273,8 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for Shown<'a, M> {
         }
         for word in &self.picture.words {
             if word.turn == Turn::Level {
-                level(renderer, word, origin, self.mode);
+                level(renderer, word, origin, self.brush());
             }
-        }
-        if self.is_paled {
-            renderer.with_layer(shown, |renderer| {
-                renderer.fill_quad(
-                    Quad {
-                        bounds: shown,
-                        ..Quad::default()
-                    },
-                    Background::Color(iced::Color {
-                        a: 0.55,
-                        ..colors.paper
-                    }),
-                );
-            });
         }
         if let Some(x) = state.drag {
             self.draw_drag(renderer, theme, state, bounds, shown, x);
@@ -303,16 +313,23 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for Shown<'a, M> {
 }
 
 impl<'a, M: 'a> Shown<'a, M> {
+    fn brush(&self) -> Brush {
+        Brush {
+            mode: self.mode,
+            is_paled: self.is_paled,
+        }
+    }
+
     /// Forgets what was painted of another picture.
     fn follow(&self, state: &mut State) {
-        if state.made_of != Some((self.hash, self.mode)) {
+        if state.made_of != Some((self.hash, self.brush())) {
             state.marks.clear();
             // One more than runs: the last is for the turned words.
             let n_caches = runs(&self.picture.marks).len() + 1;
             state.marks.resize_with(n_caches, canvas::Cache::new);
             state.highlight.clear();
             state.hovered = None;
-            state.made_of = Some((self.hash, self.mode));
+            state.made_of = Some((self.hash, self.brush()));
         }
         if state.highlighted != self.highlight {
             state.highlight.clear();
@@ -420,7 +437,7 @@ fn told(
     });
 }
 
-fn level(renderer: &mut iced::Renderer, word: &Word, origin: Vector, mode: Mode) {
+fn level(renderer: &mut iced::Renderer, word: &Word, origin: Vector, brush: Brush) {
     let size = word.size as f32;
     let line = size * 1.5;
     // Always set from the left: the toolkit takes what changed of a text to lie to the right of
@@ -442,13 +459,13 @@ fn level(renderer: &mut iced::Renderer, word: &Word, origin: Vector, mode: Mode)
             wrapping: Wrapping::None,
         },
         at + origin,
-        mode.colors().ink(word.ink),
+        brush.ink(word.ink),
         // The toolkit clips a text by its layer only where this says that it reaches beyond.
         region(word.rect().grown(1.0)) + origin,
     );
 }
 
-fn turned(frame: &mut Frame, word: &Word, mode: Mode) {
+fn turned(frame: &mut Frame, word: &Word, brush: Brush) {
     let size = word.size as f32;
     let line = size * 1.5;
     frame.with_save(|frame| {
@@ -458,7 +475,7 @@ fn turned(frame: &mut Frame, word: &Word, mode: Mode) {
             content: word.text.clone(),
             position: Point::new(0.0, -text::baseline(size, line)),
             max_width: f32::INFINITY,
-            color: mode.colors().ink(word.ink),
+            color: brush.ink(word.ink),
             size: Pixels(size),
             line_height: LineHeight::Absolute(Pixels(line)),
             font: text::face(word.face),
@@ -523,9 +540,9 @@ fn place(at: Point) -> Place {
     Place::new(f64::from(at.x), f64::from(at.y))
 }
 
-fn stroke(line: &Line, mode: Mode) -> Stroke<'static> {
+fn stroke(line: &Line, brush: Brush) -> Stroke<'static> {
     Stroke {
-        style: canvas::Style::Solid(mode.colors().ink(line.ink)),
+        style: canvas::Style::Solid(brush.ink(line.ink)),
         width: line.width as f32,
         line_cap: match line.dash {
             Dash::Solid => canvas::LineCap::Round,
@@ -554,27 +571,25 @@ fn polyline(points: &[Place]) -> Path {
     })
 }
 
-fn paint(frame: &mut Frame, mark: &Mark, mode: Mode) {
-    let fill_and_outline = |frame: &mut Frame,
-                            path: &Path,
-                            fill: Option<crate::figure::ink::Ink>,
-                            outline: Option<Line>| {
-        if let Some(ink) = fill {
-            frame.fill(path, mode.colors().ink(ink));
-        }
-        if let Some(line) = outline {
-            frame.stroke(path, stroke(&line, mode));
-        }
-    };
+fn paint(frame: &mut Frame, mark: &Mark, brush: Brush) {
+    let fill_and_outline =
+        |frame: &mut Frame, path: &Path, fill: Option<Ink>, outline: Option<Line>| {
+            if let Some(ink) = fill {
+                frame.fill(path, brush.ink(ink));
+            }
+            if let Some(line) = outline {
+                frame.stroke(path, stroke(&line, brush));
+            }
+        };
     match mark {
         Mark::Line {
             points,
             stroke: line,
         } => {
-            frame.stroke(&polyline(points), stroke(line, mode));
+            frame.stroke(&polyline(points), stroke(line, brush));
         }
         Mark::Area { points, ink } => {
-            frame.fill(&polyline(points), mode.colors().ink(*ink));
+            frame.fill(&polyline(points), brush.ink(*ink));
         }
         Mark::Disc {
             center,
@@ -601,7 +616,7 @@ fn paint(frame: &mut Frame, mark: &Mark, mode: Mode) {
         // A clip is a run of its own; it holds no clip itself.
         Mark::Clip { rect: _, marks } => {
             for mark in marks {
-                paint(frame, mark, mode);
+                paint(frame, mark, brush);
             }
         }
     }

@@ -3,9 +3,9 @@
 use crate::base::number::Precision;
 use crate::base::problem::Problem;
 use crate::eval::caveat::agreement_slope;
-use crate::eval::fact::{Fact, FactColumn, Facts};
+use crate::eval::fact::{Fact, Facts};
 use crate::eval::kind::Ended;
-use crate::eval::kind::fit::{Fitted, error_digits, performance};
+use crate::eval::kind::fit::{Fitted, error_digits, held_out_predictions, performance};
 use crate::eval::outcome::{Gives, Outcome};
 
 /// Answers from the held-out predictions of the outer parts.
@@ -109,61 +109,7 @@ pub fn answer(fitted: &Fitted) -> Result<Outcome, Ended> {
             "The standard deviation of the reference method's own error, as stated by the user.",
         );
     }
-    let mut columns = vec![
-        FactColumn::texts(
-            "sample",
-            rows.iter().map(|&row| data.names[row].clone()).collect(),
-            "The sample.",
-        ),
-        FactColumn::texts(
-            "unit",
-            rows.iter()
-                .map(|&row| data.unit_names[data.units[row]].clone())
-                .collect(),
-            "The unit that it belongs to.",
-        ),
-    ];
-    if let Some(batches) = &data.batches {
-        columns.push(FactColumn::texts(
-            "batch",
-            rows.iter()
-                .map(|&row| data.batch_names[batches[row]].clone())
-                .collect(),
-            "The batch that it belongs to.",
-        ));
-    }
-    let residual = held_out
-        .predicted
-        .iter()
-        .zip(&observed)
-        .map(|(p, o)| p - o)
-        .collect();
-    columns.push(FactColumn::numbers(
-        "observed",
-        observed,
-        &unit,
-        digits,
-        "The observed outcome.",
-    ));
-    columns.push(FactColumn::numbers(
-        "predicted",
-        held_out.predicted.clone(),
-        &unit,
-        digits,
-        "The held-out prediction, the mean over repeats.",
-    ));
-    columns.push(FactColumn::numbers(
-        "residual",
-        residual,
-        &unit,
-        digits,
-        "Predicted less observed.",
-    ));
-    facts.push(Fact::table(
-        "held-out predictions",
-        columns,
-        "The predictions of samples by fits that had not seen them.",
-    ));
+    facts.push(held_out_predictions(fitted, &held_out, &unit, digits));
     let caveats = agreement_slope::check(
         mean.slope,
         mean.slope - 1.96 * error,

@@ -32,6 +32,8 @@ impl StudyScreen {
             )
         };
         let mut middle = row![].height(Length::Fill);
+        // Where the window is wider than the study needs, the whole of it stands in the middle.
+        middle = middle.push(gap().width(columns.air));
         if columns.thread > 0.0 {
             middle = middle.push(
                 thread::view(self.session.study(), self.session.standings()).map(Message::Thread),
@@ -78,7 +80,7 @@ impl StudyScreen {
         }
         // The line between page and margin runs behind the cells from top to bottom.
         let line = row![
-            gap().width(columns.air + space::WIDE + columns.page + space::WIDE),
+            gap().width(space::WIDE + columns.page + space::WIDE),
             rule::vertical(space::HAIR).style(container::hairline),
         ]
         .height(Length::Fill);
@@ -94,10 +96,7 @@ impl StudyScreen {
         page: Element<'a, Message>,
         margin: Option<Element<'a, Message>>,
     ) -> Element<'a, Message> {
-        let mut line = row![
-            gap().width(columns.air + space::WIDE),
-            boxed(page).width(columns.page),
-        ];
+        let mut line = row![gap().width(space::WIDE), boxed(page).width(columns.page),];
         if let Some(margin) = margin
             && columns.margin > 0.0
         {

@@ -6,6 +6,9 @@
 //! item by item, and that costs far more than drawing them anew.
 
 mod draw;
+mod source;
+
+pub use crate::app::widget::grid::source::{Align, Condition, Did, Field, Show, Source};
 
 use crate::app::theme::{space, text};
 use crate::app::widget::Element;
@@ -18,7 +21,6 @@ use iced::advanced::widget::{Id, Operation, Tree, Widget, tree};
 use iced::advanced::{Clipboard, Shell, clipboard, mouse};
 use iced::keyboard::{self, key};
 use iced::{Event, Length, Point, Rectangle, Size};
-use std::borrow::Cow;
 use std::time::{Duration, Instant};
 
 /// What is copied at most, in bytes: larger clippings stall the reader.
@@ -31,123 +33,12 @@ const WHEEL_COLUMNS: f32 = 1.0;
 const WIDTHS: (f32, f32) = (56.0, 220.0);
 /// The widest that a last column of words gets.
 const WIDEST: f32 = 640.0;
+/// How many columns are few.
+const FEW: usize = 4;
 /// How many names are measured for the width of the name column.
 const MEASURED: usize = 400;
 /// Two presses within this time open a value.
 const TWICE: Duration = Duration::from_millis(400);
-
-/// The four states that a value can have.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub enum Condition {
-    /// A value.
-    Known,
-    /// None.
-    Missing,
-    /// Below the limit of what could be measured.
-    BelowLimit,
-    /// Above the limit of what could be measured.
-    AboveLimit,
-    /// A value that was corrected.
-    Corrected,
-}
-
-/// A field of a grid.
-#[derive(Clone, Debug, PartialEq)]
-pub struct Field<'a> {
-    /// How it reads.
-    pub text: Cow<'a, str>,
-    /// Its state.
-    pub condition: Condition,
-}
-
-impl<'a> Field<'a> {
-    /// A known value.
-    pub fn known(text: impl Into<Cow<'a, str>>) -> Self {
-        Self {
-            text: text.into(),
-            condition: Condition::Known,
-        }
-    }
-}
-
-/// How the fields of a column are aligned.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub enum Align {
-    /// Words.
-    Start,
-    /// Numbers.
-    End,
-}
-
-/// Where a grid takes what it shows. It is asked for what can be seen, and for widths once.
-pub trait Source {
-    /// The number of rows.
-    fn n_rows(&self) -> usize;
-    /// The number of columns, without the names of the rows.
-    fn n_columns(&self) -> usize;
-    /// The heading of the names.
-    fn corner(&self) -> Cow<'_, str>;
-    /// The name of a row.
-    fn row(&self, row: usize) -> Cow<'_, str>;
-    /// The name of a column.
-    fn column(&self, column: usize) -> Cow<'_, str>;
-    /// What is said below the name of a column: its role, its unit.
-    fn remark(&self, _column: usize) -> Option<Cow<'_, str>> {
-        None
-    }
-    /// Whether any column has a remark.
-    fn has_remarks(&self) -> bool {
-        false
-    }
-    /// A field.
-    fn field(&self, row: usize, column: usize) -> Field<'_>;
-    /// How a column is aligned.
-    fn align(&self, _column: usize) -> Align {
-        Align::End
-    }
-    /// About how many letters the fields of a column have.
-    fn letters(&self, _column: usize) -> usize {
-        7
-    }
-    /// Changes when widths have to be taken again.
-    fn version(&self) -> u64 {
-        0
-    }
-}
-
-/// What was done in a grid.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub enum Did {
-    /// The cursor was put on a field.
-    At {
-        /// The row.
-        row: usize,
-        /// The column.
-        column: usize,
-    },
-    /// A field was opened, by two presses or Enter.
-    Opened {
-        /// The row.
-        row: usize,
-        /// The column.
-        column: usize,
-    },
-    /// The head of a column was pressed.
-    Head(usize),
-    /// The name of a row was pressed.
-    Row(usize),
-}
-
-/// A request to show a column, obeyed once.
-#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
-pub struct Show {
-    /// The column.
-    pub column: usize,
-    /// The row, where one is meant.
-    pub row: Option<usize>,
-    /// Counts the requests; 0 is none.
-    pub serial: u64,
-}
 
 /// A grid.
 pub struct Grid<'a, M> {
@@ -228,6 +119,8 @@ struct State {
     focus: Focus,
     /// Where each column begins, and where the last ends, from the left of the body.
     starts: Vec<f32>,
+    /// How wide the last column would like to be.
+    last_width: f32,
     names: f32,
     measured: Option<(u64, usize, usize)>,
     first: At,
@@ -404,7 +297,9 @@ impl<'a, M> Grid<'a, M> {
             } else {
                 WIDTHS.1
             };
-            start += width.clamp(WIDTHS.0, widest).round();
+            let width = width.clamp(WIDTHS.0, widest).round();
+            state.last_width = width;
+            start += width;
             state.starts.push(start);
         }
         let names = (0..source.n_rows().min(MEASURED))
@@ -413,8 +308,14 @@ impl<'a, M> Grid<'a, M> {
                 metrics::width(&source.corner(), Face::SansStrong, size),
                 f64::max,
             );
+        // Beside few columns there is room for long names.
+        let widest = if source.n_columns() <= FEW {
+            WIDEST / 2.0
+        } else {
+            WIDTHS.1
+        };
         state.names = (names as f32 + 2.0 * space::SMALL)
-            .clamp(WIDTHS.0, WIDTHS.1)
+            .clamp(WIDTHS.0, widest)
             .round();
         let last_row = source.n_rows().saturating_sub(1);
         let last_column = source.n_columns().saturating_sub(1);
@@ -423,6 +324,14 @@ impl<'a, M> Grid<'a, M> {
         state.cursor = state
             .cursor
             .filter(|at| at.row <= last_row && at.column <= last_column);
+    }
+
+    /// A wide last column takes the room that is left, so that it can be seen whole.
+    fn fit_last(&self, state: &mut State, body: f32) {
+        if let [.., start, end] = &mut state.starts[..] {
+            let room = (body - *start).floor().max(WIDTHS.1);
+            *end = *start + state.last_width.min(room);
+        }
     }
 
     fn bar(&self, state: &State, view: View, bar: Bar) -> Option<Rectangle> {
@@ -527,6 +436,7 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for Grid<'a, M> {
     ) -> layout::Node {
         let state = tree.state.downcast_mut::<State>();
         self.measure(state);
+        self.fit_last(state, limits.max().width - state.names - space::SMALL);
         let head = self.head_height();
         let rows = ((self.height - head - space::SMALL) / space::ROW).floor();
         let rows = rows.max(1.0).min(self.source.n_rows().max(1) as f32);

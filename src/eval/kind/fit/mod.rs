@@ -1,6 +1,7 @@
 //! Evaluates a Fit cell: the procedure on all analysed samples, and judged on outer parts.
 
 mod facts;
+mod nested;
 mod performance;
 mod procedure;
 mod tables;
@@ -9,7 +10,7 @@ mod trouble;
 pub use facts::error_digits;
 pub use performance::{Interval, Measures, Performance, errors_by_unit, interval, performance};
 pub use procedure::{numeric_procedure, parts_params};
-pub use tables::{error_curve, outer_choices};
+pub use tables::{error_curve, held_out_predictions, outer_choices};
 pub use trouble::halted;
 
 use crate::base::problem::Problem;

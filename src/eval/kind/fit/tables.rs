@@ -1,55 +1,11 @@
-//! The tables among the facts of a Fit cell.
+//! The facts of a fit that are tables: error curve, outer choices, predictions, assignments.
 
 use crate::base::number::Precision;
-use crate::eval::fact::{Fact, FactColumn, Facts};
+use crate::eval::fact::{Fact, FactColumn};
 use crate::eval::kind::fit::facts::STRENGTH;
 use crate::eval::kind::fit::performance::Performance;
 use crate::eval::kind::fit::{Fitted, Judged};
 use crate::numeric::choose::Curve;
-
-/// The intercept, and the coefficients of chosen predictors and of covariates, as tables.
-pub fn coefficients(facts: &mut Facts, fitted: &Fitted) {
-    let last = &fitted.last;
-    let raw = last.path.coefficients(last.strength_at);
-    let standardised: std::collections::BTreeMap<usize, f64> = last
-        .path
-        .standardised(last.strength_at)
-        .into_iter()
-        .collect();
-    let digits = Precision::Significant(4);
-    facts.push(Fact::number(
-        "intercept",
-        raw.intercept,
-        &fitted.prepared.data.outcome.unit,
-        digits,
-        "The intercept of the final fit, for predictors as prepared but not scaled.",
-    ));
-    facts.push(Fact::table("coefficients", vec![
-        FactColumn::texts("predictor", raw.predictors.iter().map(|(at, _)| fitted.column_name(*at)).collect(), "The chosen predictor."),
-        FactColumn::numbers("coefficient", raw.predictors.iter().map(|(_, value)| *value).collect(), "", digits, "Its coefficient, for predictors as prepared but not scaled. Shrunken and conditional on what else is in the model: a recipe weight, not an effect."),
-        FactColumn::numbers("standardised coefficient", raw.predictors.iter().map(|(at, _)| standardised.get(at).copied().unwrap_or(f64::NAN)).collect(), "", digits, "Its coefficient on the scale that the penalty sees."),
-    ], "The chosen predictors of the final fit and their coefficients."));
-    if !raw.covariates.is_empty() {
-        facts.push(Fact::table(
-            "covariate coefficients",
-            vec![
-                FactColumn::texts(
-                    "covariate",
-                    fitted.prepared.data.covariate_names.clone(),
-                    "The covariate.",
-                ),
-                FactColumn::numbers(
-                    "coefficient",
-                    raw.covariates,
-                    "",
-                    digits,
-                    "Its coefficient; not penalised.",
-                ),
-            ],
-            "The coefficients of the covariates in the final fit.",
-        ));
-    }
-}
 
 /// The error curve as a table: root mean squared errors with a band of one standard error.
 #[must_use]
@@ -199,9 +155,9 @@ pub fn outer_choices(fitted: &Fitted, judged: &Judged, unit: &str, digits: Preci
     )
 }
 
-/// The held-out predictions beside what was observed.
+/// The held-out prediction of every analysed sample, beside what was observed.
 #[must_use]
-pub fn predictions(
+pub fn held_out_predictions(
     fitted: &Fitted,
     performance: &Performance,
     unit: &str,
@@ -274,7 +230,7 @@ pub fn predictions(
     )
 }
 
-/// The outer part of every sample, repeat by repeat.
+/// The part in which every sample was held out, repeat by repeat.
 #[must_use]
 pub fn assignments(fitted: &Fitted, judged: &Judged) -> Fact {
     let data = &fitted.prepared.data;

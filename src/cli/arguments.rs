@@ -25,11 +25,11 @@ pub enum Command {
     Facts(Facts),
     /// Writes the hand-over workbook and the methods write-up
     Export(Export),
-    /// Predicts new samples
+    /// Predicts new samples (not built yet)
     Score(Score),
-    /// Evaluates afresh and holds it against the record
+    /// Evaluates afresh and holds it against the record (not built yet)
     Verify(Verify),
-    /// Says what differs between two studies
+    /// Says what differs between two studies (not built yet)
     Compare(Compare),
 }
 

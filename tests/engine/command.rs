@@ -157,7 +157,11 @@ fn a_wrong_command_line_ends_with_two_and_a_study_that_fails_with_one() {
             .code(),
         Some(2)
     );
-    assert_eq!(folder.run(&["frobnicate"]).status.code(), Some(2));
+    assert_eq!(folder.run(&["update"]).status.code(), Some(2));
+    assert_eq!(
+        folder.run(&["facts", "s.widefold", "--xml"]).status.code(),
+        Some(2)
+    );
     for later in [
         &["score", "s.widefold", "--fit", "f", "t.csv", "-o", "o.csv"][..],
         &["verify", "s.widefold"],

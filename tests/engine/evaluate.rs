@@ -1,4 +1,5 @@
 //! What is evaluated again, and that threads do not matter.
+#![expect(clippy::disallowed_methods, reason = "tests read files of their own")]
 
 use crate::support::{memo, spectra, started, update};
 use std::sync::Mutex;

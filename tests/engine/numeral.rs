@@ -47,7 +47,7 @@ impl Known {
                             match &column.values {
                                 FactValues::Numbers(numbers) => known.numbers.extend(numbers),
                                 FactValues::Texts(texts) => {
-                                    texts.iter().for_each(|t| known.take(t))
+                                    texts.iter().for_each(|t| known.take(t));
                                 }
                             }
                         }

@@ -517,10 +517,13 @@ fn exclude_without_outcome(data: &mut Data, first: &ReadTable, notes: &mut Vec<S
         })
         .collect();
     if !exclusions.is_empty() && exclusions.len() < column.len() {
-        notes.push(format!(
-            "{} samples without an outcome are excluded, with that reason.",
-            number::text(exclusions.len() as f64, Precision::Whole)
-        ));
+        notes.push(match exclusions.len() {
+            1 => "1 sample without an outcome is excluded, with that reason.".to_owned(),
+            n => format!(
+                "{} samples without an outcome are excluded, with that reason.",
+                number::text(n as f64, Precision::Whole)
+            ),
+        });
         data.exclusions = Arc::new(exclusions);
     }
 }
@@ -674,10 +677,15 @@ fn fit_settings(wishes: &Wishes, shape: &Shape, prepared: CellId, notes: &mut Ve
         let kept = units - units.div_ceil(plan.parts.max(1));
         if let Strength::Chosen { rule, inner, .. } = &mut fit.strength {
             let needs = matches!(rule, Rule::LowestError | Rule::OneStandardError);
-            if needs && kept >= 2 && inner.parts > kept {
-                notes.push(format!(
-                    "Only {kept} independent samples in a training part: {kept} inner parts are drawn."
-                ));
+            if needs && kept < 2 {
+                notes.push(
+                    "A training part would be a single sample, in which no strength can be \
+                     chosen: bring in more samples."
+                        .to_owned(),
+                );
+                inner.parts = 2;
+            } else if needs && inner.parts > kept {
+                notes.push(format!("Only {kept} independent samples in a training part: {kept} inner parts are drawn."));
                 inner.parts = kept;
             }
         }

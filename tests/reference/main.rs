@@ -4,6 +4,8 @@
 mod gaussian;
 /// All other outcomes.
 mod other;
+/// Cross-validation and selection on halves with given parts.
+mod procedure;
 /// Ridge, measured outcome.
 mod ridge;
 /// Reading the tables and values, and comparing.

@@ -92,6 +92,9 @@ pub fn values(file: &str) -> Value {
         "multinomial.json" => include_str!("values/multinomial.json"),
         "poisson.json" => include_str!("values/poisson.json"),
         "cox.json" => include_str!("values/cox.json"),
+        "cv.json" => include_str!("values/cv.json"),
+        // Kept once: the tests of stability share it.
+        "stability.json" => include_str!("../steps/stability.json"),
         other => panic!("there are no values {other}"),
     };
     serde_json::from_str(text).unwrap()

@@ -113,12 +113,12 @@ fn plan_failure(level: Level, error: &PlanError, prepared: &Prepared, settings: 
             format!("{parts} parts are asked for, and at least 2 are needed")
         }
         PlanError::NoRepeats => "0 repeats are asked for, and at least 1 is needed".to_owned(),
-        PlanError::TooFewUnits { units: 1, parts } => {
-            format!("{parts} parts are asked for, but there is only 1 {word} to divide")
-        }
-        PlanError::TooFewUnits { units, parts } => {
-            format!("{parts} parts are asked for, but there are only {units} {word}s to divide")
-        }
+        PlanError::TooFewUnits { units: 1, parts } => format!(
+            "{parts} parts are asked for, but there is only a single independent sample ({word})"
+        ),
+        PlanError::TooFewUnits { units, parts } => format!(
+            "{parts} parts are asked for, but there are only {units} independent samples ({word})"
+        ),
         PlanError::NoBatches => "no column has the role of a batch".to_owned(),
         PlanError::NoStrata => "the outcome has no classes or events to balance".to_owned(),
         PlanError::NoOrder => "no column has the role of an order".to_owned(),

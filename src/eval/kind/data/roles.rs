@@ -290,9 +290,14 @@ fn sample_names(settings: &Data, table: &Table, file: &str) -> Result<Vec<String
     let problem = Problem::new(
         "repeated-sample-names",
         format!(
-            "The column “{name}” should name the samples, but {} names stand there more than \
-             once, such as “{}”.",
-            number::text(repeated.len() as f64, Precision::Whole),
+            "The column “{name}” should name the samples, but {} more than once, such as “{}”.",
+            match repeated.len() {
+                1 => "one name stands there".to_owned(),
+                count => {
+                    let count = number::text(count as f64, Precision::Whole);
+                    format!("{count} names stand there")
+                }
+            },
             some.join("”, “")
         ),
     )

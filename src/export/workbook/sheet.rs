@@ -51,6 +51,8 @@ impl<'a> Sheet<'a> {
         }
         let sheet = book.add_worksheet();
         let _ = sheet.set_name(&title)?;
+        // On paper a sheet is as wide as a page, however long.
+        let _ = sheet.set_landscape().set_print_fit_to_pages(1, 0);
         Ok(Self {
             sheet,
             row: 0,

@@ -1,18 +1,16 @@
 //! Progress bars on long work; quiet when nobody watches.
 
-use crate::eval::standing::{Event, State};
+use crate::eval::standing::Event;
 use crate::study::Study;
 use crate::study::cell::CellId;
 use indicatif::{ProgressBar, ProgressStyle};
 use std::io::IsTerminal;
-use std::sync::Mutex;
 
 /// Shows what is being evaluated, when standard error is a terminal.
 #[derive(Debug)]
 pub struct Progress {
     bar: Option<ProgressBar>,
     titles: Vec<(CellId, String)>,
-    n_due: Mutex<usize>,
 }
 
 /// Steps of a bar: as fine as anybody can see.
@@ -34,22 +32,14 @@ impl Progress {
             .iter()
             .map(|cell| (cell.id, cell.title.clone()))
             .collect();
-        Self {
-            bar,
-            titles,
-            n_due: Mutex::new(0),
-        }
+        Self { bar, titles }
     }
 
     /// Takes an event in.
     pub fn tell(&self, event: &Event) {
         let Some(bar) = &self.bar else { return };
         match event {
-            Event::Planned(states) => {
-                let due = |state: &State| matches!(state, State::Due | State::Waiting);
-                *self.n_due.lock().expect("nobody panics while counting") +=
-                    states.iter().filter(|(_, state)| due(state)).count();
-            }
+            Event::Planned(_) => {}
             Event::Started(id) => {
                 let title = self.titles.iter().find(|(known, _)| known == id);
                 bar.reset();

@@ -118,9 +118,7 @@ struct ReadTable {
 
 /// What of the tables decides on the rest of the study.
 struct Shape {
-    n_samples: usize,
     n_units: usize,
-    n_predictors: usize,
     has_gaps: bool,
     has_limits: bool,
     is_spectrum: bool,
@@ -481,9 +479,7 @@ fn shape(
                 .len()
         });
     Shape {
-        n_samples: first.n_rows(),
         n_units,
-        n_predictors: names.len(),
         has_gaps,
         has_limits,
         is_spectrum,
@@ -690,7 +686,6 @@ fn fit_settings(wishes: &Wishes, shape: &Shape, prepared: CellId, notes: &mut Ve
             }
         }
     }
-    let _ = (shape.n_samples, shape.n_predictors);
     fit
 }
 

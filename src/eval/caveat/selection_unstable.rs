@@ -30,13 +30,25 @@ pub fn check(facts: &Facts, index: Option<f64>) -> Vec<Caveat> {
         } else {
             (Severity::Note, "The list is only partly stable")
         };
-        let text = format!(
-            "Repeating the study on half the samples returns a different list; of the {} chosen \
+        let all_again = value("chosen again") >= value("chosen predictors");
+        let text = if all_again {
+            // The index asks whether lists agree more than lists of their length drawn at random:
+            // where nearly every predictor is chosen every time, they hardly can.
+            format!(
+                "All {} chosen predictors come back most of the time, but the lists agree hardly \
+                 more than lists of their length drawn at random would; being chosen says little \
+                 where nearly everything is.",
+                shown("chosen predictors")
+            )
+        } else {
+            format!(
+                "Repeating the study on half the samples returns a different list; of the {} chosen \
              predictors, {} come back most of the time and {} on fewer than half of the halves.",
-            shown("chosen predictors"),
-            shown("chosen again"),
-            shown("chosen rarely")
-        );
+                shown("chosen predictors"),
+                shown("chosen again"),
+                shown("chosen rarely")
+            )
+        };
         caveats.push(
             Caveat::new("selection-unstable", severity, heading, text)
                 .because("stability index", index_value, Precision::Decimals(2))

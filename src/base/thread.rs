@@ -1,8 +1,12 @@
 //! The one way to do many pieces of work side by side: results come back in order.
 
 use crate::base::work::{Cancelled, Work};
-use std::sync::Mutex;
 use std::sync::atomic::{AtomicUsize, Ordering};
+use std::sync::{Mutex, mpsc};
+use std::time::Duration;
+
+/// How often a piece of work that runs apart is asked about.
+const PATIENCE: Duration = Duration::from_millis(20);
 
 /// How many threads to use. A result never depends on it.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -91,6 +95,41 @@ where
         .collect())
 }
 
+/// Runs one piece of work that cannot be asked to stop, on a thread of its own, and asks on the
+/// caller's behalf: when `work` is called off the caller goes on at once, while the piece runs to
+/// its end in the background and is thrown away.
+///
+/// # Errors
+/// [`Cancelled`] when the work was called off before the piece was done.
+///
+/// # Panics
+/// When the job panics.
+#[expect(
+    clippy::disallowed_methods,
+    reason = "this is the door to threads that the ban points to"
+)]
+pub fn apart<T, F>(work: &Work<'_>, job: F) -> Result<T, Cancelled>
+where
+    T: Send + 'static,
+    F: FnOnce() -> T + Send + 'static,
+{
+    work.check()?;
+    let (sender, receiver) = mpsc::channel();
+    drop(std::thread::spawn(move || {
+        // Nobody listens any more when the work was called off.
+        let _ = sender.send(job());
+    }));
+    loop {
+        match receiver.recv_timeout(PATIENCE) {
+            Ok(result) => return Ok(result),
+            Err(mpsc::RecvTimeoutError::Timeout) => work.check()?,
+            Err(mpsc::RecvTimeoutError::Disconnected) => {
+                panic!("the piece of work that ran apart has panicked")
+            }
+        }
+    }
+}
+
 #[cfg(test)]
 mod tests {
     use super::*;
@@ -112,5 +151,22 @@ mod tests {
         let report = |_: f32| source.cancel();
         let work = Work::new(source.token(), &report);
         assert_eq!(in_order(Threads::new(2), 1000, &work, Ok), Err(Cancelled));
+    }
+
+    #[test]
+    fn a_piece_that_runs_apart_gives_its_result_and_is_left_behind_when_called_off() {
+        let sum = apart(&Work::unattended(), || (1..=10).sum::<u32>());
+        assert_eq!(sum, Ok(55));
+        let source = CancelSource::new();
+        let report = |_: f32| ();
+        let work = Work::new(source.token(), &report);
+        let (hold, held) = mpsc::channel::<()>();
+        let answer = apart(&work, move || {
+            source.cancel();
+            // Until the answer is here and `hold` is dropped, this piece cannot end.
+            let _ = held.recv();
+        });
+        assert_eq!(answer, Err(Cancelled));
+        drop(hold);
     }
 }

@@ -56,6 +56,8 @@ pub(crate) struct ActiveSet {
     /// Entries and departures so far.
     pub(crate) events: usize,
     scratch: Vec<f64>,
+    /// The active columns of X and HX side by side, kept because fresh memory costs time.
+    blocks: [Vec<f64>; 2],
 }
 
 impl ActiveSet {
@@ -405,10 +407,25 @@ impl ActiveSet {
         }
         // All products at once: much cheaper than column by column.
         let slots: Vec<usize> = solution.iter().map(|(slot, _)| *slot).collect();
-        let gram = matrix::transposed_product(
-            &problem.block(&problem.x, &slots),
-            &problem.block(problem.h_columns(), &slots),
-        );
+        let [x, hx] = &mut self.blocks;
+        problem.gather(&problem.x, &slots, x);
+        let gram = if problem.hx.is_empty() {
+            matrix::lower_product(x, x, problem.length)
+        } else {
+            problem.gather(&problem.hx, &slots, hx);
+            matrix::lower_product(x, hx, problem.length)
+        };
+        let mut whole = gram.clone();
+        for (at, &slot) in slots.iter().enumerate() {
+            whole[(at, at)] = problem.square[slot] + problem.ridge[slot];
+        }
+        if let Some(factor) = Factor::of(whole, SPANNED) {
+            self.factor = factor;
+            for &(slot, b) in solution {
+                self.push(problem, slot, b);
+            }
+            return;
+        }
         let mut kept: Vec<usize> = Vec::with_capacity(slots.len());
         for (at, &(slot, b)) in solution.iter().enumerate() {
             let mut cross: Vec<f64> = kept.iter().map(|&k| gram[(at, k)]).collect();

@@ -15,6 +15,7 @@ use crate::numeric::loss::Loss;
 use crate::numeric::response::Ties;
 
 /// The loss of times to an event, divided by the sum of the sample weights.
+#[derive(Clone)]
 pub(crate) struct Cox {
     /// Sample of each place: by stratum, then by falling time.
     order: Vec<usize>,
@@ -34,6 +35,7 @@ pub(crate) struct Cox {
 }
 
 /// One event time of one stratum.
+#[derive(Clone)]
 struct Group {
     /// Where the stratum begins.
     stratum: usize,
@@ -277,5 +279,9 @@ impl Loss for Cox {
             }
         }
         dual
+    }
+
+    fn frozen(&self) -> Box<dyn Loss> {
+        Box::new(self.clone())
     }
 }

@@ -1,6 +1,7 @@
 //! A Cholesky factor that grows and shrinks by one row and column at a time.
 
 use crate::numeric::lanes::{add_scaled_body, dispatch, dot_body};
+use crate::numeric::matrix::{self, Matrix};
 
 /// The upper triangle R of G = R'R, stored by columns without gaps: column k has k + 1 entries.
 #[derive(Clone, Debug, Default)]
@@ -15,6 +16,27 @@ fn start(column: usize) -> usize {
 }
 
 impl Factor {
+    /// The factor of a matrix of which the lower triangle is given, in blocks: many times faster
+    /// than row by row. `None` when a pivot is at most `least` of its diagonal element.
+    pub(crate) fn of(mut lower: Matrix, least: f64) -> Option<Self> {
+        let size = lower.nrows();
+        let diagonal: Vec<f64> = (0..size).map(|k| lower[(k, k)]).collect();
+        if !matrix::cholesky(&mut lower) {
+            return None;
+        }
+        let mut entries = Vec::with_capacity(start(size));
+        for (k, diagonal) in diagonal.iter().enumerate() {
+            let pivot = lower[(k, k)];
+            // False for what is not a number as well.
+            let is_clear = pivot * pivot > least * diagonal;
+            if !is_clear {
+                return None;
+            }
+            entries.extend((0..=k).map(|j| lower[(k, j)]));
+        }
+        Some(Self { entries, size })
+    }
+
     /// Makes the factor empty.
     pub(crate) fn clear(&mut self) {
         self.entries.clear();

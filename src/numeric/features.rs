@@ -4,7 +4,7 @@ use crate::base::work::Work;
 use crate::numeric::error::Stop;
 use crate::numeric::ground::Ground;
 use crate::numeric::matrix::{self, Matrix};
-use crate::numeric::ridge::{BLOCK, EMPTY, NARROW, NO_DIRECTION, SMALL};
+use crate::numeric::ridge::{EMPTY, NARROW, NO_DIRECTION, SMALL, block_size};
 
 /// The directions that the penalised predictors span in the space of the samples: Z F^(−½) = E V'
 /// with columns E, so that λ/2 Σ fⱼbⱼ² = λ/2 ‖β‖² for Zb = Eβ.
@@ -46,7 +46,7 @@ impl Features {
             for (at, &j) in penalised.iter().enumerate() {
                 scaled(j, &mut columns.as_mut_slice()[at * m..(at + 1) * m]);
             }
-            let (left, values, right) = matrix::thin_svd(&columns)?;
+            let (left, values, right) = matrix::stoppable_svd(&columns, work)?;
             let least = NO_DIRECTION * values.first().copied().unwrap_or(0.0);
             let size = values.partition_point(|s| *s > least);
             let mut columns = left.columns(0, size).into_owned();
@@ -61,15 +61,15 @@ impl Features {
             });
         }
         let mut gram = Matrix::zeros(m, m);
-        let mut block = vec![0.0; m * BLOCK.min(n_predictors)];
-        for some in penalised.chunks(BLOCK) {
+        let mut block = vec![0.0; m * block_size(m).min(n_predictors)];
+        for some in penalised.chunks(block_size(m)) {
             work.check()?;
             for (column, &j) in block.chunks_exact_mut(m).zip(some) {
                 scaled(j, column);
             }
             matrix::add_outer(&mut gram, &block[..m * some.len()]);
         }
-        let (values, vectors) = matrix::symmetric_eigen(&gram)?;
+        let (values, vectors) = matrix::stoppable_eigen(gram, work)?;
         let least = EMPTY * values.last().copied().unwrap_or(0.0);
         let kept: Vec<usize> = (0..m).rev().filter(|&k| values[k] > least).collect();
         let columns: Vec<_> = kept

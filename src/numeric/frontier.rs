@@ -3,7 +3,7 @@
 use crate::numeric::ground::Ground;
 use crate::numeric::lanes;
 use crate::numeric::path::Params;
-use crate::numeric::scan::Sieve;
+use crate::numeric::scan::{Bounds, Sieve};
 use crate::numeric::working::Working;
 
 /// A predictor violates when its correlation exceeds its threshold by more than this share, or by
@@ -14,13 +14,15 @@ const SLACK: f64 = 1e-11;
 pub(crate) struct Frontier {
     sieve: Sieve,
     /// For each class: bounds on |zⱼ'g|/fⱼ over the length of the class's residual.
-    pub(crate) bounds: Vec<Vec<f32>>,
+    bounds: Vec<Bounds>,
     /// The length of each class's residual.
     lengths: Vec<f64>,
     /// λ · share of that fit, in the units of the residuals; infinite before the first.
     level: f64,
     /// Readings of the matrix since they were last asked for, in units of the whole matrix.
     passes: f64,
+    /// Bounds that nobody needs any more, to be filled again.
+    spare: Vec<Bounds>,
 }
 
 /// What a scan says about a solution.
@@ -49,6 +51,7 @@ impl Frontier {
             lengths: Vec::new(),
             level: f64::INFINITY,
             passes: 0.0,
+            spare: Vec::new(),
         };
         let bounds = frontier.scan(ground, &[residuals]);
         frontier.accept(
@@ -60,13 +63,16 @@ impl Frontier {
     }
 
     /// Bounds for the residuals of a few fits in one reading: fits × classes × predictors.
-    pub(crate) fn scan(&mut self, ground: &Ground<'_>, fits: &[&[Vec<f64>]]) -> Vec<Vec<Vec<f32>>> {
+    pub(crate) fn scan(&mut self, ground: &Ground<'_>, fits: &[&[Vec<f64>]]) -> Vec<Vec<Bounds>> {
         let n_linear = fits.first().map_or(0, |fit| fit.len());
         let views: Vec<&[f64]> = fits
             .iter()
             .flat_map(|fit| fit.iter().map(Vec::as_slice))
             .collect();
-        let mut flat = vec![Vec::new(); views.len()];
+        let mut flat: Vec<Bounds> = views
+            .iter()
+            .map(|_| self.spare.pop().unwrap_or_default())
+            .collect();
         self.sieve
             .bounds(ground.predictors.panels(), &views, &mut flat);
         // The 8-bit copy is an eighth of the matrix, read once for each batch of residuals.
@@ -78,10 +84,16 @@ impl Frontier {
     }
 
     /// Remembers the bounds of an accepted fit.
-    pub(crate) fn accept(&mut self, bounds: Vec<Vec<f32>>, residuals: &[Vec<f64>], level: f64) {
-        self.bounds = bounds;
+    pub(crate) fn accept(&mut self, bounds: Vec<Bounds>, residuals: &[Vec<f64>], level: f64) {
+        let old = std::mem::replace(&mut self.bounds, bounds);
+        self.spare.extend(old);
         self.lengths = residuals.iter().map(|g| lanes::norm(g)).collect();
         self.level = level;
+    }
+
+    /// Takes back bounds that were not accepted.
+    pub(crate) fn discard(&mut self, bounds: Vec<Bounds>) {
+        self.spare.extend(bounds);
     }
 
     /// Takes the count of readings.
@@ -100,9 +112,7 @@ impl Frontier {
             .bounds
             .iter()
             .zip(&self.lengths)
-            .map(|(bounds, length)| {
-                f64::from(bounds.iter().fold(0.0_f32, |top, &b| top.max(b))) * length
-            });
+            .map(|(bounds, length)| f64::from(bounds.largest()) * length);
         tops.fold(0.0, f64::max)
     }
 
@@ -115,19 +125,16 @@ impl Frontier {
             self.top()
         };
         let threshold = 2.0 * weakest - from;
-        let p = self.bounds.first().map_or(0, Vec::len);
         let n_linear = working.n_linear;
         let mut likely = Vec::new();
         for (class, (bounds, &length)) in self.bounds.iter().zip(&self.lengths).enumerate() {
             let least = (threshold / length) as f32;
-            for (j, &bound) in bounds[..p].iter().enumerate() {
-                if bound > 0.0 && bound >= least {
-                    let key = j * n_linear + class;
-                    if !working.holds(key) {
-                        likely.push((f64::from(bound) * length, key));
-                    }
+            bounds.not_below(least, |j, bound| {
+                let key = j * n_linear + class;
+                if !working.holds(key) {
+                    likely.push((f64::from(bound) * length, key));
                 }
-            }
+            });
         }
         likely
     }
@@ -140,7 +147,7 @@ impl Frontier {
         working: &Working,
         params: &Params,
         residuals: &[Vec<f64>],
-        bounds: &[Vec<f32>],
+        bounds: &[Bounds],
         within: Within,
     ) -> Proof {
         let Level { lasso, ridge } = within.level;
@@ -155,20 +162,17 @@ impl Frontier {
             let length = lanes::norm(g);
             // Rounded down, so that the comparison in single precision errs on the safe side.
             let least = (lasso / length) as f32 * (1.0 - 2.0 * f32::EPSILON);
-            for (j, &bound) in bounds[..p].iter().enumerate() {
-                if bound < least || bound == 0.0 {
-                    continue;
-                }
+            bounds.not_below(least, |j, _| {
                 let key = j * working.n_linear + class;
                 if working.holds(key) {
-                    continue;
+                    return;
                 }
                 read += 1;
                 let c = ground.correlation(j, g);
                 let factor = ground.factor(j);
                 let over = c.abs() - lasso * factor;
                 if over <= 0.0 || !params.sign(j).allows(c) {
-                    continue;
+                    return;
                 }
                 if over > SLACK * lasso * factor + within.floor {
                     proof.violators.push((over / factor, key));
@@ -177,7 +181,7 @@ impl Frontier {
                 if ridge > 0.0 {
                     proof.excess += over * over / (2.0 * ridge * factor);
                 }
-            }
+            });
         }
         self.passes += read as f64 / p as f64;
         proof

@@ -145,7 +145,8 @@ impl Walk<'_, '_> {
             }
             let fits: Vec<&[Vec<f64>]> = trials.iter().map(|t| t.spread.as_slice()).collect();
             let scanned = self.frontier.scan(self.ground, &fits);
-            for (trial, bounds) in trials.iter().zip(scanned) {
+            let mut scanned = scanned.into_iter();
+            for (trial, bounds) in trials.iter().zip(scanned.by_ref()) {
                 let proof = self.frontier.prove(
                     self.ground,
                     &self.working,
@@ -162,9 +163,11 @@ impl Walk<'_, '_> {
                     // What comes in, or is found to be spanned and left out, violates no more.
                     self.active.go_to(&self.working.problem, &trial.solution);
                     self.admit(proof.violators, 10 + trial.solution.len() / 4);
+                    self.frontier.discard(bounds);
                     break;
                 }
             }
+            scanned.for_each(|bounds| self.frontier.discard(bounds));
         }
         let limit = 2 * capacity(self.ground);
         if self.working.len() > limit + capacity(self.ground) + self.active.members.len() {

@@ -190,7 +190,9 @@ impl Walk<'_, '_> {
             }
             let fits: Vec<&[Vec<f64>]> = trials.iter().map(|t| t.spread.as_slice()).collect();
             let scanned = self.frontier.scan(self.ground, &fits);
-            for ((trial, &strength), bounds) in trials.iter().zip(strengths).zip(scanned) {
+            let mut scanned = scanned.into_iter();
+            let strengths = strengths.iter();
+            for ((trial, &strength), bounds) in trials.iter().zip(strengths).zip(scanned.by_ref()) {
                 let level = self.level(strength);
                 let within = Within {
                     level,
@@ -212,9 +214,11 @@ impl Walk<'_, '_> {
                 } else {
                     self.newton.go_to(&trial.a, &trial.solution, &trial.eta);
                     self.admit(proof.violators, 10 + trial.solution.len() / 4);
+                    self.frontier.discard(bounds);
                     break;
                 }
             }
+            scanned.for_each(|bounds| self.frontier.discard(bounds));
         }
         let limit = 2 * capacity(self.ground);
         if self.working.len() > limit + capacity(self.ground) + self.active.members.len() {
@@ -256,12 +260,16 @@ impl Walk<'_, '_> {
         let Level { lasso, ridge } = self.level(strength);
         let before = self.active.events;
         self.working.set_penalty(self.ground, lasso, ridge);
+        if ridge > 0.0 {
+            self.newton.refactor();
+        }
         let goal = WITHIN * self.params.relative_gap * self.scale;
         let standing = self
             .newton
             .solve(&mut self.working, &mut self.active, goal, work)?;
         let solution = self.newton.solution();
         let chosen = if self.share < 1.0 {
+            self.newton.refresh(&mut self.working, &mut self.active);
             self.active.effective(&self.working.problem)
         } else {
             solution.len() as f64
@@ -394,9 +402,11 @@ pub(crate) fn ridge(
             working.problem.lasso[slot] = 0.0;
             working.problem.ridge[slot] = strength;
         }
+        newton.refactor();
         let before = active.events;
         let goal = WITHIN * params.relative_gap * scale;
         let standing = newton.solve(&mut working, &mut active, goal, work)?;
+        newton.refresh(&mut working, &mut active);
         let relative_gap = (standing.gap / scale).max(0.0);
         let mut info = Info {
             relative_gap,

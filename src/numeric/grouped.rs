@@ -10,16 +10,17 @@
 
 use crate::base::work::Work;
 use crate::numeric::error::Stop;
+use crate::numeric::factor::Factor;
+use crate::numeric::free_part::{FreePart, free_slope};
 use crate::numeric::frontier::{capacity, worst};
 use crate::numeric::glm::{Null, spread};
 use crate::numeric::ground::Ground;
 use crate::numeric::lanes;
 use crate::numeric::loss::Loss;
 use crate::numeric::matrix::{self, Matrix};
-use crate::numeric::newton::{FreePart, free_slope};
 use crate::numeric::path::{Info, Linear, Params, Point};
 use crate::numeric::response::Response;
-use crate::numeric::scan::{BATCH, Sieve};
+use crate::numeric::scan::{BATCH, Bounds, Sieve};
 
 /// Newton steps of one strength.
 const STEPS: usize = 60;
@@ -91,12 +92,12 @@ struct Walk<'t, 'g> {
 /// Bounds on ‖zⱼ'r‖/fⱼ over all classes, for one residual a class.
 fn bounds(sieve: &Sieve, ground: &Ground<'_>, residuals: &[Vec<f64>]) -> Vec<f64> {
     let views: Vec<&[f64]> = residuals.iter().map(Vec::as_slice).collect();
-    let mut parts = vec![Vec::new(); views.len()];
+    let mut parts = vec![Bounds::default(); views.len()];
     sieve.bounds(ground.predictors.panels(), &views, &mut parts);
     let mut squares = vec![0.0; ground.predictors.n_predictors()];
     for (part, g) in parts.iter().zip(residuals) {
         let length = lanes::norm(g);
-        for (square, &bound) in squares.iter_mut().zip(part) {
+        for (square, &bound) in squares.iter_mut().zip(part.each()) {
             *square += (f64::from(bound) * length).powi(2);
         }
     }
@@ -201,14 +202,14 @@ impl Walk<'_, '_> {
             if violators.is_empty() || gap <= self.params.relative_gap.min(1e-10) * self.scale {
                 self.bounds = bounds;
                 self.level = level.lasso;
-                return Ok(self.point(all, gap));
+                return self.point(all, gap, level, work);
             }
             self.admit(worst(violators, 10 + self.members.len() / 4));
         }
         // Every round admits a predictor, so this is reached only by very many of them.
         let standing = self.stand(level);
         let gap = self.scale;
-        Ok(self.point(standing, gap))
+        self.point(standing, gap, level, work)
     }
 
     /// Predictors outside the working set whose bound is not below a level.
@@ -428,7 +429,71 @@ impl Walk<'_, '_> {
         None
     }
 
-    fn point(&mut self, standing: Standing, gap: f64) -> Point {
+    /// The degrees of freedom of the penalised coefficients at the present fit: the trace of
+    /// G(G + P)⁻¹ for the chosen predictors, G their curvature and P that of the penalty, which is
+    /// λf share (I − bb'/‖b‖²)/‖b‖ + λf (1 − share) I for each (Vaiter, Deledalle, Peyré, Fadili &
+    /// Dossal 2012, for a measured outcome; here with the Hessian of the loss in its place).
+    fn freedom(&self, level: Level, work: &Work<'_>) -> Result<f64, Stop> {
+        let free = FreePart::new(self.loss.as_ref(), &self.free, self.m);
+        let (mut x, mut hx) = (Vec::new(), Vec::new());
+        let chosen: Vec<&Member> = self
+            .members
+            .iter()
+            .filter(|member| member.b.iter().any(|b| *b != 0.0))
+            .collect();
+        for member in &chosen {
+            work.check()?;
+            for class in 0..self.k {
+                let mut column = vec![0.0; self.m * self.k];
+                column[class * self.m..(class + 1) * self.m].copy_from_slice(&member.z);
+                let mut product = Vec::new();
+                self.loss.product(&column, &mut product);
+                free.reduce(&column, &mut product);
+                x.extend_from_slice(&column);
+                hx.extend_from_slice(&product);
+            }
+        }
+        let curvature = matrix::lower_product(&x, &hx, self.m * self.k);
+        let mut whole = curvature.clone();
+        for (at, member) in chosen.iter().enumerate() {
+            let size = lanes::norm(&member.b);
+            let bend = level.lasso * member.factor / size;
+            for i in 0..self.k {
+                for j in 0..=i {
+                    let along = member.b[i] * member.b[j] / (size * size);
+                    let unit = f64::from(u8::from(i == j));
+                    whole[(at * self.k + i, at * self.k + j)] +=
+                        bend * (unit - along) + unit * level.ridge * member.factor;
+                }
+            }
+        }
+        let count = whole.nrows();
+        let Some(factor) = Factor::of(whole, 1e-14) else {
+            // Chosen predictors that depend on each other: what they span is all there is.
+            return Ok(count.min((self.m - 1) * (self.k - 1)) as f64);
+        };
+        let mut trace = 0.0;
+        for at in 0..count {
+            if at % 64 == 0 {
+                work.check()?;
+            }
+            let mut column: Vec<f64> = (0..count)
+                .map(|row| curvature[(row.max(at), row.min(at))])
+                .collect();
+            factor.solve(&mut column);
+            trace += column[at];
+        }
+        Ok(trace)
+    }
+
+    fn point(
+        &mut self,
+        standing: Standing,
+        gap: f64,
+        level: Level,
+        work: &Work<'_>,
+    ) -> Result<Point, Stop> {
+        let freedom = self.freedom(level, work)?;
         let relative_gap = (gap / self.scale).max(0.0);
         let n_free = self.free.len();
         let mut linear = Vec::with_capacity(self.k);
@@ -466,9 +531,9 @@ impl Walk<'_, '_> {
             n_chosen,
             objective: standing.loss + standing.penalty,
             loss: standing.loss,
-            effective_df: (n_chosen + self.rank) as f64,
+            effective_df: freedom + self.rank as f64,
         };
-        Point::several(info, linear)
+        Ok(Point::several(info, linear))
     }
 }
 

@@ -41,6 +41,9 @@ pub(crate) trait Loss {
     /// −f*(−t·r) for 0 ≤ t ≤ 1, or a lower bound of it.
     fn dual(&self, t: f64) -> f64;
 
+    /// A copy in its present state, whose Hessian stays while this one moves on.
+    fn frozen(&self) -> Box<dyn Loss>;
+
     /// The smallest value that the loss has on any linear predictors.
     fn saturated(&self) -> f64 {
         0.0
@@ -103,6 +106,7 @@ pub(crate) fn of(ground: &Ground<'_>, response: &Response) -> Result<Box<dyn Los
 }
 
 /// f = Σ vᵢ [ log(1 + exp ηᵢ) − yᵢηᵢ ]
+#[derive(Clone)]
 struct Binomial {
     y: Vec<f64>,
     v: Vec<f64>,
@@ -179,9 +183,14 @@ impl Loss for Binomial {
         }
         if sum.is_finite() { sum } else { 0.0 }
     }
+
+    fn frozen(&self) -> Box<dyn Loss> {
+        Box::new(self.clone())
+    }
 }
 
 /// f = Σ vᵢ [ exp ζᵢ − yᵢζᵢ ],  ζ = η + offset
+#[derive(Clone)]
 struct Poisson {
     y: Vec<f64>,
     offset: Vec<f64>,
@@ -241,6 +250,10 @@ impl Loss for Poisson {
             sum -= self.v[i] * (entropy(a) - a) + t * self.residual[i] * self.offset[i];
         }
         sum
+    }
+
+    fn frozen(&self) -> Box<dyn Loss> {
+        Box::new(self.clone())
     }
 
     fn saturated(&self) -> f64 {

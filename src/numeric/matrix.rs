@@ -3,9 +3,12 @@
 //! Every call says that it wants one thread: parallel work is done over parts and resamples, so
 //! that results do not depend on the number of threads.
 
-use crate::numeric::error::FitError;
+use crate::base::thread;
+use crate::base::work::Work;
+use crate::numeric::error::{FitError, Stop};
 use faer::diag::Diag;
 use faer::dyn_stack::{MemBuffer, MemStack};
+use faer::linalg::cholesky::llt::factor as llt;
 use faer::linalg::matmul::{matmul, triangular};
 use faer::linalg::{evd, svd};
 use faer::{Accum, Mat, MatMut, MatRef, Par};
@@ -64,6 +67,47 @@ pub(crate) fn add_cross(sum: &mut Matrix, left: &[f64], right: &[f64]) {
     );
 }
 
+/// The lower triangle of `leftᵀ · right`, for two matrices with columns of one length; zeros above
+/// it.
+pub(crate) fn lower_product(left: &[f64], right: &[f64], length: usize) -> Matrix {
+    let k = left.len() / length.max(1);
+    let mut result = Matrix::zeros(k, k);
+    if k > 0 {
+        let left = MatRef::from_column_major_slice(left, length, k);
+        let right = MatRef::from_column_major_slice(right, length, k);
+        triangular::matmul(
+            view_mut(&mut result),
+            triangular::BlockStructure::TriangularLower,
+            Accum::Replace,
+            left.transpose(),
+            triangular::BlockStructure::Rectangular,
+            right,
+            triangular::BlockStructure::Rectangular,
+            1.0,
+            Par::Seq,
+        );
+    }
+    result
+}
+
+/// Replaces the lower triangle of a symmetric matrix by its Cholesky factor. Returns `false`, and
+/// leaves nothing of use, when a pivot is not above zero.
+pub(crate) fn cholesky(lower: &mut Matrix) -> bool {
+    let n = lower.nrows();
+    llt::cholesky_in_place(
+        view_mut(lower),
+        llt::LltRegularization::default(),
+        Par::Seq,
+        MemStack::new(&mut MemBuffer::new(llt::cholesky_in_place_scratch::<f64>(
+            n,
+            Par::Seq,
+            Default::default(),
+        ))),
+        Default::default(),
+    )
+    .is_ok()
+}
+
 /// The product of two matrices.
 pub(crate) fn product(left: &Matrix, right: &Matrix) -> Matrix {
     let mut result = Matrix::zeros(left.nrows(), right.ncols());
@@ -120,6 +164,41 @@ pub(crate) fn symmetric_eigen(lower: &Matrix) -> Result<(Vec<f64>, Matrix), FitE
     .map_err(|_| FitError::Factorisation)?;
     let values = (0..n).map(|at| values.column_vector()[at]).collect();
     Ok((values, owned(vectors.as_ref())))
+}
+
+/// Decompositions of more multiplications than this run apart, so that a stop need not wait for
+/// them: a few hundredths of a second.
+const LONG: usize = 100_000_000;
+
+/// [`symmetric_eigen`] that answers a stop at once; a large decomposition that is under way then
+/// runs to its end in the background and is thrown away.
+///
+/// # Errors
+/// When called off, or when the iteration does not end.
+pub(crate) fn stoppable_eigen(lower: Matrix, work: &Work<'_>) -> Result<(Vec<f64>, Matrix), Stop> {
+    work.check()?;
+    if 9 * lower.nrows().pow(3) <= LONG {
+        return Ok(symmetric_eigen(&lower)?);
+    }
+    Ok(thread::apart(work, move || symmetric_eigen(&lower))??)
+}
+
+/// U, the values and V of [`thin_svd`].
+type Svd = (Matrix, Vec<f64>, Matrix);
+
+/// [`thin_svd`] that answers a stop at once, as [`stoppable_eigen`] does.
+///
+/// # Errors
+/// When called off, or when the iteration does not end.
+pub(crate) fn stoppable_svd(matrix: &Matrix, work: &Work<'_>) -> Result<Svd, Stop> {
+    work.check()?;
+    let (rows, columns) = matrix.shape();
+    let side = rows.min(columns);
+    if 10 * side * side * rows.max(columns) <= LONG {
+        return Ok(thin_svd(matrix)?);
+    }
+    let matrix = matrix.clone();
+    Ok(thread::apart(work, move || thin_svd(&matrix))??)
 }
 
 /// The thin singular value decomposition: U (rows × r), the values (falling), V (columns × r).

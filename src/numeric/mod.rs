@@ -10,6 +10,7 @@ pub mod dual;
 pub mod error;
 pub mod factor;
 pub mod features;
+pub mod free_part;
 pub mod freedom;
 pub mod frontier;
 pub mod gaussian;
@@ -47,3 +48,5 @@ pub mod working;
 
 #[cfg(test)]
 pub(crate) mod designs;
+#[cfg(test)]
+mod laws;

@@ -3,6 +3,7 @@
 use crate::numeric::loss::{Loss, entropy};
 
 /// f = Σ vᵢ [ log Σₖ exp ηᵢₖ − η of the sample's class ]
+#[derive(Clone)]
 pub(crate) struct Multinomial {
     class: Vec<usize>,
     n_classes: usize,
@@ -88,5 +89,9 @@ impl Loss for Multinomial {
             }
         }
         sum
+    }
+
+    fn frozen(&self) -> Box<dyn Loss> {
+        Box::new(self.clone())
     }
 }

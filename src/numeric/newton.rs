@@ -2,14 +2,16 @@
 //! solved exactly with the penalty by the active set, and the step is checked on the loss itself.
 //!
 //! What carries no penalty is eliminated from every model, so that the active set never sees it.
-//! The exact Hessian is used, not a bound of it: a few steps are enough.
+//! The exact Hessian is used, not a bound of it: a few steps are enough. It is kept from step to
+//! step, and from strength to strength, for as long as steps with it bring the gap down quickly:
+//! making and factoring it anew is what costs.
 
 use crate::base::work::Work;
 use crate::numeric::active_set::{ActiveSet, Ended};
 use crate::numeric::basis::Basis;
 use crate::numeric::descent;
 use crate::numeric::error::Stop;
-use crate::numeric::factor::Factor;
+use crate::numeric::free_part::{FreePart, free_slope};
 use crate::numeric::lanes;
 use crate::numeric::loss::Loss;
 use crate::numeric::quadratic::Quadratic;
@@ -24,8 +26,11 @@ const HALVINGS: usize = 40;
 /// The slopes of what is not penalised must fall to this share of the sum of their terms.
 const FREE_SLOPE: f64 = 1e-10;
 
-/// A free column whose curvature outside the others is below this share of its own is left out.
-const FREE_SPANNED: f64 = 1e-12;
+/// A step that leaves more than this share of the gap has outlived its Hessian.
+const SLOW: f64 = 0.1;
+
+/// Steps at most that follow the free coefficients alone.
+const POLISH: usize = 6;
 
 /// A fit in progress.
 pub(crate) struct Newton {
@@ -44,6 +49,37 @@ pub(crate) struct Newton {
     pub(crate) eta: Vec<f64>,
     /// The standardised column of each slot, of length m.
     pub(crate) plain: Vec<f64>,
+    /// The second-order model of the last steps, while it is good enough.
+    model: Option<Model>,
+    /// Whether the ridge weights have changed since the model was factored.
+    is_outdated: bool,
+    /// The largest correlation of the working set.
+    steepest: f64,
+}
+
+/// A second-order model: the Hessian at the linear predictors of some recent step.
+struct Model {
+    /// The loss where H was taken.
+    loss: Box<dyn Loss>,
+    free: FreePart,
+    /// Which slots' HX and square belong to this H.
+    is_prepared: Vec<bool>,
+}
+
+impl Model {
+    /// Fills a slot's HX and square, unless they belong to this H already.
+    fn prepare(&mut self, problem: &mut Quadratic, slot: usize) {
+        if std::mem::replace(&mut self.is_prepared[slot], true) {
+            return;
+        }
+        let range = slot * problem.length..(slot + 1) * problem.length;
+        let x = &problem.x[range.clone()];
+        let mut hx = Vec::with_capacity(x.len());
+        self.loss.product(x, &mut hx);
+        self.free.reduce(x, &mut hx);
+        problem.square[slot] = lanes::dot(x, &hx);
+        problem.hx[range].copy_from_slice(&hx);
+    }
 }
 
 /// Where a fit stands.
@@ -80,6 +116,9 @@ impl Newton {
             b: Vec::new(),
             eta: vec![0.0; m * n_linear],
             plain: Vec::new(),
+            model: None,
+            is_outdated: false,
+            steepest: 0.0,
             free,
             loss,
         }
@@ -97,6 +136,10 @@ impl Newton {
             self.plain.resize(end, 0.0);
         }
         self.plain[slot * self.m..end].copy_from_slice(column);
+        if let Some(model) = &mut self.model {
+            model.is_prepared.resize(working.problem.n_slots(), false);
+            model.is_prepared[slot] = false;
+        }
         self.b.resize(working.problem.n_slots(), 0.0);
         let length = self.length();
         let class = working.class(slot);
@@ -117,6 +160,11 @@ impl Newton {
     pub(crate) fn solution(&self) -> Vec<(usize, f64)> {
         let slots = self.b.iter().copied().enumerate();
         slots.filter(|(_, b)| *b != 0.0).collect()
+    }
+
+    /// Says that the ridge weights have changed.
+    pub(crate) fn refactor(&mut self) {
+        self.is_outdated = true;
     }
 
     /// Goes to a remembered state.
@@ -164,13 +212,19 @@ impl Newton {
             if standing.gap <= goal && standing.free_slope <= FREE_SLOPE {
                 break;
             }
+            let is_fresh = self.model.is_none();
             let step = self.step(working, active, work)?;
-            let next = self.take(working, &step, standing);
-            let Some(next) = next else {
+            match self.take(working, &step, standing) {
+                Some(next) => {
+                    if next.gap > SLOW * standing.gap {
+                        self.model = None;
+                    }
+                    standing = next;
+                }
                 // Rounding is all that is left.
-                break;
-            };
-            standing = next;
+                None if is_fresh => break,
+                None => self.model = None,
+            }
         }
         Ok(standing)
     }
@@ -189,6 +243,7 @@ impl Newton {
             })
             .collect();
         let (worst, excess) = problem.infeasibility(&c);
+        self.steepest = c.iter().fold(0.0_f64, |top, c| top.max(c.abs()));
         let penalty = problem.penalty(&self.solution());
         let is_ridge = problem.used.iter().any(|&slot| problem.ridge[slot] > 0.0);
         let dual = if is_ridge {
@@ -223,6 +278,7 @@ impl Newton {
                     .collect()
             };
             self.eta = self.linear(working, &self.a, &self.b);
+            self.polish();
             let standing = self.stand(working);
             let now = standing.loss + standing.penalty;
             let rounding = 4.0 * f64::EPSILON * (before.loss.abs() + before.penalty);
@@ -241,6 +297,39 @@ impl Newton {
         None
     }
 
+    /// Newton steps of the free coefficients alone, with everything else as it is: a kept Hessian
+    /// would only creep towards their slope of zero.
+    fn polish(&mut self) {
+        if self.free.is_empty() {
+            return;
+        }
+        let mut height = self.loss.evaluate(&self.eta);
+        for _ in 0..POLISH {
+            if free_slope(&self.free, self.loss.residual()) <= FREE_SLOPE || !height.is_finite() {
+                return;
+            }
+            let part = FreePart::new(self.loss.as_ref(), &self.free, self.m);
+            let change = part.solve(part.products(self.loss.residual()));
+            let (a, eta) = (self.a.clone(), self.eta.clone());
+            for (a, change) in self.a.iter_mut().zip(&change) {
+                *a += change;
+            }
+            for (class, eta) in self.eta.chunks_exact_mut(self.m).enumerate() {
+                for (column, change) in self.free.iter().zip(&change[class * self.free.len()..]) {
+                    lanes::add_scaled(*change, column, eta);
+                }
+            }
+            let now = self.loss.evaluate(&self.eta);
+            let is_lower = now <= height + 4.0 * f64::EPSILON * height.abs();
+            if !(now.is_finite() && is_lower) {
+                (self.a, self.eta) = (a, eta);
+                let _ = self.loss.evaluate(&self.eta);
+                return;
+            }
+            height = now;
+        }
+    }
+
     /// Solves the second-order model at the present coefficients, where the loss was evaluated last.
     fn step(
         &mut self,
@@ -248,7 +337,7 @@ impl Newton {
         active: &mut ActiveSet,
         work: &Work<'_>,
     ) -> Result<Step, Stop> {
-        if self.loss.curvature().is_some() {
+        if self.is_diagonal(working) {
             self.step_diagonal(working, active, work)
         } else {
             self.step_general(working, active, work)
@@ -295,6 +384,12 @@ impl Newton {
             let slot = problem.used[at];
             problem.square[slot] = lanes::dot(problem.column(slot), problem.column(slot));
         }
+        for at in 0..problem.used.len() {
+            let slot = problem.used[at];
+            problem.along[slot] = lanes::dot(problem.column(slot), &problem.target);
+        }
+        let solution = self.solution();
+        active.restart(problem, &solution);
         let b = self.search(problem, active, &mut |_, _| (), work)?;
         // The free coefficients follow from what the members leave.
         let mut rest = pull;
@@ -307,44 +402,48 @@ impl Newton {
         Ok(Step { b, a })
     }
 
-    /// H is anything: pairs (x, Hx), free of the unpenalised columns U as H − HU(U'HU)⁻¹U'H.
+    /// H is anything: pairs (x, Hx), free of the unpenalised columns U as H − HU(U'HU)⁻¹U'H. Only
+    /// slots that become active need their Hx, and keep it for as long as H is kept.
     fn step_general(
         &mut self,
         working: &mut Working,
         active: &mut ActiveSet,
         work: &Work<'_>,
     ) -> Result<Step, Stop> {
-        let loss = &self.loss;
-        let free = FreePart::new(loss.as_ref(), &self.free, self.m);
-        let residual = loss.residual();
+        let is_new = self.model.is_none();
+        let mut model = self.model.take().unwrap_or_else(|| self.present_model());
         let problem = &mut working.problem;
         let length = problem.length;
         problem.hx.resize(problem.x.len(), 0.0);
-        let mut along = vec![0.0; length];
-        for (slot, &b) in self.b.iter().enumerate() {
-            if b != 0.0 {
-                lanes::add_scaled(b, problem.column(slot), &mut along);
+        model.is_prepared.resize(problem.n_slots(), false);
+        let residual = self.loss.residual();
+        // Xb is what the free columns leave of the linear predictors.
+        let mut along = self.eta.clone();
+        for (class, along) in along.chunks_exact_mut(self.m).enumerate() {
+            for (column, a) in self.free.iter().zip(&self.a[class * self.free.len()..]) {
+                lanes::add_scaled(-a, column, along);
             }
         }
         let mut target = Vec::new();
-        loss.product(&along, &mut target);
-        free.reduce(&along, &mut target);
-        let slope = free.solve(free.products(residual));
+        model.loss.product(&along, &mut target);
+        model.free.reduce(&along, &mut target);
+        let slope = model.free.solve(model.free.products(residual));
         lanes::add_scaled(1.0, residual, &mut target);
-        free.subtract(&slope, &mut target);
+        model.free.subtract(&slope, &mut target);
         problem.target = target;
-        let mut scratch = Vec::new();
         let mut prepare = |problem: &mut Quadratic, slot: usize| {
-            let x = &problem.x[slot * length..(slot + 1) * length];
-            loss.product(x, &mut scratch);
-            free.reduce(x, &mut scratch);
-            problem.square[slot] = lanes::dot(x, &scratch);
-            problem.hx[slot * length..(slot + 1) * length].copy_from_slice(&scratch);
+            model.prepare(problem, slot);
+            problem.along[slot] = lanes::dot(problem.column(slot), &problem.target);
         };
-        for (slot, &b) in self.b.iter().enumerate() {
-            if b != 0.0 {
-                prepare(problem, slot);
-            }
+        let solution = self.solution();
+        for &(slot, _) in &solution {
+            prepare(problem, slot);
+        }
+        if is_new || self.is_outdated {
+            active.restart(problem, &solution);
+            self.is_outdated = false;
+        } else {
+            active.go_to(problem, &solution);
         }
         let b = self.search(problem, active, &mut prepare, work)?;
         let mut moved = vec![0.0; length];
@@ -353,15 +452,53 @@ impl Newton {
                 lanes::add_scaled(new - old, problem.column(slot), &mut moved);
             }
         }
-        let mut push = free.products(residual);
-        for (push, h) in push.iter_mut().zip(free.h_products(&moved)) {
+        let mut push = model.free.products(residual);
+        for (push, h) in push.iter_mut().zip(model.free.h_products(&moved)) {
             *push -= h;
         }
-        let a = free.solve(push);
+        let a = model.free.solve(push);
+        self.model = Some(model);
         Ok(Step { b, a })
     }
 
-    /// The exact search on the model, or the guarded fallback. Gives a coefficient for every slot.
+    /// The model at the linear predictors where the loss was evaluated last.
+    fn present_model(&self) -> Model {
+        Model {
+            free: FreePart::new(self.loss.as_ref(), &self.free, self.m),
+            loss: self.loss.frozen(),
+            is_prepared: Vec::new(),
+        }
+    }
+
+    /// Makes and factors the model anew where the fit stands, for what is read off its factor.
+    pub(crate) fn refresh(&mut self, working: &mut Working, active: &mut ActiveSet) {
+        if self.is_diagonal(working) {
+            // Factored anew in every step.
+            return;
+        }
+        let mut model = self.present_model();
+        let problem = &mut working.problem;
+        problem.hx.resize(problem.x.len(), 0.0);
+        model.is_prepared.resize(problem.n_slots(), false);
+        let solution = self.solution();
+        for &(slot, _) in &solution {
+            model.prepare(problem, slot);
+        }
+        active.restart(problem, &solution);
+        self.is_outdated = false;
+        self.model = Some(model);
+    }
+
+    /// Whether steps scale the columns by the root of a diagonal Hessian: with ridge weights more
+    /// may be active than there are samples (see `sample_space`).
+    fn is_diagonal(&self, working: &Working) -> bool {
+        let problem = &working.problem;
+        let has_ridge = problem.used.iter().any(|&slot| problem.ridge[slot] > 0.0);
+        has_ridge && self.loss.curvature().is_some()
+    }
+
+    /// The exact search on the model from the present coefficients, or the guarded fallback. Gives
+    /// a coefficient for every slot.
     fn search(
         &self,
         problem: &mut Quadratic,
@@ -369,16 +506,10 @@ impl Newton {
         prepare: &mut dyn FnMut(&mut Quadratic, usize),
         work: &Work<'_>,
     ) -> Result<Vec<f64>, Stop> {
-        for at in 0..problem.used.len() {
-            let slot = problem.used[at];
-            problem.along[slot] = lanes::dot(problem.column(slot), &problem.target);
-        }
-        let top = problem
-            .used
-            .iter()
-            .fold(0.0_f64, |top, &slot| top.max(problem.along[slot].abs()));
+        let top = active.members.iter().fold(self.steepest, |top, &slot| {
+            top.max(problem.along[slot].abs())
+        });
         let floor = 1e-15 * top;
-        active.restart(problem, &self.solution());
         let ended = active.solve(problem, floor, prepare, work)?;
         let mut b = vec![0.0; problem.n_slots()];
         for (slot, value) in active.solution() {
@@ -390,96 +521,12 @@ impl Newton {
                 prepare(problem, problem.used[at]);
             }
             let _ = descent::descend(problem, &mut b, floor, work)?;
+            let found: Vec<(usize, f64)> = (0..b.len())
+                .filter(|&slot| b[slot] != 0.0)
+                .map(|slot| (slot, b[slot]))
+                .collect();
+            active.restart(problem, &found);
         }
         Ok(b)
-    }
-}
-
-/// The largest slope of what is not penalised, over the sum of its terms.
-pub(crate) fn free_slope(free: &[Vec<f64>], residual: &[f64]) -> f64 {
-    let mut largest = 0.0_f64;
-    for column in free {
-        for residual in residual.chunks_exact(column.len()) {
-            let slope = lanes::dot(column, residual).abs();
-            let terms = column.iter().zip(residual);
-            let size: f64 = terms.map(|(u, r)| (u * r).abs()).sum();
-            // The absolute part is rounding, in a loss of size about 1.
-            largest = largest.max(slope / (size + 1e-4));
-        }
-    }
-    largest
-}
-
-/// The unpenalised columns of all classes under a general H.
-pub(crate) struct FreePart {
-    /// Columns of length N, those that are kept.
-    u: Vec<Vec<f64>>,
-    hu: Vec<Vec<f64>>,
-    /// Of U'HU.
-    factor: Factor,
-    kept: Vec<usize>,
-    n_columns: usize,
-}
-
-impl FreePart {
-    pub(crate) fn new(loss: &dyn Loss, free: &[Vec<f64>], m: usize) -> Self {
-        let n_linear = loss.n_linear();
-        let mut part = Self {
-            u: Vec::new(),
-            hu: Vec::new(),
-            factor: Factor::default(),
-            kept: Vec::new(),
-            n_columns: free.len() * n_linear,
-        };
-        for class in 0..n_linear {
-            for (k, column) in free.iter().enumerate() {
-                let mut u = vec![0.0; m * n_linear];
-                u[class * m..(class + 1) * m].copy_from_slice(column);
-                let mut hu = Vec::new();
-                loss.product(&u, &mut hu);
-                let mut cross: Vec<f64> = part.hu.iter().map(|h| lanes::dot(h, &u)).collect();
-                let diagonal = lanes::dot(&u, &hu);
-                let least = FREE_SPANNED * diagonal;
-                if part.factor.append(&mut cross, diagonal, least) > least {
-                    part.kept.push(class * free.len() + k);
-                    part.u.push(u);
-                    part.hu.push(hu);
-                }
-            }
-        }
-        part
-    }
-
-    /// U'x.
-    pub(crate) fn products(&self, x: &[f64]) -> Vec<f64> {
-        self.u.iter().map(|u| lanes::dot(u, x)).collect()
-    }
-
-    /// U'Hx.
-    pub(crate) fn h_products(&self, x: &[f64]) -> Vec<f64> {
-        self.hu.iter().map(|h| lanes::dot(h, x)).collect()
-    }
-
-    /// (U'HU)⁻¹ of a vector over the kept columns, spread over all columns.
-    pub(crate) fn solve(&self, mut kept: Vec<f64>) -> Vec<f64> {
-        self.factor.solve(&mut kept);
-        let mut all = vec![0.0; self.n_columns];
-        for (&at, value) in self.kept.iter().zip(kept) {
-            all[at] = value;
-        }
-        all
-    }
-
-    /// hx ← hx − HU·coefficients.
-    pub(crate) fn subtract(&self, coefficients: &[f64], hx: &mut [f64]) {
-        for (&at, hu) in self.kept.iter().zip(&self.hu) {
-            lanes::add_scaled(-coefficients[at], hu, hx);
-        }
-    }
-
-    /// From Hx to (H − HU(U'HU)⁻¹U'H)x.
-    pub(crate) fn reduce(&self, x: &[f64], hx: &mut [f64]) {
-        let coefficients = self.solve(self.h_products(x));
-        self.subtract(&coefficients, hx);
     }
 }

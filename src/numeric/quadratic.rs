@@ -2,7 +2,6 @@
 //! few predictors of the working set.
 
 use crate::numeric::lanes;
-use crate::numeric::matrix::Matrix;
 use crate::numeric::penalty::Sign;
 
 /// Minimise, over the coefficients b of the columns in use,
@@ -63,13 +62,12 @@ impl Quadratic {
     }
 
     /// The columns of some slots side by side, from X or HX.
-    pub(crate) fn block(&self, columns: &[f64], slots: &[usize]) -> Matrix {
+    pub(crate) fn gather(&self, columns: &[f64], slots: &[usize], out: &mut Vec<f64>) {
         let length = self.length;
-        let mut block = Vec::with_capacity(length * slots.len());
+        out.clear();
         for &slot in slots {
-            block.extend_from_slice(&columns[slot * length..(slot + 1) * length]);
+            out.extend_from_slice(&columns[slot * length..(slot + 1) * length]);
         }
-        Matrix::from_vec(length, slots.len(), block)
     }
 
     /// t − Σ bⱼ Hxⱼ over the given slots.

@@ -7,9 +7,10 @@ use crate::numeric::glm::Null;
 use crate::numeric::ground::{Ground, Penalised};
 use crate::numeric::grouped;
 use crate::numeric::lanes;
+use crate::numeric::path::{Grouping, Params};
 use crate::numeric::response::Response;
 use crate::numeric::ridge::Spectrum;
-use crate::numeric::scan::Sieve;
+use crate::numeric::scan::{Bounds, Sieve};
 use crate::numeric::task::Task;
 
 /// How a range of strengths is laid out.
@@ -50,23 +51,25 @@ const LOWEST: f64 = 1e-10;
 /// Gives an empty list when no predictor can enter.
 ///
 /// # Errors
-/// What is wrong with the task.
+/// [`Stop::Cancelled`] when called off; [`Stop::Failed`] with what is wrong with the task.
 pub fn strength_range(
     task: &Task<'_>,
     share: f64,
-    params: RangeParams,
-) -> Result<Vec<f64>, FitError> {
+    range: RangeParams,
+    params: &Params,
+    work: &Work<'_>,
+) -> Result<Vec<f64>, Stop> {
     let (first, last) = if share == 0.0 {
-        ridge_ends(task, params.ratio)?
+        ridge_ends(task, range.ratio, work)?
     } else {
-        let first = all_zero_point(task, share)?;
-        (first, first * params.ratio)
+        let first = all_zero_point(task, share, params, work)?;
+        (first, first * range.ratio)
     };
-    if first <= 0.0 || params.count == 0 {
+    if first <= 0.0 || range.count == 0 {
         return Ok(Vec::new());
     }
-    let steps = (params.count - 1).max(1) as f64;
-    Ok((0..params.count)
+    let steps = (range.count - 1).max(1) as f64;
+    Ok((0..range.count)
         .map(|at| match at {
             0 => first,
             _ => first * (last / first).powf(at as f64 / steps),
@@ -74,10 +77,9 @@ pub fn strength_range(
         .collect())
 }
 
-fn ridge_ends(task: &Task<'_>, ratio: f64) -> Result<(f64, f64), FitError> {
-    let work = Work::unattended();
-    let ground = never_cancelled(Ground::new(task, Penalised::ByWeight, &work))?;
-    let spectrum = never_cancelled(Spectrum::new(&ground, &ground.basis(), &work))?;
+fn ridge_ends(task: &Task<'_>, ratio: f64, work: &Work<'_>) -> Result<(f64, f64), Stop> {
+    let ground = Ground::new(task, Penalised::ByWeight, work)?;
+    let spectrum = Spectrum::new(&ground, &ground.basis(), work)?;
     let top = spectrum.values.first().copied().unwrap_or(0.0);
     let sum: f64 = spectrum.values.iter().sum();
     let curvature = match task.response {
@@ -85,9 +87,7 @@ fn ridge_ends(task: &Task<'_>, ratio: f64) -> Result<(f64, f64), FitError> {
         Response::YesNo(_)
         | Response::Classes { .. }
         | Response::Count { .. }
-        | Response::Time { .. } => {
-            never_cancelled(Null::new(&ground, task.response, &work))?.curvature()
-        }
+        | Response::Time { .. } => Null::new(&ground, task.response, work)?.curvature(),
     };
     let smallest = spectrum
         .values
@@ -101,17 +101,23 @@ fn ridge_ends(task: &Task<'_>, ratio: f64) -> Result<(f64, f64), FitError> {
 
 /// The smallest strength at which no penalised predictor is in the model:
 /// `max_j |gradient_j| / (share · f_j)` at the model of intercept, covariates and predictors without
-/// a penalty. Infinite for a share of 0 unless nothing is left to explain; 0 when no predictor can enter.
+/// a penalty, over the directions that the sign rules allow; for classes that are penalised together
+/// `max_j ‖gradient_j‖ / (share · f_j)`. Infinite for a share of 0 unless nothing is left to explain;
+/// 0 when no predictor can enter.
 ///
 /// # Errors
-/// What is wrong with the task.
-pub fn all_zero_point(task: &Task<'_>, share: f64) -> Result<f64, FitError> {
+/// [`Stop::Cancelled`] when called off; [`Stop::Failed`] with what is wrong with the task.
+pub fn all_zero_point(
+    task: &Task<'_>,
+    share: f64,
+    params: &Params,
+    work: &Work<'_>,
+) -> Result<f64, Stop> {
     if !(0.0..=1.0).contains(&share) {
-        return Err(FitError::Share(share));
+        return Err(FitError::Share(share).into());
     }
-    let work = Work::unattended();
-    let ground = never_cancelled(Ground::new(task, Penalised::ByWeight, &work))?;
-    match task.response {
+    let ground = Ground::new(task, Penalised::ByWeight, work)?;
+    let top = match task.response {
         Response::Measured(y) => {
             let basis = ground.basis();
             let outcome: Vec<f64> = ground
@@ -131,68 +137,50 @@ pub fn all_zero_point(task: &Task<'_>, share: f64) -> Result<f64, FitError> {
             }
             let mut g = Vec::new();
             ground.spread(&residual, &mut g);
-            let top = largest(&ground, &g);
-            Ok(if top > 0.0 { top / share } else { 0.0 })
+            largest(&ground, &g, params)
         }
         Response::YesNo(_)
         | Response::Classes { .. }
         | Response::Count { .. }
         | Response::Time { .. } => {
-            let null = never_cancelled(Null::new(&ground, task.response, &work))?;
-            let tops = null
-                .residuals(&ground)
-                .into_iter()
-                .map(|g| largest(&ground, &g));
-            let top = tops.fold(0.0, f64::max);
-            Ok(if top > ROUNDING { top / share } else { 0.0 })
+            let null = Null::new(&ground, task.response, work)?;
+            let is_classes = matches!(task.response, Response::Classes { .. });
+            let top = if is_classes && params.grouping == Grouping::Together {
+                grouped::top(&ground, &null)
+            } else {
+                let tops = null
+                    .residuals(&ground)
+                    .into_iter()
+                    .map(|g| largest(&ground, &g, params));
+                tops.fold(0.0, f64::max)
+            };
+            if top > ROUNDING { top } else { 0.0 }
         }
-    }
+    };
+    Ok(if top > 0.0 { top / share } else { 0.0 })
 }
 
-/// [`all_zero_point`] for classes that are penalised together: `max_j ‖gradient_j‖ / (share · f_j)`.
-/// For other outcomes the same as [`all_zero_point`].
-///
-/// # Errors
-/// What is wrong with the task.
-pub fn grouped_all_zero_point(task: &Task<'_>, share: f64) -> Result<f64, FitError> {
-    if !matches!(task.response, Response::Classes { .. }) {
-        return all_zero_point(task, share);
-    }
-    if !(0.0..=1.0).contains(&share) {
-        return Err(FitError::Share(share));
-    }
-    let work = Work::unattended();
-    let ground = never_cancelled(Ground::new(task, Penalised::ByWeight, &work))?;
-    let null = never_cancelled(Null::new(&ground, task.response, &work))?;
-    let top = grouped::top(&ground, &null);
-    Ok(if top > ROUNDING { top / share } else { 0.0 })
-}
-
-/// The largest |zⱼ'g|/fⱼ over the penalised predictors, exactly: bounds for all, then the contenders
-/// in full.
-pub(crate) fn largest(ground: &Ground<'_>, g: &[f64]) -> f64 {
+/// The largest |zⱼ'g|/fⱼ over the penalised predictors that may move in the direction of zⱼ'g,
+/// exactly: bounds for all, then the contenders in full.
+pub(crate) fn largest(ground: &Ground<'_>, g: &[f64], params: &Params) -> f64 {
     let sieve = Sieve::new(ground);
-    let mut bounds = [Vec::new()];
+    let mut bounds = [Bounds::default()];
     sieve.bounds(ground.predictors.panels(), &[g], &mut bounds);
+    let [bounds] = bounds;
     let length = lanes::norm(g);
     let mut order: Vec<usize> = (0..ground.predictors.n_predictors())
-        .filter(|&j| bounds[0][j] > 0.0)
+        .filter(|&j| bounds.of(j) > 0.0)
         .collect();
-    order.sort_by(|&a, &b| bounds[0][b].total_cmp(&bounds[0][a]).then(a.cmp(&b)));
+    order.sort_by(|&a, &b| bounds.of(b).total_cmp(&bounds.of(a)).then(a.cmp(&b)));
     let mut top = 0.0_f64;
     for j in order {
-        if f64::from(bounds[0][j]) * length < top {
+        if f64::from(bounds.of(j)) * length < top {
             break;
         }
-        top = top.max(ground.correlation(j, g).abs() / ground.factor(j));
+        let c = ground.correlation(j, g);
+        if params.sign(j).allows(c) {
+            top = top.max(c.abs() / ground.factor(j));
+        }
     }
     top
-}
-
-/// Work that nobody watches cannot be called off.
-pub(crate) fn never_cancelled<T>(result: Result<T, Stop>) -> Result<T, FitError> {
-    result.map_err(|stop| match stop {
-        Stop::Failed(error) => error,
-        Stop::Cancelled => unreachable!("unattended work cannot be called off"),
-    })
 }

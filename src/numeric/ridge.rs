@@ -25,6 +25,11 @@ use crate::numeric::shortcut::Shortcuts;
 /// small enough to stay in the cache.
 pub(crate) const BLOCK: usize = 1024;
 
+/// Columns of one block for m rows: fewer when m is large, so that a stop is answered in time.
+pub(crate) fn block_size(m: usize) -> usize {
+    (1_000_000_000 / (m * m).max(1)).clamp(64, BLOCK)
+}
+
 /// Up to this many predictors a training row, the columns themselves are decomposed.
 pub(crate) const NARROW: usize = 4;
 
@@ -72,13 +77,18 @@ impl Spectrum {
             .collect();
         let m = ground.n_rows();
         if penalised.len() <= NARROW * m || penalised.len() * m <= SMALL {
-            Self::narrow(ground, basis, penalised)
+            Self::narrow(ground, basis, penalised, work)
         } else {
             Self::wide(ground, basis, &penalised, work)
         }
     }
 
-    fn narrow(ground: &Ground<'_>, basis: &Basis, penalised: Vec<usize>) -> Result<Self, Stop> {
+    fn narrow(
+        ground: &Ground<'_>,
+        basis: &Basis,
+        penalised: Vec<usize>,
+        work: &Work<'_>,
+    ) -> Result<Self, Stop> {
         let m = ground.n_rows();
         let mut columns = Matrix::zeros(m, penalised.len());
         for (at, &j) in penalised.iter().enumerate() {
@@ -91,7 +101,7 @@ impl Spectrum {
                 *value /= root;
             }
         }
-        let (vectors, values, right) = matrix::thin_svd(&columns)?;
+        let (vectors, values, right) = matrix::stoppable_svd(&columns, work)?;
         // Empty directions have arbitrary vectors, which may reach into the unpenalised ones.
         let least = NO_DIRECTION * values.first().copied().unwrap_or(0.0);
         let size = values.partition_point(|s| *s > least).min(m - basis.rank());
@@ -113,8 +123,8 @@ impl Spectrum {
     ) -> Result<Self, Stop> {
         let m = ground.n_rows();
         let mut gram = Matrix::zeros(m, m);
-        let mut block = vec![0.0; m * BLOCK.min(penalised.len())];
-        for some in penalised.chunks(BLOCK) {
+        let mut block = vec![0.0; m * block_size(m).min(penalised.len())];
+        for some in penalised.chunks(block_size(m)) {
             work.check()?;
             let block = &mut block[..m * some.len()];
             for (column, &j) in block.chunks_exact_mut(m).zip(some) {
@@ -142,8 +152,7 @@ impl Spectrum {
         turns.turn_both_sides(&mut turned);
         let rank = basis.rank();
         let inner = turned.view((rank, rank), (m - rank, m - rank)).into_owned();
-        let (values, vectors) = matrix::symmetric_eigen(&inner)?;
-        work.check()?;
+        let (values, vectors) = matrix::stoppable_eigen(inner, work)?;
         let size = values.len();
         let mut full = Matrix::zeros(m, size);
         for at in 0..size {

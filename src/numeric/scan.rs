@@ -22,6 +22,50 @@ pub(crate) const BATCH: usize = 4;
 /// Everything in single precision below is blown up by this much, which covers its roundings.
 const INFLATE: f64 = 1.0 + 1e-5;
 
+/// The bounds of one residual, and the largest of each panel, by which most panels are passed over.
+#[derive(Clone, Debug, Default)]
+pub(crate) struct Bounds {
+    each: Vec<f32>,
+    tops: Vec<f32>,
+}
+
+impl Bounds {
+    fn resize(&mut self, n_panels: usize) {
+        self.each.resize(n_panels * WIDTH, 0.0);
+        self.tops.resize(n_panels, 0.0);
+    }
+
+    /// The bound of a predictor.
+    pub(crate) fn of(&self, j: usize) -> f32 {
+        self.each[j]
+    }
+
+    /// The bound of every predictor, and zeros that fill the last panel.
+    pub(crate) fn each(&self) -> &[f32] {
+        &self.each
+    }
+
+    /// The largest of all.
+    pub(crate) fn largest(&self) -> f32 {
+        self.tops.iter().fold(0.0, |top, &bound| top.max(bound))
+    }
+
+    /// Calls `see` with the predictors, rising, whose bound is above zero and not below `least`.
+    pub(crate) fn not_below(&self, least: f32, mut see: impl FnMut(usize, f32)) {
+        for (at, &top) in self.tops.iter().enumerate() {
+            if top < least || top == 0.0 {
+                continue;
+            }
+            let from = at * WIDTH;
+            for (lane, &bound) in self.each[from..from + WIDTH].iter().enumerate() {
+                if bound >= least && bound > 0.0 {
+                    see(from + lane, bound);
+                }
+            }
+        }
+    }
+}
+
 /// What the bounds of one task need of every predictor.
 pub(crate) struct Sieve {
     step: Vec<f32>,
@@ -73,12 +117,11 @@ impl Sieve {
         }
     }
 
-    /// For each residual (n values that sum to zero): `out[k][j]` is at least
+    /// For each residual (n values that sum to zero): `out[k].of(j)` is at least
     /// `|zⱼ'gₖ| / (fⱼ ‖gₖ‖)`, with zⱼ the standardised predictor and fⱼ its penalty weight.
-    pub(crate) fn bounds(&self, panels: &Panels, residuals: &[&[f64]], out: &mut [Vec<f32>]) {
-        let width = panels.n_panels() * WIDTH;
+    pub(crate) fn bounds(&self, panels: &Panels, residuals: &[&[f64]], out: &mut [Bounds]) {
         for bounds in out.iter_mut() {
-            bounds.resize(width, 0.0);
+            bounds.resize(panels.n_panels());
         }
         let rounded: Vec<Rounded> = residuals.iter().map(|g| self.round(g)).collect();
         let mut rounded = rounded.as_slice();
@@ -143,7 +186,7 @@ impl Sieve {
         }
     }
 
-    fn read<const B: usize>(&self, panels: &Panels, residuals: &[Rounded], out: &mut [Vec<f32>]) {
+    fn read<const B: usize>(&self, panels: &Panels, residuals: &[Rounded], out: &mut [Bounds]) {
         let g: [&[[i16; 2]]; B] = std::array::from_fn(|k| residuals[k].pairs.as_slice());
         let units = Units::<B> {
             unit: std::array::from_fn(|k| (residuals[k].unit * INFLATE) as f32),
@@ -176,19 +219,32 @@ impl Sieve {
         at: usize,
         sums: [[i32; WIDTH]; B],
         units: &Units<B>,
-        out: &mut [Vec<f32>],
+        out: &mut [Bounds],
     ) {
         let range = at * WIDTH..(at + 1) * WIDTH;
-        let step = &self.step[range.clone()];
-        let error = &self.error[range.clone()];
-        let length = &self.length[range.clone()];
+        let [step, error, length] = [&self.step, &self.error, &self.length].map(|values| {
+            let (lanes, _) = values[range.clone()].as_chunks::<WIDTH>();
+            lanes[0]
+        });
         for k in 0..B {
-            let bounds = &mut out[k][range.clone()];
+            let mut bounds = [0.0_f32; WIDTH];
             for lane in 0..WIDTH {
                 bounds[lane] = (sums[k][lane] as f32).abs() * (step[lane] * units.unit[k])
                     + length[lane] * units.missed[k]
                     + error[lane] * units.length[k];
             }
+            let mut top = bounds;
+            for half in [8, 4, 2, 1] {
+                for lane in 0..half {
+                    top[lane] = if top[lane] < top[lane + half] {
+                        top[lane + half]
+                    } else {
+                        top[lane]
+                    };
+                }
+            }
+            out[k].each[range.clone()].copy_from_slice(&bounds);
+            out[k].tops[at] = top[0];
         }
     }
 }

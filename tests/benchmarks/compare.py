@@ -1,6 +1,7 @@
 """Times of the solver beside scikit-learn: same data, same objective, same run, same machine.
 
-Called by `run` in this folder with the path of the solver benchmark. Prints a table of ratios.
+Called by `run` in this folder with the path of the solver benchmark. Prints a table of ratios, then
+one of readings of the matrix and of memory. With `--alone` the peers are left out.
 Both sides are timed with everything included: means, scaling where the method scales, copies,
 certificates. The peer works on columns that are scaled beforehand, outside its time.
 """
@@ -15,6 +16,7 @@ warnings.filterwarnings("ignore")
 
 solver = sys.argv[1]
 chosen = set(sys.argv[2:])
+names = {word for word in chosen if not word.startswith("--")}
 folder = Path(tempfile.mkdtemp())
 
 
@@ -131,17 +133,26 @@ def peer(name, z, y):
     raise ValueError(name)
 
 
-print(f"{'case':26} {'predictors':16} {'n x p':>13} {'peer':>14} {'ours s':>9} {'thread s':>9} {'peer s':>9} {'ratio':>7} {'passes':>8} {'gap':>8} {'chosen':>6} {'memory':>7}")
+print("Ratios: same data, same objective, same run; everything included on our side.\n")
+print(f"{'case':26} {'predictors':16} {'n x p':>13} {'peer':>14} {'ours s':>9} {'peer s':>9} {'ratio':>7} {'gap':>8} {'chosen':>6}")
+second = []
 for name, kind, n, p, case, repeats, other in CASES:
-    if chosen and case not in chosen:
+    if names and case not in names:
         continue
     x, z, y = design(kind, n, p)
     mine, passes, gap, count, settled, peak, busy = ours(case, x, y, repeats)
-    theirs = peer(other, z, y) if "--alone" not in chosen else None
+    theirs = None if "--alone" in chosen else peer(other, z, y)
+    shape = f"{n:>5} x {p:<6}"
     print(
-        f"{name:26} {kind:16} {n:>5} x {p:<6} {str(other):>14} {mine:9.4f} {busy:9.4f} "
+        f"{name:26} {kind:16} {shape:>13} {str(other):>14} {mine:9.4f} "
         + (f"{theirs:9.3f} {theirs / mine:6.0f}x" if theirs else f"{'':9} {'':7}")
-        + f" {passes:8.1f} {gap:8.0e} {count:6d} {peak:6.2f}x"
+        + f" {gap:8.0e} {count:6d}"
         + ("" if settled == "true" else "  NOT SETTLED"),
         flush=True,
     )
+    second.append(f"{name:26} {kind:16} {shape:>13} {passes:14.1f} {peak:13.2f}x {busy:14.4f}")
+
+print("\nReadings of the matrix (in double precision, all fits of the case together), peak memory of the")
+print("runs as a multiple of the matrix (itself included), running time of the first thread.\n")
+print(f"{'case':26} {'predictors':16} {'n x p':>13} {'readings':>14} {'memory':>14} {'thread s':>14}")
+print("\n".join(second))

@@ -1,8 +1,9 @@
 //! Times of the solver, for `compare.py` beside it: reads a case from a file, prints one line.
 //!
 //! `solver CASE FILE N P REPEATS` prints seconds (median), passes over the matrix, the worst gap, the
-//! number of chosen predictors at the last strength, whether all settled, the peak memory over that of
-//! the matrix (matrix included), and the running time of the first thread.
+//! number of chosen predictors at the last strength, whether all settled, the peak memory of the runs
+//! over that of the matrix (matrix included, what the process held before them not), and the running
+//! time of the first thread.
 //! The file holds the predictors by columns, then the outcome, as little-endian f64.
 #![expect(
     clippy::disallowed_methods,
@@ -119,8 +120,14 @@ impl Setting<'_> {
     }
 
     fn range(&self, rows: &[usize], share: f64, count: usize, ratio: f64) -> Vec<f64> {
-        strength_range(&self.task(rows), share, RangeParams { count, ratio })
-            .expect("the case has a range")
+        strength_range(
+            &self.task(rows),
+            share,
+            RangeParams { count, ratio },
+            &Params::default(),
+            &Work::unattended(),
+        )
+        .expect("the case has a range")
     }
 
     /// A path on each part's training rows, with predictions of the others; then on all rows.
@@ -261,10 +268,10 @@ fn run(name: &str, case: &Case, x: Matrix) -> Tally {
     }
 }
 
-/// The most memory this process has had, in bytes, where the system tells.
-fn peak() -> f64 {
+/// Memory of this process in bytes, where the system tells: `VmHWM` the most, `VmRSS` at present.
+fn memory(word: &str) -> f64 {
     let status = std::fs::read_to_string("/proc/self/status").unwrap_or_default();
-    let line = status.lines().find(|line| line.starts_with("VmHWM"));
+    let line = status.lines().find(|line| line.starts_with(word));
     let kilobytes = line.and_then(|line| line.split_whitespace().nth(1)?.parse::<f64>().ok());
     kilobytes.unwrap_or(f64::NAN) * 1024.0
 }
@@ -294,6 +301,7 @@ fn main() {
     let case = Case::read(file, n, p);
     let (mut times, mut busy) = (Vec::new(), Vec::new());
     let mut tally = Tally::default();
+    let before = memory("VmRSS");
     for _ in 0..number(repeats).max(1) {
         // The solver takes the matrix over; the copy that this leaves is not part of the time.
         let x = case.matrix();
@@ -312,8 +320,7 @@ fn main() {
         tally.gap,
         tally.chosen,
         tally.settled,
-        // Less the copy of the case that the runs are started from.
-        peak() / matrix - 1.0,
+        (memory("VmHWM") - before) / matrix,
         busy[busy.len() / 2],
     );
 }

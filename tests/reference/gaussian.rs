@@ -77,7 +77,7 @@ fn paths_agree_with_the_reference_in_objective_coefficients_and_fit() {
             scaling: Scaling::UnitVariance,
         };
         let share = number(&case, "share");
-        let top = all_zero_point(&task, share).unwrap();
+        let top = all_zero_point(&task, share, &Params::default(), &Work::unattended()).unwrap();
         close(&name, top, number(&case, "lambda_max"), 1e-12);
         let expected = list(&case, "path");
         let strengths: Vec<f64> = expected.iter().map(|fit| number(fit, "lambda")).collect();
@@ -214,5 +214,10 @@ fn the_example_by_hand_is_exact() {
         close("intercept", coefficients.intercept, 3.0, 1e-12);
         close("slope", coefficients.predictors[0].1, slope, 1e-12);
     }
-    close("top", all_zero_point(&task, 1.0).unwrap(), 5.0 / 3.0, 1e-12);
+    close(
+        "top",
+        all_zero_point(&task, 1.0, &Params::default(), &Work::unattended()).unwrap(),
+        5.0 / 3.0,
+        1e-12,
+    );
 }

@@ -71,7 +71,13 @@ fn check_case(case: &Value, setting: &Setting) {
     let share = number(case, "share");
     let p = setting.names.len();
     if share > 0.0 {
-        let top = all_zero_point(&setting.task(), share).unwrap();
+        let top = all_zero_point(
+            &setting.task(),
+            share,
+            &Params::default(),
+            &Work::unattended(),
+        )
+        .unwrap();
         close(name, top, number(case, "lambda_max"), 1e-10);
     }
     let fits = list(case, "fits");
@@ -396,7 +402,13 @@ fn cox_paths_agree_with_the_reference() {
 fn check_times(name: &str, part: &Value, setting: &Setting, n: usize) {
     let share = number(part, "share");
     if share > 0.0 {
-        let top = all_zero_point(&setting.task(), share).unwrap();
+        let top = all_zero_point(
+            &setting.task(),
+            share,
+            &Params::default(),
+            &Work::unattended(),
+        )
+        .unwrap();
         close(name, top, number(part, "lambda_max"), 1e-10);
     }
     let fits = list(part, "fits");

@@ -8,7 +8,7 @@ use crate::numeric::matrix::Matrix;
 use crate::numeric::path::{Grouping, Params, Path, fit_path};
 use crate::numeric::penalty::Sign;
 use crate::numeric::predictors::Predictors;
-use crate::numeric::range::{RangeParams, all_zero_point, grouped_all_zero_point, strength_range};
+use crate::numeric::range::{RangeParams, all_zero_point, strength_range};
 use crate::numeric::response::{Response, Ties};
 use crate::numeric::task::{Scaling, Task};
 
@@ -48,7 +48,14 @@ impl Data {
     }
 
     fn range(&self, share: f64, count: usize, ratio: f64) -> Vec<f64> {
-        strength_range(&self.task(), share, RangeParams { count, ratio }).unwrap()
+        strength_range(
+            &self.task(),
+            share,
+            RangeParams { count, ratio },
+            &Params::default(),
+            &Work::unattended(),
+        )
+        .unwrap()
     }
 
     fn fit(&self, share: f64, strengths: &[f64]) -> Path {
@@ -151,7 +158,8 @@ fn every_solution_carries_an_independent_certificate() {
 fn the_model_is_empty_at_the_all_zero_point_and_not_just_below() {
     for kind in KINDS {
         let data = with_everything(random(kind, Design::Independent, 50, 90, 4));
-        let top = all_zero_point(&data.task(), 0.8).unwrap();
+        let top =
+            all_zero_point(&data.task(), 0.8, &Params::default(), &Work::unattended()).unwrap();
         let path = data.fit(0.8, &[top, top * 0.999]);
         let free = if kind == "class" { 3 } else { 1 };
         assert_eq!(path.info(0).n_chosen, free, "{kind}");
@@ -390,7 +398,8 @@ fn classes_together_are_in_or_out_as_a_whole_and_certified() {
             let full = with_everything(random("class", design, n, p, seed as u64));
             for data in [plain, full] {
                 for share in [1.0, 0.5] {
-                    let top = grouped_all_zero_point(&data.task(), share).unwrap();
+                    let top =
+                        all_zero_point(&data.task(), share, &params, &Work::unattended()).unwrap();
                     let steps = 0..8;
                     let strengths: Vec<f64> = steps.map(|k| top * 0.65_f64.powi(k)).collect();
                     let path = data.try_fit(share, &strengths, &params).unwrap();
@@ -417,5 +426,34 @@ fn classes_together_are_in_or_out_as_a_whole_and_certified() {
                 }
             }
         }
+    }
+}
+
+#[test]
+fn nearly_without_a_lasso_part_classes_together_have_the_freedom_of_ridge() {
+    let data = random("class", Design::Independent, 40, 12, 31);
+    let strengths = [1.0, 0.1, 0.01];
+    let params = Params {
+        grouping: Grouping::Together,
+        relative_gap: 1e-12,
+        ..Params::default()
+    };
+    let together = data.try_fit(1e-7, &strengths, &params).unwrap();
+    let ridge = data.try_fit(0.0, &strengths, &params).unwrap();
+    for at in 0..3 {
+        let (found, wanted) = (together.info(at).effective_df, ridge.info(at).effective_df);
+        assert!((found - wanted).abs() < 1e-3, "{found} {wanted}");
+    }
+    // A real group penalty leaves less than a count of the chosen coefficients.
+    let path = data
+        .try_fit(1.0, &data.range(1.0, 5, 0.2), &params)
+        .unwrap();
+    for at in 1..5 {
+        let info = path.info(at);
+        let penalised = info.effective_df - 2.0;
+        assert!(
+            penalised > 0.0 && penalised < info.n_chosen as f64,
+            "{info:?}"
+        );
     }
 }

@@ -48,7 +48,14 @@ impl Data {
     }
 
     fn range(&self, share: f64, count: usize, ratio: f64) -> Vec<f64> {
-        strength_range(&self.task(), share, RangeParams { count, ratio }).unwrap()
+        strength_range(
+            &self.task(),
+            share,
+            RangeParams { count, ratio },
+            &Params::default(),
+            &Work::unattended(),
+        )
+        .unwrap()
     }
 
     fn fit(&self, share: f64, strengths: &[f64]) -> Path {
@@ -164,7 +171,8 @@ fn the_model_is_empty_at_the_all_zero_point_and_not_just_below() {
     for seed in 0..6 {
         let data = with_everything(random(Design::Independent, 40, 120, seed), seed);
         for share in [1.0, 0.4] {
-            let top = all_zero_point(&data.task(), share).unwrap();
+            let top = all_zero_point(&data.task(), share, &Params::default(), &Work::unattended())
+                .unwrap();
             let path = data.fit(share, &[top, top * (1.0 - 1e-6)]);
             // The one predictor without a penalty is always in.
             assert_eq!(path.info(0).n_chosen, 1, "at the point");
@@ -415,7 +423,14 @@ fn the_bits_do_not_depend_on_the_number_of_threads() {
             let rows: Vec<usize> = (0..40).filter(|row| row % 6 != part).collect();
             task.rows = &rows;
             let share = [1.0, 0.5, 0.0][part % 3];
-            let strengths = strength_range(&task, share, RangeParams::default()).unwrap();
+            let strengths = strength_range(
+                &task,
+                share,
+                RangeParams::default(),
+                &Params::default(),
+                &Work::unattended(),
+            )
+            .unwrap();
             let params = Params::default();
             let path = fit_path(&task, share, &strengths, &params, &Work::unattended()).unwrap();
             let mut bits = Vec::new();

@@ -132,15 +132,23 @@ impl Learnt<'_> {
     /// The strengths of a range for this part, falling from its all-zero point.
     ///
     /// # Errors
-    /// When the outcome cannot be fitted.
+    /// When the outcome cannot be fitted, or the work was called off.
     pub fn strengths(
         &self,
         material: &Material<'_>,
         rows: &[usize],
         share: f64,
         params: RangeParams,
-    ) -> Result<Vec<f64>, ProcedureError> {
-        strength_range(&self.task(material, rows), share, params).map_err(ProcedureError::Fit)
+        work: &Work<'_>,
+    ) -> Result<Vec<f64>, Halt> {
+        let task = self.task(material, rows);
+        Ok(strength_range(
+            &task,
+            share,
+            params,
+            &Params::default(),
+            work,
+        )?)
     }
 }
 

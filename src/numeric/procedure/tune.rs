@@ -200,7 +200,7 @@ impl Search<'_, '_> {
             .count();
         let ratio = ratio.unwrap_or_else(|| usual_ratio(share, rows.len(), p));
         let params = RangeParams { count, ratio };
-        let mut strengths = learnt.strengths(self.material, rows, share, params)?;
+        let mut strengths = learnt.strengths(self.material, rows, share, params, work)?;
         if strengths.is_empty() {
             // Nothing varies with the outcome: at every strength the model is empty.
             strengths.push(1.0);

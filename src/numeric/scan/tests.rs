@@ -45,14 +45,23 @@ fn over_random_tasks(mut check: impl FnMut(f64, f64)) {
         let count = 1 + dice.below(6);
         let residuals: Vec<Vec<f64>> = (0..count).map(|_| residual(&rows, n, &mut dice)).collect();
         let views: Vec<&[f64]> = residuals.iter().map(Vec::as_slice).collect();
-        let mut bounds = vec![Vec::new(); count];
+        let mut bounds = vec![Bounds::default(); count];
         sieve.bounds(predictors.panels(), &views, &mut bounds);
         for (g, bounds) in residuals.iter().zip(&bounds) {
             let length = lanes::norm(g);
-            for j in 0..p {
-                let truth = ground.correlation(j, g).abs() / (factors[j] * length);
-                check(truth, f64::from(bounds[j]));
+            for (j, factor) in factors.iter().enumerate() {
+                let truth = ground.correlation(j, g).abs() / (factor * length);
+                check(truth, f64::from(bounds.of(j)));
             }
+            let least = bounds.of(dice.below(p));
+            let mut seen = Vec::new();
+            bounds.not_below(least, |j, _| seen.push(j));
+            let above = |&j: &usize| bounds.of(j) >= least && bounds.of(j) > 0.0;
+            assert_eq!(seen, (0..p).filter(above).collect::<Vec<_>>());
+            assert_eq!(
+                bounds.largest(),
+                bounds.each().iter().copied().fold(0.0, f32::max)
+            );
         }
     }
 }
@@ -98,9 +107,9 @@ fn the_bound_is_close_enough_to_exclude_nearly_everything() {
     };
     let ground = Ground::new(&task, Penalised::ByWeight, &Work::unattended()).unwrap();
     let g = residual(&rows, 60, &mut dice);
-    let mut bounds = [Vec::new()];
+    let mut bounds = [Bounds::default()];
     Sieve::new(&ground).bounds(predictors.panels(), &[&g], &mut bounds);
-    for (j, &bound) in bounds[0][..200].iter().enumerate() {
+    for (j, &bound) in bounds[0].each()[..200].iter().enumerate() {
         let truth = ground.correlation(j, &g).abs() / lanes::norm(&g);
         // The scale of a column against the residual's length: √n.
         assert!(f64::from(bound) - truth < 0.01 * 60_f64.sqrt());

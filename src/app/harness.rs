@@ -3,10 +3,9 @@
 //! The toolkit's own simulator loses focus between steps and has no clipboard. This one keeps
 //! both, uses the bundled fonts only, and gives pictures that are the same on every machine.
 
+use crate::app::fonts;
 use crate::app::theme::Mode;
 use crate::app::widget::Element;
-use crate::figure::font::Face;
-use iced::advanced::graphics::text::font_system;
 use iced::advanced::renderer::{self, Headless};
 use iced::advanced::widget::{Operation, operation};
 use iced::advanced::{Clipboard, clipboard, mouse};
@@ -14,8 +13,6 @@ use iced::keyboard::{self, key};
 use iced::{Event, Pixels, Point, Rectangle, Size, window};
 use iced_runtime::UserInterface;
 use iced_runtime::user_interface::Cache;
-use std::borrow::Cow;
-use std::sync::Once;
 use std::time::Instant;
 
 /// A window that is not shown.
@@ -52,30 +49,6 @@ pub struct Shot {
     pub pixels: Vec<u8>,
 }
 
-/// Loads the bundled fonts, once, and forgets those of the machine.
-pub fn bundled_fonts() {
-    static ONCE: Once = Once::new();
-    ONCE.call_once(|| {
-        let mut system = font_system()
-            .write()
-            .expect("no other thread panics while it holds the fonts");
-        let database = system.raw().db_mut();
-        let faces: Vec<_> = database
-            .faces()
-            .filter(|face| face.post_script_name != "Iced-Icons")
-            .map(|face| face.id)
-            .collect();
-        for face in faces {
-            database.remove_face(face);
-        }
-        database.set_sans_serif_family(Face::Sans.family());
-        database.set_serif_family(Face::Serif.family());
-        for face in Face::ALL {
-            system.load_font(Cow::Borrowed(face.bytes()));
-        }
-    });
-}
-
 impl Harness {
     /// A window of this size.
     ///
@@ -83,7 +56,7 @@ impl Harness {
     /// When the software renderer cannot be made, which does not depend on the machine.
     #[must_use]
     pub fn new(width: f32, height: f32, mode: Mode) -> Self {
-        bundled_fonts();
+        fonts::only_bundled();
         let renderer = iced::futures::executor::block_on(<iced::Renderer as Headless>::new(
             crate::app::theme::text::SANS,
             Pixels(crate::app::theme::text::SMALL),

@@ -8,6 +8,7 @@ pub mod dialog;
 pub mod disk;
 pub mod editor;
 pub mod files;
+mod fonts;
 pub mod harness;
 mod keys;
 pub mod part;
@@ -32,7 +33,6 @@ use crate::app::theme::Mode;
 use crate::app::widget::Element;
 use crate::app::widget::inert::{Inert, Reach};
 use crate::base::problem::Problem;
-use crate::figure::font::Face;
 use crate::store::preferences::Preferences;
 use crate::store::rescue::Rescued;
 use iced::widget::stack;
@@ -267,7 +267,8 @@ pub fn open(study: Option<PathBuf>) -> Result<(), Problem> {
         .mend("Use the commands instead, which need none: widefold --help lists them."));
     }
     let boot = move || App::new(study.clone());
-    let mut application = iced::application(boot, App::update, App::view)
+    fonts::prefer_bundled();
+    let application = iced::application(boot, App::update, App::view)
         .title(App::title)
         .theme(App::theme)
         .subscription(App::subscription)
@@ -279,9 +280,6 @@ pub fn open(study: Option<PathBuf>) -> Result<(), Problem> {
             exit_on_close_request: false,
             ..window::Settings::default()
         });
-    for face in Face::ALL {
-        application = application.font(face.bytes());
-    }
     application.run().map_err(|error| {
         Problem::new("no-window", "The window could not be opened.")
             .mend("Use the commands instead, which need none: widefold --help lists them.")

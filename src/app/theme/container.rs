@@ -6,12 +6,12 @@ use crate::eval::caveat::Severity;
 use iced::widget::{container, rule};
 use iced::{Background, Border, Theme};
 
-/// The whole window.
+/// The whole window. It lays no ground: the window is cleared with the paper's colour before
+/// anything is drawn, and a ground over all of it would be painted once more for every change.
 #[must_use]
 pub fn page(theme: &Theme) -> container::Style {
     let colors = theme::colors(theme);
     container::Style {
-        background: Some(Background::Color(colors.paper)),
         text_color: Some(colors.ink),
         ..container::Style::default()
     }

@@ -3,6 +3,7 @@
 pub mod focus;
 pub mod grid;
 pub mod inert;
+pub mod layer;
 pub mod list;
 pub mod picture;
 pub mod press;

@@ -3,7 +3,9 @@
 use crate::app::theme::Mode;
 use crate::app::theme::{self, space, text};
 use crate::app::widget::Element;
+use crate::app::widget::layer;
 use crate::base::hash::ContentHash;
+use crate::base::number::{self, Precision};
 use crate::figure::ink::Ink;
 use crate::figure::picture::{
     Anchor, Dash, Mark, Picture, Point as Place, Rect as Area, Spot, Stroke as Line, Turn, Word,
@@ -276,13 +278,26 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for Shown<'a, M> {
                 level(renderer, word, origin, self.brush());
             }
         }
-        if let Some(x) = state.drag {
-            self.draw_drag(renderer, theme, state, bounds, shown, x);
-        } else if let Some(at) = cursor.position_over(shown)
-            && let Some(spot) = self.picture.spot_at(place(at - origin))
-        {
-            told(renderer, theme, &spot.text, at, shown);
-        }
+        let dragged = state
+            .drag
+            .and_then(|x| self.dragged(state, bounds.position(), x));
+        let line = dragged.as_ref().map(|(line, _)| *line);
+        let line = line.and_then(|line| line.intersection(&shown));
+        layer::standing(renderer, line, |renderer, bounds| {
+            let line = Quad {
+                bounds,
+                ..Quad::default()
+            };
+            renderer.fill_quad(line, Background::Color(self.mode.colors().attention));
+        });
+        let pointed = cursor.position_over(shown).and_then(|at| {
+            let spot = self.picture.spot_at(place(at - origin))?;
+            Some((at, spot.text.clone()))
+        });
+        let words = dragged
+            .map(|(line, words)| (line.position(), words))
+            .or(pointed);
+        told(renderer, theme, words, shown);
     }
 
     fn mouse_interaction(
@@ -337,43 +352,21 @@ impl<'a, M: 'a> Shown<'a, M> {
         }
     }
 
-    /// The upright line under the pointer while the strength is dragged, with its value.
-    fn draw_drag(
-        &self,
-        renderer: &mut iced::Renderer,
-        theme: &iced::Theme,
-        state: &State,
-        bounds: Rectangle,
-        shown: Rectangle,
-        x: f32,
-    ) {
-        let ruler = state
-            .pressed
-            .and_then(|from| self.picture.ruler_at(place(from)));
-        let Some(ruler) = ruler else {
-            return;
-        };
+    /// The upright line under the pointer while the strength is dragged, and its value.
+    fn dragged(&self, state: &State, origin: Point, x: f32) -> Option<(Rectangle, String)> {
+        let from = state.pressed?;
+        let ruler = self.picture.ruler_at(place(from))?;
         let x = f64::from(x).clamp(ruler.rect.x, ruler.rect.right());
         let at = Point::new(
-            (bounds.x + x as f32).round(),
-            bounds.y + ruler.rect.y as f32,
+            (origin.x + x as f32).round(),
+            (origin.y + ruler.rect.y as f32).round(),
         );
-        let line = Rectangle::new(at, Size::new(space::BAR, ruler.rect.height as f32));
-        let value = crate::base::number::text(
-            ruler.value_at(x),
-            crate::base::number::Precision::Significant(3),
-        );
-        renderer.with_layer(shown, |renderer| {
-            renderer.fill_quad(
-                Quad {
-                    bounds: line,
-                    ..Quad::default()
-                },
-                Background::Color(self.mode.colors().attention),
-            );
-        });
-        let words = format!("penalty strength {value}");
-        told(renderer, theme, &words, at, shown);
+        let size = Size::new(space::BAR, (ruler.rect.height as f32).round());
+        let value = number::text(ruler.value_at(x), Precision::Significant(3));
+        Some((
+            Rectangle::new(at, size),
+            format!("penalty strength {value}"),
+        ))
     }
 }
 
@@ -381,14 +374,17 @@ impl<'a, M: 'a> Shown<'a, M> {
 fn told(
     renderer: &mut iced::Renderer,
     theme: &iced::Theme,
-    words: &str,
-    at: Point,
+    words: Option<(Point, String)>,
     shown: Rectangle,
 ) {
+    let Some((at, words)) = words else {
+        layer::standing(renderer, None, |_, _| {});
+        return;
+    };
     let colors = theme::colors(theme);
     let face = crate::figure::font::Face::Sans;
     let size = text::SMALL;
-    let width = crate::figure::metrics::width(words, face, f64::from(size)) as f32;
+    let width = crate::figure::metrics::width(&words, face, f64::from(size)) as f32;
     let width = width.min(shown.width - 3.0 * space::SMALL);
     let sheet = Size::new(
         width + 2.0 * space::SMALL,
@@ -402,10 +398,7 @@ fn told(
     let lowest = (shown.y + shown.height - sheet.height).max(shown.y);
     let y = (at.y - sheet.height - space::TIGHT).clamp(shown.y, lowest);
     let bounds = Rectangle::new(Point::new(x.round(), y.round()), sheet);
-    let Some(layer) = bounds.intersection(&shown) else {
-        return;
-    };
-    renderer.with_layer(layer, |renderer| {
+    layer::standing(renderer, bounds.intersection(&shown), |renderer, layer| {
         renderer.fill_quad(
             Quad {
                 bounds,
@@ -420,7 +413,7 @@ fn told(
         );
         renderer.fill_text(
             iced::advanced::Text {
-                content: words.to_owned(),
+                content: words,
                 bounds: Size::new(f32::INFINITY, text::SMALL_LINE),
                 size: Pixels(size),
                 line_height: LineHeight::Absolute(Pixels(text::SMALL_LINE)),

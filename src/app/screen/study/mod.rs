@@ -1,7 +1,9 @@
 //! The study screen: thread, page, margin, strip.
 
 mod act;
+mod answer;
 mod view;
+mod write;
 
 use crate::app::editor::Open;
 use crate::app::editor::prose::Prose;

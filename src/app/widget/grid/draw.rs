@@ -2,17 +2,14 @@
 
 use crate::app::theme::{self, space, text};
 use crate::app::widget::focus;
-use crate::app::widget::grid::{Align, At, Bar, Condition, Grid, State, View};
+use crate::app::widget::grid::view::View;
+use crate::app::widget::grid::{Align, At, Bar, Condition, Grid, State};
+use crate::app::widget::layer::Nudge;
 use crate::figure::font::Face;
 use crate::figure::metrics;
 use iced::advanced::renderer::{Quad, Renderer as _};
 use iced::advanced::text::{LineHeight, Renderer as _, Shaping, Wrapping};
 use iced::{Background, Border, Color, Font, Pixels, Point, Rectangle, Size, alignment};
-
-/// The largest invisible amount by which a layer is moved.
-const NUDGE: f32 = 0.04;
-/// After how many scroll positions the amounts begin anew.
-const NUDGES: usize = 997;
 
 /// A text in a field.
 struct Set<'a> {
@@ -25,7 +22,7 @@ struct Set<'a> {
 }
 
 impl<'a, M> Grid<'a, M> {
-    /// Draws what can be seen, in layers of its own.
+    /// Draws what can be seen, in a layer of its own.
     pub(super) fn paint(
         &self,
         state: &State,
@@ -41,42 +38,32 @@ impl<'a, M> Grid<'a, M> {
         else {
             return;
         };
-        let nudge = (state.first.row * 31 + state.first.column * 7) % NUDGES;
-        let nudge = NUDGE * (nudge as f32 + 1.0) / NUDGES as f32;
-        self.paint_frame(state, renderer, theme, bounds, view);
         if state.focus.0 {
             focus::ring(renderer, theme, bounds.shrink(space::AIR + space::BAR));
         }
-        let layer = |renderer: &mut iced::Renderer,
-                     area: Rectangle,
-                     paint: &dyn Fn(&mut iced::Renderer, Rectangle)| {
-            let area = Rectangle {
-                width: (area.width - nudge).max(0.0),
-                ..area
+        // One layer for all of it: what scrolls is one area to the toolkit, and its mask is
+        // filled once.
+        let nudge = Nudge::of(&[state.first.row as u64, state.first.column as u64]);
+        let Some(layer) = nudge.apply(bounds).intersection(&shown) else {
+            return;
+        };
+        renderer.with_layer(layer, |renderer| {
+            self.paint_frame(state, renderer, theme, bounds, view);
+            let within = |area: Rectangle| area.intersection(&layer).unwrap_or_default();
+            self.paint_body(state, renderer, theme, view, within(view.body));
+            let head = Rectangle {
+                y: bounds.y,
+                height: self.head_height(),
+                ..view.body
             };
-            if let Some(area) = area.intersection(&shown) {
-                renderer.with_layer(area, |renderer| paint(renderer, area));
-            }
-        };
-        layer(renderer, view.body, &|renderer, area| {
-            self.paint_body(state, renderer, theme, view, area);
-        });
-        let head = Rectangle {
-            y: bounds.y,
-            height: self.head_height(),
-            ..view.body
-        };
-        layer(renderer, head, &|renderer, area| {
-            self.paint_head(state, renderer, theme, view, head, area);
-        });
-        let names = Rectangle {
-            x: bounds.x,
-            y: bounds.y,
-            width: state.names,
-            height: bounds.height - space::SMALL,
-        };
-        layer(renderer, names, &|renderer, area| {
-            self.paint_names(state, renderer, theme, view, names, area);
+            self.paint_head(state, renderer, theme, view, head, within(head));
+            let names = Rectangle {
+                x: bounds.x,
+                y: bounds.y,
+                width: state.names,
+                height: bounds.height - space::SMALL,
+            };
+            self.paint_names(state, renderer, theme, view, names, within(names));
         });
     }
 
@@ -359,9 +346,9 @@ fn set(renderer: &mut iced::Renderer, set: &Set<'_>, area: Rectangle) {
     if !set.field.intersects(&area) {
         return;
     }
-    // The toolkit clips a text by its layer only where its bounds reach beyond the layer; a field
-    // at the edge of the body does so by the nudge alone, and is taken in by as much.
-    let clip = set.field.shrink(2.0 * NUDGE);
+    // The toolkit clips a text by its layer only where this reaches beyond the layer, so that it
+    // is not cut here; a field at the edge of the layer does so by the nudge alone.
+    let clip = set.field.shrink(2.0 * Nudge::MOST);
     let is_ascii = words.is_ascii();
     renderer.fill_text(
         iced::advanced::Text {

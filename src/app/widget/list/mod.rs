@@ -5,10 +5,15 @@
 //! of the view when a cell above it changes its height. A layer for each cell keeps the
 //! damage of a redraw inside the cell.
 
+mod settle;
+mod state;
+
 use crate::app::theme;
 use crate::app::theme::space;
 use crate::app::widget::Element;
 use crate::app::widget::focus;
+use crate::app::widget::layer;
+use crate::app::widget::list::state::State;
 use iced::advanced::layout::{self, Layout};
 use iced::advanced::renderer::{self, Quad, Renderer as _};
 use iced::advanced::widget::{Operation, Tree, Widget, tree};
@@ -20,8 +25,6 @@ use std::collections::BTreeMap;
 /// Names a cell of the list for as long as it lives.
 pub type Key = u64;
 
-/// How high a cell is taken to be before it has been seen.
-const GUESS: f32 = 360.0;
 /// How far a turn of the wheel by one line goes.
 const LINE: f32 = 60.0;
 /// How near the focused thing may come to the edge of the view.
@@ -66,179 +69,7 @@ impl<'a, M> List<'a, M> {
     }
 }
 
-#[derive(Default)]
-struct State {
-    trees: BTreeMap<Key, Tree>,
-    heights: BTreeMap<Key, f32>,
-    width: f32,
-    /// The cell at the top of the view, and how far the view begins below its top.
-    anchor: Key,
-    anchor_at: usize,
-    offset: f32,
-    /// The cells that have a node, in the order of the nodes.
-    laid: Vec<usize>,
-    /// The cell that has the focus.
-    focused: Option<Key>,
-    /// Whether the focused thing is to be brought into view.
-    reveals: bool,
-    served: u64,
-    drag: Option<f32>,
-    is_hovered: bool,
-    height: f32,
-}
-
-impl State {
-    fn height_of(&self, key: Key) -> f32 {
-        self.heights.get(&key).copied().unwrap_or_else(|| {
-            let known = self.heights.len();
-            if known == 0 {
-                GUESS
-            } else {
-                self.heights.values().sum::<f32>() / known as f32
-            }
-        })
-    }
-
-    fn total(&self, keys: &[Key]) -> f32 {
-        keys.iter().map(|key| self.height_of(*key)).sum()
-    }
-
-    fn scrolled(&self, keys: &[Key]) -> f32 {
-        let above: f32 = keys[..self.anchor_at.min(keys.len())]
-            .iter()
-            .map(|key| self.height_of(*key))
-            .sum();
-        above + self.offset
-    }
-
-    /// Puts the view at a distance from the top of everything.
-    fn scroll_to(&mut self, keys: &[Key], to: f32) {
-        let mut left = to.max(0.0);
-        for (at, key) in keys.iter().enumerate() {
-            let height = self.height_of(*key);
-            if left < height || at + 1 == keys.len() {
-                self.anchor_at = at;
-                self.anchor = *key;
-                self.offset = left;
-                return;
-            }
-            left -= height;
-        }
-    }
-}
-
 impl<'a, M: 'a> List<'a, M> {
-    /// Builds a cell if it is not built, lays it out, and remembers its height.
-    fn measure(&mut self, state: &mut State, renderer: &iced::Renderer, at: usize) -> layout::Node {
-        let key = self.keys[at];
-        let tree = state.trees.entry(key).or_insert_with(Tree::empty);
-        let element = self.built.entry(at).or_insert_with(|| {
-            let element = (self.build)(at);
-            tree.diff(&element);
-            element
-        });
-        let limits = layout::Limits::new(Size::ZERO, Size::new(state.width, f32::INFINITY));
-        let node = element.as_widget_mut().layout(tree, renderer, &limits);
-        let _ = state.heights.insert(key, node.size().height);
-        node
-    }
-
-    /// Moves the anchor until the view begins inside it and is filled as far as there are cells.
-    /// Returns the nodes of the cells in view by position.
-    fn settle(
-        &mut self,
-        state: &mut State,
-        renderer: &iced::Renderer,
-    ) -> BTreeMap<usize, (f32, layout::Node)> {
-        let n_cells = self.keys.len();
-        let mut nodes: BTreeMap<usize, layout::Node> = BTreeMap::new();
-        let mut node_of = |list: &mut Self, state: &mut State, at: usize| -> f32 {
-            nodes
-                .entry(at)
-                .or_insert_with(|| list.measure(state, renderer, at))
-                .size()
-                .height
-        };
-        // Upwards: the view begins above the anchor.
-        while state.offset < 0.0 {
-            if state.anchor_at == 0 {
-                state.offset = 0.0;
-                break;
-            }
-            state.anchor_at -= 1;
-            state.offset += node_of(self, state, state.anchor_at);
-        }
-        // Downwards: the view begins below the anchor.
-        loop {
-            let height = node_of(self, state, state.anchor_at);
-            if state.offset < height || state.anchor_at + 1 >= n_cells {
-                break;
-            }
-            state.offset -= height;
-            state.anchor_at += 1;
-        }
-        // The view ends below the last cell: go back up.
-        let mut filled = -state.offset;
-        let mut at = state.anchor_at;
-        while at < n_cells && filled < state.height {
-            filled += node_of(self, state, at);
-            at += 1;
-        }
-        let mut missing = (state.height - filled).max(0.0);
-        while missing > 0.0 {
-            let room = state.offset;
-            if room >= missing {
-                state.offset -= missing;
-                break;
-            }
-            missing -= room;
-            if state.anchor_at == 0 {
-                state.offset = 0.0;
-                break;
-            }
-            state.anchor_at -= 1;
-            state.offset = node_of(self, state, state.anchor_at);
-        }
-        state.anchor = self.keys[state.anchor_at];
-
-        // The cells in view, one more on each side, and the focused one with its neighbours.
-        let mut wanted: Vec<usize> = Vec::new();
-        let mut y = -state.offset;
-        let mut at = state.anchor_at;
-        while at < n_cells && y < state.height {
-            wanted.push(at);
-            y += node_of(self, state, at);
-            at += 1;
-        }
-        wanted.extend((at < n_cells).then_some(at));
-        wanted.extend(state.anchor_at.checked_sub(1));
-        let focused = state
-            .focused
-            .and_then(|key| self.keys.iter().position(|known| *known == key));
-        if let Some(focused) = focused {
-            wanted.extend([focused, (focused + 1).min(n_cells - 1)]);
-            wanted.extend(focused.checked_sub(1));
-        }
-        wanted.sort_unstable();
-        wanted.dedup();
-        for &at in &wanted {
-            let _ = node_of(self, state, at);
-        }
-        self.built.retain(|at, _| wanted.contains(at));
-
-        let top = state.scrolled(&self.keys);
-        let mut placed = BTreeMap::new();
-        for at in wanted {
-            let above: f32 = self.keys[..at]
-                .iter()
-                .map(|key| state.height_of(*key))
-                .sum();
-            let node = nodes.remove(&at).expect("every wanted cell was measured");
-            let _ = placed.insert(at, (above - top, node));
-        }
-        placed
-    }
-
     fn reveal(&mut self, tree: &mut Tree, layout: Layout<'_>, renderer: &iced::Renderer) {
         let state = tree.state.downcast_mut::<State>();
         let mut find = focus::Find::default();
@@ -539,6 +370,7 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for List<'a, M> {
         } else {
             mouse::Cursor::Unavailable
         };
+        layer::anew(renderer, view, state.nudge(layout));
         for (at, child) in state.laid.iter().zip(layout.children()) {
             let (Some(element), Some(tree)) =
                 (self.built.get(at), state.trees.get(&self.keys[*at]))
@@ -553,14 +385,15 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for List<'a, M> {
                 });
             }
         }
-        if let Some(bar) = self.scroller(state, bounds) {
+        let bar = self.scroller(state, bounds);
+        layer::standing(renderer, bar, |renderer, bar| {
             let colors = theme::colors(theme);
             let color = if state.is_hovered || state.drag.is_some() {
                 colors.quiet
             } else {
                 colors.hairline
             };
-            renderer.with_layer(bar, |renderer| {
+            {
                 renderer.fill_quad(
                     Quad {
                         bounds: bar,
@@ -572,8 +405,8 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for List<'a, M> {
                     },
                     Background::Color(color),
                 );
-            });
-        }
+            }
+        });
     }
 
     fn mouse_interaction(

@@ -1,0 +1,189 @@
+//! What the study screen does with figures, grids and tables.
+
+use crate::app::disk;
+use crate::app::part::{block, cell, table};
+use crate::app::run;
+use crate::app::screen::study::{Action, Message, StudyScreen};
+use crate::app::session::dataset;
+use crate::app::sheet::Part;
+use crate::app::widget::picture::Told;
+use crate::base::number::{self, Precision};
+use crate::base::problem::Problem;
+use crate::base::real::Real;
+use crate::figure::ink::Palette;
+use crate::figure::{Meaning, svg};
+use crate::store;
+use crate::study::cell::CellId;
+use crate::study::edit::Edit;
+use crate::study::settings::Settings;
+use crate::study::settings::fit::Strength;
+use std::path::PathBuf;
+
+impl StudyScreen {
+    pub(super) fn in_block(&mut self, id: CellId, at: usize, message: block::Message) -> Action {
+        match message {
+            block::Message::Figure(Told::Pressed(meaning)) => {
+                let is_thing = |meaning: &Meaning| !matches!(meaning, Meaning::Strength(_));
+                let meaning = meaning.filter(is_thing);
+                self.highlight = if self.highlight == meaning {
+                    None
+                } else {
+                    meaning
+                };
+                Action::None
+            }
+            block::Message::Figure(Told::Dragged(strength)) => self.set_strength(id, strength),
+            block::Message::CopyFigure(at) => match self.figure(id, at) {
+                Some((_, drawing)) => {
+                    self.said = Some("The figure has been copied as SVG.".to_owned());
+                    Action::Run(iced::clipboard::write(drawing))
+                }
+                None => Action::None,
+            },
+            block::Message::SaveFigure(_) => self.save_figure(id, at),
+        }
+    }
+
+    /// A figure's name and its drawing on paper.
+    pub(super) fn figure(&self, id: CellId, at: usize) -> Option<(String, String)> {
+        let Some(Part::Figure(figure)) = self.sheet(id)?.parts.get(at) else {
+            return None;
+        };
+        let name = format!("{} {}", self.title(id), figure.name);
+        Some((name, svg::svg(&figure.picture, &Palette::paper())))
+    }
+
+    pub(super) fn save_figure(&mut self, id: CellId, at: usize) -> Action {
+        let Some((name, drawing)) = self.figure(id, at) else {
+            return Action::None;
+        };
+        // Beside the study; else where the program was started.
+        let folder = self
+            .session
+            .path()
+            .and_then(|path| path.parent().map(PathBuf::from))
+            .unwrap_or_else(disk::start);
+        let clean: String = name
+            .chars()
+            .map(|letter| {
+                if letter.is_alphanumeric() {
+                    letter
+                } else {
+                    '-'
+                }
+            })
+            .collect();
+        Action::Run(run::off_thread(move || {
+            let written = write_figure(&folder, clean.trim_matches('-'), &drawing);
+            Message::FigureSaved(written)
+        }))
+    }
+
+    /// The strength that was dragged on a figure is set by hand, in the fit that the figure is of.
+    pub(super) fn set_strength(&mut self, id: CellId, strength: f64) -> Action {
+        let study = self.session.study();
+        let fit = match study.cell(id).map(|cell| &cell.settings) {
+            Some(Settings::Fit(_)) => Some(id),
+            Some(Settings::Question(question)) => question.fit.0,
+            Some(
+                Settings::Data(_)
+                | Settings::Prepare(_)
+                | Settings::Compare(_)
+                | Settings::Score(_)
+                | Settings::Prose(_),
+            )
+            | None => None,
+        };
+        let Some(fit) = fit else {
+            return Action::None;
+        };
+        let Some(Settings::Fit(settings)) = study.cell(fit).map(|cell| &cell.settings) else {
+            return Action::None;
+        };
+        // Three digits are as fine as a hand is.
+        let rounded: f64 = format!("{strength:.2e}").parse().unwrap_or(strength);
+        let Some(real) = Real::new(rounded) else {
+            return Action::None;
+        };
+        let mut settings = settings.clone();
+        settings.strength = Strength::ByHand(real);
+        let words = number::text(rounded, Precision::Significant(3));
+        let label = format!("drag the strength to {words}");
+        let settings = Settings::Fit(settings);
+        self.commit(&label, vec![Edit::Configure { id: fit, settings }])
+    }
+
+    pub(super) fn open_table(&mut self, id: CellId) -> Action {
+        let data = dataset(self.session.study(), self.session.standings(), id);
+        let settings = self.session.study().cell(id).map(|cell| &cell.settings);
+        if let (Some(dataset), Some(Settings::Data(settings))) = (data, settings) {
+            self.table = Some(table::Open::new(id, dataset, settings));
+            return Action::None;
+        }
+        // Results from the record have facts but no table; a run brings it.
+        self.said = Some(
+            "The table is read when the study is brought up to date; then it can be opened."
+                .to_owned(),
+        );
+        let task = self.session.bring_up_to_date();
+        Action::Run(task.map(Message::Session))
+    }
+
+    /// The open table shows what its cell gives now.
+    pub(super) fn follow_table(&mut self) {
+        let Some(table) = &mut self.table else {
+            return;
+        };
+        let id = table.cell;
+        let data = dataset(self.session.study(), self.session.standings(), id);
+        let settings = self.session.study().cell(id).map(|cell| &cell.settings);
+        if let (Some(dataset), Some(Settings::Data(settings))) = (data, settings) {
+            table.refresh(dataset, settings);
+        }
+    }
+
+    pub(super) fn in_table(&mut self, message: table::Message) -> Action {
+        let Some(table) = &mut self.table else {
+            return Action::None;
+        };
+        let id = table.cell;
+        let settings = self.session.study().cell(id).map(|cell| &cell.settings);
+        let Some(Settings::Data(settings)) = settings else {
+            return Action::None;
+        };
+        match table.update(message, settings) {
+            table::Action::None => Action::None,
+            table::Action::Close => {
+                self.table = None;
+                Action::None
+            }
+            table::Action::Commit { label, settings } => {
+                let settings = *settings;
+                self.commit(&label, vec![Edit::Configure { id, settings }])
+            }
+            table::Action::Run(task) => {
+                let wrap =
+                    move |message| Message::Cell(id, Box::new(cell::Message::Table(message)));
+                Action::Run(task.map(wrap))
+            }
+        }
+    }
+}
+
+/// Writes a drawing, and a picture of it at twice its size, and says where.
+fn write_figure(folder: &std::path::Path, name: &str, drawing: &str) -> Result<String, Problem> {
+    let path = folder.join(format!("{name}.svg"));
+    store::replace(&path, drawing.as_bytes())?;
+    let picture = crate::export::picture::png(drawing, 2.0).map_err(|error| {
+        Problem::new(
+            "figure-unpainted",
+            "The figure could not be painted as PNG.",
+        )
+        .details(format!("{error:?}"))
+    })?;
+    store::replace(&folder.join(format!("{name}.png")), &picture)?;
+    Ok(format!(
+        "The figure has been written to {}.",
+        path.display()
+    ))
+}

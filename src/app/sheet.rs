@@ -4,6 +4,7 @@ use crate::app::widget::grid::{Align, Field, Source};
 use crate::app::widget::sentence::{Piece, Role};
 use crate::base::hash::ContentHash;
 use crate::eval::fact::{FactColumn, FactValues};
+use crate::figure::Meaning;
 use crate::figure::layout;
 use crate::figure::picture::{Picture, Size};
 use crate::report::CellReport;
@@ -174,6 +175,30 @@ impl FactGrid {
     #[must_use]
     pub fn new(grid: Grid) -> Self {
         Self { grid }
+    }
+
+    /// What a row is about, where figures can show the same thing.
+    #[must_use]
+    pub fn meaning(&self, row: usize) -> Option<Meaning> {
+        let first = self.grid.columns.first()?;
+        let FactValues::Texts(names) = &first.values else {
+            return None;
+        };
+        let name = names.get(row)?.clone();
+        // Facts call their columns by these words.
+        match first.name.as_str() {
+            "predictor" => Some(Meaning::Predictor(name)),
+            "sample" => Some(Meaning::Sample(name)),
+            "unit" => Some(Meaning::Unit(name)),
+            "batch" => Some(Meaning::Batch(name)),
+            _ => None,
+        }
+    }
+
+    /// The first row that is about a thing.
+    #[must_use]
+    pub fn row_of(&self, meaning: &Meaning) -> Option<usize> {
+        (0..self.n_rows()).find(|row| self.meaning(*row).as_ref() == Some(meaning))
     }
 
     fn at(&self, column: usize) -> &FactColumn {

@@ -65,6 +65,14 @@ pub const LISTED: &[(&str, &str)] = &[
         "Ctrl C, Ctrl A in a table",
         "copy what is selected; select all",
     ),
+    (
+        "Enter in a table of an answer",
+        "make the row stand out in every figure and table",
+    ),
+    (
+        "←, →, with Shift; Enter, on a figure",
+        "move the penalty strength, finely; set it",
+    ),
     ("Ctrl Z, Ctrl Shift Z", "undo, redo"),
     ("Ctrl Enter", "bring up to date"),
     ("Ctrl S, Ctrl Shift S", "save, save under another name"),

@@ -297,6 +297,21 @@ impl Picture {
 }
 
 impl Ruler {
+    /// The horizontal place of a number; numbers outside count as the nearer end.
+    #[must_use]
+    pub fn x_at(&self, value: f64) -> f64 {
+        let share = match self.scale {
+            Scale::Linear | Scale::Percent | Scale::Names(_) => {
+                (value - self.low) / (self.high - self.low)
+            }
+            Scale::Log10 | Scale::Log10AndZero => {
+                let (low, high) = (self.low.log10(), self.high.log10());
+                (value.max(f64::MIN_POSITIVE).log10() - low) / (high - low)
+            }
+        };
+        self.rect.x + share.clamp(0.0, 1.0) * self.rect.width
+    }
+
     /// The number at a horizontal place; places outside count as the nearer end.
     #[must_use]
     pub fn value_at(&self, x: f64) -> f64 {

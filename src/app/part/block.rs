@@ -4,7 +4,7 @@ use crate::app::sheet::{Figure, Part};
 use crate::app::theme::Mode;
 use crate::app::theme::{container, space, text};
 use crate::app::widget::Element;
-use crate::app::widget::grid::Grid;
+use crate::app::widget::grid::{Grid, StandsOut};
 use crate::app::widget::picture::{Shown, Told};
 use crate::app::widget::press;
 use crate::app::widget::sentence::{Force, Piece, Role, Sentence, Setting};
@@ -18,6 +18,8 @@ use iced::{Alignment, Length};
 pub enum Message {
     /// A figure was pressed or dragged.
     Figure(Told),
+    /// A row of a grid was pressed.
+    Row(usize),
     /// A figure is to be copied as text of a drawing.
     CopyFigure(usize),
     /// A figure is to be written as a picture and a drawing.
@@ -33,6 +35,8 @@ pub struct Manner<'a> {
     pub force: Force,
     /// What stands out in every figure.
     pub highlight: Option<&'a Meaning>,
+    /// At which strength the fit is that the figures show.
+    pub strength: Option<f64>,
     /// Whether controls are hidden.
     pub is_reading: bool,
     /// In which letters running text is set.
@@ -93,12 +97,18 @@ pub fn view<'a>(part: &'a Part, at: usize, manner: Manner<'a>) -> Element<'a, Me
             .style(container::hairline)
             .into(),
         Part::Tabular(align, rows) => tabular(align, rows, manner),
-        Part::Grid(grid) => column![
-            text::heading(grid.grid.title.as_str()),
-            Grid::new(grid, space::GRID),
-        ]
-        .spacing(space::TIGHT)
-        .into(),
+        Part::Grid(grid) => {
+            let mut shown = Grid::new(grid, space::GRID).stands_out(StandsOut {
+                row: manner.highlight.and_then(|meaning| grid.row_of(meaning)),
+                column: None,
+            });
+            if !manner.is_reading && grid.meaning(0).is_some() {
+                shown = shown.on_row(Message::Row);
+            }
+            column![text::heading(grid.grid.title.as_str()), shown]
+                .spacing(space::TIGHT)
+                .into()
+        }
         Part::Figure(figure) => self::figure(figure, at, manner),
     }
 }
@@ -152,6 +162,7 @@ fn tabular<'a>(
 fn figure<'a>(figure: &'a Figure, at: usize, manner: Manner<'a>) -> Element<'a, Message> {
     let mut shown = Shown::new(figure.picture.clone(), figure.hash, manner.mode)
         .highlight(manner.highlight.cloned())
+        .strength(manner.strength)
         .paled(manner.force == Force::Paled);
     if !manner.is_reading {
         shown = shown.tell(Message::Figure);

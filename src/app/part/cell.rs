@@ -2,6 +2,7 @@
 
 use crate::app::editor;
 use crate::app::part::block::{self, Manner};
+use crate::app::part::strip::Progress;
 use crate::app::part::{offer, table};
 use crate::app::sheet::{self, Sheet};
 use crate::app::theme::button::Look;
@@ -58,6 +59,8 @@ pub enum Message {
     OpenTable,
     /// About the open table.
     Table(table::Message),
+    /// The run is stopped.
+    Stop,
     /// The folded notes are shown or hidden.
     Notes,
 }
@@ -79,6 +82,10 @@ pub struct Opened<'a> {
     pub table: Option<&'a table::Open>,
     /// What stands out in every figure.
     pub highlight: Option<&'a Meaning>,
+    /// At which strength the fit is that the figures show.
+    pub strength: Option<f64>,
+    /// How far it is and how long it will take, while it is being evaluated.
+    pub progress: Option<Progress>,
     /// Whether the notes stand in the page, because there is no margin.
     pub are_notes_folded: bool,
     /// Whether the folded notes are shown.
@@ -107,6 +114,7 @@ pub fn view<'a>(
         mode,
         force: if is_prose { Force::Current } else { force },
         highlight: opened.highlight,
+        strength: opened.strength,
         is_reading,
         setting: if is_prose {
             Setting::Reading
@@ -150,7 +158,7 @@ pub fn view<'a>(
         }
     }
     if let Some(table) = opened.table {
-        parts = parts.push(table.view().map(Message::Table));
+        parts = parts.push(table.view(opened.highlight).map(Message::Table));
     }
     if opened.is_offering && !is_reading {
         let offer = offer::view().map(Message::Offer);
@@ -188,7 +196,8 @@ fn header<'a>(
     };
     let word: Element<'a, Message> = match state {
         State::Current => text::accent(state.word()).into(),
-        State::Due | State::Working(_) | State::Waiting => text::quiet(state.word()).into(),
+        State::Working(share) => working(share, opened.progress, is_reading),
+        State::Due | State::Waiting => text::quiet(state.word()).into(),
         State::Stopped => text::attention(state.word()).into(),
         State::Failed => text::wrong(state.word()).into(),
     };
@@ -210,6 +219,20 @@ fn header<'a>(
             Message::More,
         ));
         line = line.push(word);
+    }
+    line.into()
+}
+
+/// How far a cell is that is being evaluated, and a way to stop it.
+fn working<'a>(share: f32, progress: Option<Progress>, is_reading: bool) -> Element<'a, Message> {
+    let progress = progress.unwrap_or(Progress { share, left: None });
+    let words = format!("{}, {}", State::Working(share).word(), progress.in_words());
+    let mut line = Row::new()
+        .spacing(space::SMALL)
+        .align_y(Alignment::Center)
+        .push(text::quiet(words));
+    if !is_reading {
+        line = line.push(press::words("Stop", Message::Stop).look(Look::Attention));
     }
     line.into()
 }

@@ -1,7 +1,7 @@
 //! The strip at the bottom: what is working, how far it is, and a way to stop it; or what was
 //! last said.
 
-use crate::app::run::Run;
+use crate::app::run::{Run, Working};
 use crate::app::theme::button::Look;
 use crate::app::theme::{container, space, text};
 use crate::app::widget::Element;
@@ -22,6 +22,36 @@ pub enum Message {
     Dismiss,
 }
 
+/// How far a cell is.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Progress {
+    /// From 0 to 1.
+    pub share: f32,
+    /// How long it will take, where that can be said.
+    pub left: Option<Duration>,
+}
+
+impl Progress {
+    /// How far the cell is that is being evaluated.
+    #[must_use]
+    pub fn of(working: Working) -> Self {
+        Self {
+            share: working.share,
+            left: working.left(),
+        }
+    }
+
+    /// The same in words.
+    #[must_use]
+    pub fn in_words(self) -> String {
+        let share = number::text(f64::from(self.share), Precision::Percent(0));
+        match self.left {
+            Some(left) => format!("{share}, about {} left", in_words(left)),
+            None => share,
+        }
+    }
+}
+
 /// The strip. What a run is at comes first; else what was last said.
 #[must_use]
 pub fn view<'a>(
@@ -36,14 +66,11 @@ pub fn view<'a>(
             let title = study
                 .cell(working.id)
                 .map_or("a removed cell", |cell| cell.title.as_str());
-            let share = number::text(f64::from(working.share), Precision::Percent(0));
-            let left = working.left().map_or_else(String::new, |left| {
-                format!(", about {} left", in_words(left))
-            });
+            let progress = Progress::of(working);
             row![
                 text::body(title),
                 progress::bar(working.share, space::PROGRESS_LENGTH),
-                text::quiet(format!("{share}{left}")),
+                text::quiet(progress.in_words()),
                 press::words("Stop", Message::Stop).look(Look::Attention),
             ]
         }

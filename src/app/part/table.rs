@@ -4,11 +4,12 @@
 use crate::app::theme::button::Look;
 use crate::app::theme::{input, space, text};
 use crate::app::widget::Element;
-use crate::app::widget::grid::{Align, Condition, Did, Field, Grid, Show, Source};
+use crate::app::widget::grid::{Align, Condition, Did, Field, Grid, Show, Source, StandsOut};
 use crate::app::widget::press;
 use crate::base::number::{self, Precision};
 use crate::base::problem::Problem;
 use crate::eval::kind::data::Dataset;
+use crate::figure::Meaning;
 use crate::study::cell::CellId;
 use crate::study::settings::Settings;
 use crate::study::settings::data::{Correction, Data, Exclusion, OutcomeSeen};
@@ -245,9 +246,10 @@ impl Open {
         }
     }
 
-    /// The table, with what is being recorded below it.
+    /// The table, with what is being recorded below it. The sample or predictor that stands out in
+    /// figures stands out in it, too.
     #[must_use]
-    pub fn view(&self) -> Element<'_, Message> {
+    pub fn view(&self, highlight: Option<&Meaning>) -> Element<'_, Message> {
         let whole = |count: usize| number::text(count as f64, Precision::Whole);
         let jump = text_input("jump to a column", &self.jump)
             .font(text::SANS)
@@ -271,6 +273,7 @@ impl Open {
         .align_y(Alignment::Center);
         let grid = Grid::new(&self.samples, space::GRID)
             .on(Message::Did)
+            .stands_out(self.samples.place_of(highlight))
             .show(self.show);
         let below: Element<'_, Message> = match &self.form {
             Some(form) => form.view(),
@@ -395,6 +398,30 @@ impl Samples {
 
     fn table(&self) -> &Table {
         &self.dataset.table
+    }
+
+    fn place_of(&self, highlight: Option<&Meaning>) -> StandsOut {
+        let columns = self.table().columns();
+        match highlight {
+            Some(Meaning::Sample(name)) => StandsOut {
+                row: self.dataset.names.iter().position(|sample| sample == name),
+                column: None,
+            },
+            Some(Meaning::Predictor(name)) => StandsOut {
+                row: None,
+                column: columns.iter().position(|column| column.name == *name),
+            },
+            Some(
+                Meaning::Unit(_)
+                | Meaning::Batch(_)
+                | Meaning::Pair(..)
+                | Meaning::Class(_)
+                | Meaning::Strength(_)
+                | Meaning::Part { .. }
+                | Meaning::Thing(_),
+            )
+            | None => StandsOut::default(),
+        }
     }
 
     fn name(&self, column: usize) -> &str {

@@ -258,6 +258,10 @@ impl StudyScreen {
                 }
             }
             cell::Message::Block(at, message) => self.in_block(id, at, message),
+            cell::Message::Stop => {
+                self.session.stop();
+                Action::None
+            }
             cell::Message::OpenTable => self.open_table(id),
             cell::Message::Table(message) => self.in_table(message),
             cell::Message::Notes => {

@@ -24,12 +24,27 @@ impl StudyScreen {
         match message {
             block::Message::Figure(Told::Pressed(meaning)) => {
                 let is_thing = |meaning: &Meaning| !matches!(meaning, Meaning::Strength(_));
-                let meaning = meaning.filter(is_thing);
-                self.highlight = if self.highlight == meaning {
-                    None
-                } else {
-                    meaning
+                self.stand_out(meaning.filter(is_thing));
+                Action::None
+            }
+            block::Message::Row(row) => {
+                let part = self.sheet(id).and_then(|sheet| sheet.parts.get(at));
+                let meaning = match part {
+                    Some(Part::Grid(grid)) => grid.meaning(row),
+                    Some(
+                        Part::Heading(_)
+                        | Part::Section(..)
+                        | Part::Words(_)
+                        | Part::List(_)
+                        | Part::Quote(_)
+                        | Part::Code(_)
+                        | Part::Rule
+                        | Part::Tabular(..)
+                        | Part::Figure(_),
+                    )
+                    | None => None,
                 };
+                self.stand_out(meaning);
                 Action::None
             }
             block::Message::Figure(Told::Dragged(strength)) => self.set_strength(id, strength),
@@ -42,6 +57,11 @@ impl StudyScreen {
             },
             block::Message::SaveFigure(_) => self.save_figure(id, at),
         }
+    }
+
+    /// A thing stands out in all figures and grids; the same once more no longer does.
+    fn stand_out(&mut self, meaning: Option<Meaning>) {
+        self.highlight = meaning.filter(|meaning| self.highlight.as_ref() != Some(meaning));
     }
 
     /// A figure's name and its drawing on paper.

@@ -1,6 +1,7 @@
 //! How the study screen is put together.
 
 use crate::app::part::{cell, head, margin, offer, strip, thread};
+use crate::app::run::Run;
 use crate::app::screen::study::{Columns, Message, StudyScreen};
 use crate::app::theme::button::Look;
 use crate::app::theme::{Mode, container, space};
@@ -135,6 +136,16 @@ impl StudyScreen {
             is_offering: self.offering == Some(Some(id)),
             table: self.table.as_ref().filter(|table| table.cell == id),
             highlight: self.highlight.as_ref(),
+            strength: standing
+                .outcome
+                .as_ref()
+                .and_then(|outcome| outcome.facts.value("chosen strength")),
+            progress: self
+                .session
+                .run()
+                .and_then(Run::working)
+                .filter(|working| working.id == id)
+                .map(strip::Progress::of),
             are_notes_folded: columns.margin == 0.0,
             are_notes_open: self.notes.contains(&id),
         };

@@ -141,6 +141,33 @@ impl<'a, M> Grid<'a, M> {
                 height: space::ROW,
             }
         };
+        // What stands out: its ground, and its name in strong letters.
+        let rows = state.first.row..state.first.row + view.n_rows;
+        let columns = state.first.column..state.first.column + view.n_columns;
+        let mut ground = |bounds: Rectangle| {
+            let quad = Quad {
+                bounds,
+                ..Quad::default()
+            };
+            renderer.fill_quad(quad, Background::Color(colors.hover));
+        };
+        if let Some(row) = self.stands_out.row.filter(|row| rows.contains(row)) {
+            ground(Rectangle {
+                x: view.body.x - state.names,
+                y: view.body.y + (row - state.first.row) as f32 * space::ROW,
+                width: view.body.width + state.names,
+                height: space::ROW,
+            });
+        }
+        if let Some(column) = self.stands_out.column.filter(|at| columns.contains(at)) {
+            ground(Rectangle {
+                height: view.n_rows as f32 * space::ROW,
+                ..place(At {
+                    row: state.first.row,
+                    column,
+                })
+            });
+        }
         if let Some((low, high)) = Self::selection(state) {
             let last = At {
                 row: (state.first.row + view.n_rows).saturating_sub(1),
@@ -304,14 +331,20 @@ impl<'a, M> Grid<'a, M> {
             area,
         );
         for at in 0..view.n_rows {
+            let is_out = self.stands_out.row == Some(state.first.row + at);
+            let (font, face, color) = if is_out {
+                (text::STRONG, Face::SansStrong, colors.ink)
+            } else {
+                (text::SANS, Face::Sans, colors.quiet)
+            };
             set(
                 renderer,
                 &Set {
                     text: &self.source.row(state.first.row + at),
                     field: field(view.body.y + at as f32 * space::ROW),
-                    font: text::SANS,
-                    face: Face::Sans,
-                    color: colors.quiet,
+                    font,
+                    face,
+                    color,
                     align: Align::Start,
                 },
                 area,

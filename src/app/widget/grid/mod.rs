@@ -8,7 +8,7 @@ mod draw;
 mod source;
 mod view;
 
-pub use crate::app::widget::grid::source::{Align, Condition, Did, Field, Show, Source};
+pub use crate::app::widget::grid::source::{Align, Condition, Did, Field, Show, Source, StandsOut};
 
 use crate::app::theme::{space, text};
 use crate::app::widget::Element;
@@ -38,8 +38,10 @@ pub struct Grid<'a, M> {
     source: &'a dyn Source,
     height: f32,
     on: Option<Box<dyn Fn(Did) -> M + 'a>>,
+    on_row: Option<Box<dyn Fn(usize) -> M + 'a>>,
     show: Show,
     id: Option<Id>,
+    stands_out: StandsOut,
 }
 
 impl<'a, M> Grid<'a, M> {
@@ -50,6 +52,8 @@ impl<'a, M> Grid<'a, M> {
             source,
             height,
             on: None,
+            on_row: None,
+            stands_out: StandsOut::default(),
             show: Show::default(),
             id: None,
         }
@@ -59,6 +63,20 @@ impl<'a, M> Grid<'a, M> {
     #[must_use]
     pub fn on(mut self, message: impl Fn(Did) -> M + 'a) -> Self {
         self.on = Some(Box::new(message));
+        self
+    }
+
+    /// The same, that tells when a row is pressed by its name, or opened.
+    #[must_use]
+    pub fn on_row(mut self, message: impl Fn(usize) -> M + 'a) -> Self {
+        self.on_row = Some(Box::new(message));
+        self
+    }
+
+    /// The same, in which a row or a column stands out. It is brought into view once.
+    #[must_use]
+    pub fn stands_out(mut self, stands_out: StandsOut) -> Self {
+        self.stands_out = stands_out;
         self
     }
 
@@ -126,6 +144,7 @@ struct State {
     last_press: Option<(Instant, At)>,
     served: u64,
     is_shifted: bool,
+    stood_out: StandsOut,
 }
 
 impl<'a, M> Grid<'a, M> {
@@ -248,6 +267,17 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for Grid<'a, M> {
                 self.show_at(state, view, at);
             }
         }
+        if self.stands_out != state.stood_out {
+            state.stood_out = self.stands_out;
+            let at = At {
+                row: self.stands_out.row.unwrap_or(state.first.row),
+                column: self.stands_out.column.unwrap_or(state.first.column),
+            };
+            if at.row < self.source.n_rows() && at.column < self.source.n_columns() {
+                let view = self.view(state, Rectangle::with_size(size));
+                self.show_at(state, view, at);
+            }
+        }
         layout::Node::new(size)
     }
 
@@ -280,6 +310,12 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for Grid<'a, M> {
         let tell = |shell: &mut Shell<'_, M>, did: Did| {
             if let Some(on) = &self.on {
                 shell.publish(on(did));
+            }
+            match (did, &self.on_row) {
+                (Did::Row(row) | Did::Opened { row, column: _ }, Some(on_row)) => {
+                    shell.publish(on_row(row));
+                }
+                (Did::Row(_) | Did::Opened { .. } | Did::At { .. } | Did::Head(_), _) => {}
             }
         };
         match event {

@@ -114,3 +114,12 @@ pub struct Show {
     /// Counts the requests; 0 is none.
     pub serial: u64,
 }
+
+/// What of a grid stands out: the same thing was pressed there or somewhere else.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
+pub struct StandsOut {
+    /// A row.
+    pub row: Option<usize>,
+    /// A column.
+    pub column: Option<usize>,
+}

@@ -1,32 +1,30 @@
 //! Painter two: a picture on the canvas, that answers the pointer.
 
-use crate::app::theme::Mode;
-use crate::app::theme::{self, space, text};
+mod paint;
+
+use crate::app::theme::{Mode, space};
 use crate::app::widget::Element;
+use crate::app::widget::focus::{self, Focus};
 use crate::app::widget::layer;
+use crate::app::widget::picture::paint::{Brush, level, paint, place, region, runs, told, turned};
 use crate::base::hash::ContentHash;
 use crate::base::number::{self, Precision};
-use crate::figure::ink::Ink;
-use crate::figure::picture::{
-    Anchor, Dash, Mark, Picture, Point as Place, Rect as Area, Spot, Stroke as Line, Turn, Word,
-};
+use crate::figure::picture::{Picture, Ruler, Spot, Turn};
 use crate::figure::{Meaning, Quantity};
 use iced::advanced::graphics::geometry;
 use iced::advanced::layout::{self, Layout};
 use iced::advanced::renderer::{self, Quad, Renderer as _};
-use iced::advanced::text::{LineHeight, Renderer as _, Wrapping};
-use iced::advanced::widget::{Tree, Widget, tree};
+use iced::advanced::widget::{Operation, Tree, Widget, tree};
 use iced::advanced::{Clipboard, Shell, mouse};
-use iced::widget::canvas::{self, Frame, LineDash, Path, Stroke};
-use iced::{
-    Background, Border, Color, Event, Length, Pixels, Point, Rectangle, Size, Vector, alignment,
-};
+use iced::keyboard::{self, key};
+use iced::widget::canvas;
+use iced::{Background, Event, Length, Point, Rectangle, Size, Vector};
 use std::sync::Arc;
 
-/// How long the strokes and gaps of a broken line are.
-const DASHES: [f32; 2] = [3.0, 3.0];
-/// How far the told words stand from the pointer.
-const ASIDE: f32 = 14.0;
+/// How far an arrow key moves the strength, in pixels.
+const STEP: f32 = 8.0;
+/// How far with Shift.
+const FINE: f32 = 1.0;
 
 /// What a picture tells the window.
 #[derive(Clone, Debug, PartialEq)]
@@ -45,6 +43,22 @@ pub struct Shown<'a, M> {
     highlight: Option<Meaning>,
     tell: Option<Box<dyn Fn(Told) -> M + 'a>>,
     is_paled: bool,
+    strength: Option<f64>,
+}
+
+/// Where the strength is being moved to, from the left of the picture, and by what.
+#[derive(Clone, Copy, Debug, PartialEq)]
+enum Drag {
+    Pointer(f32),
+    Keys(f32),
+}
+
+impl Drag {
+    const fn x(self) -> f32 {
+        match self {
+            Self::Pointer(x) | Self::Keys(x) => x,
+        }
+    }
 }
 
 impl<'a, M> Shown<'a, M> {
@@ -58,6 +72,7 @@ impl<'a, M> Shown<'a, M> {
             highlight: None,
             tell: None,
             is_paled: false,
+            strength: None,
         }
     }
 
@@ -75,33 +90,18 @@ impl<'a, M> Shown<'a, M> {
         self
     }
 
+    /// The same, of a fit at this strength: from there the keys move it.
+    #[must_use]
+    pub fn strength(mut self, strength: Option<f64>) -> Self {
+        self.strength = strength;
+        self
+    }
+
     /// The same, paled: it shows what is no longer current.
     #[must_use]
     pub fn paled(mut self, is_paled: bool) -> Self {
         self.is_paled = is_paled;
         self
-    }
-}
-
-/// How much of an ink is left of what is no longer current.
-const PALED: f32 = 0.45;
-
-/// How ink becomes colour.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-struct Brush {
-    mode: Mode,
-    is_paled: bool,
-}
-
-impl Brush {
-    fn ink(self, ink: Ink) -> Color {
-        let color = self.mode.colors().ink(ink);
-        let is_ground = matches!(ink, Ink::Ground);
-        if self.is_paled && !is_ground {
-            color.scale_alpha(PALED)
-        } else {
-            color
-        }
     }
 }
 
@@ -111,8 +111,8 @@ struct State {
     marks: Vec<canvas::Cache>,
     made_of: Option<(ContentHash, Brush)>,
     hovered: Option<Spot>,
-    /// Where the strength is being dragged to, from the left of the picture.
-    drag: Option<f32>,
+    drag: Option<Drag>,
+    focus: Focus,
     pressed: Option<Point>,
     highlight: canvas::Cache,
     highlighted: Option<Meaning>,
@@ -142,6 +142,19 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for Shown<'a, M> {
         layout::Node::new(Size::new(size.width as f32, size.height as f32))
     }
 
+    fn operate(
+        &mut self,
+        tree: &mut Tree,
+        layout: Layout<'_>,
+        _renderer: &iced::Renderer,
+        operation: &mut dyn Operation,
+    ) {
+        if self.tell.is_some() && self.strengths().is_some() {
+            let state = tree.state.downcast_mut::<State>();
+            operation.focusable(None, layout.bounds(), &mut state.focus);
+        }
+    }
+
     fn update(
         &mut self,
         tree: &mut Tree,
@@ -159,9 +172,9 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for Shown<'a, M> {
         let inside = cursor.position_over(shown).map(|at| at - origin);
         match event {
             Event::Mouse(mouse::Event::CursorMoved { .. } | mouse::Event::CursorLeft) => {
-                if state.drag.is_some() {
+                if let Some(Drag::Pointer(_)) = state.drag {
                     if let Some(at) = cursor.position().map(|at| at - origin) {
-                        state.drag = Some(at.x);
+                        state.drag = Some(Drag::Pointer(at.x));
                         shell.request_redraw();
                     }
                     return;
@@ -174,6 +187,12 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for Shown<'a, M> {
             }
             Event::Mouse(mouse::Event::ButtonPressed(mouse::Button::Left)) => {
                 state.pressed = inside;
+                let has_focus = inside.is_some() && self.tell.is_some();
+                if state.focus.0 != has_focus {
+                    state.focus = Focus(has_focus && self.strengths().is_some());
+                    state.drag = None;
+                    shell.request_redraw();
+                }
                 if let (Some(at), Some(_)) = (inside, &self.tell) {
                     let is_ruled = self
                         .picture
@@ -184,7 +203,7 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for Shown<'a, M> {
                         .spot_at(place(at))
                         .is_none_or(|spot| matches!(spot.meaning, Meaning::Strength(_)));
                     if is_ruled && is_handle {
-                        state.drag = Some(at.x);
+                        state.drag = Some(Drag::Pointer(at.x));
                         shell.request_redraw();
                     }
                     shell.capture_event();
@@ -192,11 +211,11 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for Shown<'a, M> {
             }
             Event::Mouse(mouse::Event::ButtonReleased(mouse::Button::Left)) => {
                 let from = state.pressed.take();
-                let dragged = state.drag.take();
+                let dragged = state.drag.take_if(|drag| matches!(drag, Drag::Pointer(_)));
                 let (Some(tell), Some(from)) = (&self.tell, from) else {
                     return;
                 };
-                if let Some(to) = dragged {
+                if let Some(to) = dragged.map(Drag::x) {
                     shell.request_redraw();
                     // A press without a way is a press, not a drag.
                     if (to - from.x).abs() >= space::TIGHT
@@ -215,6 +234,13 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for Shown<'a, M> {
                         shell.capture_event();
                     }
                 }
+            }
+            Event::Keyboard(keyboard::Event::KeyPressed {
+                key: keyboard::Key::Named(named),
+                modifiers,
+                ..
+            }) if state.focus.0 && !shell.is_event_captured() => {
+                self.steer(state, *named, *modifiers, shell);
             }
             _ => {}
         }
@@ -278,9 +304,12 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for Shown<'a, M> {
                 level(renderer, word, origin, self.brush());
             }
         }
+        if state.focus.0 {
+            focus::ring(renderer, theme, bounds.shrink(space::AIR + space::BAR));
+        }
         let dragged = state
             .drag
-            .and_then(|x| self.dragged(state, bounds.position(), x));
+            .and_then(|drag| self.dragged(state, bounds.position(), drag));
         let line = dragged.as_ref().map(|(line, _)| *line);
         let line = line.and_then(|line| line.intersection(&shown));
         layer::standing(renderer, line, |renderer, bounds| {
@@ -309,7 +338,7 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for Shown<'a, M> {
         _renderer: &iced::Renderer,
     ) -> mouse::Interaction {
         let state = tree.state.downcast_ref::<State>();
-        if state.drag.is_some() {
+        if let Some(Drag::Pointer(_)) = state.drag {
             return mouse::Interaction::ResizingHorizontally;
         }
         let shown = layout.bounds().intersection(viewport).unwrap_or_default();
@@ -344,6 +373,7 @@ impl<'a, M: 'a> Shown<'a, M> {
             state.marks.resize_with(n_caches, canvas::Cache::new);
             state.highlight.clear();
             state.hovered = None;
+            state.drag = None;
             state.made_of = Some((self.hash, self.brush()));
         }
         if state.highlighted != self.highlight {
@@ -352,266 +382,71 @@ impl<'a, M: 'a> Shown<'a, M> {
         }
     }
 
-    /// The upright line under the pointer while the strength is dragged, and its value.
-    fn dragged(&self, state: &State, origin: Point, x: f32) -> Option<(Rectangle, String)> {
-        let from = state.pressed?;
-        let ruler = self.picture.ruler_at(place(from))?;
-        let x = f64::from(x).clamp(ruler.rect.x, ruler.rect.right());
+    /// The ruler on which the strength can be moved.
+    fn strengths(&self) -> Option<&Ruler> {
+        let is_of_strengths = |ruler: &&Ruler| ruler.quantity == Quantity::Strength;
+        self.picture.rulers.iter().find(is_of_strengths)
+    }
+
+    /// Moves the strength by the keyboard: arrows move it, Enter sets it, any other key that
+    /// means something leaves it.
+    fn steer(
+        &self,
+        state: &mut State,
+        named: key::Named,
+        modifiers: keyboard::Modifiers,
+        shell: &mut Shell<'_, M>,
+    ) {
+        let (Some(ruler), Some(tell)) = (self.strengths(), &self.tell) else {
+            return;
+        };
+        let step = match (named, modifiers.shift()) {
+            (key::Named::ArrowLeft, true) => -FINE,
+            (key::Named::ArrowLeft, false) => -STEP,
+            (key::Named::ArrowRight, true) => FINE,
+            (key::Named::ArrowRight, false) => STEP,
+            (key::Named::Enter | key::Named::Space, _) => {
+                if let Some(Drag::Keys(x)) = state.drag.take() {
+                    shell.publish(tell(Told::Dragged(ruler.value_at(f64::from(x)))));
+                    shell.capture_event();
+                    shell.request_redraw();
+                }
+                return;
+            }
+            (key::Named::Escape | key::Named::Tab, _) => {
+                if state.drag.take().is_some() {
+                    shell.request_redraw();
+                }
+                return;
+            }
+            _ => return,
+        };
+        let from = match (state.drag, self.strength) {
+            (Some(drag), _) => drag.x(),
+            (None, Some(strength)) => ruler.x_at(strength) as f32,
+            (None, None) => (ruler.rect.x + ruler.rect.width / 2.0) as f32,
+        };
+        let (low, high) = (ruler.rect.x as f32, ruler.rect.right() as f32);
+        state.drag = Some(Drag::Keys((from + step).clamp(low, high)));
+        shell.capture_event();
+        shell.request_redraw();
+    }
+
+    /// The upright line where the strength is being moved to, and its value.
+    fn dragged(&self, state: &State, origin: Point, drag: Drag) -> Option<(Rectangle, String)> {
+        let (ruler, more) = match drag {
+            Drag::Pointer(_) => (self.picture.ruler_at(place(state.pressed?))?, ""),
+            Drag::Keys(_) => (self.strengths()?, "; Enter sets it"),
+        };
+        let x = f64::from(drag.x()).clamp(ruler.rect.x, ruler.rect.right());
         let at = Point::new(
             (origin.x + x as f32).round(),
             (origin.y + ruler.rect.y as f32).round(),
         );
         let size = Size::new(space::BAR, (ruler.rect.height as f32).round());
         let value = number::text(ruler.value_at(x), Precision::Significant(3));
-        Some((
-            Rectangle::new(at, size),
-            format!("penalty strength {value}"),
-        ))
-    }
-}
-
-/// Words beside the pointer, in a layer above everything.
-fn told(
-    renderer: &mut iced::Renderer,
-    theme: &iced::Theme,
-    words: Option<(Point, String)>,
-    shown: Rectangle,
-) {
-    let Some((at, words)) = words else {
-        layer::standing(renderer, None, |_, _| {});
-        return;
-    };
-    let colors = theme::colors(theme);
-    let face = crate::figure::font::Face::Sans;
-    let size = text::SMALL;
-    let width = crate::figure::metrics::width(&words, face, f64::from(size)) as f32;
-    let width = width.min(shown.width - 3.0 * space::SMALL);
-    let sheet = Size::new(
-        width + 2.0 * space::SMALL,
-        text::SMALL_LINE + 2.0 * space::TIGHT,
-    );
-    let x = if at.x + ASIDE + sheet.width > shown.x + shown.width {
-        (at.x - ASIDE - sheet.width).max(shown.x)
-    } else {
-        at.x + ASIDE
-    };
-    let lowest = (shown.y + shown.height - sheet.height).max(shown.y);
-    let y = (at.y - sheet.height - space::TIGHT).clamp(shown.y, lowest);
-    let bounds = Rectangle::new(Point::new(x.round(), y.round()), sheet);
-    layer::standing(renderer, bounds.intersection(&shown), |renderer, layer| {
-        renderer.fill_quad(
-            Quad {
-                bounds,
-                border: Border {
-                    color: colors.hairline,
-                    width: space::HAIR,
-                    radius: space::CORNER.into(),
-                },
-                ..Quad::default()
-            },
-            Background::Color(colors.sheet),
-        );
-        renderer.fill_text(
-            iced::advanced::Text {
-                content: words,
-                bounds: Size::new(f32::INFINITY, text::SMALL_LINE),
-                size: Pixels(size),
-                line_height: LineHeight::Absolute(Pixels(text::SMALL_LINE)),
-                font: text::SANS,
-                align_x: iced::advanced::text::Alignment::Left,
-                align_y: alignment::Vertical::Top,
-                shaping: iced::advanced::text::Shaping::Auto,
-                wrapping: Wrapping::None,
-            },
-            bounds.position() + Vector::new(space::SMALL, space::TIGHT),
-            colors.ink,
-            layer,
-        );
-    });
-}
-
-fn level(renderer: &mut iced::Renderer, word: &Word, origin: Vector, brush: Brush) {
-    let size = word.size as f32;
-    let line = size * 1.5;
-    // Always set from the left: the toolkit takes what changed of a text to lie to the right of
-    // its place, whatever its alignment.
-    let at = Point::new(
-        word.rect().x as f32,
-        word.at.y as f32 - text::baseline(size, line),
-    );
-    renderer.fill_text(
-        iced::advanced::Text {
-            content: word.text.clone(),
-            bounds: Size::new(f32::INFINITY, line),
-            size: Pixels(size),
-            line_height: LineHeight::Absolute(Pixels(line)),
-            font: text::face(word.face),
-            align_x: iced::advanced::text::Alignment::Left,
-            align_y: alignment::Vertical::Top,
-            shaping: iced::advanced::text::Shaping::Auto,
-            wrapping: Wrapping::None,
-        },
-        at + origin,
-        brush.ink(word.ink),
-        // The toolkit clips a text by its layer only where this says that it reaches beyond.
-        region(word.rect().grown(1.0)) + origin,
-    );
-}
-
-fn turned(frame: &mut Frame, word: &Word, brush: Brush) {
-    let size = word.size as f32;
-    let line = size * 1.5;
-    frame.with_save(|frame| {
-        frame.translate(Vector::new(word.at.x as f32, word.at.y as f32));
-        frame.rotate(-std::f32::consts::FRAC_PI_2);
-        frame.fill_text(canvas::Text {
-            content: word.text.clone(),
-            position: Point::new(0.0, -text::baseline(size, line)),
-            max_width: f32::INFINITY,
-            color: brush.ink(word.ink),
-            size: Pixels(size),
-            line_height: LineHeight::Absolute(Pixels(line)),
-            font: text::face(word.face),
-            align_x: match word.anchor {
-                Anchor::Start => iced::advanced::text::Alignment::Left,
-                Anchor::Middle => iced::advanced::text::Alignment::Center,
-                Anchor::End => iced::advanced::text::Alignment::Right,
-            },
-            align_y: alignment::Vertical::Top,
-            shaping: iced::advanced::text::Shaping::Auto,
-        });
-    });
-}
-
-/// Marks that are painted into one frame. The toolkit clips frames, not marks.
-struct Run<'a> {
-    seen: Option<Area>,
-    marks: &'a [Mark],
-}
-
-fn runs(marks: &[Mark]) -> Vec<Run<'_>> {
-    let mut runs = Vec::new();
-    let mut from = 0;
-    for (at, mark) in marks.iter().enumerate() {
-        if let Mark::Clip { rect, marks: inner } = mark {
-            if from < at {
-                runs.push(Run {
-                    seen: None,
-                    marks: &marks[from..at],
-                });
-            }
-            runs.push(Run {
-                seen: Some(*rect),
-                marks: inner,
-            });
-            from = at + 1;
-        }
-    }
-    if from < marks.len() {
-        runs.push(Run {
-            seen: None,
-            marks: &marks[from..],
-        });
-    }
-    runs
-}
-
-fn region(rect: Area) -> Rectangle {
-    Rectangle {
-        x: rect.x as f32,
-        y: rect.y as f32,
-        width: rect.width as f32,
-        height: rect.height as f32,
-    }
-}
-
-fn point(at: Place) -> Point {
-    Point::new(at.x as f32, at.y as f32)
-}
-
-fn place(at: Point) -> Place {
-    Place::new(f64::from(at.x), f64::from(at.y))
-}
-
-fn stroke(line: &Line, brush: Brush) -> Stroke<'static> {
-    Stroke {
-        style: canvas::Style::Solid(brush.ink(line.ink)),
-        width: line.width as f32,
-        line_cap: match line.dash {
-            Dash::Solid => canvas::LineCap::Round,
-            Dash::Dashed => canvas::LineCap::Butt,
-        },
-        line_join: canvas::LineJoin::Round,
-        line_dash: match line.dash {
-            Dash::Solid => LineDash::default(),
-            Dash::Dashed => LineDash {
-                segments: &DASHES,
-                offset: 0,
-            },
-        },
-    }
-}
-
-fn polyline(points: &[Place]) -> Path {
-    Path::new(|path| {
-        for (at, place) in points.iter().enumerate() {
-            if at == 0 {
-                path.move_to(point(*place));
-            } else {
-                path.line_to(point(*place));
-            }
-        }
-    })
-}
-
-fn paint(frame: &mut Frame, mark: &Mark, brush: Brush) {
-    let fill_and_outline =
-        |frame: &mut Frame, path: &Path, fill: Option<Ink>, outline: Option<Line>| {
-            if let Some(ink) = fill {
-                frame.fill(path, brush.ink(ink));
-            }
-            if let Some(line) = outline {
-                frame.stroke(path, stroke(&line, brush));
-            }
-        };
-    match mark {
-        Mark::Line {
-            points,
-            stroke: line,
-        } => {
-            frame.stroke(&polyline(points), stroke(line, brush));
-        }
-        Mark::Area { points, ink } => {
-            frame.fill(&polyline(points), brush.ink(*ink));
-        }
-        Mark::Disc {
-            center,
-            radius,
-            fill,
-            stroke,
-        } => {
-            let path = Path::circle(point(*center), *radius as f32);
-            fill_and_outline(frame, &path, *fill, *stroke);
-        }
-        Mark::Rect {
-            rect,
-            radius,
-            fill,
-            stroke,
-        } => {
-            let path = Path::rounded_rectangle(
-                Point::new(rect.x as f32, rect.y as f32),
-                Size::new(rect.width as f32, rect.height as f32),
-                (*radius as f32).into(),
-            );
-            fill_and_outline(frame, &path, *fill, *stroke);
-        }
-        // A clip is a run of its own; it holds no clip itself.
-        Mark::Clip { rect: _, marks } => {
-            for mark in marks {
-                paint(frame, mark, brush);
-            }
-        }
+        let words = format!("penalty strength {value}{more}");
+        Some((Rectangle::new(at, size), words))
     }
 }
 

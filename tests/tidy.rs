@@ -33,6 +33,7 @@ const OUTSIDE: &[(&str, &[&str])] = &[
     ("rand_chacha", &["numeric/random.rs"]),
     ("rand_core", &["numeric/random.rs"]),
     ("resvg", &["export"]),
+    ("rfd", &["app"]),
     ("rust_xlsxwriter", &["export"]),
     ("serde", &["store"]),
     ("serde_json", &["store", "cli"]),

@@ -4,8 +4,10 @@
     reason = "the window's own door to the disk: tables that the user chose, figures, listings"
 )]
 
+use crate::base::number::{self, Precision};
 use crate::base::problem::{Place, Problem};
 use std::path::{Path, PathBuf};
+use std::time::{Duration, Instant};
 
 /// What lies in a folder: folders first, each in alphabetical order.
 #[derive(Clone, Debug, Default, PartialEq, Eq)]
@@ -15,7 +17,16 @@ pub struct Listing {
     /// The folders in it.
     pub folders: Vec<String>,
     /// The files in it that are wanted.
-    pub files: Vec<String>,
+    pub files: Vec<Entry>,
+}
+
+/// A file of a folder.
+#[derive(Clone, Debug, PartialEq, Eq, PartialOrd, Ord)]
+pub struct Entry {
+    /// Its name.
+    pub name: String,
+    /// How large it is, for people.
+    pub size: String,
 }
 
 /// What a file is wanted for.
@@ -25,11 +36,25 @@ pub enum Wanted {
     Table,
     /// A study to open.
     Study,
-    /// A folder to write into.
-    Folder,
+    /// A figure to write.
+    Figure,
 }
 
 impl Wanted {
+    /// What it is called in a dialog, and how its files' names end.
+    const fn endings(self) -> (&'static str, &'static [&'static str]) {
+        match self {
+            Self::Table => (
+                "tables",
+                &[
+                    "csv", "tsv", "txt", "tab", "dat", "gz", "xlsx", "xlsm", "xlsb", "xls", "ods",
+                ],
+            ),
+            Self::Study => ("studies", &["widefold", "json"]),
+            Self::Figure => ("figures", &["png", "svg"]),
+        }
+    }
+
     fn takes(self, name: &str) -> bool {
         let name = name.to_lowercase();
         let ends = |endings: &[&str]| endings.iter().any(|ending| name.ends_with(ending));
@@ -39,7 +64,7 @@ impl Wanted {
                 ".xlsm", ".xlsb", ".xls", ".ods",
             ]),
             Self::Study => ends(&[".widefold", ".json"]),
-            Self::Folder => false,
+            Self::Figure => ends(&[".png", ".svg"]),
         }
     }
 }
@@ -71,16 +96,93 @@ pub fn list(folder: &Path, wanted: Wanted) -> Result<Listing, Problem> {
             continue;
         }
         // A link counts as what it leads to.
-        let is_folder = std::fs::metadata(entry.path()).is_ok_and(|what| what.is_dir());
-        if is_folder {
+        let what = std::fs::metadata(entry.path()).ok();
+        if what.as_ref().is_some_and(std::fs::Metadata::is_dir) {
             listing.folders.push(name);
         } else if wanted.takes(&name) {
-            listing.files.push(name);
+            let size = what.map_or_else(String::new, |what| size(what.len()));
+            listing.files.push(Entry { name, size });
         }
     }
     listing.folders.sort_unstable();
     listing.files.sort_unstable();
     Ok(listing)
+}
+
+/// A number of bytes for people, in units of thousands.
+fn size(bytes: u64) -> String {
+    const UNITS: [&str; 4] = ["kB", "MB", "GB", "TB"];
+    if bytes < 1000 {
+        return format!("{bytes} B");
+    }
+    let mut value = bytes as f64 / 1000.0;
+    let mut unit = UNITS[0];
+    for next in &UNITS[1..] {
+        if value < 999.5 {
+            break;
+        }
+        value /= 1000.0;
+        unit = next;
+    }
+    let digits = if value < 9.95 { 1 } else { 0 };
+    format!(
+        "{} {unit}",
+        number::text(value, Precision::Decimals(digits))
+    )
+}
+
+/// A path as it is typed, made whole: from the folder in which the program was started, and with
+/// `~` for the home folder.
+#[must_use]
+pub fn full(typed: &str) -> PathBuf {
+    let path = match (typed.strip_prefix("~/"), std::env::var_os("HOME")) {
+        (Some(rest), Some(home)) => PathBuf::from(home).join(rest),
+        (Some(_), None) | (None, _) => PathBuf::from(typed),
+    };
+    if path.is_absolute() {
+        path
+    } else {
+        start().join(path)
+    }
+}
+
+/// What came of asking the desktop for a file.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub enum Picked {
+    /// This one.
+    File(PathBuf),
+    /// None was chosen.
+    Nothing,
+    /// The desktop offers no dialog.
+    NoDialog,
+}
+
+/// A desktop that has no dialog answers at once; nobody can close one as quickly.
+const AT_ONCE: Duration = Duration::from_millis(250);
+
+/// Asks for a file in the desktop's own dialog, and waits for the answer.
+#[must_use]
+pub fn pick(wanted: Wanted, begin: &Path, name: Option<&str>) -> Picked {
+    let (what, endings) = wanted.endings();
+    let dialog = rfd::FileDialog::new()
+        .set_directory(begin)
+        .add_filter(what, endings);
+    let asked = Instant::now();
+    let picked = match name {
+        Some(name) => dialog.set_file_name(name).save_file(),
+        None => dialog.pick_file(),
+    };
+    match picked {
+        Some(path) => Picked::File(path),
+        None if asked.elapsed() < AT_ONCE => Picked::NoDialog,
+        None => Picked::Nothing,
+    }
+}
+
+/// Whether a path is a file.
+#[must_use]
+pub fn is_file(path: &Path) -> bool {
+    path.is_file()
 }
 
 /// Whether a path is a folder.

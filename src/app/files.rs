@@ -4,7 +4,7 @@ use crate::app::dialog::hand_over::Wish;
 use crate::app::disk;
 use crate::app::run;
 use crate::app::session::{Opened, Session};
-use crate::base::problem::{Place, Problem};
+use crate::base::problem::Problem;
 use crate::eval::standing::Standings;
 use crate::export::Occasion;
 use crate::export::workbook::workbook;
@@ -29,25 +29,30 @@ pub struct Found {
     pub opened: Opened,
     /// Problems that did not keep it from opening.
     pub problems: Vec<Problem>,
+    /// The unsaved work that it was made from, where it was rescued.
+    pub rescued: Option<Rescued>,
 }
 
 /// Opens a study.
 pub fn open(path: PathBuf) -> Task<Result<Arc<Found>, Problem>> {
     run::off_thread(move || {
-        let found = store::open(&path)?;
-        Ok(Arc::new(found_at(found, Some(path))))
+        let found = store::open_in_part(&path)?;
+        // A study that is not here as a whole has no place of its own: saving asks for one.
+        let place = (!found.is_from_newer()).then_some(path);
+        Ok(Arc::new(found_at(found, place, None)))
     })
 }
 
 /// Opens what was rescued; it has no place of its own until it is saved.
-pub fn open_rescued(rescued: Rescued) -> Task<Result<Arc<Found>, Problem>> {
+pub fn open_rescued(rescue: Rescue, rescued: Rescued) -> Task<Result<Arc<Found>, Problem>> {
     run::off_thread(move || {
-        let found = store::open(&rescued.file)?;
-        Ok(Arc::new(found_at(found, rescued.original)))
+        let found = rescue.open(&rescued)?;
+        let original = rescued.original.clone();
+        Ok(Arc::new(found_at(found, original, Some(rescued))))
     })
 }
 
-fn found_at(found: store::Opened, path: Option<PathBuf>) -> Found {
+fn found_at(found: store::Opened, path: Option<PathBuf>, rescued: Option<Rescued>) -> Found {
     Found {
         opened: Opened {
             study: found.study,
@@ -57,6 +62,7 @@ fn found_at(found: store::Opened, path: Option<PathBuf>) -> Found {
             path,
         },
         problems: found.problems,
+        rescued,
     }
 }
 
@@ -148,7 +154,9 @@ fn figure_folder(path: &Path) -> String {
 #[must_use]
 pub fn beside(session: &Session) -> PathBuf {
     match session.path() {
-        Some(path) => path.with_extension(""),
+        Some(path) => std::path::absolute(path)
+            .unwrap_or_else(|_| path.clone())
+            .with_extension(""),
         None => disk::start().join(wish(session.study())),
     }
 }
@@ -176,14 +184,11 @@ pub fn wish(study: &Study) -> String {
     }
 }
 
-/// Keeps unsaved work in the user's own folder.
-pub fn keep(session: &Session, name: String) -> Task<Result<(), Problem>> {
+/// Keeps unsaved work in a folder of the user's own.
+pub fn keep(rescue: Rescue, session: &Session, name: String) -> Task<Result<(), Problem>> {
     let copy = Copy::of(session);
     let original = session.path().cloned();
     run::off_thread(move || {
-        let Some(rescue) = Rescue::of_user() else {
-            return Ok(());
-        };
         let when = disk::moment();
         let kept = rescue::Session {
             name: &name,
@@ -194,28 +199,6 @@ pub fn keep(session: &Session, name: String) -> Task<Result<(), Problem>> {
     })
 }
 
-/// Forgets unsaved work: it has been saved, or given up.
-pub fn forget(name: &str) {
-    if let Some(rescue) = Rescue::of_user() {
-        // A copy that cannot be removed is offered once more, which does no harm.
-        let _ = rescue.forget(name);
-    }
-}
-
-/// What was rescued after a crash.
-#[must_use]
-pub fn left_behind() -> Vec<Rescued> {
-    Rescue::of_user().map_or_else(Vec::new, |rescue| rescue.left_behind().0)
-}
-
-/// Gives up what was rescued.
-///
-/// # Errors
-/// When it cannot be removed.
-pub fn decline(rescued: &Rescued) -> Result<(), Problem> {
-    Rescue::of_user().map_or(Ok(()), |rescue| rescue.decline(rescued))
-}
-
 /// The demo, where the program can find it: beside itself, or where it was started.
 #[must_use]
 pub fn demo() -> Option<PathBuf> {
@@ -223,10 +206,43 @@ pub fn demo() -> Option<PathBuf> {
     disk::first_of(NAME)
 }
 
-/// A problem that a file of this name is not there any more.
-#[must_use]
-pub fn vanished(path: &Path) -> Problem {
-    Problem::new("study-vanished", "The study is no longer where it was.")
-        .at(Place::file(&path.display().to_string()))
-        .mend("Look for it with “Open a study”.")
+/// Writes a figure as a drawing and as a picture of it at twice its size, and says where. A path
+/// that ends in the one or the other form gives this one only.
+pub fn save_figure(path: PathBuf, drawing: String) -> Task<Result<String, Problem>> {
+    run::off_thread(move || write_figure(&path, &drawing))
+}
+
+fn write_figure(path: &Path, drawing: &str) -> Result<String, Problem> {
+    let ending = path.extension().map(|ending| ending.to_ascii_lowercase());
+    let is = |form: &str| ending.as_deref() == Some(std::ffi::OsStr::new(form));
+    let with = |form: &str| {
+        let mut name = path.as_os_str().to_owned();
+        if !is(form) {
+            name.push(format!(".{form}"));
+        }
+        PathBuf::from(name)
+    };
+    let mut written = Vec::new();
+    if !is("png") {
+        store::replace(&with("svg"), drawing.as_bytes())?;
+        written.push(disk::name(&with("svg")));
+    }
+    if !is("svg") {
+        let picture = crate::export::picture::png(drawing, 2.0).map_err(|error| {
+            Problem::new(
+                "figure-unpainted",
+                "The figure could not be painted as PNG.",
+            )
+            .mend("Save it as a drawing: let its name end in .svg.")
+            .details(format!("{error:?}"))
+        })?;
+        store::replace(&with("png"), &picture)?;
+        written.push(disk::name(&with("png")));
+    }
+    let folder = path.parent().unwrap_or(Path::new(""));
+    Ok(format!(
+        "Wrote {} in {}.",
+        written.join(" and "),
+        folder.display()
+    ))
 }

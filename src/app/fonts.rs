@@ -1,6 +1,6 @@
 //! Which fonts the window sets its letters in: the bundled ones.
 
-use crate::figure::font::Face;
+use crate::figure::font::{self, Face};
 use iced::advanced::graphics::text::font_system;
 use std::borrow::Cow;
 use std::sync::Once;
@@ -33,7 +33,9 @@ fn load(keep: Keep) {
         .write()
         .expect("no other thread panics while it holds the fonts");
     let database = system.raw().db_mut();
-    let is_ours = |family: &str| Face::ALL.iter().any(|face| face.family() == family);
+    let is_ours = |family: &str| {
+        family == font::MONO_FAMILY || Face::ALL.iter().any(|face| face.family() == family)
+    };
     let gone: Vec<_> = database
         .faces()
         .filter(|face| match keep {
@@ -50,4 +52,5 @@ fn load(keep: Keep) {
     for face in Face::ALL {
         system.load_font(Cow::Borrowed(face.bytes()));
     }
+    system.load_font(Cow::Borrowed(font::MONO));
 }

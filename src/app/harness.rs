@@ -9,11 +9,51 @@ use crate::app::widget::Element;
 use iced::advanced::renderer::{self, Headless};
 use iced::advanced::widget::{Operation, operation};
 use iced::advanced::{Clipboard, clipboard, mouse};
+use iced::futures::StreamExt;
 use iced::keyboard::{self, key};
 use iced::{Event, Pixels, Point, Rectangle, Size, window};
 use iced_runtime::UserInterface;
 use iced_runtime::user_interface::Cache;
 use std::time::Instant;
+
+/// What came of a task that was done at once.
+#[derive(Debug)]
+pub struct Done<M> {
+    /// What it told the window.
+    pub messages: Vec<M>,
+    /// What it copied.
+    pub copied: Option<String>,
+    /// Whether the window was to be closed.
+    pub is_closed: bool,
+}
+
+/// Does a task to its end, on this thread, as the toolkit would do it beside the window.
+pub fn done<M: 'static>(task: iced::Task<M>) -> Done<M> {
+    let mut done = Done {
+        messages: Vec::new(),
+        copied: None,
+        is_closed: false,
+    };
+    let Some(mut actions) = iced_runtime::task::into_stream(task) else {
+        return done;
+    };
+    iced::futures::executor::block_on(async {
+        while let Some(action) = actions.next().await {
+            match action {
+                iced_runtime::Action::Output(message) => done.messages.push(message),
+                iced_runtime::Action::Clipboard(iced_runtime::clipboard::Action::Write {
+                    contents,
+                    ..
+                }) => done.copied = Some(contents),
+                iced_runtime::Action::Window(iced_runtime::window::Action::Close(_))
+                | iced_runtime::Action::Exit => done.is_closed = true,
+                // The focus and the like: there is no window whose it could be.
+                _ => {}
+            }
+        }
+    });
+    done
+}
 
 /// A window that is not shown.
 pub struct Harness {

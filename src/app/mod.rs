@@ -23,6 +23,7 @@ mod then;
 pub mod widget;
 
 use crate::app::dialog::hand_over::HandOver;
+use crate::app::dialog::problem::Told;
 use crate::app::dialog::{hand_over, keys as key_page, path, problem, unsaved};
 use crate::app::files::Found;
 use crate::app::screen::start::{self, Start};
@@ -33,8 +34,8 @@ use crate::app::theme::Mode;
 use crate::app::widget::Element;
 use crate::app::widget::inert::{Inert, Reach};
 use crate::base::problem::Problem;
-use crate::store::preferences::Preferences;
-use crate::store::rescue::Rescued;
+use crate::store::preferences::{Follow, Preferences};
+use crate::store::rescue::{Rescue, Rescued};
 use iced::widget::stack;
 use iced::{Size, Subscription, Task, window};
 use std::path::PathBuf;
@@ -74,6 +75,8 @@ pub enum Message {
     Saved(Result<(PathBuf, u64), Problem>),
     /// The exports have been written.
     HandedOver(Result<String, Problem>),
+    /// A figure has been written.
+    FigureSaved(Result<String, Problem>),
     /// Unsaved work has been kept.
     Kept(Result<(), Problem>),
     /// It is time to keep unsaved work.
@@ -89,9 +92,9 @@ enum Screen {
 
 /// What lies over it.
 enum Dialog {
-    Problem(Problem),
+    Problem(Told),
     Unsaved(Then),
-    Path(path::Path),
+    Path(Box<path::Path>),
     HandOver(HandOver),
     Keys,
 }
@@ -111,6 +114,8 @@ enum Then {
     Open(PathBuf),
     /// A study is started from tables.
     Start,
+    /// A study is started from this table.
+    StartFrom(PathBuf),
 }
 
 /// The window and all that it knows.
@@ -123,13 +128,25 @@ pub struct App {
     preferences: Preferences,
     /// Where the preferences are kept; nowhere in tests.
     folder: Option<PathBuf>,
+    /// Where unsaved work is kept; nowhere where no home folder is known.
+    shelter: Option<Rescue>,
     rescued: Vec<Rescued>,
+    /// The unsaved work that the open study was made from.
+    rescue: Option<Rescued>,
+    /// Where a study is being opened from.
+    opening: Option<PathBuf>,
+    /// Where a file is being written, to be asked again if that fails.
+    writing: Option<PathBuf>,
+    /// The exports that are being written, to be asked again if that fails.
+    handing: Option<HandOver>,
+    /// The drawing of the figure that is being saved.
+    drawing: Option<String>,
     /// What is done once the study has been saved.
     then: Then,
     size: Size,
     window: Option<window::Id>,
     /// Up to which edit unsaved work has been kept.
-    kept: u64,
+    kept: Option<u64>,
 }
 
 impl App {
@@ -139,17 +156,23 @@ impl App {
         let preferences = folder
             .as_ref()
             .map_or_else(Preferences::default, |folder| Preferences::load(folder));
-        let mut app = Self::with(preferences, folder, files::left_behind());
+        let mut app = Self::with(preferences, folder, Rescue::of_user());
         let welcome = app.show_welcome();
         let task = match study {
-            Some(path) => files::open(path).map(Message::Opened),
+            Some(path) => {
+                app.opening = Some(path.clone());
+                files::open(path).map(Message::Opened)
+            }
             None => welcome,
         };
         (app, Task::batch([task, beat()]))
     }
 
     /// The window of a user with these preferences.
-    fn with(preferences: Preferences, folder: Option<PathBuf>, rescued: Vec<Rescued>) -> Self {
+    fn with(preferences: Preferences, folder: Option<PathBuf>, shelter: Option<Rescue>) -> Self {
+        let rescued = shelter
+            .as_ref()
+            .map_or_else(Vec::new, |shelter| shelter.left_behind().0);
         let mode = match preferences.theme {
             crate::store::preferences::Theme::Dark => Mode::Dark,
             crate::store::preferences::Theme::Light | crate::store::preferences::Theme::System => {
@@ -161,14 +184,23 @@ impl App {
             dialog: None,
             mode,
             scale: preferences.text_scale as f32 / 100.0,
-            following: Following::AsIEdit,
+            following: match preferences.follow {
+                Follow::AsIEdit => Following::AsIEdit,
+                Follow::WhenAsked => Following::WhenAsked,
+            },
             preferences,
             folder,
+            shelter,
             rescued,
+            rescue: None,
+            opening: None,
+            writing: None,
+            handing: None,
+            drawing: None,
             then: Then::Stay,
             size: FIRST,
             window: None,
-            kept: 0,
+            kept: None,
         }
     }
 
@@ -226,7 +258,7 @@ impl App {
     pub fn view(&self) -> Element<'_, Message> {
         let screen = match &self.screen {
             Screen::Welcome(welcome) => welcome.view().map(Message::Welcome),
-            Screen::Start(start) => start.view(self.size).map(Message::Start),
+            Screen::Start(start) => start.view(self.size, self.mode).map(Message::Start),
             Screen::Study(study) => study.view(self.mode).map(Message::Study),
         };
         // The screen keeps its place in the tree, so that it is as it was when a dialog closes.
@@ -234,7 +266,7 @@ impl App {
             return stack![Inert::new(screen, Reach::Within)].into();
         };
         let content = match dialog {
-            Dialog::Problem(problem) => problem::view(problem).map(Message::Problem),
+            Dialog::Problem(told) => problem::view(told).map(Message::Problem),
             Dialog::Unsaved(_) => {
                 let title = self
                     .study()

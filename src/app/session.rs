@@ -272,6 +272,11 @@ impl Session {
         }
     }
 
+    /// Notes that the study as it was opened is not what lies at its place: it was rescued.
+    pub fn unsaved(&mut self) {
+        self.history.unsaved();
+    }
+
     /// Turns following on or off.
     pub fn follow(&mut self, following: Following) -> Task<Message> {
         self.following = following;

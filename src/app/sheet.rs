@@ -123,7 +123,8 @@ fn part(block: &Block, width: f32) -> Part {
 pub fn pieces(paragraph: &Paragraph) -> Vec<Piece> {
     let piece = |span: &Span| {
         let role = match span {
-            Span::Text(_) | Span::Code(_) | Span::Name(_) | Span::Formula(_) => Role::Plain,
+            Span::Text(_) | Span::Name(_) | Span::Formula(_) => Role::Plain,
+            Span::Code(_) => Role::Code,
             // Nothing is ever fetched, so that an address is text.
             Span::Link { .. } => Role::Plain,
             Span::Strong(_) => Role::Strong,
@@ -242,16 +243,6 @@ impl Source for FactGrid {
             FactValues::Numbers(_) => Align::End,
             FactValues::Texts(_) => Align::Start,
         }
-    }
-
-    fn letters(&self, column: usize) -> usize {
-        // The first rows stand for all: facts of one column are of one sort.
-        const ROWS: usize = 60;
-        let n_rows = self.n_rows().min(ROWS);
-        (0..n_rows)
-            .map(|row| self.at(column).shown(row).chars().count())
-            .max()
-            .unwrap_or(0)
     }
 }
 

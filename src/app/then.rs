@@ -1,19 +1,22 @@
 //! What the window does with what happens to it.
 
 use crate::app::dialog::hand_over::{self, HandOver};
+use crate::app::dialog::problem::{Told, Way};
 use crate::app::dialog::{FIELD, keys as key_page, path, problem, unsaved};
+use crate::app::disk;
 use crate::app::files::{self, Found};
 use crate::app::screen::start::{self, Start};
 use crate::app::screen::study::{self, StudyScreen};
 use crate::app::screen::welcome::{self, Welcome};
-use crate::app::session::Opened;
+use crate::app::session::{Following, Opened};
 use crate::app::shortcut::Shortcut;
 use crate::app::theme::Mode;
 use crate::app::{App, Dialog, Message, Screen, Then, beat};
 use crate::base::problem::Problem;
 use crate::export;
 use crate::report::Context;
-use crate::store::preferences::Theme;
+use crate::store::preferences::{Follow, Theme};
+use crate::store::rescue::Rescued;
 use crate::study::Study;
 use iced::widget::operation;
 use iced::{Task, window};
@@ -38,12 +41,26 @@ impl App {
             Message::Shortcut(shortcut) => self.shortcut(shortcut),
             Message::Window(id, event) => self.window(id, event),
             Message::Opened(Ok(found)) => self.opened(&found),
-            Message::Opened(Err(problem)) => self.tell(problem),
+            Message::Opened(Err(problem)) => self.not_opened(problem),
             Message::Saved(result) => self.saved(result),
-            Message::HandedOver(Ok(words)) => self.say(words),
-            Message::HandedOver(Err(problem)) => self.tell(problem),
+            Message::HandedOver(Ok(words)) => {
+                self.handing = None;
+                self.say(words)
+            }
+            Message::HandedOver(Err(problem)) => self.not_handed_over(problem),
+            Message::FigureSaved(Ok(words)) => {
+                self.drawing = None;
+                self.say(words)
+            }
+            Message::FigureSaved(Err(problem)) => {
+                self.show_path(path::Purpose::Figure, Some(problem))
+            }
             // Work that cannot be kept is told once; the study itself is not touched by it.
-            Message::Kept(Ok(())) => Task::none(),
+            Message::Kept(Ok(())) => {
+                // The new copy holds what the rescued one held.
+                self.settle_rescue();
+                Task::none()
+            }
             Message::Kept(Err(problem)) => self.say(problem.to_string()),
             Message::Beat => Task::batch([self.keep(), beat()]),
         }
@@ -54,18 +71,44 @@ impl App {
         self.screen = Screen::Welcome(Welcome {
             recent: self.preferences.recent.clone(),
             demo: files::demo(),
-            rescued: self
-                .rescued
-                .iter()
-                .map(|rescued| rescued.file.clone())
-                .collect(),
+            rescued: self.rescued.clone(),
         });
         operation::focus(welcome::FIELD)
     }
 
     fn tell(&mut self, problem: Problem) -> Task<Message> {
-        self.dialog = Some(Dialog::Problem(problem));
+        self.tell_with(problem, Vec::new())
+    }
+
+    /// Tells a problem with ways out of it.
+    fn tell_with(&mut self, problem: Problem, ways: Vec<Way>) -> Task<Message> {
+        self.dialog = Some(Dialog::Problem(Told { problem, ways }));
         operation::focus(FIELD)
+    }
+
+    /// A study could not be opened; what was open before is still there.
+    fn not_opened(&mut self, problem: Problem) -> Task<Message> {
+        let mut ways = vec![Way::LookFor];
+        if let Some(path) = self.opening.take() {
+            if self.preferences.recent.contains(&path) {
+                ways.push(Way::Forget(path));
+            } else if problem.code.0 == "not-a-study" {
+                ways.push(Way::StartFrom(path));
+            }
+        }
+        self.tell_with(problem, ways)
+    }
+
+    /// The exports could not be written: they are asked for again, as they were wished.
+    fn not_handed_over(&mut self, problem: Problem) -> Task<Message> {
+        match self.handing.take() {
+            Some(mut dialog) if self.dialog.is_none() => {
+                dialog.refuse(problem);
+                self.dialog = Some(Dialog::HandOver(dialog));
+                operation::focus(FIELD)
+            }
+            Some(_) | None => self.tell(problem),
+        }
     }
 
     fn say(&mut self, words: String) -> Task<Message> {
@@ -98,13 +141,16 @@ impl App {
             },
             welcome::Message::Rescued(file) => {
                 match self.rescued.iter().find(|rescued| rescued.file == file) {
-                    Some(rescued) => files::open_rescued(rescued.clone()).map(Message::Opened),
+                    Some(rescued) => self.open_rescued(rescued.clone()),
                     None => Task::none(),
                 }
             }
             welcome::Message::GiveUp(file) => {
                 let given_up = self.rescued.iter().find(|rescued| rescued.file == file);
-                let result = given_up.map_or(Ok(()), files::decline);
+                let result = match (&self.shelter, given_up) {
+                    (Some(shelter), Some(rescued)) => shelter.decline(rescued),
+                    (Some(_) | None, _) => Ok(()),
+                };
                 self.rescued.retain(|rescued| rescued.file != file);
                 let shown = self.show_welcome();
                 match result {
@@ -138,6 +184,10 @@ impl App {
             start::Action::Leave => self.show_welcome(),
             start::Action::Begin(opened, notes) => {
                 let task = self.show_study(*opened);
+                if let Screen::Study(study) = &mut self.screen {
+                    // What was said of the tables lies nowhere yet.
+                    study.session_mut().unsaved();
+                }
                 let words = notes.join(" ");
                 Task::batch([task, self.say(words)])
             }
@@ -146,17 +196,25 @@ impl App {
 
     fn open(&mut self, path: PathBuf) -> Task<Message> {
         self.dialog = None;
+        self.opening = Some(path.clone());
         files::open(path).map(Message::Opened)
     }
 
     fn opened(&mut self, found: &Arc<Found>) -> Task<Message> {
+        self.opening = None;
+        // What was kept of the study that was open before has been saved or given up.
+        self.forget();
         let opened = found.opened.clone();
         if let Some(path) = &opened.path {
             self.note_recent(&path.clone());
         }
         let task = self.show_study(opened);
+        if let (Some(_), Screen::Study(study)) = (&found.rescued, &mut self.screen) {
+            study.session_mut().unsaved();
+        }
+        self.rescue = found.rescued.clone();
         match found.problems.first() {
-            // Every problem is told, one after the other; the first comes first.
+            // Every problem is told; the first comes first.
             Some(problem) => {
                 let mut first = problem.clone();
                 for other in &found.problems[1..] {
@@ -165,6 +223,30 @@ impl App {
                 Task::batch([task, self.tell(first)])
             }
             None => task,
+        }
+    }
+
+    fn open_rescued(&mut self, rescued: Rescued) -> Task<Message> {
+        match &self.shelter {
+            Some(shelter) => files::open_rescued(shelter.clone(), rescued).map(Message::Opened),
+            None => Task::none(),
+        }
+    }
+
+    /// Forgets the unsaved work of this session: it has been saved, or given up.
+    fn forget(&self) {
+        if let Some(shelter) = &self.shelter {
+            // A copy that cannot be removed is offered once more, which does no harm.
+            let _ = shelter.forget(&session_name());
+        }
+    }
+
+    /// Rescued work that lies elsewhere now, or was given up, is not offered again.
+    fn settle_rescue(&mut self) {
+        if let (Some(rescue), Some(shelter)) = (self.rescue.take(), &self.shelter) {
+            // A copy that cannot be removed is offered once more, which does no harm.
+            let _ = shelter.decline(&rescue);
+            self.rescued.retain(|rescued| rescued.file != rescue.file);
         }
     }
 
@@ -186,7 +268,8 @@ impl App {
         let (study, task) = StudyScreen::new(opened, self.following, self.size);
         self.screen = Screen::Study(Box::new(study));
         self.dialog = None;
-        self.kept = 0;
+        self.kept = None;
+        self.rescue = None;
         task.map(Message::Study)
     }
 
@@ -203,13 +286,30 @@ impl App {
             study::Action::None => Task::none(),
             study::Action::Run(task) => task.map(Message::Study),
             study::Action::Save => self.save(Then::Stay),
+            study::Action::SaveAs => {
+                self.then = Then::Stay;
+                self.show_path(path::Purpose::Save, None)
+            }
+            study::Action::Open => self.ask_open(),
+            study::Action::Start => self.leave(Then::Start),
+            study::Action::Scale(steps) => self.set_scale(self.scale + SCALES.2 * steps as f32),
             study::Action::HandOver => self.ask_hand_over(),
             study::Action::Close => self.leave(Then::Welcome),
             study::Action::Keys => self.show_keys(),
             study::Action::Turn => self.turn(),
-            study::Action::Followed(following) => {
+            study::Action::Followed(following, task) => {
                 self.following = following;
-                Task::none()
+                self.preferences.follow = match following {
+                    Following::AsIEdit => Follow::AsIEdit,
+                    Following::WhenAsked => Follow::WhenAsked,
+                };
+                self.save_preferences();
+                task.map(Message::Study)
+            }
+            study::Action::SaveFigure { wish, drawing } => {
+                self.drawing = Some(drawing);
+                self.writing = Some(wish);
+                self.show_path(path::Purpose::Figure, None)
             }
             study::Action::Tell(problem) => self.tell(problem),
         }
@@ -217,10 +317,35 @@ impl App {
 
     fn problem(&mut self, message: problem::Message) -> Task<Message> {
         match (message, &self.dialog) {
-            (problem::Message::Copy, Some(Dialog::Problem(problem))) => {
-                iced::clipboard::write(problem::details(problem))
+            (problem::Message::Copy, Some(Dialog::Problem(told))) => {
+                iced::clipboard::write(problem::details(&told.problem))
             }
-            (problem::Message::Copy | problem::Message::Done, _) => self.close_dialog(),
+            (problem::Message::Take(at), Some(Dialog::Problem(told))) => {
+                match told.ways.get(at).cloned() {
+                    Some(way) => self.take_way(way),
+                    None => self.close_dialog(),
+                }
+            }
+            (problem::Message::Copy | problem::Message::Take(_) | problem::Message::Done, _) => {
+                self.close_dialog()
+            }
+        }
+    }
+
+    fn take_way(&mut self, way: Way) -> Task<Message> {
+        self.dialog = None;
+        match way {
+            Way::LookFor => self.leave(Then::AskOpen),
+            Way::Forget(path) => {
+                self.preferences.forget_recent(&path);
+                self.save_preferences();
+                match self.screen {
+                    Screen::Welcome(_) => self.show_welcome(),
+                    Screen::Start(_) | Screen::Study(_) => Task::none(),
+                }
+            }
+            Way::SaveAs => self.show_path(path::Purpose::Save, None),
+            Way::StartFrom(path) => self.leave(Then::StartFrom(path)),
         }
     }
 
@@ -242,7 +367,7 @@ impl App {
     fn go_on(&mut self, then: Then) -> Task<Message> {
         self.dialog = None;
         if !self.is_unsaved() || matches!(then, Then::Quit | Then::Welcome) {
-            files::forget(&session_name());
+            self.forget();
         }
         match then {
             Then::Stay => Task::none(),
@@ -251,9 +376,10 @@ impl App {
                 None => iced::exit(),
             },
             Then::Welcome => self.show_welcome(),
-            Then::AskOpen => self.show_path(path::Purpose::Open),
+            Then::AskOpen => self.show_path(path::Purpose::Open, None),
             Then::Open(path) => self.open(path),
             Then::Start => self.begin_start(),
+            Then::StartFrom(path) => self.start_from(path),
         }
     }
 
@@ -263,7 +389,10 @@ impl App {
         };
         match message {
             unsaved::Message::Stay => Task::none(),
-            unsaved::Message::GiveUp => self.go_on(then),
+            unsaved::Message::GiveUp => {
+                self.settle_rescue();
+                self.go_on(then)
+            }
             unsaved::Message::Save => self.save(then),
         }
     }
@@ -274,13 +403,23 @@ impl App {
         };
         self.then = then;
         match study.session().path() {
-            Some(path) => files::save(study.session(), path.clone()).map(Message::Saved),
-            None => self.show_path(path::Purpose::Save),
+            Some(path) => {
+                let path = path.clone();
+                self.write_study(path)
+            }
+            None => self.show_path(path::Purpose::Save, None),
         }
     }
 
+    fn write_study(&mut self, path: PathBuf) -> Task<Message> {
+        let Screen::Study(study) = &self.screen else {
+            return Task::none();
+        };
+        self.writing = Some(path.clone());
+        files::save(study.session(), path).map(Message::Saved)
+    }
+
     fn saved(&mut self, result: Result<(PathBuf, u64), Problem>) -> Task<Message> {
-        let then = std::mem::replace(&mut self.then, Then::Stay);
         match result {
             Ok((path, n_edits)) => {
                 self.note_recent(&path);
@@ -288,15 +427,18 @@ impl App {
                     study.say(format!("Saved as {}.", path.display()));
                     study.session_mut().saved(path, n_edits);
                 }
-                files::forget(&session_name());
+                self.writing = None;
+                self.forget();
+                self.settle_rescue();
+                let then = std::mem::replace(&mut self.then, Then::Stay);
                 if then == Then::Stay {
                     Task::none()
                 } else {
                     self.go_on(then)
                 }
             }
-            // What was wanted next does not happen: nothing is lost.
-            Err(problem) => self.tell(problem),
+            // What was wanted next waits: another place is asked for, and nothing is lost.
+            Err(problem) => self.show_path(path::Purpose::Save, Some(problem)),
         }
     }
 
@@ -304,15 +446,27 @@ impl App {
         self.leave(Then::AskOpen)
     }
 
-    fn show_path(&mut self, purpose: path::Purpose) -> Task<Message> {
-        let begin = self
+    fn show_path(&mut self, purpose: path::Purpose, why: Option<Problem>) -> Task<Message> {
+        let own = self
             .study()
             .and_then(|study| study.session().path().cloned());
-        let wish = self.study().map_or_else(String::new, |study| {
-            format!("{}.widefold", files::wish(study.session().study()))
-        });
-        let (dialog, task) = path::Path::new(purpose, begin.as_deref(), &wish);
-        self.dialog = Some(Dialog::Path(dialog));
+        let wish = match purpose {
+            path::Purpose::Figure => self.writing.as_deref().map_or_else(String::new, disk::name),
+            path::Purpose::Open | path::Purpose::Save => {
+                self.study().map_or_else(String::new, |study| {
+                    format!("{}.widefold", files::wish(study.session().study()))
+                })
+            }
+        };
+        // What could not be written is asked for again where it was wished.
+        let begin = match (purpose, &why) {
+            (path::Purpose::Open, _) | (path::Purpose::Save, None) => own,
+            (path::Purpose::Save, Some(_)) | (path::Purpose::Figure, _) => {
+                self.writing.clone().or(own)
+            }
+        };
+        let (dialog, task) = path::Path::new(purpose, begin.as_deref(), &wish, why);
+        self.dialog = Some(Dialog::Path(Box::new(dialog)));
         task.map(Message::Path)
     }
 
@@ -330,11 +484,16 @@ impl App {
             }
             path::Action::Take(path) => {
                 self.dialog = None;
-                match (purpose, &self.screen) {
-                    (path::Purpose::Save, Screen::Study(study)) => {
-                        files::save(study.session(), path).map(Message::Saved)
-                    }
-                    (path::Purpose::Save | path::Purpose::Open, _) => self.open(path),
+                match purpose {
+                    path::Purpose::Save => self.write_study(path),
+                    path::Purpose::Figure => match self.drawing.clone() {
+                        Some(drawing) => {
+                            self.writing = Some(path.clone());
+                            files::save_figure(path, drawing).map(Message::FigureSaved)
+                        }
+                        None => Task::none(),
+                    },
+                    path::Purpose::Open => self.open(path),
                 }
             }
         }
@@ -365,7 +524,9 @@ impl App {
             (hand_over::Action::Leave, _) => self.close_dialog(),
             (hand_over::Action::Write(wish), Screen::Study(study)) => {
                 let task = files::hand_over(study.session(), wish).map(Message::HandedOver);
-                self.dialog = None;
+                if let Some(Dialog::HandOver(dialog)) = self.dialog.take() {
+                    self.handing = Some(dialog);
+                }
                 task
             }
             (hand_over::Action::Write(_), Screen::Welcome(_) | Screen::Start(_)) => {
@@ -428,7 +589,8 @@ impl App {
     fn study_shortcut(&mut self, shortcut: Shortcut) -> Task<Message> {
         let Screen::Study(study) = &mut self.screen else {
             return match (shortcut, &self.screen) {
-                (Shortcut::Escape | Shortcut::Close, Screen::Start(_)) => self.show_welcome(),
+                (Shortcut::Close, Screen::Start(_)) => self.show_welcome(),
+                (Shortcut::Escape, Screen::Start(_)) => self.start(start::Message::Escape),
                 _ => Task::none(),
             };
         };
@@ -436,7 +598,10 @@ impl App {
             Shortcut::Undo => study.undo(),
             Shortcut::Redo => study.redo(),
             Shortcut::Save => return self.save(Then::Stay),
-            Shortcut::SaveAs => return self.show_path(path::Purpose::Save),
+            Shortcut::SaveAs => {
+                self.then = Then::Stay;
+                return self.show_path(path::Purpose::Save, None);
+            }
             Shortcut::HandOver => return self.ask_hand_over(),
             Shortcut::BringUpToDate => study.bring_up_to_date(),
             Shortcut::Read => {
@@ -493,31 +658,40 @@ impl App {
         }
         match &mut self.screen {
             Screen::Start(start) => start.take(path).map(Message::Start),
-            Screen::Welcome(_) => {
-                let begun = self.begin_start();
-                match &mut self.screen {
-                    Screen::Start(start) => {
-                        Task::batch([begun, start.take(path).map(Message::Start)])
-                    }
-                    Screen::Welcome(_) | Screen::Study(_) => begun,
-                }
+            Screen::Welcome(_) => self.start_from(path),
+            Screen::Study(study) => {
+                let action = study.dropped(path);
+                self.act(action)
             }
-            // A table over an open study: a word of a Data cell takes it, not the window.
-            Screen::Study(_) => Task::none(),
+        }
+    }
+
+    /// Starts from a table.
+    fn start_from(&mut self, path: PathBuf) -> Task<Message> {
+        let begun = self.begin_start();
+        match &mut self.screen {
+            Screen::Start(start) => Task::batch([begun, start.take(path).map(Message::Start)]),
+            Screen::Welcome(_) | Screen::Study(_) => begun,
         }
     }
 
     /// Keeps unsaved work, if there is any that has not been kept.
-    fn keep(&mut self) -> Task<Message> {
+    pub fn keep(&mut self) -> Task<Message> {
         let Screen::Study(study) = &self.screen else {
             return Task::none();
         };
         let session = study.session();
-        if !session.is_modified() || session.n_edits() == self.kept {
+        let n_edits = Some(session.n_edits());
+        if !session.is_modified() || n_edits == self.kept {
             return Task::none();
         }
-        self.kept = session.n_edits();
-        files::keep(session, session_name()).map(Message::Kept)
+        self.kept = n_edits;
+        match &self.shelter {
+            Some(shelter) => {
+                files::keep(shelter.clone(), session, session_name()).map(Message::Kept)
+            }
+            None => Task::none(),
+        }
     }
 }
 

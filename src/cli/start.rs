@@ -92,6 +92,7 @@ fn wishes(arguments: &Start) -> Result<Wishes, Problem> {
         orientation: arguments.sideways.then_some(Orientation::SamplesInColumns),
         sheet: arguments.sheet.clone(),
         fit: fit(arguments)?,
+        ..Wishes::default()
     })
 }
 

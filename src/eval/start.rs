@@ -49,6 +49,12 @@ pub struct Wishes {
     pub covariates: Vec<String>,
     /// Columns to leave out.
     pub ignored: Vec<String>,
+    /// The column with the order of measurement.
+    pub order: Option<String>,
+    /// The column with the weights of the samples.
+    pub weight: Option<String>,
+    /// How each table is read; what is not said is guessed.
+    pub reading: Vec<Options>,
     /// Whether samples are columns in the first table.
     pub orientation: Option<Orientation>,
     /// The sheet of the first workbook.
@@ -129,12 +135,13 @@ fn first_options(wishes: &Wishes, at: usize) -> Options {
     as_text.extend(wishes.samples.clone());
     as_text.extend(wishes.unit.clone());
     as_text.extend(wishes.batch.clone());
-    Options {
-        orientation: if at == 0 { wishes.orientation } else { None },
-        sheet: if at == 0 { wishes.sheet.clone() } else { None },
-        as_text,
-        ..Options::default()
+    let mut options = wishes.reading.get(at).cloned().unwrap_or_default();
+    options.as_text.extend(as_text);
+    if at == 0 {
+        options.orientation = wishes.orientation.or(options.orientation);
+        options.sheet = wishes.sheet.clone().or(options.sheet);
     }
+    options
 }
 
 /// The source with every interpretation written down.
@@ -171,6 +178,8 @@ fn data_settings(
         wishes.samples.as_ref(),
         wishes.unit.as_ref(),
         wishes.batch.as_ref(),
+        wishes.order.as_ref(),
+        wishes.weight.as_ref(),
     ];
     let also = wishes.covariates.iter().chain(&wishes.ignored);
     for name in named.into_iter().flatten().chain(also) {
@@ -193,6 +202,9 @@ fn data_settings(
         samples.as_deref(),
         wishes.unit.as_deref(),
         wishes.batch.as_deref(),
+        wishes.order.as_deref(),
+        wishes.weight.as_deref(),
+        event_column(&kind),
     ]
     .into_iter()
     .flatten()
@@ -220,12 +232,23 @@ fn data_settings(
         sample_name: samples,
         unit: wishes.unit.clone(),
         batch: wishes.batch.clone(),
+        order: wishes.order.clone(),
+        weight: wishes.weight.clone(),
         covariates: wishes.covariates.clone(),
         ignored: wishes.ignored.clone(),
         ..Data::default()
     };
     exclude_without_outcome(&mut data, first, notes);
     Ok((data, shape))
+}
+
+/// The column that says whether the event happened; it is no predictor.
+fn event_column(kind: &OutcomeKind) -> Option<&str> {
+    match kind {
+        OutcomeKind::Time { event } => Some(event),
+        OutcomeKind::Count { exposure } => exposure.as_deref(),
+        OutcomeKind::Measured | OutcomeKind::YesNo { .. } | OutcomeKind::Classes => None,
+    }
 }
 
 fn no_such_column(name: &str, tables: &[ReadTable]) -> Problem {

@@ -17,6 +17,12 @@ pub enum Face {
     Symbols,
 }
 
+/// The family of the font whose letters keep their places; figures never use it.
+pub const MONO_FAMILY: &str = "Noto Sans Mono";
+
+/// The file of that font.
+pub const MONO: &[u8] = include_bytes!("../../resources/fonts/NotoSansMono-Regular.ttf");
+
 impl Face {
     /// All of them.
     pub const ALL: [Self; 6] = [

@@ -1,6 +1,7 @@
 //! The readable form: one JSON text that names its tables by relative path. It holds no results.
 
 use crate::base::problem::{Place, Problem};
+use crate::store::format::Newer;
 use crate::store::format::print::print;
 use crate::store::packed::tables;
 use crate::store::record::Record;
@@ -19,8 +20,8 @@ use std::path::{Component, Path, PathBuf};
 /// A table that is missing or has changed is told as a problem; the study opens all the same.
 ///
 /// # Errors
-/// A [`Problem`] when the text is no study, or one of a newer format.
-pub fn open(bytes: &[u8], path: &Path) -> Result<Opened, Problem> {
+/// A [`Problem`] when the text is no study, or one of a newer format that is refused.
+pub fn open(bytes: &[u8], path: &Path, newer: Newer) -> Result<Opened, Problem> {
     let file = disk::name_of(path);
     let finder = RefCell::new(Finder {
         folder: folder_of(path),
@@ -29,7 +30,7 @@ pub fn open(bytes: &[u8], path: &Path) -> Result<Opened, Problem> {
         problems: Vec::new(),
     });
     let table = |name: &str, hash| finder.borrow_mut().find(name, hash);
-    let read = format::read(bytes, &file, &table)?;
+    let read = format::read(bytes, &file, &table, newer)?;
     let finder = finder.into_inner();
     let mut problems = read.problems;
     for problem in finder.problems {

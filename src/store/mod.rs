@@ -11,6 +11,7 @@ pub mod record;
 pub mod rescue;
 
 use crate::base::problem::{Place, Problem};
+use crate::store::format::Newer;
 use crate::study::Study;
 use crate::study::ledger::Ledger;
 use crate::study::settings::data::TableSource;
@@ -71,6 +72,15 @@ pub struct Opened {
     pub form: Form,
 }
 
+impl Opened {
+    /// Whether a newer version has saved the study, so that not all of it may be here.
+    #[must_use]
+    pub fn is_from_newer(&self) -> bool {
+        let is_newer = |problem: &Problem| problem.code.0 == format::NEWER;
+        self.problems.iter().any(is_newer)
+    }
+}
+
 /// Opens a study of either form; the content decides which it is.
 ///
 /// # Errors
@@ -81,12 +91,26 @@ pub fn open(path: &Path) -> Result<Opened, Problem> {
     open_bytes(path, &bytes)
 }
 
+/// Opens a study as [`open`] does, and of one from a newer version as much as this version knows;
+/// [`Opened::is_from_newer`] tells it then.
+///
+/// # Errors
+/// As [`open`], but a study of a newer format only when nothing of it can be read.
+pub fn open_in_part(path: &Path) -> Result<Opened, Problem> {
+    let bytes = disk::read(path).map_err(|error| disk::not_read(path, "the study", &error))?;
+    open_form(path, &bytes, Newer::InPart)
+}
+
 /// Opens a study from the bytes of its file. The readable form looks for its tables from the
 /// folder of `path`.
 ///
 /// # Errors
 /// As [`open`].
 pub fn open_bytes(path: &Path, bytes: &[u8]) -> Result<Opened, Problem> {
+    open_form(path, bytes, Newer::Refused)
+}
+
+fn open_form(path: &Path, bytes: &[u8], newer: Newer) -> Result<Opened, Problem> {
     let file = disk::name_of(path);
     let text = bytes.strip_prefix(b"\xef\xbb\xbf").unwrap_or(bytes);
     let text = text.trim_ascii_start();
@@ -94,8 +118,8 @@ pub fn open_bytes(path: &Path, bytes: &[u8]) -> Result<Opened, Problem> {
         None => Err(Problem::new("study-empty", "The file is empty.")
             .at(Place::file(&file))
             .mend("Take an earlier copy of the study.")),
-        Some(b'P') if bytes.starts_with(b"PK") => packed::open(bytes, &file),
-        Some(b'{') => bare::open(bytes, path),
+        Some(b'P') if bytes.starts_with(b"PK") => packed::open(bytes, &file, newer),
+        Some(b'{') => bare::open(bytes, path, newer),
         Some(_) => Err(Problem::new("not-a-study", "This file is not a study.")
             .at(Place::file(&file))
             .mend(

@@ -2,8 +2,8 @@
 
 use crate::base::problem::{Place, Problem};
 use crate::store::archive::{self, ABOUT, Entry, STUDY, Unpacked};
-use crate::store::format;
 use crate::store::format::print::print;
+use crate::store::format::{self, Newer};
 use crate::store::record::{self, Record};
 use crate::store::{Form, Opened};
 use crate::study::Study;
@@ -64,8 +64,8 @@ pub fn bytes(
 /// Opens a packed study.
 ///
 /// # Errors
-/// A [`Problem`] when the study itself cannot be read, or is of a newer format.
-pub fn open(bytes: &[u8], file: &str) -> Result<Opened, Problem> {
+/// A [`Problem`] when the study itself cannot be read, or is of a newer format that is refused.
+pub fn open(bytes: &[u8], file: &str, newer: Newer) -> Result<Opened, Problem> {
     let is_wanted =
         |name: &str| name == STUDY || source_of(name).is_some() || record::cell_of(name).is_some();
     let mut unpacked = archive::unpack(bytes, file, &is_wanted)?;
@@ -75,7 +75,7 @@ pub fn open(bytes: &[u8], file: &str) -> Result<Opened, Problem> {
         let source = hash.unwrap_or_else(SourceId::unknown);
         (source, name.to_owned())
     };
-    let read = format::read(&text, file, &table)?;
+    let read = format::read(&text, file, &table, newer)?;
     let mut problems = Vec::new();
     if unpacked.is_cut_off {
         problems.push(cut_off(file));

@@ -31,6 +31,27 @@ impl Theme {
     }
 }
 
+/// When results follow an edit.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
+pub enum Follow {
+    /// By themselves.
+    #[default]
+    AsIEdit,
+    /// When they are asked for.
+    WhenAsked,
+}
+
+impl Follow {
+    const ALL: [Self; 2] = [Self::AsIEdit, Self::WhenAsked];
+
+    const fn word(self) -> &'static str {
+        match self {
+            Self::AsIEdit => "as-i-edit",
+            Self::WhenAsked => "when-asked",
+        }
+    }
+}
+
 /// What the user likes.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct Preferences {
@@ -40,6 +61,8 @@ pub struct Preferences {
     pub theme: Theme,
     /// The size of text in percent of the usual one, from 50 to 300.
     pub text_scale: u32,
+    /// When results follow an edit.
+    pub follow: Follow,
     /// Fields of a newer version, kept.
     others: Map<String, Value>,
 }
@@ -50,6 +73,7 @@ impl Default for Preferences {
             recent: Vec::new(),
             theme: Theme::System,
             text_scale: USUAL_SCALE,
+            follow: Follow::default(),
             others: Map::new(),
         }
     }
@@ -84,10 +108,16 @@ impl Preferences {
             .shift_remove("text-scale")
             .and_then(|scale| scale.as_u64());
         let scale = scale.and_then(|scale| u32::try_from(scale).ok());
+        let follow = map.shift_remove("results-follow");
+        let follow = follow.as_ref().and_then(Value::as_str);
+        let follow = Follow::ALL
+            .into_iter()
+            .find(|known| Some(known.word()) == follow);
         Self {
             recent: recent.take(MOST_RECENT).map(PathBuf::from).collect(),
             theme: theme.unwrap_or_default(),
             text_scale: scale.unwrap_or(USUAL_SCALE).clamp(50, 300),
+            follow: follow.unwrap_or_default(),
             others: map,
         }
     }
@@ -102,11 +132,17 @@ impl Preferences {
         group.put("recent", recent.collect::<Vec<_>>());
         group.put("theme", self.theme.word());
         group.put("text-scale", self.text_scale);
+        group.put("results-follow", self.follow.word());
         for (name, value) in &self.others {
             group.put(name, value.clone());
         }
         disk::make_folder(folder)?;
         disk::replace(&file_in(folder), print(&group.value()).as_bytes())
+    }
+
+    /// Forgets a study that was open, such as one that is no longer there.
+    pub fn forget_recent(&mut self, study: &Path) {
+        self.recent.retain(|known| known != study);
     }
 
     /// Notes that a study was open: it is now the first of the recent ones.

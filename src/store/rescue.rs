@@ -175,8 +175,11 @@ fn look_into(file: &Path) -> Result<Rescued, Problem> {
     })
 }
 
-/// Whether another process of this number is running. Where the system does not say, none is: an
-/// offer too many does less harm than one too few.
+/// Whether another process of this number is running this program. Where the system does not say,
+/// none is: an offer too many does less harm than one too few. Numbers are given out again after a
+/// restart, so that the name of the program counts, too.
 fn is_running(process: u32) -> bool {
-    process != std::process::id() && Path::new("/proc").join(process.to_string()).exists()
+    let name = |process: &str| disk::read(&Path::new("/proc").join(process).join("comm")).ok();
+    let other = name(&process.to_string());
+    process != std::process::id() && other.is_some() && other == name("self")
 }

@@ -104,6 +104,11 @@ impl History {
         self.saved = self.serial();
     }
 
+    /// Notes that the study as it is now lies nowhere but here, such as work that was rescued.
+    pub fn unsaved(&mut self) {
+        self.saved = u64::MAX;
+    }
+
     fn serial(&self) -> u64 {
         self.past.last().map_or(0, |step| step.serial)
     }

@@ -20,6 +20,8 @@ use widefold::study::settings::fit::{Fit, Judge, Plan, Scheme, Strength};
 pub struct Bench {
     /// The window.
     pub app: App,
+    /// What was copied last.
+    pub copied: Option<String>,
     harness: Harness,
 }
 
@@ -51,8 +53,13 @@ fn table() -> String {
     text
 }
 
-/// The study, evaluated and recorded.
-fn study() -> Opened {
+/// The study, evaluated and recorded; evaluated once for all tests.
+pub fn recorded() -> Opened {
+    static ONCE: std::sync::OnceLock<Opened> = std::sync::OnceLock::new();
+    ONCE.get_or_init(evaluated).clone()
+}
+
+fn evaluated() -> Opened {
     let plan = |parts| Plan {
         scheme: Scheme::Units,
         parts,
@@ -100,20 +107,82 @@ impl Bench {
     /// A window of a size on the study.
     pub fn new(width: f32, height: f32) -> Self {
         let size = iced::Size::new(width, height);
+        Self::on(App::on_study(recorded(), size, Mode::Light), size)
+    }
+
+    /// A window of a size on the study, light or dark.
+    pub fn in_mode(size: iced::Size, mode: Mode) -> Self {
+        let mut opened = recorded();
+        // A place that is the same on every machine.
+        opened.path = Some("/dairy/sweet-dishes.widefold".into());
+        Self::on(App::on_study(opened, size, mode), size)
+    }
+
+    /// A window on whatever it shows.
+    pub fn on(app: App, size: iced::Size) -> Self {
+        let mode = app.mode();
         let mut bench = Self {
-            app: App::on_study(study(), size, Mode::Light),
-            harness: Harness::new(width, height, Mode::Light),
+            app,
+            copied: None,
+            harness: Harness::new(size.width, size.height, mode),
         };
         bench.act(&[]);
         bench
+    }
+
+    /// Tells the window something, and does what comes of it beside the window, until nothing
+    /// more comes.
+    pub fn send(&mut self, message: widefold::app::Message) {
+        let task = self.app.update(message);
+        self.finish(task);
+        self.act(&[]);
+    }
+
+    /// Does a task, and what comes of it, to its end.
+    pub fn finish(&mut self, task: iced::Task<widefold::app::Message>) {
+        let done = widefold::app::harness::done(task);
+        self.copied = done.copied.or(self.copied.take());
+        for message in done.messages {
+            let task = self.app.update(message);
+            self.finish(task);
+        }
+    }
+
+    /// A picture of the window.
+    pub fn shot(&mut self, scale: f32) -> widefold::app::harness::Shot {
+        self.harness.shot(self.app.view(), scale)
+    }
+
+    /// The cell with a title.
+    pub fn cell(&self, title: &str) -> widefold::study::cell::CellId {
+        let study = self.app.study().expect("a study is open");
+        let cell = study.session().study().titled(title);
+        cell.unwrap_or_else(|| panic!("there is no cell “{title}”"))
+            .id
+    }
+
+    /// The position of the first figure among the blocks of a cell.
+    pub fn first_figure(&self, id: widefold::study::cell::CellId) -> usize {
+        use widefold::report::block::Block;
+        let study = self.app.study().expect("a study is open");
+        let session = study.session();
+        let context = widefold::report::Context {
+            study: session.study(),
+            standings: session.standings(),
+            ledger: session.ledger(),
+        };
+        let report = widefold::report::cell(&context, id);
+        let is_figure = |block: &Block| matches!(block, Block::Figure(_));
+        let at = report.blocks.iter().position(is_figure);
+        at.expect("the cell has a figure")
     }
 
     /// Feeds events, and the messages that come of them, until nothing more comes.
     pub fn act(&mut self, events: &[iced::Event]) {
         let messages = self.harness.feed(self.app.view(), events);
         for message in messages {
-            // What would happen off the window's thread does not happen here.
-            let _ = self.app.update(message);
+            let task = self.app.update(message);
+            self.finish(task);
         }
         let _ = self.harness.feed(self.app.view(), &[]);
     }
@@ -187,6 +256,16 @@ impl Bench {
         study.session().undo_label().map(str::to_owned)
     }
 
+    /// Turns the wheel over the page, by so many pixels down.
+    pub fn scroll(&mut self, down: f32) {
+        use iced::mouse::{Event, ScrollDelta};
+        let delta = ScrollDelta::Pixels { x: 0.0, y: -down };
+        self.act(&[
+            widefold::app::harness::moved(940.0, 400.0),
+            iced::Event::Mouse(Event::WheelScrolled { delta }),
+        ]);
+    }
+
     /// Types letters where the focus is.
     pub fn type_letters(&mut self, letters: &str) {
         for letter in letters.chars() {
@@ -230,5 +309,43 @@ impl Bench {
         let mut next = iced::advanced::widget::operation::focusable::focus_next::<()>();
         self.harness.operate(self.app.view(), &mut next);
         self.act(&[]);
+    }
+}
+
+/// A folder of a test's own, which goes when the test ends.
+pub struct Folder(std::path::PathBuf);
+
+#[expect(
+    clippy::disallowed_methods,
+    reason = "tests of what the disk does need files of their own"
+)]
+impl Folder {
+    /// An empty folder.
+    pub fn new(name: &str) -> Self {
+        let name = format!("widefold-screens-{}-{name}", std::process::id());
+        let folder = std::env::temp_dir().join(name);
+        std::fs::create_dir_all(&folder).unwrap();
+        Self(folder)
+    }
+
+    /// A place in it.
+    pub fn path(&self, name: &str) -> std::path::PathBuf {
+        self.0.join(name)
+    }
+
+    /// Writes a file.
+    pub fn write(&self, name: &str, bytes: &[u8]) {
+        std::fs::write(self.path(name), bytes).unwrap();
+    }
+
+    /// Reads a file.
+    pub fn read(&self, name: &str) -> Vec<u8> {
+        std::fs::read(self.path(name)).unwrap()
+    }
+}
+
+impl Drop for Folder {
+    fn drop(&mut self) {
+        let _ = std::fs::remove_dir_all(&self.0);
     }
 }

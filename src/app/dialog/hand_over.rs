@@ -5,6 +5,7 @@ use crate::app::theme::button::Look;
 use crate::app::theme::{input, space, text};
 use crate::app::widget::Element;
 use crate::app::widget::press;
+use crate::base::problem::Problem;
 use crate::eval::caveat::Caveat;
 use iced::widget::{Column, column, row, space as gap, text_input};
 use iced::{Alignment, Length};
@@ -58,6 +59,8 @@ pub struct HandOver {
     despite: String,
     stops: Vec<Caveat>,
     is_due: bool,
+    /// Why the last attempt failed.
+    problem: Option<Problem>,
 }
 
 impl HandOver {
@@ -71,13 +74,22 @@ impl HandOver {
             despite: String::new(),
             stops,
             is_due,
+            problem: None,
         }
+    }
+
+    /// What stood against writing is told, and nothing that was typed is lost.
+    pub fn refuse(&mut self, problem: Problem) {
+        self.problem = Some(problem);
     }
 
     /// Takes a message in.
     pub fn update(&mut self, message: Message) -> Action {
         match message {
-            Message::Typed(path) => self.path = path,
+            Message::Typed(path) => {
+                self.path = path;
+                self.problem = None;
+            }
             Message::Despite(despite) => self.despite = despite,
             Message::Workbook => self.has_workbook = !self.has_workbook,
             Message::WriteUp => self.has_write_up = !self.has_write_up,
@@ -143,6 +155,9 @@ impl HandOver {
             )
             .push(text::quiet("Folder and name, without an ending:"))
             .push(field);
+        if let Some(problem) = &self.problem {
+            parts = parts.push(text::wrong(problem.to_string()));
+        }
         if self.is_due {
             parts = parts.push(text::attention(
                 "Some cells are not up to date; what is written is what the page shows.",

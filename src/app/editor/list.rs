@@ -1,4 +1,4 @@
-//! A list of texts or numbers, typed with commas between them.
+//! A list of texts or numbers, typed with semicolons between them: a comma may belong to a text.
 
 use crate::app::editor::{Action, FIELD};
 use crate::app::theme::{input, space, text};
@@ -21,22 +21,34 @@ pub enum Message {
 #[derive(Clone, Debug)]
 pub struct List {
     draft: String,
+    began: String,
+    sort: Sort,
+}
+
+/// What stands in the list.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+enum Sort {
+    Texts,
+    Numbers,
 }
 
 impl List {
     /// Begins with the list that stands.
     #[must_use]
     pub fn new(value: Option<Value>) -> Self {
-        let draft = match value {
-            Some(Value::Texts(texts)) => texts.join(", "),
-            Some(Value::Numbers(numbers)) => numbers
-                .iter()
-                .map(|number| number.get().to_string())
-                .collect::<Vec<_>>()
-                .join(", "),
-            Some(_) | None => String::new(),
+        let (draft, sort) = match value {
+            Some(Value::Numbers(numbers)) => {
+                let numbers = numbers.iter().map(|number| number.get().to_string());
+                (numbers.collect::<Vec<_>>().join("; "), Sort::Numbers)
+            }
+            Some(Value::Texts(texts)) => (texts.join("; "), Sort::Texts),
+            Some(_) | None => (String::new(), Sort::Texts),
         };
-        Self { draft }
+        Self {
+            began: draft.clone(),
+            draft,
+            sort,
+        }
     }
 
     /// Takes a message in.
@@ -46,8 +58,33 @@ impl List {
                 self.draft = draft;
                 Action::None
             }
-            Message::Done => Action::Commit(Value::Text(self.draft.clone())),
+            Message::Done if self.draft == self.began => Action::Close,
+            Message::Done => Action::Commit(self.value()),
         }
+    }
+
+    /// The list as it is typed at present.
+    #[must_use]
+    pub fn typed(&self) -> &str {
+        &self.draft
+    }
+
+    fn value(&self) -> Value {
+        match self.sort {
+            // The slot reads numbers as they were typed, and says what may stand there.
+            Sort::Numbers => Value::Text(self.draft.clone()),
+            Sort::Texts => {
+                let texts = self.draft.split(';').map(str::trim);
+                let texts = texts.filter(|text| !text.is_empty());
+                Value::Texts(texts.map(str::to_owned).collect())
+            }
+        }
+    }
+
+    /// The draft, if it differs from what it began with.
+    #[must_use]
+    pub fn draft(&self) -> Option<Value> {
+        (self.draft != self.began).then(|| self.value())
     }
 
     /// The list on a line.
@@ -65,7 +102,7 @@ impl List {
             row![field, press::main("Set", Message::Done)]
                 .spacing(space::SMALL)
                 .align_y(Alignment::Center),
-            text::quiet("Several are separated by commas."),
+            text::quiet("Several are separated by semicolons."),
         ]
         .spacing(space::TIGHT)
         .into()

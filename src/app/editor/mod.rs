@@ -12,6 +12,7 @@ pub mod file;
 pub mod line;
 pub mod list;
 pub mod names;
+pub mod place;
 pub mod prose;
 pub mod steps;
 
@@ -66,8 +67,8 @@ pub enum Action {
     Commit(Value),
     /// A file that has been read is to be put on the shelf, and set.
     Take {
-        /// The file's name.
-        name: String,
+        /// Where it lies.
+        path: std::path::PathBuf,
         /// Its bytes.
         bytes: std::sync::Arc<[u8]>,
     },
@@ -127,6 +128,7 @@ impl Open {
         (sentence, piece): (usize, usize),
         word: &Word,
         columns: Names,
+        beside: Option<&std::path::PathBuf>,
     ) -> (Self, Task<Message>) {
         let settings = study.cell(cell).map(|cell| &cell.settings);
         let value = settings.and_then(|settings| settings.value(&word.slot));
@@ -165,7 +167,7 @@ impl Open {
                 Task::none(),
             ),
             sentence::Editor::File => {
-                let (file, task) = file::File::new();
+                let (file, task) = file::File::new(file::beside(beside));
                 (Editor::File(file), task.map(Message::File))
             }
             sentence::Editor::Steps => (Editor::Steps(steps::Steps::new(value)), Task::none()),
@@ -216,11 +218,20 @@ impl Open {
         }
     }
 
+    /// Takes a file that was dropped on the window, where one is asked for.
+    pub fn drop_file(&mut self, path: std::path::PathBuf) -> Option<Task<Message>> {
+        let Editor::File(file) = &mut self.editor else {
+            return None;
+        };
+        Some(file.read(path).map(Message::File))
+    }
+
     /// What the draft would set, if there is one that is worth keeping when the editor is left.
     #[must_use]
     pub fn draft(&self) -> Option<Value> {
         match &self.editor {
             Editor::Line(line) => line.draft(),
+            Editor::List(list) => list.draft(),
             Editor::Choice(_)
             | Editor::Column(_)
             | Editor::Columns(_)
@@ -228,7 +239,6 @@ impl Open {
             | Editor::Cell(_)
             | Editor::File(_)
             | Editor::Steps(_)
-            | Editor::List(_)
             | Editor::Acts(_) => None,
         }
     }
@@ -283,3 +293,6 @@ pub fn changed(study: &Study, open: &Open, value: Value) -> Result<Settings, Pro
     })?;
     cell.settings.with(&open.word.slot, value)
 }
+
+#[cfg(test)]
+mod tests;

@@ -1,5 +1,6 @@
 //! Blocks of an answer: painter for the page.
 
+use crate::app::part::facts;
 use crate::app::sheet::{Figure, Part};
 use crate::app::theme::Mode;
 use crate::app::theme::{container, space, text};
@@ -24,6 +25,8 @@ pub enum Message {
     CopyFigure(usize),
     /// A figure is to be written as a picture and a drawing.
     SaveFigure(usize),
+    /// A table of facts is to be copied.
+    CopyTable(usize),
 }
 
 /// How blocks are shown.
@@ -69,6 +72,7 @@ pub fn view<'a>(part: &'a Part, at: usize, manner: Manner<'a>) -> Element<'a, Me
                 text: piece.text.clone(),
                 role: match piece.role {
                     Role::Plain | Role::Strong | Role::Fact | Role::Emphasis => Role::Strong,
+                    Role::Code => Role::Code,
                     Role::Editable | Role::Open | Role::Missing | Role::Pending => piece.role,
                 },
             };
@@ -92,11 +96,16 @@ pub fn view<'a>(part: &'a Part, at: usize, manner: Manner<'a>) -> Element<'a, Me
             .height(Length::Shrink)
             .into()
         }
-        Part::Code(letters) => text::body(letters.as_str()).into(),
+        Part::Code(letters) => boxed(text::code(letters.as_str()))
+            .padding(space::SMALL)
+            .width(Length::Fill)
+            .style(container::sheet)
+            .into(),
         Part::Rule => rule::horizontal(space::HAIR)
             .style(container::hairline)
             .into(),
         Part::Tabular(align, rows) => tabular(align, rows, manner),
+        Part::Grid(grid) if facts::is_for(grid) => facts::view(grid, at, manner),
         Part::Grid(grid) => {
             let mut shown = Grid::new(grid, space::GRID).stands_out(StandsOut {
                 row: manner.highlight.and_then(|meaning| grid.row_of(meaning)),

@@ -2,6 +2,7 @@
 
 pub mod block;
 pub mod cell;
+pub mod facts;
 pub mod head;
 pub mod margin;
 pub mod offer;

@@ -529,14 +529,6 @@ impl Source for Samples {
         }
     }
 
-    fn letters(&self, column: usize) -> usize {
-        const ROWS: usize = 12;
-        (0..self.n_rows().min(ROWS))
-            .map(|row| self.field(row, column).text.chars().count())
-            .max()
-            .unwrap_or(0)
-    }
-
     fn version(&self) -> u64 {
         self.version
     }

@@ -5,7 +5,8 @@ use crate::app::theme::button::Look;
 use crate::app::theme::{container, space, text};
 use crate::app::widget::Element;
 use crate::app::widget::press::{self, Press};
-use iced::widget::{Column, column, container as boxed, rule};
+use crate::store::rescue::Rescued;
+use iced::widget::{Column, column, container as boxed, row, rule};
 use iced::{Length, Padding};
 use std::path::PathBuf;
 
@@ -43,7 +44,7 @@ pub struct Welcome {
     /// The demo, where it can be found.
     pub demo: Option<PathBuf>,
     /// What was rescued after a crash.
-    pub rescued: Vec<PathBuf>,
+    pub rescued: Vec<Rescued>,
 }
 
 impl Welcome {
@@ -61,20 +62,37 @@ impl Welcome {
         let mut parts = Column::new()
             .spacing(space::SMALL)
             .width(Length::Fill)
-            .push(text::title("Widefold"))
-            .push(text::prose(
-                "A study for wide data: tables with few samples and many predictors. It keeps \
+            .push(beside(text::title("Widefold").into()))
+            .push(beside(
+                text::prose(
+                    "A study for wide data: tables with few samples and many predictors. It keeps \
                  itself up to date, says how honest each number is, and hands itself over.",
+                )
+                .into(),
             ))
             .push(iced::widget::space().height(space::SMALL));
-        for path in &self.rescued {
-            parts = parts
-                .push(line(
-                    "Go on where the program ended unexpectedly",
-                    &disk::name(path),
-                    Message::Rescued(path.clone()),
-                ))
-                .push(press::words("Give it up", Message::GiveUp(path.clone())));
+        for rescued in &self.rescued {
+            let from = rescued.original.as_ref().map_or_else(
+                || "never saved".to_owned(),
+                |path| format!("of {}", path.display()),
+            );
+            let more = format!(
+                "The program ended before it was saved. Kept {} UTC, {from}.",
+                rescued.when
+            );
+            let file = &rescued.file;
+            parts = parts.push(
+                row![
+                    line(
+                        &format!("Go on with “{}”", rescued.title),
+                        &more,
+                        Message::Rescued(file.clone()),
+                    ),
+                    press::words("Give it up", Message::GiveUp(file.clone())).look(Look::Attention),
+                ]
+                .spacing(space::SMALL)
+                .align_y(iced::Alignment::Center),
+            );
         }
         parts = parts
             .push(rule::horizontal(space::HAIR).style(container::hairline))
@@ -106,7 +124,7 @@ impl Welcome {
         if !self.recent.is_empty() {
             parts = parts
                 .push(rule::horizontal(space::HAIR).style(container::hairline))
-                .push(text::quiet("Open lately"));
+                .push(beside(text::quiet("Open lately").into()));
             for path in &self.recent {
                 let folder = path
                     .parent()
@@ -141,4 +159,11 @@ impl Welcome {
             .height(Length::Fill)
             .into()
     }
+}
+
+/// Words that begin where the words of what can be pressed do.
+fn beside(words: Element<'_, Message>) -> Element<'_, Message> {
+    boxed(words)
+        .padding(Padding::from([0.0, space::AIR + space::BAR]))
+        .into()
 }

@@ -30,6 +30,9 @@ pub const ANSWER_LINE: f32 = 24.0;
 /// The line of small text.
 pub const SMALL_LINE: f32 = 20.0;
 
+/// Letters that keep their places.
+pub const MONO: Font = Font::with_name(crate::figure::font::MONO_FAMILY);
+
 /// A bundled face as the toolkit names it.
 #[must_use]
 pub const fn face(face: Face) -> Font {
@@ -123,6 +126,11 @@ pub fn answer<'a>(words: impl text::IntoFragment<'a>) -> iced::widget::Text<'a> 
 /// Prose.
 pub fn prose<'a>(words: impl text::IntoFragment<'a>) -> iced::widget::Text<'a> {
     set(words, SERIF, READING, READING_LINE, |colors| colors.ink)
+}
+
+/// Letters that keep their places, such as a piece of a file.
+pub fn code<'a>(words: impl text::IntoFragment<'a>) -> iced::widget::Text<'a> {
+    set(words, MONO, SMALL, SMALL_LINE, |colors| colors.ink)
 }
 
 /// Words whose colour comes from what they stand in, such as a button.

@@ -32,6 +32,8 @@ pub enum Role {
     Strong,
     /// Words that are stressed.
     Emphasis,
+    /// Letters that keep their places.
+    Code,
     /// Words that can be edited.
     Editable,
     /// Words that are being edited.
@@ -147,7 +149,7 @@ impl<'a, M> Sentence<'a, M> {
     fn color(&self, role: Role) -> Color {
         let colors = self.mode.colors();
         let color = match role {
-            Role::Plain | Role::Strong | Role::Emphasis | Role::Fact => colors.ink,
+            Role::Plain | Role::Strong | Role::Emphasis | Role::Code | Role::Fact => colors.ink,
             Role::Editable | Role::Open if self.on_press.is_some() => colors.accent,
             Role::Editable | Role::Open => colors.ink,
             Role::Missing => colors.attention,
@@ -175,6 +177,7 @@ impl<'a, M> Sentence<'a, M> {
                 let font = match piece.role {
                     Role::Strong => self.setting.strong(),
                     Role::Emphasis => text::ITALIC,
+                    Role::Code => text::MONO,
                     Role::Plain
                     | Role::Editable
                     | Role::Open
@@ -388,6 +391,7 @@ impl<'a, M: 'a> Widget<M, iced::Theme, iced::Renderer> for Sentence<'a, M> {
                 Role::Plain
                 | Role::Strong
                 | Role::Emphasis
+                | Role::Code
                 | Role::Editable
                 | Role::Open
                 | Role::Fact

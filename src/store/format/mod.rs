@@ -31,18 +31,59 @@ pub struct Read {
     pub problems: Vec<Problem>,
 }
 
+/// What becomes of a study of a newer format.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Newer {
+    /// It is not read: what is made from it would not be what was saved.
+    Refused,
+    /// As much of it is read as this version knows, and that is said.
+    InPart,
+}
+
 /// Reads a study of any format. `table` gives the bytes and the file name of a table, from the
 /// name and the hash in the file.
 ///
 /// # Errors
-/// A [`Problem`] when the bytes are no study, or one of a newer format.
-pub fn read(bytes: &[u8], file: &str, table: &FindTable<'_>) -> Result<Read, Problem> {
+/// A [`Problem`] when the bytes are no study, or one of a newer format that is refused or of
+/// which nothing can be read.
+pub fn read(
+    bytes: &[u8],
+    file: &str,
+    table: &FindTable<'_>,
+    newer: Newer,
+) -> Result<Read, Problem> {
     let value = json(bytes, file)?;
-    match version(&value, file)? {
-        1 => v1::study::read(&value, file, table),
-        newer => Err(newer_format(newer, file)),
+    match (version(&value, file)?, newer) {
+        (1, _) => v1::study::read(&value, file, table),
+        (format, Newer::Refused) => Err(newer_format(format, file)),
+        (format, Newer::InPart) => {
+            let mut read =
+                v1::study::read(&value, file, table).map_err(|_| newer_format(format, file))?;
+            read.problems.insert(0, read_in_part(format, file));
+            Ok(read)
+        }
     }
 }
+
+/// Says that a file is from the future and that not all of it is shown.
+fn read_in_part(format: u64, file: &str) -> Problem {
+    Problem::new(
+        NEWER,
+        format!(
+            "This study was saved by a newer version (format {format}); what this version knows \
+             of it is shown."
+        ),
+    )
+    .at(Place::file(file))
+    .mend("Read it here, and change it with the newer version.")
+    .mend(
+        "What is saved from here keeps only what is shown: save it under another name, so that \
+         the newer study stays as it is.",
+    )
+}
+
+/// The code of the problem that a study is of a newer format.
+pub const NEWER: &str = "newer-format";
 
 /// The format that a file says it has; a file written by hand may leave it out.
 ///
@@ -67,7 +108,7 @@ pub fn version(value: &Value, file: &str) -> Result<u64, Problem> {
 #[must_use]
 pub fn newer_format(format: u64, file: &str) -> Problem {
     Problem::new(
-        "newer-format",
+        NEWER,
         format!(
             "This study was saved by a newer version (format {format}). This version reads format \
              {NEWEST}."

@@ -2,7 +2,6 @@
 
 use crate::app::part::{cell, head, offer, strip, thread};
 use crate::app::screen::study::{Action, Message, Renaming, StudyScreen};
-use crate::app::session::Following;
 use crate::study::cell::{Cell, CellId};
 use crate::study::edit::{Edit, Titled};
 use iced::Task;
@@ -38,11 +37,6 @@ impl StudyScreen {
             }
             Message::Escape => self.escape(),
             Message::Step(by) => self.step(by),
-            Message::FigureSaved(Ok(words)) => {
-                self.said = Some(words);
-                Action::None
-            }
-            Message::FigureSaved(Err(problem)) => Action::Tell(problem),
         };
         self.refresh();
         action
@@ -64,15 +58,21 @@ impl StudyScreen {
                 self.sheets.clear();
                 Action::None
             }
+            head::Message::More => {
+                self.head_more = self.head_more.other();
+                Action::None
+            }
+            head::Message::SaveAs => Action::SaveAs,
+            head::Message::Open => Action::Open,
+            head::Message::Start => Action::Start,
+            head::Message::Larger => Action::Scale(1),
+            head::Message::Smaller => Action::Scale(-1),
             head::Message::Save => Action::Save,
             head::Message::HandOver => Action::HandOver,
             head::Message::BringUpToDate => self.bring_up_to_date(),
             head::Message::Follow(following) => {
                 let task = self.session.follow(following);
-                match following {
-                    Following::AsIEdit => Action::Run(task.map(Message::Session)),
-                    Following::WhenAsked => Action::Followed(following),
-                }
+                Action::Followed(following, task.map(Message::Session))
             }
             head::Message::Close => Action::Close,
             head::Message::Keys => Action::Keys,
@@ -115,7 +115,8 @@ impl StudyScreen {
         let had = self.editor.take().is_some()
             | self.renaming.take().is_some()
             | self.offering.take().is_some()
-            | self.more.take().is_some();
+            | self.more.take().is_some()
+            | (std::mem::take(&mut self.head_more) == head::More::Open);
         if had {
             return Action::None;
         }

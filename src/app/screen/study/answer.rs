@@ -1,18 +1,15 @@
 //! What the study screen does with figures, grids and tables.
 
 use crate::app::disk;
-use crate::app::part::{block, cell, table};
-use crate::app::run;
+use crate::app::part::{block, cell, facts, table};
 use crate::app::screen::study::{Action, Message, StudyScreen};
 use crate::app::session::dataset;
 use crate::app::sheet::Part;
 use crate::app::widget::picture::Told;
 use crate::base::number::{self, Precision};
-use crate::base::problem::Problem;
 use crate::base::real::Real;
 use crate::figure::ink::Palette;
 use crate::figure::{Meaning, svg};
-use crate::store;
 use crate::study::cell::CellId;
 use crate::study::edit::Edit;
 use crate::study::settings::Settings;
@@ -56,6 +53,15 @@ impl StudyScreen {
                 None => Action::None,
             },
             block::Message::SaveFigure(_) => self.save_figure(id, at),
+            block::Message::CopyTable(_) => {
+                let Some(Part::Grid(grid)) = self.sheet(id).and_then(|sheet| sheet.parts.get(at))
+                else {
+                    return Action::None;
+                };
+                let copied = facts::copied(grid);
+                self.said = Some("The table has been copied.".to_owned());
+                Action::Run(iced::clipboard::write(copied))
+            }
         }
     }
 
@@ -93,10 +99,8 @@ impl StudyScreen {
                 }
             })
             .collect();
-        Action::Run(run::off_thread(move || {
-            let written = write_figure(&folder, clean.trim_matches('-'), &drawing);
-            Message::FigureSaved(written)
-        }))
+        let wish = folder.join(clean.trim_matches('-'));
+        Action::SaveFigure { wish, drawing }
     }
 
     /// The strength that was dragged on a figure is set by hand, in the fit that the figure is of.
@@ -188,22 +192,4 @@ impl StudyScreen {
             }
         }
     }
-}
-
-/// Writes a drawing, and a picture of it at twice its size, and says where.
-fn write_figure(folder: &std::path::Path, name: &str, drawing: &str) -> Result<String, Problem> {
-    let path = folder.join(format!("{name}.svg"));
-    store::replace(&path, drawing.as_bytes())?;
-    let picture = crate::export::picture::png(drawing, 2.0).map_err(|error| {
-        Problem::new(
-            "figure-unpainted",
-            "The figure could not be painted as PNG.",
-        )
-        .details(format!("{error:?}"))
-    })?;
-    store::replace(&folder.join(format!("{name}.png")), &picture)?;
-    Ok(format!(
-        "The figure has been written to {}.",
-        path.display()
-    ))
 }

@@ -19,6 +19,7 @@ use crate::study::cell::CellId;
 use iced::{Size, Task};
 use std::cell::OnceCell;
 use std::collections::{BTreeMap, BTreeSet};
+use std::path::PathBuf;
 
 /// What happens on the screen.
 #[derive(Clone, Debug)]
@@ -41,8 +42,6 @@ pub enum Message {
     Escape,
     /// The cell before or after the one at the top is shown.
     Step(isize),
-    /// A figure has been written.
-    FigureSaved(Result<String, Problem>),
 }
 
 /// What the screen wants of the window.
@@ -54,6 +53,14 @@ pub enum Action {
     Run(Task<Message>),
     /// The study is to be saved.
     Save,
+    /// The study is to be saved under another name.
+    SaveAs,
+    /// Another study is to be opened.
+    Open,
+    /// Another study is to be started from tables.
+    Start,
+    /// Letters become larger or smaller, by so many steps.
+    Scale(i32),
     /// The exports are to be opened.
     HandOver,
     /// Back to the welcome page.
@@ -63,7 +70,14 @@ pub enum Action {
     /// Light or dark.
     Turn,
     /// The user turned following on or off, which is remembered.
-    Followed(Following),
+    Followed(Following, Task<Message>),
+    /// A figure is to be saved: where it would go, and its drawing.
+    SaveFigure {
+        /// Where it would go.
+        wish: PathBuf,
+        /// The drawing.
+        drawing: String,
+    },
     /// A problem is to be shown.
     Tell(Problem),
 }
@@ -90,6 +104,7 @@ pub struct StudyScreen {
     table: Option<table::Open>,
     renaming: Option<Renaming>,
     more: Option<CellId>,
+    head_more: head::More,
     /// After which cell the offer stands; `None` inside is the end of the page.
     offering: Option<Option<CellId>>,
     notes: BTreeSet<CellId>,
@@ -160,6 +175,7 @@ impl StudyScreen {
             table: None,
             renaming: None,
             more: None,
+            head_more: head::More::default(),
             offering: None,
             notes: BTreeSet::new(),
             highlight: None,

@@ -29,7 +29,8 @@ impl StudyScreen {
                 &self.session,
                 renaming,
                 mode,
-                self.size.width >= space::FOLD,
+                head::Room::of(self.size.width),
+                self.head_more,
             )
         };
         let mut middle = row![].height(Length::Fill);

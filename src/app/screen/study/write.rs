@@ -1,5 +1,6 @@
 //! What the study screen does with words that are edited and prose that is typed.
 
+use crate::app::disk;
 use crate::app::editor::prose::{self, Offer, Prose};
 use crate::app::editor::{self, Open};
 use crate::app::part::cell;
@@ -12,6 +13,7 @@ use crate::study::edit::Edit;
 use crate::study::settings::Settings;
 use crate::study::settings::slot::Value;
 use iced::widget::operation;
+use std::path::PathBuf;
 use std::sync::Arc;
 
 impl StudyScreen {
@@ -29,7 +31,8 @@ impl StudyScreen {
             return Action::None;
         };
         let names = self.column_names(id);
-        let (open, task) = Open::new(self.session.study(), id, (nth, at), &word, names);
+        let beside = self.session.path();
+        let (open, task) = Open::new(self.session.study(), id, (nth, at), &word, names, beside);
         self.editor = Some(open);
         let wrap = move |message| Message::Cell(id, Box::new(cell::Message::Editor(message)));
         Action::Run(task.map(wrap))
@@ -60,14 +63,41 @@ impl StudyScreen {
                 Action::None
             }
             editor::Action::Commit(value) => self.set_word(value),
-            editor::Action::Take { name, bytes } => {
-                let source = self.session.shelf_mut().put(bytes);
+            editor::Action::Take { path, bytes } => {
+                let name = disk::name(&path);
+                let shelf = self.session.shelf_mut();
+                let source = shelf.put(bytes);
+                // The readable form of a study names its tables by path.
+                shelf.came_from(&source, &name, &path);
                 self.set_word(Value::File { source, name })
             }
             editor::Action::Run(task) => {
                 let wrap =
                     move |message| Message::Cell(id, Box::new(cell::Message::Editor(message)));
                 Action::Run(task.map(wrap))
+            }
+        }
+    }
+
+    /// A file that was dropped on the window goes to the word whose editor is open.
+    pub fn dropped(&mut self, path: PathBuf) -> Action {
+        let taken = self
+            .editor
+            .as_mut()
+            .and_then(|open| Some((open.cell, open.drop_file(path)?)));
+        match taken {
+            Some((id, task)) => {
+                let wrap =
+                    move |message| Message::Cell(id, Box::new(cell::Message::Editor(message)));
+                Action::Run(task.map(wrap))
+            }
+            None => {
+                self.said = Some(
+                    "A table can be dropped while the editor of a file’s name is open; press that \
+                     name in a Data or Score cell first."
+                        .to_owned(),
+                );
+                Action::None
             }
         }
     }

@@ -19,6 +19,8 @@ struct Set<'a> {
     face: Face,
     color: Color,
     align: Align,
+    /// What is left free at the end, so that decimal marks stand below each other.
+    tail: f32,
 }
 
 impl<'a, M> Grid<'a, M> {
@@ -39,7 +41,8 @@ impl<'a, M> Grid<'a, M> {
             return;
         };
         if state.focus.0 {
-            focus::ring(renderer, theme, bounds.shrink(space::AIR + space::BAR));
+            // Around the grid, so that it covers no value.
+            focus::ring(renderer, theme, bounds);
         }
         // One layer for all of it: what scrolls is one area to the toolkit, and its mask is
         // filled once.
@@ -207,6 +210,14 @@ impl<'a, M> Grid<'a, M> {
                     Condition::Corrected => colors.accent,
                 };
                 let at = place(At { row, column });
+                let align = self.source.align(column);
+                let tail = match align {
+                    Align::Start => 0.0,
+                    Align::End => {
+                        let longest = state.tails.get(column).copied().unwrap_or(0.0);
+                        (longest - tail(&field.text)).max(0.0)
+                    }
+                };
                 set(
                     renderer,
                     &Set {
@@ -215,7 +226,8 @@ impl<'a, M> Grid<'a, M> {
                         font: text::SANS,
                         face: Face::Sans,
                         color,
-                        align: self.source.align(column),
+                        align,
+                        tail,
                     },
                     area,
                 );
@@ -278,6 +290,7 @@ impl<'a, M> Grid<'a, M> {
                     face: Face::SansStrong,
                     color: colors.ink,
                     align,
+                    tail: 0.0,
                 },
                 area,
             );
@@ -294,6 +307,7 @@ impl<'a, M> Grid<'a, M> {
                         face: Face::Sans,
                         color: colors.accent,
                         align,
+                        tail: 0.0,
                     },
                     area,
                 );
@@ -327,6 +341,7 @@ impl<'a, M> Grid<'a, M> {
                 face: Face::SansStrong,
                 color: colors.ink,
                 align: Align::Start,
+                tail: 0.0,
             },
             area,
         );
@@ -346,10 +361,22 @@ impl<'a, M> Grid<'a, M> {
                     face,
                     color,
                     align: Align::Start,
+                    tail: 0.0,
                 },
                 area,
             );
         }
+    }
+}
+
+/// How wide a number is from its decimal mark on; nothing for what has none, such as words.
+pub(super) fn tail(text: &str) -> f32 {
+    let is_number = text.ends_with(|letter: char| letter.is_ascii_digit());
+    match text.rfind('.') {
+        Some(at) if is_number => {
+            metrics::width(&text[at..], Face::Sans, f64::from(text::SMALL)) as f32
+        }
+        Some(_) | None => 0.0,
     }
 }
 
@@ -372,7 +399,9 @@ fn set(renderer: &mut iced::Renderer, set: &Set<'_>, area: Rectangle) {
         Align::Start => set.field.x + space::SMALL,
         Align::End => {
             let width = metrics::width(&words, set.face, size) as f32;
-            set.field.x + set.field.width - space::SMALL - width
+            // A number that is longer than the ones that were measured moves to the left.
+            let tail = set.tail.min((room - width).max(0.0));
+            set.field.x + set.field.width - space::SMALL - width - tail
         }
     };
     let y = set.field.y + (set.field.height - text::SMALL_LINE) / 2.0;

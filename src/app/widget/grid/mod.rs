@@ -130,6 +130,8 @@ struct State {
     focus: Focus,
     /// Where each column begins, and where the last ends, from the left of the body.
     starts: Vec<f32>,
+    /// What the longest fields of each column have behind the place of the decimal mark.
+    tails: Vec<f32>,
     /// How wide the last column would like to be.
     last_width: f32,
     names: f32,

@@ -41,7 +41,7 @@ impl<'a> Field<'a> {
 pub enum Align {
     /// Words.
     Start,
-    /// Numbers.
+    /// Numbers: their decimal marks stand below each other.
     End,
 }
 
@@ -70,10 +70,6 @@ pub trait Source {
     /// How a column is aligned.
     fn align(&self, _column: usize) -> Align {
         Align::End
-    }
-    /// About how many letters the fields of a column have.
-    fn letters(&self, _column: usize) -> usize {
-        7
     }
     /// Changes when widths have to be taken again.
     fn version(&self) -> u64 {

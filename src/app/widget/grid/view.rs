@@ -1,13 +1,15 @@
 //! Where the fields of a grid lie, and which of them can be seen.
 
 use crate::app::theme::{space, text};
-use crate::app::widget::grid::{Align, At, Bar, Grid, State, WIDTHS};
+use crate::app::widget::grid::{Align, At, Bar, Grid, State, WIDTHS, draw};
 use crate::figure::font::Face;
 use crate::figure::metrics;
 use iced::{Point, Rectangle};
 
 /// How many names are measured for the width of the name column.
 const MEASURED: usize = 400;
+/// How many fields of a column are measured for its width, spread over its rows.
+const SAMPLED: usize = 12;
 /// The widest that a last column of words gets.
 const WIDEST: f32 = 640.0;
 /// How many columns are few.
@@ -115,6 +117,25 @@ impl<'a, M> Grid<'a, M> {
         })
     }
 
+    /// How wide the fields of a column are before the decimal mark, and from there on.
+    fn extent(&self, column: usize) -> (f32, f32) {
+        let n_rows = self.source.n_rows();
+        let align = self.source.align(column);
+        let (mut before, mut tail) = (0.0_f32, 0.0_f32);
+        for nth in 0..n_rows.min(SAMPLED) {
+            let row = nth * n_rows / n_rows.min(SAMPLED);
+            let field = self.source.field(row, column);
+            let all = metrics::width(&field.text, Face::Sans, f64::from(text::SMALL)) as f32;
+            let behind = match align {
+                Align::Start => 0.0,
+                Align::End => draw::tail(&field.text),
+            };
+            before = before.max(all - behind);
+            tail = tail.max(behind);
+        }
+        (before, tail)
+    }
+
     pub(super) fn measure(&self, state: &mut State) {
         let source = self.source;
         let key = (source.version(), source.n_rows(), source.n_columns());
@@ -123,14 +144,17 @@ impl<'a, M> Grid<'a, M> {
         }
         state.measured = Some(key);
         let size = f64::from(text::SMALL);
-        let digit = metrics::width("0", Face::Sans, size) as f32;
         let mut start = 0.0;
         state.starts.clear();
         state.starts.reserve(source.n_columns() + 1);
         state.starts.push(0.0);
+        state.tails.clear();
+        state.tails.reserve(source.n_columns());
         for column in 0..source.n_columns() {
             let name = metrics::width(&source.column(column), Face::SansStrong, size) as f32;
-            let fields = source.letters(column) as f32 * digit;
+            let (before, tail) = self.extent(column);
+            let fields = before + tail;
+            state.tails.push(tail);
             let remark = source.remark(column).map_or(0.0, |remark| {
                 metrics::width(&remark, Face::Sans, size) as f32
             });

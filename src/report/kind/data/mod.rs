@@ -31,8 +31,20 @@ const SUBJECTS: [(&str, &str); 4] = [
     ("compliance", "a test for release or compliance"),
 ];
 
+/// The kinds of outcome by their stable names, and how they read.
+#[must_use]
+pub const fn kinds() -> &'static [(&'static str, &'static str)] {
+    &KINDS
+}
+
+/// How a kind of outcome reads.
+#[must_use]
+pub fn kind_in_words(name: &str) -> &'static str {
+    reading(&KINDS, name)
+}
+
 /// How a stable name reads in a sentence.
-fn reading<'l>(labels: &'l [(&'l str, &'l str)], name: &str) -> &'l str {
+fn reading(labels: &[(&'static str, &'static str)], name: &str) -> &'static str {
     labels
         .iter()
         .find(|(known, _)| *known == name)

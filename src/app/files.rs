@@ -36,6 +36,8 @@ pub struct Found {
 /// Opens a study.
 pub fn open(path: PathBuf) -> Task<Result<Arc<Found>, Problem>> {
     run::off_thread(move || {
+        // Rescued work may be opened from another folder than the study was.
+        let path = std::path::absolute(&path).unwrap_or(path);
         let found = store::open_in_part(&path)?;
         // A study that is not here as a whole has no place of its own: saving asks for one.
         let place = (!found.is_from_newer()).then_some(path);

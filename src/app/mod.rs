@@ -38,8 +38,10 @@ use crate::store::preferences::{Follow, Preferences};
 use crate::store::rescue::{Rescue, Rescued};
 use iced::widget::stack;
 use iced::{Size, Subscription, Task, window};
+use std::panic::AssertUnwindSafe;
 use std::path::PathBuf;
 use std::sync::Arc;
+use std::sync::atomic::{AtomicBool, Ordering};
 
 /// The smallest window in which everything can still be reached.
 const LEAST: Size = Size::new(640.0, 480.0);
@@ -298,7 +300,13 @@ pub fn open(study: Option<PathBuf>) -> Result<(), Problem> {
         )
         .mend("Use the commands instead, which need none: widefold --help lists them."));
     }
-    let boot = move || App::new(study.clone());
+    // The toolkit stops the program with a panic where a display is named but does not answer.
+    let has_begun = Arc::new(AtomicBool::new(false));
+    let begun = Arc::clone(&has_begun);
+    let boot = move || {
+        begun.store(true, Ordering::Relaxed);
+        App::new(study.clone())
+    };
     fonts::prefer_bundled();
     let application = iced::application(boot, App::update, App::view)
         .title(App::title)
@@ -312,9 +320,21 @@ pub fn open(study: Option<PathBuf>) -> Result<(), Problem> {
             exit_on_close_request: false,
             ..window::Settings::default()
         });
-    application.run().map_err(|error| {
+    let no_window = |details: String| {
         Problem::new("no-window", "The window could not be opened.")
             .mend("Use the commands instead, which need none: widefold --help lists them.")
-            .details(error.to_string())
-    })
+            .details(details)
+    };
+    let usual = std::panic::take_hook();
+    let begun = Arc::clone(&has_begun);
+    std::panic::set_hook(Box::new(move |panic| {
+        if begun.load(Ordering::Relaxed) {
+            usual(panic);
+        }
+    }));
+    match std::panic::catch_unwind(AssertUnwindSafe(|| application.run())) {
+        Ok(ended) => ended.map_err(|error| no_window(error.to_string())),
+        Err(panic) if has_begun.load(Ordering::Relaxed) => std::panic::resume_unwind(panic),
+        Err(_) => Err(no_window("The display does not answer.".to_owned())),
+    }
 }

@@ -75,6 +75,18 @@ pub struct Start {
     /// The rule that chooses the penalty strength
     #[arg(long, value_enum, default_value = "lowest-error")]
     pub choice: ChoiceName,
+    /// What is compared between strengths; the measure that belongs to the kind when left out
+    #[arg(long, value_enum, value_name = "MEASURE")]
+    pub error_measure: Option<MeasureName>,
+    /// How events at equal times are counted, for times
+    #[arg(long, value_enum, default_value = "efron")]
+    pub ties: TiesName,
+    /// Penalise the coefficients of a predictor in all classes together, for classes
+    #[arg(long)]
+    pub together: bool,
+    /// The column with the exposure of counts
+    #[arg(long, value_name = "NAME")]
+    pub exposure: Option<String>,
     /// A penalty strength set by hand
     #[arg(long, value_name = "L", conflicts_with = "choice")]
     pub strength: Option<f64>,
@@ -138,6 +150,30 @@ pub enum ChoiceName {
     Gcv,
     /// Extended Bayesian information criterion
     Ebic,
+}
+
+/// The measures of errors.
+#[derive(Clone, Copy, Debug, ValueEnum)]
+pub enum MeasureName {
+    /// The mean squared error
+    SquaredError,
+    /// The mean deviance
+    Deviance,
+    /// The share called wrong
+    Misclassification,
+    /// The deviance of the partial likelihood
+    PartialLikelihood,
+    /// The share of pairs ordered wrongly
+    Concordance,
+}
+
+/// How events at equal times are counted.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
+pub enum TiesName {
+    /// Efron (1977)
+    Efron,
+    /// Breslow (1974)
+    Breslow,
 }
 
 /// Brings a study up to date and saves it.

@@ -5,7 +5,7 @@ use crate::base::problem::Problem;
 use crate::base::real::Real;
 use crate::base::thread::Threads;
 use crate::base::work::Work;
-use crate::cli::arguments::{ChoiceName, KindName, PenaltyName, Start};
+use crate::cli::arguments::{ChoiceName, KindName, MeasureName, PenaltyName, Start, TiesName};
 use crate::eval::start::{Wishes, start};
 use crate::store::{self, Record};
 use crate::study::ledger::Ledger;
@@ -63,13 +63,21 @@ pub fn run(arguments: &Start) -> Result<ExitCode, Problem> {
 
 fn wishes(arguments: &Start) -> Result<Wishes, Problem> {
     let kind = match arguments.kind {
-        None => arguments.event.as_ref().map(|event| OutcomeKind::Time {
-            event: event.clone(),
-        }),
+        None => match (&arguments.event, &arguments.exposure) {
+            (Some(event), _) => Some(OutcomeKind::Time {
+                event: event.clone(),
+            }),
+            (None, Some(exposure)) => Some(OutcomeKind::Count {
+                exposure: Some(exposure.clone()),
+            }),
+            (None, None) => None,
+        },
         Some(KindName::Measured) => Some(OutcomeKind::Measured),
         Some(KindName::YesNo) => Some(OutcomeKind::YesNo { event: None }),
         Some(KindName::Classes) => Some(OutcomeKind::Classes),
-        Some(KindName::Count) => Some(OutcomeKind::Count { exposure: None }),
+        Some(KindName::Count) => Some(OutcomeKind::Count {
+            exposure: arguments.exposure.clone(),
+        }),
         Some(KindName::Time) => Some(OutcomeKind::Time {
             event: arguments.event.clone().ok_or_else(|| {
                 Problem::new(
@@ -159,6 +167,22 @@ fn fit(arguments: &Start) -> Result<Fit, Problem> {
                 set(FitSlot::InnerRepeats, Value::Whole(repeats.into()))?;
             }
         }
+    }
+    if arguments.together {
+        set(FitSlot::Grouping, Value::Choice("together".to_owned()))?;
+    }
+    if arguments.ties == TiesName::Breslow {
+        set(FitSlot::Ties, Value::Choice("breslow".to_owned()))?;
+    }
+    if let Some(measure) = arguments.error_measure {
+        let name = match measure {
+            MeasureName::SquaredError => "squared-error",
+            MeasureName::Deviance => "deviance",
+            MeasureName::Misclassification => "misclassification",
+            MeasureName::PartialLikelihood => "partial-likelihood",
+            MeasureName::Concordance => "concordance",
+        };
+        set(FitSlot::Measure, Value::Choice(name.to_owned()))?;
     }
     if let Some(parts) = arguments.outer_parts {
         set(FitSlot::OuterParts, Value::Whole(parts.into()))?;

@@ -11,8 +11,11 @@ pub enum Rule {
     /// The lowest generalised cross-validation value (Golub, Heath & Wahba 1979):
     /// mean residual² / (1 − df/n)², df with the intercept and the covariates.
     GeneralisedCrossValidation,
-    /// The lowest extended Bayesian information criterion (Chen & Chen 2008):
-    /// n·log(mean residual²) + k·log n + 2γ·log C(p, k), k the effective degrees of freedom.
+    /// The lowest extended Bayesian information criterion (Chen & Chen 2008; 2012 for other outcomes
+    /// than measured ones): deviance + k·log n + 2γ·log C(m, k), k the effective degrees of freedom
+    /// of the penalised coefficients and m how many of these there are. The deviance of a measured
+    /// outcome is n·log(mean residual²); for times n is the number of events (Volinsky & Raftery
+    /// 2000).
     ExtendedBic {
         /// γ, from 0 to 1.
         gamma: f64,
@@ -48,25 +51,57 @@ pub struct Curve {
     pub standard_errors: Vec<f64>,
 }
 
+/// The error of one held-out part at every strength, as a ratio of `sums` to `weight`.
+///
+/// A measure that is a mean over samples has the part's mean and the weight 1, so that every part
+/// counts the same; the partial likelihood is weighed by events and the concordance by pairs.
+#[derive(Clone, Debug, PartialEq)]
+pub struct PartErrors {
+    /// One for each strength.
+    pub sums: Vec<f64>,
+    /// What they are to be divided by; 0 where the part says nothing.
+    pub weight: f64,
+}
+
 /// Gathers the errors of held-out parts into a curve.
 ///
 /// `by_repeat[r][k][j]` is the mean error of strength j in held-out part k of repeat r. The
 /// curve is the plain mean over the parts of a repeat, then over repeats.
 #[must_use]
 pub fn curve(share: f64, strengths: &[f64], by_repeat: &[Vec<Vec<f64>>]) -> Curve {
+    let each = |sums: &Vec<f64>| PartErrors {
+        sums: sums.clone(),
+        weight: 1.0,
+    };
+    let weighed: Vec<Vec<PartErrors>> = by_repeat
+        .iter()
+        .map(|parts| parts.iter().map(each).collect())
+        .collect();
+    curve_of_parts(share, strengths, &weighed)
+}
+
+/// Gathers the errors of held-out parts into a curve: for each repeat the sum of the parts' sums
+/// over the sum of their weights, then the mean over repeats.
+///
+/// The standard error of such a ratio is linearised: of part deviations dₖ = sumₖ − ratio·weightₖ,
+/// √(K/(K − 1) Σ dₖ²)/Σ weightₖ (Cochran 1977, chapter 6); with equal weights the usual standard
+/// error of a mean.
+#[must_use]
+pub fn curve_of_parts(share: f64, strengths: &[f64], by_repeat: &[Vec<PartErrors>]) -> Curve {
     let n_repeats = by_repeat.len() as f64;
     let mut errors = vec![0.0; strengths.len()];
     let mut standard_errors = vec![0.0; strengths.len()];
     for parts in by_repeat {
-        let n_parts = parts.len() as f64;
+        let known = || parts.iter().filter(|part| part.weight > 0.0);
+        let n_parts = known().count() as f64;
+        let weight: f64 = known().map(|part| part.weight).sum();
         for at in 0..strengths.len() {
-            let mean = parts.iter().map(|part| part[at]).sum::<f64>() / n_parts;
-            let square = parts
-                .iter()
-                .map(|part| (part[at] - mean).powi(2))
+            let ratio = known().map(|part| part.sums[at]).sum::<f64>() / weight;
+            let square = known()
+                .map(|part| (part.sums[at] - ratio * part.weight).powi(2))
                 .sum::<f64>();
-            errors[at] += mean / n_repeats;
-            standard_errors[at] += (square / (n_parts - 1.0) / n_parts).sqrt() / n_repeats;
+            errors[at] += ratio / n_repeats;
+            standard_errors[at] += (square * n_parts / (n_parts - 1.0)).sqrt() / weight / n_repeats;
         }
     }
     Curve {
@@ -118,14 +153,15 @@ pub fn generalised_cross_validation(mean_square: f64, n: f64, df: f64) -> f64 {
     }
 }
 
-/// The extended Bayesian information criterion of a gaussian fit with `k` effective degrees of
-/// freedom among `p` predictors.
+/// The extended Bayesian information criterion of a fit whose deviance is given, with `k` effective
+/// degrees of freedom among `m` penalised coefficients and `n` samples (for times events). Infinite
+/// where the fit is free to follow every sample.
 #[must_use]
-pub fn extended_bic(mean_square: f64, n: f64, k: f64, p: f64, gamma: f64) -> f64 {
-    if k >= n - 1.0 || mean_square <= 0.0 {
+pub fn extended_bic(deviance: f64, n: f64, k: f64, m: f64, gamma: f64) -> f64 {
+    if k >= n - 1.0 || !deviance.is_finite() {
         return f64::INFINITY;
     }
-    n * mean_square.ln() + k * n.ln() + 2.0 * gamma * log_choose(p, k)
+    deviance + k * n.ln() + 2.0 * gamma * log_choose(m, k)
 }
 
 /// log C(p, k) for real k from 0 to p, by the gamma function.

@@ -3,12 +3,15 @@
 use crate::base::thread::{Threads, in_order};
 use crate::base::work::{Cancelled, Work};
 use crate::numeric::parts::Split;
-use crate::numeric::procedure::{Halt, Material, Procedure, ProcedureError, Tally, fit_part};
+use crate::numeric::procedure::{
+    Halt, Material, Procedure, ProcedureError, Tally, chosen_predictors, fit_part,
+};
 
 /// What one half chose, at one strength.
 #[derive(Clone, Debug)]
 pub struct HalfChoice {
-    /// The chosen predictors, rising, each with the sign of its coefficient.
+    /// The chosen predictors, rising, each with the sign of its coefficient; with classes of the
+    /// largest of its coefficients.
     pub chosen: Vec<(usize, f64)>,
 }
 
@@ -38,8 +41,8 @@ pub fn select_on_halves(
         );
         match fit {
             Ok(fit) => {
-                let standardised = fit.path.standardised(strengths.len() - 1);
-                let chosen = standardised
+                let largest = chosen_predictors(&fit.path, strengths.len() - 1);
+                let chosen = largest
                     .into_iter()
                     .filter(|(_, value)| *value != 0.0)
                     .map(|(at, value)| (at, value.signum()))

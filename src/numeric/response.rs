@@ -76,30 +76,74 @@ impl Response {
         }
     }
 
-    /// The weighted mean of a measured outcome over some rows: the prediction of the model
-    /// without predictors. NaN for another kind of outcome.
+    /// The number of linear predictors that a sample has: one, or one for each class.
     #[must_use]
-    pub fn baseline(&self, rows: &[usize], weights: Option<&[f64]>) -> f64 {
-        let Self::Measured(values) = self else {
-            return f64::NAN;
-        };
-        let weight = |row: usize| weights.map_or(1.0, |weights| weights[row]);
-        let total: f64 = rows.iter().map(|&row| weight(row)).sum();
-        rows.iter()
-            .map(|&row| weight(row) * values[row])
-            .sum::<f64>()
-            / total
+    pub const fn n_linear(&self) -> usize {
+        match self {
+            Self::Classes { n_classes, .. } => *n_classes,
+            Self::Measured(_) | Self::YesNo(_) | Self::Count { .. } | Self::Time { .. } => 1,
+        }
     }
 
-    /// The squared error of a linear predictor for one sample of a measured outcome; NaN for
-    /// another kind.
+    /// The same response with the outcome of sample i taken from sample `from[i]`. Exposure and
+    /// stratum stay with the sample: they are no outcome.
     #[must_use]
-    pub fn squared_error(&self, row: usize, eta: f64) -> f64 {
+    pub fn rearranged(&self, from: &[usize]) -> Self {
+        fn taken<T: Copy>(values: &[T], from: &[usize]) -> Vec<T> {
+            from.iter().map(|&at| values[at]).collect()
+        }
         match self {
-            Self::Measured(values) => (values[row] - eta).powi(2),
-            Self::YesNo(_) | Self::Classes { .. } | Self::Count { .. } | Self::Time { .. } => {
-                f64::NAN
+            Self::Measured(values) => Self::Measured(taken(values, from)),
+            Self::YesNo(yes) => Self::YesNo(taken(yes, from)),
+            Self::Classes { class, n_classes } => Self::Classes {
+                class: taken(class, from),
+                n_classes: *n_classes,
+            },
+            Self::Count { count, offset } => Self::Count {
+                count: taken(count, from),
+                offset: offset.clone(),
+            },
+            Self::Time {
+                time,
+                event,
+                strata,
+                ties,
+            } => Self::Time {
+                time: taken(time, from),
+                event: taken(event, from),
+                strata: strata.clone(),
+                ties: *ties,
+            },
+        }
+    }
+
+    /// The linear predictors of the model without predictors and covariates, fitted to some rows
+    /// under the sample weights: mean, log odds, logarithms of the class shares, logarithm of the
+    /// rate; 0 for times. Infinite where the rows hold a single class or nothing was counted.
+    #[must_use]
+    pub fn null_linear(&self, rows: &[usize], weights: Option<&[f64]>) -> Vec<f64> {
+        let weight = |row: usize| weights.map_or(1.0, |weights| weights[row]);
+        let sum = |of: &dyn Fn(usize) -> f64| -> f64 {
+            rows.iter().map(|&row| weight(row) * of(row)).sum()
+        };
+        match self {
+            Self::Measured(values) => vec![sum(&|row| values[row]) / sum(&|_| 1.0)],
+            Self::YesNo(yes) => {
+                let of = |wanted: bool| sum(&|row| f64::from(u8::from(yes[row] == wanted)));
+                vec![(of(true) / of(false)).ln()]
             }
+            Self::Classes { class, n_classes } => (0..*n_classes)
+                .map(|k| (sum(&|row| f64::from(u8::from(class[row] == k))) / sum(&|_| 1.0)).ln())
+                .collect(),
+            Self::Count { count, offset } => {
+                let exposure = |row: usize| {
+                    offset
+                        .as_ref()
+                        .map_or(1.0, |offset: &Vec<f64>| offset[row].exp())
+                };
+                vec![(sum(&|row| count[row]) / sum(&exposure)).ln()]
+            }
+            Self::Time { .. } => vec![0.0],
         }
     }
 
@@ -208,9 +252,15 @@ impl Response {
 }
 
 /// Minus twice the log partial likelihood of some samples at their linear predictors, without a
-/// penalty and not divided by anything. `None` when the response is no time, or holds no event.
+/// penalty and not divided by anything, under the sample weights. `None` when the response is no
+/// time, or holds no event.
 #[must_use]
-pub fn deviance_of_times(response: &Response, rows: &[usize], eta: &[f64]) -> Option<f64> {
+pub fn deviance_of_times(
+    response: &Response,
+    rows: &[usize],
+    eta: &[f64],
+    weights: Option<&[f64]>,
+) -> Option<f64> {
     let Response::Time {
         time,
         event,
@@ -227,7 +277,9 @@ pub fn deviance_of_times(response: &Response, rows: &[usize], eta: &[f64]) -> Op
     if known.iter().all(|(_, event, _)| !event) {
         return None;
     }
-    let m = rows.len() as f64;
-    let mut loss = Cox::new(&known, vec![1.0 / m; rows.len()], m, *ties);
-    Some(2.0 * m * loss.evaluate(eta))
+    let weight = |row: usize| weights.map_or(1.0, |weights| weights[row]);
+    let total: f64 = rows.iter().map(|&row| weight(row)).sum();
+    let share = rows.iter().map(|&row| weight(row) / total).collect();
+    let mut loss = Cox::new(&known, share, total, *ties);
+    Some(2.0 * total * loss.evaluate(eta))
 }

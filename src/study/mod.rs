@@ -13,6 +13,9 @@ pub mod source;
 use crate::study::cell::{Cell, CellId};
 use crate::study::edit::lawful_title;
 use crate::study::kept::Kept;
+use crate::study::link::Link;
+use crate::study::settings::Settings;
+use crate::study::settings::data::OutcomeKind;
 use std::collections::BTreeSet;
 
 /// An ordered list of cells with a title. Every change is an [`edit::Edit`].
@@ -106,6 +109,27 @@ impl Study {
     #[must_use]
     pub fn cell(&self, id: CellId) -> Option<&Cell> {
         self.cells.iter().find(|cell| cell.id == id)
+    }
+
+    /// The kind of outcome of the samples that a link leads to, as far as it has been said.
+    #[must_use]
+    pub fn outcome_kind(&self, link: Link) -> Option<&OutcomeKind> {
+        let mut next = link.0;
+        // No chain is longer than there are cells; a circle, which only a file can hold, ends.
+        for _ in 0..=self.cells.len() {
+            match &self.cell(next?)?.settings {
+                Settings::Data(data) => {
+                    return data.outcome.as_ref().map(|outcome| &outcome.kind);
+                }
+                Settings::Prepare(prepare) => next = prepare.input.0,
+                Settings::Fit(fit) => next = fit.input.0,
+                Settings::Question(_)
+                | Settings::Compare(_)
+                | Settings::Score(_)
+                | Settings::Prose(_) => return None,
+            }
+        }
+        None
     }
 
     /// Where a cell stands in reading order.

@@ -10,8 +10,11 @@ use widefold::numeric::choose::{self, Curve, Rule};
 use widefold::numeric::halves::select_on_halves;
 use widefold::numeric::matrix::Matrix;
 use widefold::numeric::parts::{Assignment, Split, Structure};
+use widefold::numeric::path::Grouping;
 use widefold::numeric::predictors::Predictors;
-use widefold::numeric::procedure::{Material, Procedure, StrengthRule, Tally, fit_part};
+use widefold::numeric::procedure::{
+    ErrorMeasure, Material, Procedure, StrengthRule, Tally, fit_part,
+};
 use widefold::numeric::response::Response;
 use widefold::numeric::samples::Samples;
 use widefold::numeric::step::Chain;
@@ -78,6 +81,8 @@ impl Bench {
             chain: &self.chain,
             scaling: Scaling::UnitVariance,
             shares: Vec::new(),
+            grouping: Grouping::Apart,
+            measure: ErrorMeasure::usual(&self.response),
             strength: StrengthRule::Fixed(0.0),
         }
     }

@@ -92,13 +92,17 @@ pub fn cell(study: &Study, at: usize, message: &Message) -> Option<Cell> {
                     ..Prepare::default()
                 }),
             ),
-            Kind::Fit => (
-                "fit",
-                Settings::Fit(Fit {
-                    input: samples(),
+            Kind::Fit => {
+                let input = samples();
+                let mut fit = Fit {
+                    input,
                     ..Fit::default()
-                }),
-            ),
+                };
+                if let Some(kind) = study.outcome_kind(input) {
+                    fit.spread_evenly(kind);
+                }
+                ("fit", Settings::Fit(fit))
+            }
             Kind::Question => {
                 let ask = Ask::catalogue().into_iter().next()?;
                 let title = ask.title();

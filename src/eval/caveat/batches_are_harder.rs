@@ -2,22 +2,26 @@
 
 use crate::base::number::{self, Precision};
 use crate::eval::caveat::{Caveat, Origin, Severity};
+use crate::eval::kind::fit::Measure;
 
-/// From which fall of R² on it is said; a convention.
-const FALL: f64 = 0.2;
+/// From which fall on it is said: of measures from one half to one, and of others; conventions.
+const FALLS: (f64, f64) = (0.1, 0.2);
 
-/// A remark when R² falls with whole batches held out. Removing the batch effect first does not
+/// A remark when the main measure falls with whole batches held out. Removing the batch effect first does not
 /// cure it (Soneson, Gerster & Delorenzi 2014).
 #[must_use]
-pub fn check(nested: f64, batch: f64, word: &str) -> Option<Caveat> {
+pub fn check(measure: Measure, nested: f64, batch: f64, word: &str) -> Option<Caveat> {
     let fall = nested - batch;
-    if fall.is_nan() || fall < FALL {
+    let ranks = [Measure::Area, Measure::Concordance, Measure::Accuracy].contains(&measure);
+    let least = if ranks { FALLS.0 } else { FALLS.1 };
+    if fall.is_nan() || fall < least {
         return None;
     }
     let show = |value| number::text(value, Precision::Decimals(2));
     let text = format!(
-        "With whole {word}s held out R² falls from {} to {}; quote the second for a new {word}. \
-         Removing the batch effect first does not cure this.",
+        "With whole {word}s held out the {} falls from {} to {}; quote the second for a new \
+         {word}. Removing the batch effect first does not cure this.",
+        measure.title(),
         show(nested),
         show(batch)
     );
@@ -28,13 +32,13 @@ pub fn check(nested: f64, batch: f64, word: &str) -> Option<Caveat> {
             &format!("A new {word} is harder"),
             text,
         )
-        .because("nested R²", nested, Precision::Decimals(3))
         .because(
-            "R² with whole batches held out",
-            batch,
+            &format!("nested {}", measure.title()),
+            nested,
             Precision::Decimals(3),
         )
-        .threshold("a fall of 0.2 or more")
+        .because("with whole batches held out", batch, Precision::Decimals(3))
+        .threshold("a fall of 0.2 or more; of 0.1 for AUC, concordance and the share called right")
         .origin(Origin::Convention),
     )
 }

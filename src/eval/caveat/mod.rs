@@ -2,8 +2,12 @@
 
 pub mod agreement_slope;
 pub mod batches_are_harder;
+pub mod calibration_slope;
+pub mod censoring;
 pub mod declined_judgement;
 pub mod design;
+pub mod few_events;
+pub mod few_for_a_curve;
 pub mod few_units;
 pub mod flat_curve;
 pub mod health;
@@ -17,7 +21,9 @@ pub mod not_settled;
 pub mod one_standard_error;
 pub mod optimism;
 pub mod order;
+pub mod pooled_pairs;
 pub mod selection_unstable;
+pub mod separation;
 pub mod shrunken_weights;
 pub mod stand_ins;
 pub mod strength_at_edge;

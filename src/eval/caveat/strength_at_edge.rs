@@ -12,9 +12,8 @@ const SHARE: f64 = 0.2;
 #[must_use]
 pub fn check(fitted: &Fitted) -> Option<Caveat> {
     let last = &fitted.last;
-    let curve = last.curves.get(last.share_at)?;
-    let at_edge =
-        last.strength_at + 1 == curve.strengths.len() || last.strength_at == 0 && last.share == 0.0;
+    let _ = last.curves.get(last.share_at)?;
+    let at_edge = last.is_at_edge();
     let fits = fitted
         .judged
         .as_ref()

@@ -2,16 +2,23 @@
 
 use crate::base::number::{self, Precision};
 use crate::eval::caveat::{Caveat, Origin, Severity};
+use crate::eval::kind::fit::Measure;
 
-/// From which R² on it is too good to be true; a convention.
-const R2: f64 = 0.98;
+/// From which value of the main measure on it is too good to be true; a convention.
+const LIMIT: f64 = 0.98;
 
 /// The stop when predictions are better than the reference method allows (leakage by
 /// illegitimate predictors: Kapoor & Narayanan 2023).
 #[must_use]
-pub fn check(r2: f64, rmse: f64, reference_error: Option<f64>, unit: &str) -> Option<Caveat> {
+pub fn check(
+    measure: Measure,
+    nested: f64,
+    rmse: f64,
+    reference_error: Option<f64>,
+    unit: &str,
+) -> Option<Caveat> {
     let below = reference_error.filter(|error| rmse < *error);
-    let is_high = r2 >= R2;
+    let is_high = nested >= LIMIT;
     if !is_high && below.is_none() {
         return None;
     }
@@ -25,11 +32,19 @@ pub fn check(r2: f64, rmse: f64, reference_error: Option<f64>, unit: &str) -> Op
         "This is better than can be expected; look for the outcome in disguise among the \
          predictors, or for repeats of one unit on both sides.{against}"
     );
-    Some(
-        Caveat::new("too-good", Severity::Stop, "Too good to be true", text)
-            .because("nested R²", r2, Precision::Decimals(3))
-            .because("nested RMSE", rmse, Precision::Significant(3))
-            .threshold("R² of 0.98 or more, or an error below that of the reference method")
-            .origin(Origin::Convention),
-    )
+    let caveat = Caveat::new("too-good", Severity::Stop, "Too good to be true", text)
+        .because(
+            &format!("nested {}", measure.title()),
+            nested,
+            Precision::Decimals(3),
+        )
+        .origin(Origin::Convention);
+    if measure == Measure::R2 {
+        return Some(
+            caveat
+                .because("nested RMSE", rmse, Precision::Significant(3))
+                .threshold("R² of 0.98 or more, or an error below that of the reference method"),
+        );
+    }
+    Some(caveat.threshold("0.98 or more"))
 }

@@ -2,16 +2,20 @@
 
 use crate::base::number::Precision;
 use crate::eval::caveat::{Caveat, Origin, Severity};
+use crate::eval::kind::fit::Measure;
 
-/// From which half-width of the interval of R² on it is said; a convention.
-const HALF_WIDTH: f64 = 0.20;
+/// From which half-width of the interval on it is said: of measures from one half to one, and of
+/// others; conventions.
+const HALF_WIDTHS: (f64, f64) = (0.10, 0.20);
 
-/// A remark when the interval of the nested R² is wide (Bates, Hastie & Tibshirani; Varoquaux
+/// A remark when the interval of the main measure is wide (Bates, Hastie & Tibshirani; Varoquaux
 /// 2018).
 #[must_use]
-pub fn check(low: f64, high: f64) -> Option<Caveat> {
+pub fn check(measure: Measure, low: f64, high: f64) -> Option<Caveat> {
     let half = (high - low) / 2.0;
-    if half.is_nan() || half < HALF_WIDTH {
+    let ranks = [Measure::Area, Measure::Concordance, Measure::Accuracy].contains(&measure);
+    let least = if ranks { HALF_WIDTHS.0 } else { HALF_WIDTHS.1 };
+    if half.is_nan() || half < least {
         return None;
     }
     Some(
@@ -21,8 +25,12 @@ pub fn check(low: f64, high: f64) -> Option<Caveat> {
             "Wide interval",
             "The uncertainty of the estimate is as large as the effect that one would want to claim.",
         )
-        .because("half-width of the interval of R²", half, Precision::Decimals(2))
-        .threshold("0.20 or more")
+        .because(
+            &format!("half-width of the interval of {}", measure.title()),
+            half,
+            Precision::Decimals(2),
+        )
+        .threshold(if ranks { "0.10 or more" } else { "0.20 or more" })
         .origin(Origin::Convention),
     )
 }

@@ -7,7 +7,7 @@ use crate::base::work::Work;
 use crate::eval::caveat::selection_unstable;
 use crate::eval::fact::{Fact, FactColumn, Facts};
 use crate::eval::kind::Ended;
-use crate::eval::kind::fit::{Fitted, halted, numeric_procedure};
+use crate::eval::kind::fit::{Fitted, Sort, halted, numeric_procedure};
 use crate::eval::outcome::{Gives, Outcome};
 use crate::eval::question::active_columns;
 use crate::numeric::halves::{HalfChoice, select_on_halves};
@@ -18,7 +18,7 @@ use crate::numeric::response::Response;
 use crate::numeric::stability::{
     Selections, StabilityIndex, r_concave_bound, unimodal_bound, wilson_interval, worst_case_bound,
 };
-use std::collections::BTreeMap;
+use std::collections::{BTreeMap, BTreeSet};
 
 /// How many strengths lead from the strongest to the chosen one on a half: warm starts only.
 const LEAD: usize = 8;
@@ -44,7 +44,7 @@ pub fn answer(
         .into());
     }
     let trouble = |halt| halted(halt, &fitted.prepared, &fitted.settings);
-    let material = fitted.prepared.material();
+    let material = fitted.material();
     let choices = halves(
         fitted,
         &material,
@@ -134,18 +134,18 @@ fn shuffled(fitted: &Fitted, seed: u64) -> Response {
     for rows in members.into_values() {
         by_size.entry(rows.len()).or_default().push(rows);
     }
-    let observed = fitted.observed();
-    let mut values = observed.to_vec();
+    // The sample whose outcome each sample gets.
+    let mut from: Vec<usize> = (0..fitted.response.n_samples()).collect();
     for (size, units) in by_size {
         let mut order: Vec<usize> = (0..units.len()).collect();
         Random::new(seed, "null companion", size as u64).shuffle(&mut order);
-        for (to, from) in units.iter().zip(order) {
-            for (&to_row, &from_row) in to.iter().zip(&units[from]) {
-                values[to_row] = observed[from_row];
+        for (to, source) in units.iter().zip(order) {
+            for (&to_row, &from_row) in to.iter().zip(&units[source]) {
+                from[to_row] = from_row;
             }
         }
     }
-    Response::Measured(values)
+    fitted.response.rearranged(&from)
 }
 
 fn selections(n_columns: usize, choices: &[HalfChoice]) -> Selections {
@@ -178,8 +178,15 @@ fn publish(
     let trials = choices.len();
     let frequencies = selections.frequencies();
     let counts = selections.counts();
-    let (chosen, _) = fitted.chosen();
-    let coefficient: BTreeMap<usize, f64> = chosen.iter().copied().collect();
+    let chosen = fitted.chosen();
+    let in_list: BTreeSet<usize> = chosen.iter().map(|(at, _)| *at).collect();
+    // With classes a predictor has several coefficients: the largest on the scale of the penalty.
+    let coefficient: BTreeMap<usize, f64> = if fitted.sort() == Sort::Classes {
+        chosen.iter().copied().collect()
+    } else {
+        let raw = fitted.last.path.coefficients(fitted.last.strength_at);
+        raw.predictors.into_iter().collect()
+    };
     let mut facts = Facts::new();
     let share = Precision::Percent(0);
     facts.push(Fact::count(
@@ -318,7 +325,7 @@ fn publish(
     let mut listed: Vec<usize> = active
         .iter()
         .copied()
-        .filter(|at| coefficient.contains_key(at) || frequencies[*at] >= LISTED)
+        .filter(|at| in_list.contains(at) || frequencies[*at] >= LISTED)
         .collect();
     listed.sort_by(|a, b| frequencies[*b].total_cmp(&frequencies[*a]).then(a.cmp(b)));
     let sign = |at: usize| {
@@ -347,9 +354,9 @@ fn publish(
         column(listed.iter().map(|&at| frequencies[at]).collect(), "frequency", share, "On what share of the halves it was chosen."),
         column(listed.iter().map(|&at| wilson(at).0).collect(), "low", share, "Lower end of the Wilson interval: how far the number of halves blurs the frequency."),
         column(listed.iter().map(|&at| wilson(at).1).collect(), "high", share, "Upper end of the same interval."),
-        column(listed.iter().map(|&at| sign(at)).collect(), "sign consistency", share, "In what share of the halves that chose it the coefficient had its commoner sign."),
-        FactColumn::texts("in the final list", listed.iter().map(|at| if coefficient.contains_key(at) { "yes" } else { "no" }.to_owned()).collect(), "Whether the final fit chose it."),
-        column(listed.iter().map(|at| coefficient.get(at).copied().unwrap_or(0.0)).collect(), "coefficient", Precision::Significant(4), "Its coefficient in the final fit."),
+        column(listed.iter().map(|&at| sign(at)).collect(), "sign consistency", share, "In what share of the halves that chose it the coefficient (with classes the largest) had its commoner sign."),
+        FactColumn::texts("in the final list", listed.iter().map(|at| if in_list.contains(at) { "yes" } else { "no" }.to_owned()).collect(), "Whether the final fit chose it."),
+        column(listed.iter().map(|at| coefficient.get(at).copied().unwrap_or(0.0)).collect(), "coefficient", Precision::Significant(4), if fitted.sort() == Sort::Classes { "The largest of its coefficients in the final fit, on the scale that the penalty sees." } else { "Its coefficient in the final fit." }),
     ], "How often each predictor was chosen on halves of the units: all of the final list, and others chosen on at least a tenth of the halves."));
     (facts, index)
 }

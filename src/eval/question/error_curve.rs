@@ -5,7 +5,9 @@ use crate::base::problem::Problem;
 use crate::eval::caveat::{flat_curve, strength_at_edge, strength_unstable};
 use crate::eval::fact::{Fact, Facts};
 use crate::eval::kind::Ended;
-use crate::eval::kind::fit::{Fitted, error_curve, error_digits, outer_choices};
+use crate::eval::kind::fit::{
+    Fitted, Sort, curve_error, curve_unit, error_curve, measure_words, outer_choices,
+};
 use crate::eval::outcome::{Gives, Outcome};
 use crate::numeric::choose::{self, Rule};
 use crate::numeric::measure::quantile;
@@ -21,8 +23,7 @@ pub fn answer(fitted: &Fitted) -> Result<Outcome, Ended> {
         .mend("Let the fit choose the strength by a rule.")
         .into());
     };
-    let unit = fitted.prepared.data.outcome.unit.clone();
-    let digits = error_digits(fitted);
+    let (unit, digits) = curve_unit(fitted);
     let strength = Precision::Significant(3);
     let mut facts = Facts::new();
     facts.push(Fact::number(
@@ -34,17 +35,31 @@ pub fn answer(fitted: &Fitted) -> Result<Outcome, Ended> {
     ));
     let lowest = choose::lowest(&curve.errors);
     if let (Some(at), false) = (lowest, curve.standard_errors.is_empty()) {
-        let root = |value: f64| value.max(0.0).sqrt();
+        let (error, standard_error) =
+            curve_error(fitted, curve.errors[at], curve.standard_errors[at]);
+        let root = if fitted.sort() == Sort::Measured {
+            "root of the "
+        } else {
+            ""
+        };
+        facts.push(Fact::text(
+            "error measure",
+            measure_words(fitted),
+            "What was compared between strengths on the inner held-out parts.",
+        ));
         facts.push(Fact::number(
             "lowest error",
-            root(curve.errors[at]),
+            error,
             &unit,
             digits,
-            "The lowest error in the inner parts (root of the mean squared error).",
+            &format!(
+                "The lowest error in the inner parts ({root}{}).",
+                measure_words(fitted)
+            ),
         ));
         facts.push(Fact::number(
             "lowest error standard error",
-            curve.standard_errors[at] / (2.0 * root(curve.errors[at])),
+            standard_error,
             &unit,
             digits,
             "Its standard error over the parts of a repeat.",
@@ -58,20 +73,42 @@ pub fn answer(fitted: &Fitted) -> Result<Outcome, Ended> {
                 "The largest strength whose error is within one standard error of the lowest.",
             ));
         }
-        facts.push(Fact::number(
-            "curve improvement",
-            1.0 - curve.errors[at] / curve.errors[0],
-            "",
-            Precision::Percent(0),
-            "How much smaller the lowest mean squared error is than that of the strongest penalty.",
+        facts.push(Fact::text(
+            "flat",
+            if flat_curve::is_flat(fitted, curve) {
+                "yes"
+            } else {
+                "no"
+            },
+            "Whether hardly any strength does better than the strongest.",
         ));
-        facts.push(Fact::number(
-            "standard errors below the strongest",
-            (curve.errors[0] - curve.errors[at]) / curve.standard_errors[at],
-            "",
-            Precision::Decimals(1),
-            "How many standard errors the lowest error lies below that of the strongest penalty.",
-        ));
+        if let Some(gain) = flat_curve::deviance_gained(fitted, curve) {
+            facts.push(Fact::number(
+                "deviance gained",
+                gain,
+                "",
+                Precision::Decimals(1),
+                "How much smaller the cross-validated deviance of the partial likelihood is than at the strongest penalty, over all events.",
+            ));
+        } else {
+            facts.push(Fact::number(
+                "curve improvement",
+                1.0 - curve.errors[at] / curve.errors[0],
+                "",
+                Precision::Percent(0),
+                &format!(
+                    "How much smaller the lowest {} is than that of the strongest penalty.",
+                    measure_words(fitted)
+                ),
+            ));
+            facts.push(Fact::number(
+                "standard errors below the strongest",
+                (curve.errors[0] - curve.errors[at]) / curve.standard_errors[at],
+                "",
+                Precision::Decimals(1),
+                "How many standard errors the lowest error lies below that of the strongest penalty.",
+            ));
+        }
     }
     if let Some(judged) = &fitted.judged {
         let strengths: Vec<f64> = judged
@@ -134,9 +171,9 @@ pub fn answer(fitted: &Fitted) -> Result<Outcome, Ended> {
             "The largest number of predictors chosen in an outer training part.",
         );
     }
-    facts.push(error_curve(fitted, curve, &unit, digits));
+    facts.push(error_curve(fitted, curve));
     if let Some(judged) = &fitted.judged {
-        facts.push(outer_choices(fitted, judged, &unit, digits));
+        facts.push(outer_choices(fitted, judged));
     }
     let caveats = [
         strength_at_edge::check(fitted),

@@ -6,18 +6,17 @@ use crate::base::work::Work;
 use crate::eval::caveat::{batches_are_harder, ungrouped_flatters};
 use crate::eval::fact::{Fact, FactColumn, Facts};
 use crate::eval::kind::Ended;
-use crate::eval::kind::fit::error_digits;
 use crate::eval::kind::fit::{
-    Fitted, Interval, Measures, errors_by_unit, halted, interval, numeric_procedure, parts_params,
-    performance,
+    Fitted, Measure, Measures, Performance, Sort, error_digits, halted, numeric_measure,
+    numeric_procedure, parts_params, performance, performance_of_one,
 };
 use crate::eval::outcome::{Gives, Outcome};
 use crate::eval::question::agreement::not_judged;
-use crate::numeric::parts::{self, PartsParams, Split, Structure, assign};
+use crate::numeric::parts::{self, PartsParams, PlanError, Split, Structure, assign};
 use crate::numeric::procedure::{
-    Halt, HeldOut, Level, Material, ProcedureError, nested, one_split,
+    ErrorMeasure, Halt, HeldOut, Level, Material, ProcedureError, nested, one_split,
 };
-use crate::study::settings::fit::{Judge, Strength};
+use crate::study::settings::fit::Judge;
 use crate::study::settings::question::Seal;
 
 /// One rung: a way of judging, from the most flattering to the most severe.
@@ -26,7 +25,8 @@ struct Rung {
     step: &'static str,
     held_out: String,
     measures: Option<Measures>,
-    interval: Option<Interval>,
+    /// The interval of the main measure.
+    interval: Option<(f64, f64)>,
     n_samples: usize,
     remark: String,
 }
@@ -43,39 +43,37 @@ pub fn answer(
     };
     let data = &fitted.prepared.data;
     let rows = &data.analysed;
-    let observed: Vec<f64> = rows.iter().map(|&row| fitted.observed()[row]).collect();
+    let scene = fitted.scene();
+    let main = fitted.sort().main();
     let word = data.unit_word();
     let mut rungs = vec![Rung {
         step: "apparent",
         held_out: "nothing".to_owned(),
-        measures: Some(Measures::of(&observed, &fitted.last.fitted)),
+        measures: Some(scene.measures(&fitted.last.apparent)),
         interval: None,
         n_samples: rows.len(),
         remark: "on the samples that the model was fitted to".to_owned(),
     }];
-    rungs.extend(tuning(fitted, &observed));
+    rungs.extend(tuning(fitted));
     let repeats_units = data.unit_column.is_some() && data.count_units(rows) < rows.len();
     if repeats_units {
-        let (measures, interval) = rows_split(fitted, threads, &work.part(0.0..0.45))
+        let found = rows_split(fitted, threads, &work.part(0.0..0.45))
             .map_err(|halt| halted(halt, &fitted.prepared, &fitted.settings))?;
         rungs.push(Rung {
             step: "rows split",
             held_out: "single samples".to_owned(),
-            measures: Some(measures),
-            interval: Some(interval),
+            interval: ends(&found, main),
+            measures: Some(found.mean),
             n_samples: rows.len(),
             remark: format!("repeats of one {word} stand on both sides, which flatters"),
         });
     }
-    let nested_performance = performance(&judged.held_out, data, rows, fitted.observed());
+    let nested_performance = performance(&scene, data, &judged.held_out);
     rungs.push(Rung {
         step: "nested",
         held_out: format!("whole {word}s"),
+        interval: ends(&nested_performance, main),
         measures: Some(nested_performance.mean),
-        interval: Some(interval(
-            &nested_performance.errors.model,
-            &nested_performance.errors.sizes,
-        )),
         n_samples: rows.len(),
         remark: "the number to quote for new units from the same batches".to_owned(),
     });
@@ -101,19 +99,20 @@ pub fn answer(
                 .map_err(|halt| halted(halt, &fitted.prepared, &fitted.settings))?,
         });
     }
-    let variance = mean_square(&observed);
-    let facts = publish(fitted, &rungs, variance);
-    let r2 = |step: &str| {
+    let facts = publish(fitted, &rungs);
+    let value = |step: &str| {
         rungs
             .iter()
             .find(|rung| rung.step == step)
-            .and_then(|rung| rung.measures)
-            .map(|m| m.r2)
+            .and_then(|rung| rung.measures.as_ref())
+            .map(|measures| measures.get(main))
     };
     let caveats = [
-        r2("rows split").and_then(|split| ungrouped_flatters::check(split, r2("nested")?, word)),
-        r2("whole batches held out")
-            .and_then(|batch| batches_are_harder::check(r2("nested")?, batch, &batch_word)),
+        value("rows split")
+            .and_then(|split| ungrouped_flatters::check(main, split, value("nested")?, word)),
+        value("whole batches held out").and_then(|batch| {
+            batches_are_harder::check(main, value("nested")?, batch, &batch_word)
+        }),
     ];
     Ok(Outcome {
         gives: Gives::Facts,
@@ -122,35 +121,58 @@ pub fn answer(
     })
 }
 
-fn mean_square(observed: &[f64]) -> f64 {
-    let mean = observed.iter().sum::<f64>() / observed.len() as f64;
-    observed.iter().map(|v| (v - mean).powi(2)).sum::<f64>() / observed.len() as f64
+fn ends(found: &Performance, main: Measure) -> Option<(f64, f64)> {
+    let own = found
+        .intervals
+        .iter()
+        .find(|(measure, ..)| *measure == main);
+    own.map(|(_, low, high)| (*low, *high))
 }
 
-fn tuning(fitted: &Fitted, observed: &[f64]) -> Option<Rung> {
+/// The error that chose the strength, as far as it can stand beside the others.
+fn tuning(fitted: &Fitted) -> Option<Rung> {
     let last = &fitted.last;
     let curve = last.curves.get(last.share_at)?;
     if curve.standard_errors.is_empty() {
         return None;
     }
     let error = curve.errors[last.strength_at];
-    let measures = Measures {
-        rmse: error.max(0.0).sqrt(),
-        r2: 1.0 - error / mean_square(observed),
-        mae: f64::NAN,
-        bias: f64::NAN,
-        sep: f64::NAN,
-        slope: f64::NAN,
-        intercept: f64::NAN,
-        correlation: f64::NAN,
+    let null = fitted.scene().null_loss();
+    let mut measures = Measures::default();
+    let chosen_by = numeric_measure(fitted.settings.measure, &fitted.response);
+    match (fitted.sort(), chosen_by) {
+        (Sort::Measured, _) => {
+            measures.set(Measure::Rmse, error.max(0.0).sqrt());
+            measures.set(Measure::R2, 1.0 - error / null);
+        }
+        (Sort::YesNo | Sort::Classes, ErrorMeasure::Deviance) => {
+            measures.set(Measure::LogLoss, error / 2.0);
+        }
+        (Sort::Count, ErrorMeasure::Deviance) => {
+            measures.set(Measure::Deviance, error);
+            measures.set(Measure::DevianceExplained, 1.0 - error / null);
+        }
+        (Sort::Classes, ErrorMeasure::Misclassification) => {
+            measures.set(Measure::Accuracy, 1.0 - error);
+        }
+        (Sort::YesNo, ErrorMeasure::Concordance) => measures.set(Measure::Area, 1.0 - error),
+        (Sort::Time, ErrorMeasure::Concordance) => {
+            measures.set(Measure::Concordance, 1.0 - error);
+        }
+        (Sort::YesNo | Sort::Classes | Sort::Count | Sort::Time, _) => {}
+    }
+    let remark = if measures.get(fitted.sort().main()).is_finite() {
+        "the error that chose the penalty, so it flatters"
+    } else {
+        "chosen by another measure of error"
     };
     Some(Rung {
         step: "tuning",
         held_out: "inner parts".to_owned(),
         measures: Some(measures),
         interval: None,
-        n_samples: observed.len(),
-        remark: "the error that chose the penalty, so it flatters".to_owned(),
+        n_samples: fitted.prepared.data.analysed.len(),
+        remark: remark.to_owned(),
     })
 }
 
@@ -197,14 +219,10 @@ fn judge(
 }
 
 /// What ignoring the units would claim: samples split one by one, at both levels.
-fn rows_split(
-    fitted: &Fitted,
-    threads: Threads,
-    work: &Work<'_>,
-) -> Result<(Measures, Interval), Halt> {
+fn rows_split(fitted: &Fitted, threads: Threads, work: &Work<'_>) -> Result<Performance, Halt> {
     let data = &fitted.prepared.data;
     let each_its_own: Vec<usize> = (0..data.names.len()).collect();
-    let material = fitted.prepared.material();
+    let material = fitted.material();
     let structure = Structure {
         units: &each_its_own,
         ..material.structure
@@ -213,14 +231,19 @@ fn rows_split(
         structure,
         ..material
     };
+    let usual = outer_params(fitted, 2);
     let params = PartsParams {
-        scheme: parts::Scheme::Random,
-        ..outer_params(fitted, 2)
+        scheme: match usual.scheme {
+            parts::Scheme::Balanced => parts::Scheme::Balanced,
+            parts::Scheme::Random
+            | parts::Scheme::WholeBatches
+            | parts::Scheme::LeaveOneUnitOut
+            | parts::Scheme::Blocked => parts::Scheme::Random,
+        },
+        ..usual
     };
     let held_out = judge(fitted, &material, &params, "rows split", threads, work)?;
-    let found = performance(&held_out, data, &data.analysed, fitted.observed());
-    let interval = interval(&found.errors.model, &found.errors.sizes);
-    Ok((found.mean, interval))
+    Ok(performance(&fitted.scene(), data, &held_out))
 }
 
 fn whole_batches(
@@ -255,21 +278,30 @@ fn whole_batches(
     };
     match judge(
         fitted,
-        &fitted.prepared.material(),
+        &fitted.material(),
         &params,
         "whole batches",
         threads,
         work,
     ) {
         Ok(held_out) => {
-            let found = performance(&held_out, data, &data.analysed, fitted.observed());
-            let interval = interval(&found.errors.model, &found.errors.sizes);
+            let found = performance(&fitted.scene(), data, &held_out);
+            let interval = ends(&found, fitted.sort().main());
             Ok(rung(
                 Some(found.mean),
-                Some(interval),
+                interval,
                 format!("the number to quote for a new {column}"),
             ))
         }
+        // A batch with the only events or the only samples of a class cannot be held out either.
+        Err(Halt::Failed(ProcedureError::Plan {
+            error: PlanError::TrainingLacksStratum { .. } | PlanError::OneStratum { .. },
+            ..
+        })) => Ok(rung(
+            None,
+            None,
+            format!("without one {column} a class or the events would be missing"),
+        )),
         // A unit that spans all batches leaves nothing to hold out: that is an answer, too.
         Err(Halt::Failed(ProcedureError::Plan { .. })) => Ok(rung(
             None,
@@ -284,7 +316,7 @@ fn whole_batches(
 /// samples, exactly as before, and predicts the sealed ones.
 fn sealed(fitted: &Fitted, work: &Work<'_>) -> Result<Rung, Halt> {
     let data = &fitted.prepared.data;
-    let material = fitted.prepared.material();
+    let material = fitted.material();
     let procedure = numeric_procedure(&fitted.settings, &fitted.prepared);
     let split = Split::with_held_out(&data.analysed, &data.sealed, &material.structure).map_err(
         |error| ProcedureError::Plan {
@@ -293,33 +325,34 @@ fn sealed(fitted: &Fitted, work: &Work<'_>) -> Result<Rung, Halt> {
         },
     )?;
     let (fit, _) = one_split(&material, &procedure, &split, "final", work)?;
-    let observed: Vec<f64> = fit.rows.iter().map(|&row| fitted.observed()[row]).collect();
-    let squares: Vec<f64> = fit
-        .predicted
-        .iter()
-        .zip(&observed)
-        .map(|(p, o)| (p - o).powi(2))
-        .collect();
-    let errors = errors_by_unit(data, &fit.rows, &squares, &squares);
+    let found = performance_of_one(&fitted.scene_of(&fit.rows), data, &fit);
+    // R² and the share of deviance are about the sealed samples' own mean; their interval would be
+    // about the losses only.
+    let interval = match fitted.sort() {
+        Sort::Measured | Sort::Count => None,
+        Sort::YesNo | Sort::Classes | Sort::Time => ends(&found, fitted.sort().main()),
+    };
     Ok(Rung {
         step: "sealed set",
         held_out: "the sealed samples".to_owned(),
-        measures: Some(Measures::of(&observed, &fit.predicted)),
-        interval: Some(interval(&errors.model, &errors.sizes)),
+        interval,
+        measures: Some(found.mean),
         n_samples: fit.rows.len(),
-        remark: match fitted.settings.strength {
-            Strength::ByHand(_) | Strength::Chosen { .. } => {
-                "opened; each opening is counted".to_owned()
-            }
-        },
+        remark: "opened; each opening is counted".to_owned(),
     })
 }
 
-fn publish(fitted: &Fitted, rungs: &[Rung], variance: f64) -> Facts {
+fn publish(fitted: &Fitted, rungs: &[Rung]) -> Facts {
+    let sort = fitted.sort();
+    let (main, error) = (sort.main(), sort.error());
     let unit = &fitted.prepared.data.outcome.unit;
     let digits = error_digits(fitted);
-    let share = Precision::Decimals(3);
     let mut facts = Facts::new();
+    facts.push(Fact::text(
+        "measure",
+        main.title(),
+        "What the steps of the ladder are compared by; more is better.",
+    ));
     let prefix = |step: &str| match step {
         "rows split" => "ungrouped".to_owned(),
         "whole batches held out" => "batch".to_owned(),
@@ -327,71 +360,76 @@ fn publish(fitted: &Fitted, rungs: &[Rung], variance: f64) -> Facts {
         other => other.to_owned(),
     };
     for rung in rungs {
-        let Some(m) = rung.measures else { continue };
-        let name = prefix(rung.step);
-        let mut push = |what: &str, value: f64, unit: &str, precision: Precision, meaning: &str| {
-            facts.push(Fact::number(
-                &format!("{name} {what}"),
-                value,
-                unit,
-                precision,
-                meaning,
-            ));
+        let Some(measures) = &rung.measures else {
+            continue;
         };
-        push(
-            "r²",
-            m.r2,
-            "",
-            share,
-            &format!("R² with {} held out: {}.", rung.held_out, rung.remark),
-        );
-        push(
-            "rmse",
-            m.rmse,
-            unit,
-            digits,
-            &format!(
-                "Root mean squared error with {} held out: {}.",
-                rung.held_out, rung.remark
-            ),
-        );
+        let name = prefix(rung.step);
+        let mut push = |measure: Measure, meaning: &str| {
+            let value = measures.get(measure);
+            if value.is_finite() || sort == Sort::Measured {
+                facts.push(Fact::number(
+                    &format!("{name} {}", measure.name()),
+                    value,
+                    measure.unit(unit),
+                    measure.digits(digits),
+                    meaning,
+                ));
+            }
+        };
+        for measure in [main, error] {
+            let what = measure.meaning(sort);
+            let (held_out, remark) = (&rung.held_out, &rung.remark);
+            push(
+                measure,
+                &format!("{what}, with {held_out} held out: {remark}."),
+            );
+        }
         if rung.step == "sealed set" {
-            push(
-                "bias",
-                m.bias,
-                unit,
-                digits,
-                "Mean of predicted minus observed values of the sealed samples.",
-            );
-            push(
-                "slope",
-                m.slope,
-                "",
-                share,
-                "Slope of the line of observed on predicted values of the sealed samples.",
-            );
-            push(
-                "samples",
+            match sort {
+                Sort::Measured => {
+                    push(
+                        Measure::Bias,
+                        "Mean of predicted minus observed values of the sealed samples.",
+                    );
+                    push(
+                        Measure::Slope,
+                        "Slope of the line of observed on predicted values of the sealed samples.",
+                    );
+                }
+                Sort::YesNo | Sort::Count | Sort::Time => {
+                    push(
+                        Measure::CalibrationSlope,
+                        Measure::CalibrationSlope.meaning(sort),
+                    );
+                }
+                Sort::Classes => {}
+            }
+            facts.push(Fact::number(
+                "sealed samples",
                 rung.n_samples as f64,
                 "",
                 Precision::Whole,
                 "How many sealed samples were predicted.",
-            );
+            ));
         }
     }
     let of = |get: &dyn Fn(&Rung) -> f64| rungs.iter().map(get).collect::<Vec<f64>>();
-    let measure = |get: fn(&Measures) -> f64| {
-        of(&move |rung: &Rung| rung.measures.as_ref().map_or(f64::NAN, get))
+    let measure = |wanted: Measure| {
+        of(&move |rung: &Rung| rung.measures.as_ref().map_or(f64::NAN, |m| m.get(wanted)))
     };
-    // R² of a sealed set is about its own mean; an interval from the analysed samples' variance
-    // would not belong to it.
-    let r2_end = |end: fn(&Interval) -> f64| {
-        of(&move |rung: &Rung| match (&rung.interval, rung.step) {
-            (Some(_), "sealed set") | (None, _) => f64::NAN,
-            (Some(interval), _) => 1.0 - end(interval) / variance,
-        })
+    let end = |end: fn(&(f64, f64)) -> f64| {
+        of(&move |rung: &Rung| rung.interval.as_ref().map_or(f64::NAN, end))
     };
     let texts = |get: fn(&Rung) -> String| rungs.iter().map(get).collect::<Vec<String>>();
+    let shown = |name: &str, measure: Measure, values: Vec<f64>, meaning: &str| {
+        FactColumn::numbers(
+            name,
+            values,
+            measure.unit(unit),
+            measure.digits(digits),
+            meaning,
+        )
+    };
     facts.push(Fact::table(
         "ladder",
         vec![
@@ -405,33 +443,29 @@ fn publish(fitted: &Fitted, rungs: &[Rung], variance: f64) -> Facts {
                 texts(|rung| rung.held_out.clone()),
                 "What the fits had not seen.",
             ),
-            FactColumn::numbers(
-                "r²",
-                measure(|m| m.r2),
-                "",
-                share,
-                "R²: 1 − SSE/SST, SST about the mean of the samples judged.",
+            shown(
+                main.name(),
+                main,
+                measure(main),
+                &format!("{}.", main.meaning(sort)),
             ),
-            FactColumn::numbers(
-                "r² low",
-                r2_end(|i| i.high),
-                "",
-                share,
+            shown(
+                &format!("{} low", main.name()),
+                main,
+                end(|ends| ends.0),
                 "Lower end of a 95 % interval over units; it is about the procedure.",
             ),
-            FactColumn::numbers(
-                "r² high",
-                r2_end(|i| i.low.max(0.0)),
-                "",
-                share,
+            shown(
+                &format!("{} high", main.name()),
+                main,
+                end(|ends| ends.1),
                 "Upper end of the same interval.",
             ),
-            FactColumn::numbers(
-                "rmse",
-                measure(|m| m.rmse),
-                unit,
-                digits,
-                "Root mean squared error.",
+            shown(
+                error.name(),
+                error,
+                measure(error),
+                &format!("{}.", error.meaning(sort)),
             ),
             FactColumn::numbers(
                 "samples",

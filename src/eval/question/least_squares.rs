@@ -7,6 +7,7 @@ use crate::eval::kind::Ended;
 use crate::eval::kind::fit::Fitted;
 use crate::eval::outcome::{Gives, Outcome};
 use crate::eval::question::{active_columns, scale};
+use crate::numeric::procedure::penalised_freedom;
 use crate::numeric::spectrum::spectrum;
 
 /// Answers from the spectrum of the prepared predictors of all analysed samples.
@@ -27,8 +28,7 @@ pub fn answer(fitted: &Fitted) -> Result<Outcome, Ended> {
     // strength would add is shown beside it, and said to be that.
     let lift =
         fitted.last.strength * rows.len() as f64 * if share < 1.0 { 1.0 - share } else { 1.0 };
-    let (chosen, _) = fitted.chosen();
-    let chosen: Vec<usize> = chosen.into_iter().map(|(at, _)| at).collect();
+    let chosen: Vec<usize> = fitted.chosen().into_iter().map(|(at, _)| at).collect();
     let penalised = if share < 1.0 {
         all.condition(lift)
     } else if chosen.is_empty() {
@@ -97,10 +97,11 @@ pub fn answer(fitted: &Fitted) -> Result<Outcome, Ended> {
         digits,
         "The penalty strength of the final fit.",
     ));
-    let info = fitted.last.path.info(fitted.last.strength_at);
+    let covariates = fitted.prepared.data.covariate_names.len();
+    let (path, at) = (&fitted.last.path, fitted.last.strength_at);
     facts.push(Fact::number(
         "effective degrees of freedom",
-        info.effective_df - 1.0 - fitted.prepared.data.covariate_names.len() as f64,
+        penalised_freedom(path, at, &fitted.response, covariates),
         "",
         digits,
         "How many parameters' worth of freedom the predictors use in the final fit.",

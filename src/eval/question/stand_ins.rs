@@ -21,9 +21,8 @@ pub fn answer(fitted: &Fitted, threshold: f64, work: &Work<'_>) -> Result<Outcom
     let last = &fitted.last;
     let rows = &fitted.prepared.data.analysed;
     let active = active_columns(fitted);
-    let mut chosen: Vec<(usize, f64)> = last
-        .path
-        .standardised(last.strength_at)
+    let mut chosen: Vec<(usize, f64)> = fitted
+        .chosen()
         .into_iter()
         .filter(|(_, v)| *v != 0.0)
         .collect();

@@ -103,11 +103,16 @@ fn log_loss_of(event: bool, p: f64) -> f64 {
 /// one half. `None` when there is no such pair.
 #[must_use]
 pub fn area_under_curve(is_event: &[bool], score: &[f64]) -> Option<f64> {
+    let (wins, pairs) = area_under_curve_counts(is_event, score);
+    (pairs > 0.0).then(|| wins / pairs)
+}
+
+/// The pairs of an event and a non-event in which the event has the higher score, ties one half,
+/// and the number of such pairs.
+#[must_use]
+pub fn area_under_curve_counts(is_event: &[bool], score: &[f64]) -> (f64, f64) {
     let events = is_event.iter().filter(|&&event| event).count();
     let others = is_event.len() - events;
-    if events == 0 || others == 0 {
-        return None;
-    }
     let rank_sum: f64 = ranks(score)
         .into_iter()
         .zip(is_event)
@@ -116,7 +121,7 @@ pub fn area_under_curve(is_event: &[bool], score: &[f64]) -> Option<f64> {
         .sum();
     let events_f = events as f64;
     let wins = rank_sum - events_f * (events_f + 1.0) / 2.0;
-    Some(wins / (events_f * others as f64))
+    (wins, events_f * others as f64)
 }
 
 /// Fits the logistic recalibration by Newton's method. `None` when there is no finite solution:

@@ -15,7 +15,9 @@ mod regression;
 mod survival;
 
 pub use association::{correlation_ratio, cramers_v};
-pub use binary::{BinaryMeasures, Calibration, Confusion, area_under_curve, calibration};
+pub use binary::{
+    BinaryMeasures, Calibration, Confusion, area_under_curve, area_under_curve_counts, calibration,
+};
 pub use careful::{CarefulInterval, ErrorsOfPart, careful_interval};
 pub use classes::{ClassMeasures, predicted_class};
 pub use counts::{CountMeasures, poisson_deviance};
@@ -23,6 +25,6 @@ pub use distribution::{chi_squared_tail, normal_quantile, normal_tail};
 pub use prediction_interval::{PartPrediction, prediction_interval, prediction_interval_guarantee};
 pub use regression::{Agreement, Baseline, Line, quantile, quartiles, r_squared, spearman};
 pub use survival::{
-    Concordance, Curve, CurveStep, LogRank, concordance, kaplan_meier, log_rank,
+    Concordance, Curve, CurveStep, LogRank, brier_terms, concordance, kaplan_meier, log_rank,
     time_dependent_area, time_dependent_brier,
 };

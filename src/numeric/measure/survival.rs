@@ -258,8 +258,19 @@ pub fn time_dependent_brier(
     survival_at: &[f64],
     at: f64,
 ) -> Option<f64> {
+    let terms = brier_terms(time, event, survival_at, at)?;
+    (!terms.is_empty()).then(|| terms.iter().sum::<f64>() / terms.len() as f64)
+}
+
+/// What each sample adds to n times [`time_dependent_brier`]. `None` when a probability of being
+/// observed is 0, or the time is no number.
+#[must_use]
+pub fn brier_terms(time: &[f64], event: &[bool], survival_at: &[f64], at: f64) -> Option<Vec<f64>> {
+    if at.is_nan() {
+        return None;
+    }
     let observed = staying_observed(time, event);
-    let mut sum = 0.0;
+    let mut terms = vec![0.0; time.len()];
     for i in 0..time.len() {
         let (error, probability) = if time[i] > at {
             (1.0 - survival_at[i], observed.at(at))
@@ -271,7 +282,7 @@ pub fn time_dependent_brier(
         if probability <= 0.0 {
             return None;
         }
-        sum += error * error / probability;
+        terms[i] = error * error / probability;
     }
-    (!time.is_empty()).then(|| sum / time.len() as f64)
+    Some(terms)
 }

@@ -69,7 +69,7 @@ pub fn assign(
         } else {
             draw(repeat)?
         };
-        units.check_training(&part_of_unit, parts)?;
+        units.check_training(&part_of_unit, parts, structure.needed)?;
         table.push(
             units
                 .of_row
@@ -95,7 +95,23 @@ fn check_strata(
             }
         };
     }
-    let mut counts: Vec<(usize, usize)> = units.units_by_stratum().into_iter().collect();
+    let by_stratum = units.units_by_stratum();
+    if let Some(stratum) = structure.needed {
+        let units = by_stratum.get(&stratum).copied().unwrap_or(0);
+        return if units == 0 {
+            let stratum = by_stratum.keys().next().copied().unwrap_or(stratum);
+            Err(PlanError::OneStratum { stratum })
+        } else if scheme == Scheme::Balanced && units < parts {
+            Err(PlanError::RareStratum {
+                stratum,
+                units,
+                parts,
+            })
+        } else {
+            Ok(())
+        };
+    }
+    let mut counts: Vec<(usize, usize)> = by_stratum.into_iter().collect();
     // Most frequent first; the stable sort keeps the smaller index first among equals.
     counts.sort_by_key(|&(_, count)| std::cmp::Reverse(count));
     match (counts.first(), counts.get(1)) {
@@ -174,8 +190,13 @@ impl Units {
         counts
     }
 
-    /// That no stratum occurs in one held-out part only.
-    fn check_training(&self, part_of_unit: &[usize], parts: usize) -> Result<(), PlanError> {
+    /// That no stratum, or not the one that is needed, occurs in one held-out part only.
+    fn check_training(
+        &self,
+        part_of_unit: &[usize],
+        parts: usize,
+        needed: Option<usize>,
+    ) -> Result<(), PlanError> {
         let totals = self.units_by_stratum();
         let mut inside: Vec<BTreeMap<usize, usize>> = vec![BTreeMap::new(); parts];
         for (unit, (strata, _)) in self.strata.iter().enumerate() {
@@ -185,7 +206,8 @@ impl Units {
         }
         for (part, counts) in inside.iter().enumerate() {
             for (&stratum, &units) in counts {
-                if totals[&stratum] == units {
+                let counts = needed.is_none_or(|needed| needed == stratum);
+                if counts && totals[&stratum] == units {
                     return Err(PlanError::TrainingLacksStratum {
                         part,
                         stratum,

@@ -55,6 +55,9 @@ pub struct Structure<'a> {
     /// must occur among the rows (events are no strata where everyone had one), and every
     /// training part must hold every stratum that does.
     pub strata: Option<&'a [usize]>,
+    /// The only stratum that training parts cannot do without, such as the events of times; `None`
+    /// when they need every one.
+    pub needed: Option<usize>,
     /// The order value (time or position of measurement) of each sample.
     pub order: Option<&'a [f64]>,
 }
@@ -67,6 +70,7 @@ impl<'a> Structure<'a> {
             units,
             batches: None,
             strata: None,
+            needed: None,
             order: None,
         }
     }

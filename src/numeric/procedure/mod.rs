@@ -1,21 +1,30 @@
 //! The whole procedure: preparation, choice of share and strength, fit; carried out as one on any
 //! training rows, so that nothing about it is ever learnt from a held-out sample.
 
+mod feasible;
+mod hazard;
 mod nested;
 mod part;
+mod part_error;
+mod recalibration;
 mod tally;
 mod tune;
 
-pub use nested::{HeldOut, OuterFit, nested, one_split};
-pub use part::{PartFit, fit_part};
+pub use feasible::check_plans;
+pub use hazard::Hazard;
+pub use nested::{Hazards, HeldOut, OuterFit, hazards, nested, one_split};
+pub use part::{PartFit, chosen_predictors, fit_part, penalised_freedom};
+pub use part_error::ErrorMeasure;
+pub use recalibration::{count_calibration_slope, time_calibration_slope};
 pub use tally::Tally;
-pub use tune::{Extended, Reach, Tuned, tune};
+pub use tune::{Cut, ENOUGH, Extended, Reach, Tuned, tune};
 
 use crate::base::work::Cancelled;
 use crate::numeric::choose::Rule;
 use crate::numeric::error::{FitError, Stop};
 use crate::numeric::matrix::Matrix;
 use crate::numeric::parts::{PartsParams, PlanError, Structure};
+use crate::numeric::path::{Grouping, Params};
 use crate::numeric::predictors::Predictors;
 use crate::numeric::response::Response;
 use crate::numeric::samples::Samples;
@@ -39,6 +48,14 @@ pub struct Material<'a> {
     pub structure: Structure<'a>,
 }
 
+impl Material<'_> {
+    /// The sample weight of a row.
+    #[must_use]
+    pub fn weight(&self, row: usize) -> f64 {
+        self.weights.map_or(1.0, |weights| weights[row])
+    }
+}
+
 /// What is done with the training rows, whichever they are.
 #[derive(Clone, Debug)]
 pub struct Procedure<'a> {
@@ -48,8 +65,23 @@ pub struct Procedure<'a> {
     pub scaling: Scaling,
     /// The lasso shares that are tried, 0 alone for ridge.
     pub shares: Vec<f64>,
+    /// How the coefficients of a predictor in several classes are penalised.
+    pub grouping: Grouping,
+    /// What is made small when strengths are compared on held-out parts.
+    pub measure: ErrorMeasure,
     /// How the strength comes about.
     pub strength: StrengthRule,
+}
+
+impl Procedure<'_> {
+    /// The rules by which every path of the procedure is fitted.
+    #[must_use]
+    pub fn params(&self) -> Params {
+        Params {
+            grouping: self.grouping,
+            ..Params::default()
+        }
+    }
 }
 
 /// How the strength comes about.
@@ -118,6 +150,19 @@ pub enum ProcedureError {
     NoPredictors,
     /// No strength has an error that is a number.
     NoError,
+    /// The measure of the error is not defined for this sort of outcome.
+    Measure(ErrorMeasure),
+    /// The held-out parts hold no two samples that the measure could compare.
+    NoPairs(Level),
+    /// Generalised cross-validation is for measured outcomes.
+    RuleForMeasured,
+    /// A training part lacks what the outcome needs: a second class, an event, a count above 0.
+    Training {
+        /// At which level.
+        level: Level,
+        /// What it lacks.
+        error: FitError,
+    },
     /// Something was learnt from a held-out sample. The types forbid it; the run-time proof found
     /// it all the same, and nothing is given out.
     Leak,

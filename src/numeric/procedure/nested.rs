@@ -2,9 +2,13 @@
 
 use crate::base::thread::{Threads, in_order};
 use crate::base::work::Work;
+use crate::numeric::matrix::Matrix;
 use crate::numeric::parts::{Assignment, Split};
-use crate::numeric::procedure::tune::{Reach, tune};
-use crate::numeric::procedure::{Halt, Material, Procedure, Tally};
+use crate::numeric::path::Path;
+use crate::numeric::procedure::hazard::Hazard;
+use crate::numeric::procedure::tune::{Cut, Reach, tune};
+use crate::numeric::procedure::{Halt, Material, PartFit, Procedure, Tally, chosen_predictors};
+use crate::numeric::response::Response;
 
 /// The procedure on one outer training part, and what it predicted for the held-out part.
 #[derive(Clone, Debug)]
@@ -23,11 +27,21 @@ pub struct OuterFit {
     pub n_chosen: usize,
     /// The held-out rows.
     pub rows: Vec<usize>,
-    /// The linear predictor of each held-out row.
-    pub predicted: Vec<f64>,
-    /// The prediction of the model without predictors for the held-out rows: the weighted mean
-    /// outcome of the training part.
-    pub baseline: f64,
+    /// The linear predictors of each held-out row, rows × 1 or rows × classes; offsets not included.
+    pub linear: Matrix,
+    /// The linear predictors of the model without predictors, fitted to the training part.
+    pub baseline: Vec<f64>,
+    /// For times: what turns a linear predictor into a share without the event.
+    pub hazards: Option<Hazards>,
+}
+
+/// The cumulative hazards of a training part.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Hazards {
+    /// At a linear predictor of zero of the fit.
+    pub fitted: Hazard,
+    /// Of the model without predictors.
+    pub baseline: Hazard,
 }
 
 /// All outer fits of a plan.
@@ -101,8 +115,10 @@ pub fn one_split(
     work: &Work<'_>,
 ) -> Result<(OuterFit, Tally), Halt> {
     let tuned = tune(material, procedure, split, purpose, Reach::Chosen, work)?;
-    let predicted = tuned.fit.predict(material, split.held_out());
     let at = tuned.strength_at;
+    let k = tuned.fit.path.n_linear();
+    let predicted = tuned.fit.predict(material, split.held_out());
+    let hazards = hazards(material, &tuned.fit, at, split.training());
     let n_strengths = tuned
         .curves
         .get(tuned.share_at)
@@ -114,14 +130,57 @@ pub fn one_split(
         strength: tuned.strength,
         // The strong end of a sparse range is the empty model, beyond which nothing changes; only
         // ridge has more to find there.
-        at_edge: n_strengths
-            .is_some_and(|count| count > 1 && (at + 1 == count || (at == 0 && tuned.share == 0.0))),
-        n_chosen: tuned.fit.path.info(at).n_chosen,
+        // The weak end of a range that was cut is where the fit follows its samples anyway.
+        at_edge: n_strengths.is_some_and(|count| {
+            let is_weakest = at + 1 == count && tuned.cut == Cut::No;
+            count > 1 && (is_weakest || (at == 0 && tuned.share == 0.0))
+        }),
+        n_chosen: n_chosen(&tuned.fit.path, at),
         rows: split.held_out().to_vec(),
-        predicted: predicted.column(at).iter().copied().collect(),
+        linear: predicted.columns(at * k, k).into_owned(),
         baseline: material
             .response
-            .baseline(split.training(), material.weights),
+            .null_linear(split.training(), material.weights),
+        hazards,
     };
     Ok((fit, tuned.tally))
+}
+
+/// How many predictors have a coefficient other than zero, in any class.
+fn n_chosen(path: &Path, at: usize) -> usize {
+    if path.n_linear() == 1 {
+        path.info(at).n_chosen
+    } else {
+        chosen_predictors(path, at).len()
+    }
+}
+
+/// The hazards of a fit to times at one of its strengths.
+#[must_use]
+pub fn hazards(
+    material: &Material<'_>,
+    fit: &PartFit<'_>,
+    at: usize,
+    training: &[usize],
+) -> Option<Hazards> {
+    let Response::Time {
+        time,
+        event,
+        strata,
+        ..
+    } = material.response
+    else {
+        return None;
+    };
+    let eta = fit.predict(material, training);
+    let known: Vec<(f64, bool, usize)> = training
+        .iter()
+        .map(|&row| (time[row], event[row], strata.as_ref().map_or(0, |s| s[row])))
+        .collect();
+    let weights: Vec<f64> = training.iter().map(|&row| material.weight(row)).collect();
+    let zero = vec![0.0; training.len()];
+    Some(Hazards {
+        fitted: Hazard::of(&known, eta.column(at).as_slice(), &weights),
+        baseline: Hazard::of(&known, &zero, &weights),
+    })
 }

@@ -3,14 +3,16 @@
 use crate::base::work::Work;
 use crate::numeric::matrix::Matrix;
 use crate::numeric::parts::Split;
-use crate::numeric::path::{Params, Path, fit_path};
+use crate::numeric::path::{Path, fit_path};
 use crate::numeric::predictors::Predictors;
 use crate::numeric::procedure::{Halt, Material, Procedure, ProcedureError, Tally};
 use crate::numeric::range::{RangeParams, strength_range};
+use crate::numeric::response::Response;
 use crate::numeric::samples::Samples;
 use crate::numeric::step::{LearnedChain, Prepared, TrailingScale};
 use crate::numeric::task::{Scaling, Task};
 use std::borrow::Cow;
+use std::collections::BTreeMap;
 use std::sync::Arc;
 
 /// The preparation that was learnt from a training part, and all samples prepared with it.
@@ -138,6 +140,7 @@ impl Learnt<'_> {
         material: &Material<'_>,
         rows: &[usize],
         share: f64,
+        procedure: &Procedure<'_>,
         params: RangeParams,
         work: &Work<'_>,
     ) -> Result<Vec<f64>, Halt> {
@@ -146,7 +149,7 @@ impl Learnt<'_> {
             &task,
             share,
             params,
-            &Params::default(),
+            &procedure.params(),
             work,
         )?)
     }
@@ -158,10 +161,10 @@ impl Learnt<'_> {
 /// When the fit cannot be made, or was called off.
 pub fn fit_learnt<'a>(
     material: &Material<'_>,
+    procedure: &Procedure<'_>,
     learnt: Learnt<'a>,
     split: &Split,
-    share: f64,
-    strengths: &[f64],
+    (share, strengths): (f64, &[f64]),
     tally: &mut Tally,
     work: &Work<'_>,
 ) -> Result<PartFit<'a>, Halt> {
@@ -170,7 +173,7 @@ pub fn fit_learnt<'a>(
     if !tally.proof.holds() {
         return Err(ProcedureError::Leak.into());
     }
-    let path = fit_path(&task, share, strengths, &Params::default(), work)?;
+    let path = fit_path(&task, share, strengths, &procedure.params(), work)?;
     tally.count(&path);
     Ok(PartFit { learnt, path })
 }
@@ -189,7 +192,8 @@ pub fn fit_part<'a>(
     work: &Work<'_>,
 ) -> Result<PartFit<'a>, Halt> {
     let learnt = learn_part(material, procedure, split, tally, work)?;
-    fit_learnt(material, learnt, split, share, strengths, tally, work)
+    let wanted = (share, strengths);
+    fit_learnt(material, procedure, learnt, split, wanted, tally, work)
 }
 
 impl PartFit<'_> {
@@ -198,4 +202,36 @@ impl PartFit<'_> {
     pub fn predict(&self, material: &Material<'_>, rows: &[usize]) -> Matrix {
         self.path.predict(&self.learnt.task(material, &[]), rows)
     }
+}
+
+/// The chosen predictors of a fit, rising, each with its coefficient on the scale that the penalty
+/// sees; with classes the one of largest size among them.
+#[must_use]
+pub fn chosen_predictors(path: &Path, at: usize) -> Vec<(usize, f64)> {
+    if path.n_linear() == 1 {
+        return path.standardised(at);
+    }
+    let mut largest: BTreeMap<usize, f64> = BTreeMap::new();
+    for class in 0..path.n_linear() {
+        for (column, value) in path.class_standardised(at, class) {
+            let known = largest.entry(column).or_insert(value);
+            if value.abs() > known.abs() {
+                *known = value;
+            }
+        }
+    }
+    largest.into_iter().collect()
+}
+
+/// The effective degrees of freedom of the penalised coefficients of a fit: without intercepts and
+/// covariates.
+#[must_use]
+pub fn penalised_freedom(path: &Path, at: usize, response: &Response, covariates: usize) -> f64 {
+    let free = match response {
+        Response::Measured(_) | Response::YesNo(_) | Response::Count { .. } => 1 + covariates,
+        // One class follows from the others.
+        Response::Classes { n_classes, .. } => (n_classes - 1) * (1 + covariates),
+        Response::Time { .. } => covariates,
+    };
+    path.info(at).effective_df - free as f64
 }

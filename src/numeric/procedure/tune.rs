@@ -3,12 +3,14 @@
 use crate::base::work::Work;
 use crate::numeric::choose::{self, Curve, Rule};
 use crate::numeric::parts::{PartsParams, Split, assign};
-use crate::numeric::procedure::part::{fit_learnt, learn_part};
+use crate::numeric::procedure::part::{Learnt, fit_learnt, learn_part};
+use crate::numeric::procedure::part_error::{mean_losses, part_errors};
 use crate::numeric::procedure::{
-    Halt, Level, Material, PartFit, Procedure, ProcedureError, StrengthRule, Tally, fit_part,
-    usual_ratio,
+    ErrorMeasure, Halt, Level, Material, PartFit, Procedure, ProcedureError, StrengthRule, Tally,
+    fit_part, penalised_freedom, usual_ratio,
 };
 use crate::numeric::range::RangeParams;
+use crate::numeric::response::{Response, deviance_of_times};
 
 /// The procedure carried out on some rows.
 #[derive(Debug)]
@@ -25,6 +27,8 @@ pub struct Tuned<'a> {
     pub strength: f64,
     /// Whether the range was made longer once because its weak end won.
     pub extended: Extended,
+    /// Whether the range was cut short because weaker penalties would only follow single samples.
+    pub cut: Cut,
     /// The fits on all the rows, at the strengths from the strongest to the weakest that was
     /// asked for; the chosen one is at `strength_at`.
     pub fit: PartFit<'a>,
@@ -40,6 +44,19 @@ pub enum Extended {
     /// Once.
     Once,
 }
+
+/// Whether a range was cut short.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Cut {
+    /// As it was asked for.
+    No,
+    /// Where the fit explains [`ENOUGH`] of the training rows' deviance.
+    WhereExplained,
+}
+
+/// The share of the training rows' deviance from which on weaker penalties only follow single
+/// samples: with separable classes the coefficients grow without limit beyond. A convention.
+pub const ENOUGH: f64 = 0.99;
 
 /// How much of the path on all the rows is wanted.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -85,6 +102,7 @@ pub fn tune<'a>(
                 share,
                 strength: *strength,
                 extended: Extended::No,
+                cut: Cut::No,
                 fit,
                 tally,
             });
@@ -107,17 +125,18 @@ pub fn tune<'a>(
     };
     let n_shares = procedure.shares.len();
     let mut curves = Vec::with_capacity(n_shares);
-    let mut extended = Extended::No;
+    let (mut extended, mut cut) = (Extended::No, Cut::No);
     for (at, &share) in procedure.shares.iter().enumerate() {
         let bar =
             work.part(at as f32 / n_shares as f32 * 0.9..(at + 1) as f32 / n_shares as f32 * 0.9);
-        let (curve, longer) = search.curve(share, count, ratio, &bar)?;
+        let (curve, longer, shorter) = search.curve(share, count, ratio, &bar)?;
         curves.push(curve);
-        extended = if longer == Extended::Once {
-            longer
-        } else {
-            extended
-        };
+        if longer == Extended::Once {
+            extended = longer;
+        }
+        if shorter == Cut::WhereExplained {
+            cut = shorter;
+        }
     }
     let (share_at, strength_at) = winner(rule, &curves).ok_or(ProcedureError::NoError)?;
     let curve = &curves[share_at];
@@ -143,6 +162,7 @@ pub fn tune<'a>(
         share,
         strength,
         extended,
+        cut,
         fit,
         tally,
     })
@@ -183,7 +203,7 @@ impl Search<'_, '_> {
         count: usize,
         ratio: Option<f64>,
         work: &Work<'_>,
-    ) -> Result<(Curve, Extended), Halt> {
+    ) -> Result<(Curve, Extended, Cut), Halt> {
         let rows = self.split.training();
         let learnt = learn_part(
             self.material,
@@ -200,16 +220,17 @@ impl Search<'_, '_> {
             .count();
         let ratio = ratio.unwrap_or_else(|| usual_ratio(share, rows.len(), p));
         let params = RangeParams { count, ratio };
-        let mut strengths = learnt.strengths(self.material, rows, share, params, work)?;
+        let mut strengths =
+            learnt.strengths(self.material, rows, share, self.procedure, params, work)?;
         if strengths.is_empty() {
             // Nothing varies with the outcome: at every strength the model is empty.
             strengths.push(1.0);
         }
-        drop(learnt);
-        let curve = self.errors(share, &strengths, &work.part(0.0..0.7))?;
+        let cut = self.cut(learnt, share, &mut strengths, &work.part(0.0..0.1))?;
+        let curve = self.errors(share, &strengths, &work.part(0.1..0.7))?;
         let at_weak_end = choose::lowest(&curve.errors) == Some(strengths.len() - 1);
-        if !at_weak_end || strengths.len() < 2 {
-            return Ok((curve, Extended::No));
+        if !at_weak_end || strengths.len() < 2 || cut == Cut::WhereExplained {
+            return Ok((curve, Extended::No, cut));
         }
         // The same spacing, half as many strengths again: the curve's first part stays the same.
         let factor = strengths[1] / strengths[0];
@@ -226,7 +247,48 @@ impl Search<'_, '_> {
         longer
             .standard_errors
             .extend(tail.standard_errors.iter().skip(1));
-        Ok((longer, Extended::Once))
+        Ok((longer, Extended::Once, cut))
+    }
+
+    /// Leaves out the strengths behind the first at which the fit on all rows explains nearly all
+    /// of their deviance. Measured outcomes are left alone: their fits stay finite anyway.
+    fn cut(
+        &mut self,
+        learnt: Learnt<'_>,
+        share: f64,
+        strengths: &mut Vec<f64>,
+        work: &Work<'_>,
+    ) -> Result<Cut, Halt> {
+        let measure = match self.material.response {
+            Response::Measured(_) => return Ok(Cut::No),
+            Response::YesNo(_) | Response::Classes { .. } | Response::Count { .. } => {
+                ErrorMeasure::Deviance
+            }
+            Response::Time { .. } => ErrorMeasure::PartialLikelihood,
+        };
+        if strengths.len() < 2 {
+            return Ok(Cut::No);
+        }
+        let fit = fit_learnt(
+            self.material,
+            self.procedure,
+            learnt,
+            self.split,
+            (share, strengths),
+            &mut self.tally,
+            work,
+        )?;
+        let deviances = training_deviances(measure, self.material, &fit, self.split.training());
+        let enough = deviances
+            .iter()
+            .position(|deviance| *deviance <= (1.0 - ENOUGH) * deviances[0]);
+        match enough {
+            Some(at) if at + 1 < strengths.len() => {
+                strengths.truncate((at + 1).max(2));
+                Ok(Cut::WhereExplained)
+            }
+            Some(_) | None => Ok(Cut::No),
+        }
     }
 
     fn errors(&mut self, share: f64, strengths: &[f64], work: &Work<'_>) -> Result<Curve, Halt> {
@@ -270,13 +332,14 @@ impl Search<'_, '_> {
                     &mut self.tally,
                     &work.silent(),
                 )?;
-                parts.push(mean_losses(self.material, &fit, split.held_out()));
+                let measure = self.procedure.measure;
+                parts.push(part_errors(measure, self.material, &fit, split));
                 done += 1;
                 work.step(done, total)?;
             }
             by_repeat.push(parts);
         }
-        Ok(choose::curve(share, strengths, &by_repeat))
+        Ok(choose::curve_of_parts(share, strengths, &by_repeat))
     }
 
     /// A criterion that is computed on the training rows alone.
@@ -297,25 +360,52 @@ impl Search<'_, '_> {
             .count() as f64;
         let fit = fit_learnt(
             self.material,
+            self.procedure,
             learnt,
             self.split,
-            share,
-            strengths,
+            (share, strengths),
             &mut self.tally,
             work,
         )?;
+        let response = self.material.response;
+        let n_covariates = self.material.covariates.ncols();
         let n = rows.len() as f64;
-        let unpenalised = 1.0 + self.material.covariates.ncols() as f64;
-        let losses = mean_losses(self.material, &fit, rows);
-        let value = |at: usize| {
-            let df = fit.path.info(at).effective_df;
-            match self.rule {
-                Rule::ExtendedBic { gamma } => {
-                    choose::extended_bic(losses[at], n, df - unpenalised, p, gamma)
-                }
-                Rule::GeneralisedCrossValidation | Rule::LowestError | Rule::OneStandardError => {
-                    choose::generalised_cross_validation(losses[at], n, df)
-                }
+        let deviances = match response {
+            Response::Measured(_) => {
+                mean_losses(ErrorMeasure::SquaredError, self.material, &fit, rows)
+            }
+            Response::YesNo(_) | Response::Classes { .. } | Response::Count { .. } => {
+                training_deviances(ErrorMeasure::Deviance, self.material, &fit, rows)
+            }
+            Response::Time { .. } => {
+                training_deviances(ErrorMeasure::PartialLikelihood, self.material, &fit, rows)
+            }
+        };
+        let counted = match response {
+            Response::Time { event, .. } => rows.iter().filter(|&&row| event[row]).count() as f64,
+            Response::Measured(_)
+            | Response::YesNo(_)
+            | Response::Classes { .. }
+            | Response::Count { .. } => n,
+        };
+        let value = |at: usize| match self.rule {
+            Rule::ExtendedBic { gamma } => {
+                let k = penalised_freedom(&fit.path, at, response, n_covariates);
+                let deviance = match response {
+                    Response::Measured(_) if deviances[at] > 0.0 => n * deviances[at].ln(),
+                    // A fit without residuals has used up every sample.
+                    Response::Measured(_) => f64::INFINITY,
+                    Response::YesNo(_)
+                    | Response::Classes { .. }
+                    | Response::Count { .. }
+                    | Response::Time { .. } => deviances[at],
+                };
+                let coefficients = p * fit.path.n_linear() as f64;
+                choose::extended_bic(deviance, counted, k, coefficients, gamma)
+            }
+            Rule::GeneralisedCrossValidation | Rule::LowestError | Rule::OneStandardError => {
+                let df = fit.path.info(at).effective_df;
+                choose::generalised_cross_validation(deviances[at], n, df)
             }
         };
         Ok(Curve {
@@ -327,19 +417,25 @@ impl Search<'_, '_> {
     }
 }
 
-/// The mean loss of some rows at every strength, under the sample weights.
-fn mean_losses(material: &Material<'_>, fit: &PartFit<'_>, rows: &[usize]) -> Vec<f64> {
-    let predicted = fit.predict(material, rows);
-    let weight = |row: usize| material.weights.map_or(1.0, |weights| weights[row]);
-    let total: f64 = rows.iter().map(|&row| weight(row)).sum();
-    let loss = |at: usize| {
-        let column = predicted.column(at);
-        let sum: f64 = rows
-            .iter()
-            .zip(column.iter())
-            .map(|(&row, &eta)| weight(row) * material.response.squared_error(row, eta))
-            .sum();
-        sum / total
-    };
-    (0..predicted.ncols()).map(loss).collect()
+/// The deviance of the training rows at every strength.
+fn training_deviances(
+    measure: ErrorMeasure,
+    material: &Material<'_>,
+    fit: &PartFit<'_>,
+    rows: &[usize],
+) -> Vec<f64> {
+    if measure == ErrorMeasure::PartialLikelihood {
+        let predicted = fit.predict(material, rows);
+        return predicted
+            .column_iter()
+            .map(|eta| {
+                let eta: Vec<f64> = eta.iter().copied().collect();
+                deviance_of_times(material.response, rows, &eta, material.weights)
+                    .unwrap_or(f64::NAN)
+            })
+            .collect();
+    }
+    let total: f64 = rows.iter().map(|&row| material.weight(row)).sum();
+    let means = mean_losses(measure, material, fit, rows);
+    means.into_iter().map(|mean| mean * total).collect()
 }

@@ -34,7 +34,7 @@ pub fn answer(source: &Source<'_>) -> Paragraph {
 /// The rest of the answer.
 #[must_use]
 pub fn blocks(source: &Source<'_>) -> Vec<Block> {
-    let mut blocks: Vec<Block> = figure(source).map(Block::Figure).into_iter().collect();
+    let mut blocks: Vec<Block> = figures(source).into_iter().map(Block::Figure).collect();
     blocks.extend(
         Grid::of_table(
             "How many predictors at each strength",
@@ -47,8 +47,32 @@ pub fn blocks(source: &Source<'_>) -> Vec<Block> {
     blocks
 }
 
-fn figure(source: &Source<'_>) -> Option<NamedFigure> {
-    let trace = source.rows("trace")?;
+/// So many classes have a figure of their own; the table holds all.
+const MOST_CLASSES: usize = 8;
+
+/// One figure, or one for each class.
+fn figures(source: &Source<'_>) -> Vec<NamedFigure> {
+    let Some(trace) = source.rows("trace") else {
+        return Vec::new();
+    };
+    if trace.column("class").is_none() {
+        return vec![figure(source, trace, None)];
+    }
+    let mut classes: Vec<&String> = Vec::new();
+    for class in trace.texts("class") {
+        if !classes.contains(&class) {
+            classes.push(class);
+        }
+    }
+    classes
+        .into_iter()
+        .take(MOST_CLASSES)
+        .enumerate()
+        .map(|(nth, class)| figure(source, trace, Some((nth + 1, class))))
+        .collect()
+}
+
+fn figure(source: &Source<'_>, trace: &FactTable, class: Option<(usize, &str)>) -> NamedFigure {
     let strengths = source.facts.table("trace strengths");
     let at: Vec<f64> = match strengths {
         Some(table) => table.numbers("strength").to_vec(),
@@ -56,10 +80,11 @@ fn figure(source: &Source<'_>) -> Option<NamedFigure> {
     };
     let choice = choice(source);
     let chosen_at = choice.as_ref().and_then(|choice| nearest(&at, choice.at));
-    let lines = lines(trace, &at, chosen_at);
+    let lines = lines(trace, class.map(|(_, class)| class), &at, chosen_at);
+    let of = class.map_or_else(String::new, |(_, class)| format!(" for “{class}”"));
     let shape = Trace {
         caption: Caption {
-            title: "Standardised coefficients against penalty strength".to_owned(),
+            title: format!("Standardised coefficients{of} against penalty strength"),
             description: "One line for each predictor, from the strongest to the weakest penalty."
                 .to_owned(),
             empty: "No predictor is chosen at any strength.".to_owned(),
@@ -81,17 +106,29 @@ fn figure(source: &Source<'_>) -> Option<NamedFigure> {
             tips: Vec::new(),
         },
     };
-    Some(NamedFigure {
-        name: "coefficient-trace".to_owned(),
+    NamedFigure {
+        name: match class {
+            // By number: two names of classes may be the same as names of files.
+            Some((nth, _)) => format!("coefficient-trace-{nth}"),
+            None => "coefficient-trace".to_owned(),
+        },
         figure: shape.figure(),
-        reading: Paragraph::of(
-            "Lines that swing or cross near the mark are not to be trusted one by one.",
-        ),
-    })
+        reading: Paragraph::of(if class.is_some() {
+            "Lines that swing or cross near the mark are not to be trusted one by one; the strip \
+             counts predictors in any class."
+        } else {
+            "Lines that swing or cross near the mark are not to be trusted one by one."
+        }),
+    }
 }
 
 /// One line for each predictor; the largest at the chosen strength carry their names.
-fn lines(trace: &FactTable, at: &[f64], chosen_at: Option<usize>) -> Vec<TraceLine> {
+fn lines(
+    trace: &FactTable,
+    class: Option<&str>,
+    at: &[f64],
+    chosen_at: Option<usize>,
+) -> Vec<TraceLine> {
     let mut order: Vec<&String> = Vec::new();
     let mut values: BTreeMap<&String, Vec<f64>> = BTreeMap::new();
     let place: BTreeMap<u64, usize> = at
@@ -99,11 +136,15 @@ fn lines(trace: &FactTable, at: &[f64], chosen_at: Option<usize>) -> Vec<TraceLi
         .enumerate()
         .map(|(place, strength)| (strength.to_bits(), place))
         .collect();
+    let classes = trace.texts("class");
     let rows = trace
         .texts("predictor")
         .iter()
         .zip(trace.numbers("strength"))
-        .zip(trace.numbers("standardised coefficient"));
+        .zip(trace.numbers("standardised coefficient"))
+        .enumerate()
+        .filter(|(row, _)| class.is_none_or(|class| classes[*row] == class))
+        .map(|(_, values)| values);
     for ((predictor, strength), coefficient) in rows {
         let line = values.entry(predictor).or_insert_with(|| {
             order.push(predictor);

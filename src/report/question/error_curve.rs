@@ -19,13 +19,19 @@ const LOOSE: f64 = 0.5;
 /// The answer in one sentence.
 #[must_use]
 pub fn answer(source: &Source<'_>) -> Paragraph {
-    let is_flat = source
-        .value("curve improvement")
-        .is_some_and(|gain| gain < FLAT_SHARE)
-        || source
-            .value("standard errors below the strongest")
-            .is_some_and(|count| count < 1.0);
-    if !source.has("curve improvement") {
+    let is_flat = match source.facts.words("flat") {
+        Some(word) => word == "yes",
+        // A record from before this was a fact.
+        None => {
+            source
+                .value("curve improvement")
+                .is_some_and(|gain| gain < FLAT_SHARE)
+                || source
+                    .value("standard errors below the strongest")
+                    .is_some_and(|count| count < 1.0)
+        }
+    };
+    if !source.has("curve improvement") && !source.has("deviance gained") {
         return source.say(
             "The rule takes the strength {chosen strength}; it needs no held-out parts, so that \
              there is no held-out error to show.",
@@ -38,10 +44,23 @@ pub fn answer(source: &Source<'_>) -> Paragraph {
              ({chosen strength}) is close to arbitrary",
             &[],
         )
-    } else {
+    } else if source.has("deviance gained") {
+        source.say(
+            "At the chosen strength, {chosen strength}, the error is among the lowest; the \
+             cross-validated deviance of the partial likelihood lies {deviance gained} below that at \
+             the strongest penalty",
+            &[],
+        )
+    } else if is_square(source) {
         source.say(
             "At the chosen strength, {chosen strength}, the error is among the lowest; the lowest \
              squared error lies {curve improvement|%} below that at the strongest penalty",
+            &[],
+        )
+    } else {
+        source.say(
+            "At the chosen strength, {chosen strength}, the error is among the lowest; the lowest \
+             {error measure} lies {curve improvement|%} below that at the strongest penalty",
             &[],
         )
     };
@@ -60,16 +79,26 @@ pub fn answer(source: &Source<'_>) -> Paragraph {
     }
 }
 
+/// Whether the error is a mean square of a measured quantity, as it was before there were others.
+fn is_square(source: &Source<'_>) -> bool {
+    source
+        .facts
+        .words("error measure")
+        .is_none_or(|words| words == "mean squared error")
+}
+
 /// The rest of the answer.
 #[must_use]
 pub fn blocks(source: &Source<'_>) -> Vec<Block> {
     let mut blocks: Vec<Block> = figure(source).map(Block::Figure).into_iter().collect();
     let numbers = source.given(&[
         "chosen strength",
+        "error measure",
         "lowest error",
         "lowest error standard error",
         "one-standard-error strength",
         "curve improvement",
+        "deviance gained",
         "standard errors below the strongest",
         "strength log10 interquartile range",
         "strength least",
@@ -97,7 +126,14 @@ pub fn blocks(source: &Source<'_>) -> Vec<Block> {
 pub fn figure(source: &Source<'_>) -> Option<NamedFigure> {
     let table = source.rows("error curve")?;
     let (name, label) = if table.column("error").is_some() {
-        ("error", "error")
+        (
+            "error",
+            source
+                .facts
+                .words("error measure")
+                .filter(|_| !is_square(source))
+                .unwrap_or("error"),
+        )
     } else {
         ("criterion", "criterion")
     };
@@ -192,9 +228,18 @@ pub fn methods(source: &Source<'_>) -> Vec<Paragraph> {
     let mut telling = Telling::new();
     if source.has("lowest error") {
         telling.say(source.say(
-            "The error over the strengths had its lowest value {lowest error} (standard error \
-             {lowest error standard error}); the squared error there was {curve improvement|%} \
-             below that at the strongest penalty.",
+            if source.has("deviance gained") {
+                "The {error measure} had its lowest value {lowest error} (standard error {lowest error \
+                 standard error}); over all events the cross-validated deviance there was {deviance \
+                 gained} below that at the strongest penalty."
+            } else if is_square(source) {
+                "The error over the strengths had its lowest value {lowest error} (standard error \
+                 {lowest error standard error}); the squared error there was {curve improvement|%} \
+                 below that at the strongest penalty."
+            } else {
+                "The {error measure} had its lowest value {lowest error} (standard error {lowest error \
+                 standard error}), {curve improvement|%} below that at the strongest penalty."
+            },
             &[],
         ));
     }

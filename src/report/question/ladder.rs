@@ -6,41 +6,132 @@ use crate::figure::shape::ladder::{Known, Ladder, Step};
 use crate::report::Context;
 use crate::report::block::{Block, Grid, NamedFigure, Paragraph};
 use crate::report::chain::Chain;
+use crate::report::kind::fit::kind;
 use crate::report::noun;
 use crate::report::tell::{Source, Telling};
-use crate::study::settings::data::Sealed;
+use crate::study::settings::data::{OutcomeKind, Sealed};
+
+/// How the steps of a kind of outcome are compared.
+struct Words {
+    /// The end of the facts' names.
+    fact: &'static str,
+    /// How a value is told.
+    form: &'static str,
+    /// “the model seems to explain”, before the first value.
+    verb: &'static str,
+    /// What stands behind a value.
+    of: &'static str,
+    /// The name in figures.
+    title: &'static str,
+    /// What it is.
+    what: &'static str,
+    /// The error beside it: fact and name.
+    error: (&'static str, &'static str),
+    /// Whether nothing to be found gives one half.
+    from_half: bool,
+}
+
+const MEASURED: Words = Words {
+    fact: "r²",
+    form: "|%",
+    verb: "explain",
+    of: "",
+    title: "R²",
+    what: "The share of variation explained",
+    error: ("rmse", "RMSE"),
+    from_half: false,
+};
+const YES_NO: Words = Words {
+    fact: "auc",
+    form: "",
+    verb: "reach an area under the curve of",
+    of: "",
+    title: "AUC",
+    what: "The area under the receiver operating characteristic",
+    error: ("log loss", "log loss"),
+    from_half: true,
+};
+const CLASSES: Words = Words {
+    fact: "accuracy",
+    form: "",
+    verb: "call",
+    of: " right",
+    title: "share called right",
+    what: "The share of samples called right",
+    error: ("log loss", "log loss"),
+    from_half: false,
+};
+const COUNTS: Words = Words {
+    fact: "deviance explained",
+    form: "|%",
+    verb: "explain",
+    of: " of the deviance",
+    title: "share of deviance explained",
+    what: "The share of deviance explained",
+    error: ("deviance", "mean deviance"),
+    from_half: false,
+};
+const TIMES: Words = Words {
+    fact: "concordance",
+    form: "",
+    verb: "reach a concordance of",
+    of: "",
+    title: "concordance",
+    what: "Harrell’s concordance",
+    error: ("brier at the middle time", "Brier, middle time"),
+    from_half: true,
+};
+
+fn words(chain: &Chain<'_>) -> &'static Words {
+    match kind(chain.settings()) {
+        Some(OutcomeKind::YesNo { .. }) => &YES_NO,
+        Some(OutcomeKind::Classes) => &CLASSES,
+        Some(OutcomeKind::Count { .. }) => &COUNTS,
+        Some(OutcomeKind::Time { .. }) => &TIMES,
+        Some(OutcomeKind::Measured) | None => &MEASURED,
+    }
+}
 
 /// The answer in one sentence.
 #[must_use]
 pub fn answer(chain: &Chain<'_>, source: &Source<'_>) -> Paragraph {
     let unit = noun::unit(chain.settings());
     let batch = noun::batch(chain.settings());
-    if !source.has("nested r²") {
+    let Words {
+        fact,
+        form,
+        verb,
+        of,
+        ..
+    } = words(chain);
+    let own = &unit.many;
+    if !source.has(&format!("nested {fact}")) {
         return source.say(
             &format!(
-                "On its own {} the model seems to explain {{apparent r²|%}}, which flatters it; it \
-                 was not judged on {} that it has not seen.",
-                unit.many, unit.many
+                "On its own {own} the model seems to {verb} {{apparent {fact}{form}}}{of}, which \
+                 flatters it; it was not judged on {own} that it has not seen."
             ),
             &[],
         );
     }
     let mut said = source.say(
         &format!(
-            "On its own {} the model seems to explain {{apparent r²|%}}, on {} that it has not \
-             seen {{nested r²|%}}",
-            unit.many, unit.many
+            "On its own {own} the model seems to {verb} {{apparent {fact}{form}}}{of}, on {own} that \
+             it has not seen {{nested {fact}{form}}}"
         ),
         &[],
     );
-    if source.has("batch r²") {
+    if source.has(&format!("batch {fact}")) {
         said = said.and(source.say(
-            &format!(", on {} that it has not seen {{batch r²|%}}", batch.many),
+            &format!(
+                ", on {} that it has not seen {{batch {fact}{form}}}",
+                batch.many
+            ),
             &[],
         ));
     }
-    if source.has("sealed r²") {
-        said = said.and(source.say(", on the sealed set {sealed r²|%}", &[]));
+    if source.has(&format!("sealed {fact}")) {
+        said = said.and(source.say(&format!(", on the sealed set {{sealed {fact}{form}}}"), &[]));
     }
     said.text("; quote the step that is nearest to the use in mind.")
 }
@@ -59,6 +150,14 @@ pub fn blocks(chain: &Chain<'_>, source: &Source<'_>) -> Vec<Block> {
         "sealed r²",
         "sealed bias",
         "sealed slope",
+        "sealed auc",
+        "sealed accuracy",
+        "sealed log loss",
+        "sealed deviance explained",
+        "sealed deviance",
+        "sealed concordance",
+        "sealed brier at the middle time",
+        "sealed calibration slope",
         "sealed openings",
     ]);
     if !sealed.is_empty() {
@@ -73,45 +172,52 @@ pub fn blocks(chain: &Chain<'_>, source: &Source<'_>) -> Vec<Block> {
 
 fn figure(chain: &Chain<'_>, source: &Source<'_>) -> Option<NamedFigure> {
     let table = source.rows("ladder")?;
+    let words = words(chain);
     let steps: Vec<Step> = (0..table.n_rows())
         .map(|row| step(table, row, chain))
         .collect();
-    let error = table
-        .column("rmse")
-        .map_or_else(|| "RMSE".to_owned(), |column| with_comma(&column.unit));
+    let error = table.column(words.error.0).map_or_else(
+        || words.error.1.to_owned(),
+        |column| with_comma(words.error.1, &column.unit),
+    );
     let shape = Ladder {
         caption: Caption {
-            title: "How honest is each number? (R²)".to_owned(),
-            description: "The share of variation explained, from the most flattering to the \
-                          strictest way to ask."
-                .to_owned(),
+            title: format!("How honest is each number? ({})", words.title),
+            description: format!(
+                "{}, from the most flattering to the strictest way to ask.",
+                words.what
+            ),
             empty: "No step is known.".to_owned(),
         },
         names: String::new(),
-        values: "R²".to_owned(),
+        values: words.title.to_owned(),
         columns: vec![error],
-        range: range(table),
+        range: range(table, words),
         steps,
     };
     Some(NamedFigure {
         name: "ladder".to_owned(),
         figure: shape.figure(),
-        reading: Paragraph::of("Each step down is closer to real use."),
+        reading: Paragraph::of(if words.from_half {
+            "Each step down is closer to real use; guessing reaches one half."
+        } else {
+            "Each step down is closer to real use."
+        }),
     })
 }
 
-fn with_comma(unit: &str) -> String {
+fn with_comma(name: &str, unit: &str) -> String {
     if unit.is_empty() {
-        "RMSE".to_owned()
+        name.to_owned()
     } else {
-        format!("RMSE, {unit}")
+        format!("{name}, {unit}")
     }
 }
 
 /// From zero to one, unless a step lies below zero.
-fn range(table: &FactTable) -> Option<(f64, f64)> {
+fn range(table: &FactTable, words: &Words) -> Option<(f64, f64)> {
     let lowest = table
-        .numbers("r²")
+        .numbers(words.fact)
         .iter()
         .copied()
         .filter(|value| value.is_finite())
@@ -127,9 +233,11 @@ fn step(table: &FactTable, row: usize, chain: &Chain<'_>) -> Step {
             .column(column)
             .map_or_else(String::new, |column| column.shown(row))
     };
-    let value = number("r²");
-    let interval = Some((number("r² low"), number("r² high")))
-        .filter(|(low, high)| low.is_finite() && high.is_finite());
+    let words = words(chain);
+    let value = number(words.fact);
+    let ends = |end: &str| number(&format!("{} {end}", words.fact));
+    let interval =
+        Some((ends("low"), ends("high"))).filter(|(low, high)| low.is_finite() && high.is_finite());
     let known = if !value.is_finite() {
         let remark = text("remark");
         Known::Closed(if remark.is_empty() || remark == "–" {
@@ -147,14 +255,14 @@ fn step(table: &FactTable, row: usize, chain: &Chain<'_>) -> Step {
     } else {
         Known::Honest { value, interval }
     };
-    let rmse = table
-        .column("rmse")
+    let error = table
+        .column(words.error.0)
         .map_or_else(String::new, |column| column.shown(row));
     Step {
         name: in_words(&name, chain),
         known,
-        text: text("r²"),
-        cells: vec![rmse],
+        text: text(words.fact),
+        cells: vec![error],
         tip: None,
     }
 }
@@ -177,55 +285,60 @@ fn in_words(name: &str, chain: &Chain<'_>) -> String {
 pub fn methods(context: &Context<'_>, chain: &Chain<'_>, source: &Source<'_>) -> Vec<Paragraph> {
     let unit = noun::unit(chain.settings());
     let batch = noun::batch(chain.settings());
+    let Words {
+        fact, what, error, ..
+    } = words(chain);
+    let has = |step: &str| source.has(&format!("{step} {fact}"));
     let mut telling = Telling::new();
-    telling.say(source.say(
-        "The share of variation explained was {apparent r²} on the samples that the model was \
-         fitted to (apparent), which flatters.",
-        &[],
+    let mut say = |pattern: String| telling.say(source.say(&pattern, &[]));
+    say(format!(
+        "{what} was {{apparent {fact}}} on the samples that the model was fitted to (apparent), which \
+         flatters."
     ));
-    if source.has("tuning r²") {
-        telling.say(source.say(
-            "On the inner held-out parts that chose the strength it was {tuning r²} (tuning), which \
-             flatters too.",
-            &[],
+    if has("tuning") {
+        say(format!(
+            "On the inner held-out parts that chose the strength it was {{tuning {fact}}} (tuning), \
+             which flatters too."
         ));
     }
-    if source.has("nested r²") {
+    if has("nested") {
         let together = if chain.settings().is_some_and(|data| data.unit.is_some()) {
             format!(" with {} kept together", unit.many)
         } else {
             String::new()
         };
-        telling.say(source.say(
-            &format!("On outer held-out parts{together} it was {{nested r²}} (nested)."),
-            &[],
+        say(format!(
+            "On outer held-out parts{together} it was {{nested {fact}}} (nested)."
         ));
     }
-    if source.has("ungrouped r²") {
-        telling.say(source.say(
-            &format!(
-                "Had samples of one {} been split between parts, {{ungrouped r²}} would have been \
-                 claimed.",
-                unit.one
-            ),
-            &[],
+    if has("ungrouped") {
+        say(format!(
+            "Had samples of one {} been split between parts, {{ungrouped {fact}}} would have been \
+             claimed.",
+            unit.one
         ));
     }
-    if source.has("batch r²") {
-        telling.say(source.say(
-            &format!(
-                "With whole {} held out it was {{batch r²}} (error {{batch rmse}}).",
-                batch.many
-            ),
-            &[],
+    if has("batch") {
+        say(format!(
+            "With whole {} held out it was {{batch {fact}}} ({} {{batch {}}}).",
+            batch.many,
+            if error.0 == "rmse" { "error" } else { error.1 },
+            error.0
         ));
     }
-    if source.has("sealed r²") {
-        telling.say(source.say(
-            "On the sealed set it was {sealed r²} (error {sealed rmse}, average difference {sealed \
-             bias}, slope {sealed slope}).",
-            &[],
-        ));
+    if has("sealed") {
+        if *fact == "r²" {
+            say(
+                "On the sealed set it was {sealed r²} (error {sealed rmse}, average difference \
+                 {sealed bias}, slope {sealed slope})."
+                    .to_owned(),
+            );
+        } else {
+            say(format!(
+                "On the sealed set it was {{sealed {fact}}} ({} {{sealed {}}}).",
+                error.1, error.0
+            ));
+        }
         if let Some(said) = openings(context, chain) {
             telling.say(said);
         }

@@ -13,6 +13,7 @@ use crate::study::cell::{Cell, CellId};
 use crate::study::link::Link;
 use crate::study::prose::Prose;
 use crate::study::settings::Settings;
+use crate::study::settings::data::OutcomeKind;
 use crate::study::settings::fit::{Fit, Judge, Penalty};
 use crate::study::settings::prepare::Step;
 use crate::study::settings::question::{Ask, Seal};
@@ -47,6 +48,12 @@ fn every_place_of_every_setting_is_shown_by_a_word_that_takes_its_own_value() {
             .flat_map(|sentence| sentence.words().map(|word| word.slot))
             .collect();
         for slot in settings.slots() {
+            // The bench predicts a measured quantity; what only other kinds have is kept, unseen.
+            if let Slot::Fit(fit) = &slot
+                && !fit.is_for(Some(&OutcomeKind::Measured))
+            {
+                continue;
+            }
             assert!(shown.contains(&slot), "{slot:?} has no word: {settings:?}");
         }
         for slot in shown {

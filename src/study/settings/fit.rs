@@ -2,6 +2,7 @@
 
 use crate::base::real::Real;
 use crate::study::link::Link;
+use crate::study::settings::data::OutcomeKind;
 
 /// Settings of a Fit cell.
 #[derive(Clone, Debug, PartialEq, Eq, Hash)]
@@ -12,6 +13,12 @@ pub struct Fit {
     pub penalty: Penalty,
     /// On which scale the penalty acts.
     pub scaling: Scaling,
+    /// How the coefficients of a predictor in several classes are penalised; for classes only.
+    pub grouping: Grouping,
+    /// How equal times are counted; for times only.
+    pub ties: Ties,
+    /// What is made small when strengths are compared on held-out parts.
+    pub measure: ErrorMeasure,
     /// How the strength comes about.
     pub strength: Strength,
     /// How the whole procedure is judged.
@@ -28,6 +35,9 @@ impl Default for Fit {
             input: Link::open(),
             penalty: Penalty::Lasso,
             scaling: Scaling::UnitVariance,
+            grouping: Grouping::Apart,
+            ties: Ties::Efron,
+            measure: ErrorMeasure::Usual,
             strength: Strength::Chosen {
                 rule: Rule::LowestError,
                 range: PenaltyRange::default(),
@@ -43,6 +53,36 @@ impl Default for Fit {
                 repeats: 10,
             }),
             seed: 20_260_301,
+        }
+    }
+}
+
+impl Fit {
+    /// The usual fit of this kind of outcome: where there are classes or events, they are spread
+    /// evenly over the parts.
+    #[must_use]
+    pub fn usual_for(kind: &OutcomeKind) -> Self {
+        let mut fit = Self::default();
+        fit.spread_evenly(kind);
+        fit
+    }
+
+    /// Spreads classes or events evenly over parts that are drawn at random, where there are any.
+    pub fn spread_evenly(&mut self, kind: &OutcomeKind) {
+        match kind {
+            OutcomeKind::Measured | OutcomeKind::Count { .. } => return,
+            OutcomeKind::YesNo { .. } | OutcomeKind::Classes | OutcomeKind::Time { .. } => {}
+        }
+        let even = |plan: &mut Plan| {
+            if plan.scheme == Scheme::Units {
+                plan.scheme = Scheme::Balanced;
+            }
+        };
+        if let Strength::Chosen { inner, .. } = &mut self.strength {
+            even(inner);
+        }
+        if let Judge::Nested(outer) = &mut self.judge {
+            even(outer);
         }
     }
 }
@@ -80,6 +120,60 @@ pub enum Scaling {
     UnitVariance,
     /// The predictors keep the scale on which they arrive.
     AsPrepared,
+}
+
+/// How the coefficients that a predictor has in several classes are penalised.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
+pub enum Grouping {
+    /// Each by itself.
+    Apart,
+    /// As one, so that a predictor is in or out as a whole.
+    Together,
+}
+
+/// How events at equal times are counted in the partial likelihood.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
+pub enum Ties {
+    /// Efron (1977).
+    Efron,
+    /// Breslow (1974).
+    Breslow,
+}
+
+/// What is made small when strengths are compared on held-out parts.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
+pub enum ErrorMeasure {
+    /// The one that belongs to the kind of outcome.
+    Usual,
+    /// The mean squared error.
+    SquaredError,
+    /// The mean deviance.
+    Deviance,
+    /// The share of samples called wrong.
+    Misclassification,
+    /// The deviance of the partial likelihood, for each event.
+    PartialLikelihood,
+    /// The share of pairs ordered wrongly.
+    Concordance,
+}
+
+impl ErrorMeasure {
+    /// The measures that a kind of outcome has, the usual one first.
+    #[must_use]
+    pub const fn of(kind: &OutcomeKind) -> &'static [Self] {
+        match kind {
+            OutcomeKind::Measured => &[Self::SquaredError],
+            OutcomeKind::YesNo { .. } => &[
+                Self::Deviance,
+                Self::SquaredError,
+                Self::Misclassification,
+                Self::Concordance,
+            ],
+            OutcomeKind::Classes => &[Self::Deviance, Self::Misclassification],
+            OutcomeKind::Count { .. } => &[Self::Deviance, Self::SquaredError],
+            OutcomeKind::Time { .. } => &[Self::PartialLikelihood, Self::Concordance],
+        }
+    }
 }
 
 /// How the penalty strength comes about.

@@ -11,7 +11,8 @@ use crate::study::settings::data::{
     OutcomeSeen, Sealed, Subject, TableSource,
 };
 use crate::study::settings::fit::{
-    Fit, Judge, Penalty, PenaltyRange, Plan, Rule, Scaling, Scheme, Strength,
+    ErrorMeasure, Fit, Grouping, Judge, Penalty, PenaltyRange, Plan, Rule, Scaling, Scheme,
+    Strength, Ties,
 };
 use crate::study::settings::prepare::{Prepare, Step};
 use crate::study::settings::question::{Ask, Question, Seal};
@@ -249,6 +250,23 @@ pub fn fit() -> Vec<Fit> {
             ..usual()
         });
     }
+    for measure in [
+        ErrorMeasure::SquaredError,
+        ErrorMeasure::Deviance,
+        ErrorMeasure::Misclassification,
+        ErrorMeasure::PartialLikelihood,
+        ErrorMeasure::Concordance,
+    ] {
+        fits.push(Fit { measure, ..usual() });
+    }
+    fits.push(Fit {
+        grouping: Grouping::Together,
+        ..usual()
+    });
+    fits.push(Fit {
+        ties: Ties::Breslow,
+        ..usual()
+    });
     fits.push(Fit {
         strength: Strength::ByHand(Real::constant(0.03)),
         judge: Judge::Declined,

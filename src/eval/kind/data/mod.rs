@@ -91,6 +91,8 @@ impl Dataset {
             units: &self.units,
             batches: self.batches.as_deref(),
             strata: self.strata.as_deref(),
+            // A training part can do without ends of observation, never without an event.
+            needed: matches!(self.response, Response::Time { .. }).then_some(1),
             order: self.order.as_deref(),
         }
     }

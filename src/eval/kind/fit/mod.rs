@@ -1,19 +1,31 @@
 //! Evaluates a Fit cell: the procedure on all analysed samples, and judged on outer parts.
 
+mod coefficients;
 mod facts;
+mod kinds;
+mod measures;
 mod nested;
 mod performance;
 mod procedure;
+mod ranks;
+mod scene;
 mod tables;
 mod trouble;
 
-pub use facts::error_digits;
-pub use performance::{Interval, Measures, Performance, errors_by_unit, interval, performance};
-pub use procedure::{numeric_procedure, parts_params};
+pub use facts::{curve_error, curve_unit, error_digits, measure_words};
+pub use kinds::{at_times, by_class, class_counts, confusion, reliability, thirds, thresholds};
+pub use measures::{Measure, Measures, Sort};
+pub use performance::{
+    Performance, error_of_sums, interval, paired_loss, performance, performance_of_one,
+};
+pub use procedure::{
+    numeric_material, numeric_measure, numeric_procedure, numeric_response, parts_params,
+};
+pub use ranks::Basis;
+pub use scene::{Predictions, Scene, horizons};
 pub use tables::{error_curve, held_out_predictions, outer_choices};
 pub use trouble::halted;
 
-use crate::base::problem::Problem;
 use crate::base::work::{Cancelled, Work};
 use crate::eval::caveat::judgement;
 use crate::eval::fact::Facts;
@@ -24,7 +36,8 @@ use crate::numeric::choose::Curve;
 use crate::numeric::parts::{Assignment, Split, assign};
 use crate::numeric::path::Path;
 use crate::numeric::procedure::{
-    Extended, HeldOut, Level, PartFit, Procedure, ProcedureError, Reach, Tally, nested, tune,
+    Cut, Extended, Halt, Hazard, HeldOut, Level, Material, PartFit, Procedure, ProcedureError,
+    Reach, Tally, check_plans, chosen_predictors, hazards, nested, tune,
 };
 use crate::numeric::response::Response;
 use crate::numeric::samples::Samples;
@@ -38,6 +51,10 @@ pub struct Fitted {
     pub prepared: Arc<Prepared>,
     /// The settings that were carried out.
     pub settings: Fit,
+    /// The outcome as it was fitted.
+    pub response: Response,
+    /// For times: the early, the middle and the late time at which predictions are judged.
+    pub horizons: [f64; 3],
     /// The final fit on all analysed samples.
     pub last: FinalFit,
     /// The judgement on outer parts, unless it was declined.
@@ -61,12 +78,16 @@ pub struct FinalFit {
     pub strength: f64,
     /// Whether the range was made longer once.
     pub extended: Extended,
+    /// Whether the range was cut short.
+    pub cut: Cut,
     /// The fits on all analysed samples over the whole range.
     pub path: Path,
     /// All samples as the preparation learnt from the analysed ones leaves them.
     pub samples: Samples,
-    /// The fitted value of each analysed sample.
-    pub fitted: Vec<f64>,
+    /// The fitted values of the analysed samples.
+    pub apparent: Predictions,
+    /// For times: the cumulative hazard at a linear predictor of zero.
+    pub hazard: Option<Hazard>,
 }
 
 /// The judgement on outer parts.
@@ -78,31 +99,61 @@ pub struct Judged {
     pub held_out: HeldOut,
 }
 
-impl Fitted {
-    /// The chosen predictors of the final fit with their coefficients on the scale of the
-    /// prepared predictors, and the intercept.
+impl FinalFit {
+    /// Whether the chosen strength lies at an end of the range beyond which a better one could lie.
+    /// The strong end of a sparse range is the empty model, and the weak end of one that was cut is
+    /// where the fit follows its samples anyway.
     #[must_use]
-    pub fn chosen(&self) -> (Vec<(usize, f64)>, f64) {
-        let coefficients = self.last.path.coefficients(self.last.strength_at);
-        (coefficients.predictors, coefficients.intercept)
+    pub fn is_at_edge(&self) -> bool {
+        let n = self
+            .curves
+            .get(self.share_at)
+            .map_or(0, |curve| curve.strengths.len());
+        let is_weakest = self.strength_at + 1 == n && self.cut == Cut::No;
+        n > 0 && (is_weakest || self.strength_at == 0 && self.share == 0.0)
+    }
+}
+
+impl Fitted {
+    /// The chosen predictors of the final fit, rising, with their coefficients on the scale that the
+    /// penalty sees; with classes the one of largest size among them.
+    #[must_use]
+    pub fn chosen(&self) -> Vec<(usize, f64)> {
+        chosen_predictors(&self.last.path, self.last.strength_at)
+    }
+
+    /// What a procedure works on, with the outcome as it was fitted.
+    #[must_use]
+    pub fn material(&self) -> Material<'_> {
+        numeric_material(&self.prepared, &self.response)
+    }
+
+    /// The analysed samples, to be judged.
+    #[must_use]
+    pub fn scene(&self) -> Scene<'_> {
+        self.scene_of(&self.prepared.data.analysed)
+    }
+
+    /// Some other samples, to be judged.
+    #[must_use]
+    pub fn scene_of<'a>(&'a self, rows: &'a [usize]) -> Scene<'a> {
+        Scene {
+            response: &self.response,
+            rows,
+            horizons: self.horizons,
+        }
+    }
+
+    /// The sort of outcome.
+    #[must_use]
+    pub const fn sort(&self) -> Sort {
+        Sort::of(&self.response)
     }
 
     /// The name of a prepared column.
     #[must_use]
     pub fn column_name(&self, column: usize) -> String {
         self.prepared.column_name(&self.last.samples, column)
-    }
-
-    /// The measured outcome of all samples; empty for another kind of outcome.
-    #[must_use]
-    pub fn observed(&self) -> &[f64] {
-        match &self.prepared.data.response {
-            Response::Measured(values) => values,
-            Response::YesNo(_)
-            | Response::Classes { .. }
-            | Response::Count { .. }
-            | Response::Time { .. } => &[],
-        }
     }
 
     /// About how many bytes this holds beyond the data.
@@ -132,15 +183,8 @@ pub fn evaluate(
 
 fn fit(settings: &Fit, inputs: &Inputs<'_>, work: &Work<'_>) -> Result<Outcome, Ended> {
     let prepared = inputs.prepared(settings.input)?;
-    if !matches!(prepared.data.response, Response::Measured(_)) {
-        return Err(Problem::new(
-            "kind-not-built-yet",
-            "Fitting this kind of outcome is not built yet; measured quantities can be fitted.",
-        )
-        .mend("Choose a measured quantity as the outcome.")
-        .into());
-    }
-    let material = prepared.material();
+    let response = numeric_response(settings, &prepared.data);
+    let material = numeric_material(&prepared, &response);
     let procedure = numeric_procedure(settings, &prepared);
     let trouble = |halt| halted(halt, &prepared, settings);
     // The share of the bar that the final fit takes is about one part in all parts.
@@ -150,14 +194,13 @@ fn fit(settings: &Fit, inputs: &Inputs<'_>, work: &Work<'_>) -> Result<Outcome, 
     };
     let first = 1.0 / (n_outer as f32 + 1.0);
     let analysed = &prepared.data.analysed;
-    // The outer plan first: what is not feasible is said at once, not after minutes.
+    // The plans first: what is not feasible is said at once, not after minutes.
     let plan = match settings.judge {
         Judge::Declined => None,
         Judge::Nested(plan) => {
             let params = parts_params(plan, settings.seed);
-            let structure = prepared.data.structure();
             Some(
-                assign(&params, analysed, &structure, "outer").map_err(|error| {
+                assign(&params, analysed, &material.structure, "outer").map_err(|error| {
                     trouble(
                         ProcedureError::Plan {
                             level: Level::Outer,
@@ -169,9 +212,21 @@ fn fit(settings: &Fit, inputs: &Inputs<'_>, work: &Work<'_>) -> Result<Outcome, 
             )
         }
     };
-    let last =
-        final_fit(&prepared, &procedure, analysed, &work.part(0.0..first)).map_err(trouble)?;
-    let (last, mut tally) = last;
+    check_plans(
+        &material,
+        &procedure,
+        analysed,
+        plan.as_ref(),
+        ("final", "outer"),
+    )
+    .map_err(|error| trouble(error.into()))?;
+    let scene = Scene {
+        response: &response,
+        rows: analysed,
+        horizons: horizons(&response, analysed),
+    };
+    let last = final_fit(&material, &procedure, &scene, &work.part(0.0..first));
+    let (last, mut tally) = last.map_err(trouble)?;
     let judged = match plan {
         None => None,
         Some(plan) => {
@@ -182,9 +237,12 @@ fn fit(settings: &Fit, inputs: &Inputs<'_>, work: &Work<'_>) -> Result<Outcome, 
             Some(Judged { plan, held_out })
         }
     };
+    let horizons = scene.horizons;
     let fitted = Fitted {
         prepared: Arc::clone(&prepared),
         settings: settings.clone(),
+        response,
+        horizons,
         last,
         judged,
         tally,
@@ -201,39 +259,46 @@ fn fit(settings: &Fit, inputs: &Inputs<'_>, work: &Work<'_>) -> Result<Outcome, 
 
 /// The procedure on all analysed samples, as far as it is kept.
 fn final_fit(
-    prepared: &Prepared,
+    material: &Material<'_>,
     procedure: &Procedure<'_>,
-    analysed: &[usize],
+    scene: &Scene<'_>,
     work: &Work<'_>,
-) -> Result<(FinalFit, Tally), crate::numeric::procedure::Halt> {
-    let material = prepared.material();
+) -> Result<(FinalFit, Tally), Halt> {
+    let analysed = scene.rows;
     let split = Split::everything(analysed);
     let tuned = tune(
-        &material,
+        material,
         procedure,
         &split,
         "final",
         Reach::WholeRange,
         work,
     )?;
-    let predicted = tuned.fit.predict(&material, analysed);
-    let fitted = predicted
-        .column(tuned.strength_at)
-        .iter()
-        .copied()
-        .collect();
+    let at = tuned.strength_at;
+    let k = tuned.fit.path.n_linear();
+    let predicted = tuned.fit.predict(material, analysed);
+    let hazard = hazards(material, &tuned.fit, at, analysed).map(|hazards| hazards.fitted);
+    let mut apparent = Predictions::new(scene);
+    for place in 0..analysed.len() {
+        let linear: Vec<f64> = (0..k)
+            .map(|class| predicted[(place, at * k + class)])
+            .collect();
+        apparent.put(scene, place, 0, &linear, hazard.as_ref());
+    }
     let PartFit { learnt, path } = tuned.fit;
     Ok((
         FinalFit {
             curves: tuned.curves,
             share_at: tuned.share_at,
-            strength_at: tuned.strength_at,
+            strength_at: at,
             share: tuned.share,
             strength: tuned.strength,
             extended: tuned.extended,
+            cut: tuned.cut,
             path,
             samples: learnt.samples.into_owned(),
-            fitted,
+            apparent,
+            hazard,
         },
         tuned.tally,
     ))

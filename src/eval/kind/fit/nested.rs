@@ -2,156 +2,141 @@
 
 use crate::base::number::Precision;
 use crate::eval::fact::{Fact, Facts};
-use crate::eval::kind::fit::facts::{SHARE, STRENGTH, measures};
-use crate::eval::kind::fit::performance::{Measures, Performance, interval};
-use crate::eval::kind::fit::{Fitted, Judged};
+use crate::eval::kind::fit::facts::{STRENGTH, error_digits, measures};
+use crate::eval::kind::fit::measures::{Measure, Measures, Sort};
+use crate::eval::kind::fit::performance::{Performance, interval, paired_loss};
+use crate::eval::kind::fit::{Fitted, Judged, kinds};
 use crate::numeric::measure::quantile;
 
 /// Publishes what the outer parts say.
-#[expect(
-    clippy::too_many_lines,
-    reason = "a list of facts, one after the other"
-)]
 pub(super) fn publish(
     facts: &mut Facts,
     fitted: &Fitted,
     judged: &Judged,
     performance: &Performance,
     apparent: &Measures,
-    unit: &str,
-    digits: Precision,
 ) {
+    let sort = fitted.sort();
     let mean = &performance.mean;
-    measures(
-        facts,
-        "nested",
-        mean,
-        unit,
-        digits,
-        "on outer held-out samples, over all samples of a repeat, averaged over repeats",
-    );
-    let mut push = |name: &str, value: f64, unit: &str, precision: Precision, meaning: &str| {
-        facts.push(Fact::number(name, value, unit, precision, meaning));
-    };
-    push(
-        "nested slope",
-        mean.slope,
+    let on = "on outer held-out samples, over all samples of a repeat, averaged over repeats";
+    measures(facts, fitted, "nested", sort.always(), mean, on);
+    measures(facts, fitted, "nested", sort.held_out(), mean, "");
+    if let Some(basis) = performance.basis {
+        facts.push(Fact::text(
+            "pairs compared",
+            basis.words(),
+            "Which pairs of samples count in the measures that compare pairs.",
+        ));
+    }
+    spreads(facts, fitted, performance);
+    intervals(facts, fitted, performance);
+    baselines(facts, fitted, performance);
+    let main = sort.main();
+    facts.push(Fact::number(
+        "optimism",
+        apparent.get(main) - mean.get(main),
         "",
-        SHARE,
-        "Slope of the line of observed on held-out predicted values: below 1 predictions are too extreme, above 1 too timid.",
-    );
-    push(
-        "nested intercept",
-        mean.intercept,
-        unit,
-        digits,
-        "Intercept of the same line.",
-    );
-    push(
-        "nested bias",
-        mean.bias,
-        unit,
-        digits,
-        "Mean of held-out predicted minus observed values.",
-    );
-    push(
-        "nested sep",
-        mean.sep,
-        unit,
-        digits,
-        "Standard deviation of the held-out errors about the bias (divisor n − 1).",
-    );
-    push(
-        "nested correlation",
-        mean.correlation,
-        "",
-        SHARE,
-        "Correlation of observed and held-out predicted values.",
-    );
-    let spread = |get: fn(&Measures) -> f64| {
+        main.digits(error_digits(fitted)),
+        &format!(
+            "Apparent {0} less nested {0}: how much the model flatters itself on its own samples.",
+            main.title()
+        ),
+    ));
+    outer(facts, judged);
+    match sort {
+        Sort::Measured | Sort::Count => {}
+        Sort::YesNo => {
+            facts.push(kinds::thresholds(fitted, performance));
+            facts.push(kinds::reliability(fitted, performance));
+        }
+        Sort::Classes => {
+            facts.push(kinds::confusion(fitted, performance));
+            facts.push(kinds::by_class(fitted, performance));
+        }
+        Sort::Time => facts.push(kinds::at_times(fitted, performance)),
+    }
+}
+
+/// How much the luck of the split matters.
+fn spreads(facts: &mut Facts, fitted: &Fitted, performance: &Performance) {
+    let unit = &fitted.prepared.data.outcome.unit;
+    for measure in fitted.sort().spreads() {
         let values: Vec<f64> = performance
             .repeats
             .iter()
-            .map(get)
-            .filter(|v| v.is_finite())
+            .map(|repeat| repeat.get(*measure))
+            .filter(|value| value.is_finite())
             .collect();
         let n = values.len() as f64;
         let mean = values.iter().sum::<f64>() / n;
-        if n < 2.0 {
+        let spread = if n < 2.0 {
             f64::NAN
         } else {
             (values.iter().map(|v| (v - mean).powi(2)).sum::<f64>() / (n - 1.0)).sqrt()
+        };
+        facts.push(Fact::number(
+            &format!("nested {} spread", measure.name()),
+            spread,
+            measure.unit(unit),
+            measure.digits(error_digits(fitted)),
+            &format!(
+                "Standard deviation of the held-out {} over repeats: how much the luck of the split matters (split-to-split).",
+                measure.title()
+            ),
+        ));
+    }
+}
+
+fn intervals(facts: &mut Facts, fitted: &Fitted, performance: &Performance) {
+    let unit = &fitted.prepared.data.outcome.unit;
+    let mut known: Vec<&(Measure, f64, f64)> = performance.intervals.iter().collect();
+    // The measures of the headline first.
+    let sort = fitted.sort();
+    known.sort_by_key(|(measure, ..)| sort.always().iter().position(|known| known == measure));
+    for (measure, low, high) in known {
+        let about = format!(
+            "a 95 % interval of the held-out {} from its spread over units (normal approximation); it is about the procedure on samples of this size, not about the final model",
+            measure.title()
+        );
+        for (end, value, word) in [("low", low, "Lower"), ("high", high, "Upper")] {
+            facts.push(Fact::number(
+                &format!("nested {} {end}", measure.name()),
+                *value,
+                measure.unit(unit),
+                measure.digits(error_digits(fitted)),
+                &format!("{word} end of {about}."),
+            ));
+        }
+    }
+}
+
+/// The model without predictors on the same parts, and the gain over it.
+fn baselines(facts: &mut Facts, fitted: &Fitted, performance: &Performance) {
+    let sort = fitted.sort();
+    let on = match sort {
+        Sort::Measured => {
+            "of the model without predictors, the mean of each training part, on the same outer parts"
+        }
+        Sort::YesNo | Sort::Classes => {
+            "of the model without predictors, the class shares of each training part, on the same outer parts"
+        }
+        Sort::Count => {
+            "of the model without predictors, the mean rate of each training part, on the same outer parts"
+        }
+        Sort::Time => {
+            "of the model without predictors, the share without the event in each training part, on the same outer parts"
         }
     };
-    push(
-        "nested rmse spread",
-        spread(|m| m.rmse),
-        unit,
-        digits,
-        "Standard deviation of the held-out error over repeats: how much the luck of the split matters (split-to-split).",
-    );
-    push(
-        "nested r² spread",
-        spread(|m| m.r2),
-        "",
-        SHARE,
-        "Standard deviation of the held-out R² over repeats (split-to-split).",
+    let baseline = &performance.baseline;
+    measures(
+        facts,
+        fitted,
+        sort.baseline_word(),
+        sort.baselines(),
+        baseline,
+        on,
     );
     let errors = &performance.errors;
-    let square = interval(&errors.model, &errors.sizes);
-    let observed: Vec<f64> = fitted
-        .prepared
-        .data
-        .analysed
-        .iter()
-        .map(|&row| fitted.observed()[row])
-        .collect();
-    let centre = observed.iter().sum::<f64>() / observed.len() as f64;
-    let variance =
-        observed.iter().map(|v| (v - centre).powi(2)).sum::<f64>() / observed.len() as f64;
-    let about = "a 95 % interval from the spread of squared errors over units (normal approximation); it is about the procedure on samples of this size, not about the final model";
-    push(
-        "nested rmse low",
-        square.low.max(0.0).sqrt(),
-        unit,
-        digits,
-        &format!("Lower end of {about}."),
-    );
-    push(
-        "nested rmse high",
-        square.high.sqrt(),
-        unit,
-        digits,
-        &format!("Upper end of {about}."),
-    );
-    push(
-        "nested r² low",
-        1.0 - square.high / variance,
-        "",
-        SHARE,
-        &format!("Lower end of {about}."),
-    );
-    push(
-        "nested r² high",
-        1.0 - square.low.max(0.0) / variance,
-        "",
-        SHARE,
-        &format!("Upper end of {about}."),
-    );
-    push(
-        "mean-only rmse",
-        performance.baseline.rmse,
-        unit,
-        digits,
-        "Root mean squared error of the model without predictors, the mean of each training part, on the same outer parts.",
-    );
-    push(
-        "mean-only mae",
-        performance.baseline.mae,
-        unit,
-        digits,
-        "Mean absolute error of the model without predictors on the same outer parts.",
-    );
     let gains: Vec<f64> = errors
         .baseline
         .iter()
@@ -159,35 +144,52 @@ pub(super) fn publish(
         .map(|(base, model)| base - model)
         .collect();
     let gain = interval(&gains, &errors.sizes);
-    let base = performance.baseline.rmse.powi(2);
+    let base = match sort {
+        Sort::Measured => baseline.get(Measure::Rmse).powi(2),
+        Sort::YesNo | Sort::Classes | Sort::Count | Sort::Time => baseline.get(paired_loss(sort)),
+    };
+    let (name, what) = match sort {
+        Sort::Measured => ("improvement over the mean", "mean squared error"),
+        Sort::YesNo | Sort::Classes => ("improvement over the baseline", "log loss"),
+        Sort::Count => ("improvement over the baseline", "mean deviance"),
+        Sort::Time => (
+            "improvement over the baseline",
+            "Brier score at the middle time",
+        ),
+    };
+    let mut push = |name: &str, value: f64, meaning: &str| {
+        facts.push(Fact::number(
+            name,
+            value,
+            "",
+            Precision::Percent(0),
+            meaning,
+        ));
+    };
     push(
-        "improvement over the mean",
+        name,
         gain.value / base,
-        "",
-        Precision::Percent(0),
-        "How much smaller the mean squared error is than that of the model without predictors, as a share of the latter.",
+        &format!(
+            "How much smaller the {what} is than that of the model without predictors, as a share of the latter."
+        ),
     );
     push(
         "improvement low",
         gain.low / base,
-        "",
-        Precision::Percent(0),
         "Lower end of a 95 % interval of this improvement, from paired differences over units.",
     );
     push(
         "improvement high",
         gain.high / base,
-        "",
-        Precision::Percent(0),
         "Upper end of the same interval.",
     );
-    push(
-        "optimism",
-        apparent.r2 - mean.r2,
-        "",
-        SHARE,
-        "Apparent R² less nested R²: how much the model flatters itself on its own samples.",
-    );
+}
+
+/// What the outer training parts chose.
+fn outer(facts: &mut Facts, judged: &Judged) {
+    let mut push = |name: &str, value: f64, unit: &str, precision: Precision, meaning: &str| {
+        facts.push(Fact::number(name, value, unit, precision, meaning));
+    };
     let fits = &judged.held_out.fits;
     let strengths: Vec<f64> = fits.iter().map(|fit| fit.strength).collect();
     let at = |share: f64| quantile(&strengths, share);

@@ -1,30 +1,40 @@
 //! How well held-out samples were predicted.
 
 use crate::eval::kind::data::Dataset;
-use crate::numeric::measure::Agreement;
-use crate::numeric::procedure::HeldOut;
+use crate::eval::kind::fit::measures::{Measure, Measures, Sort};
+use crate::eval::kind::fit::ranks::Basis;
+use crate::eval::kind::fit::scene::{Predictions, Scene};
+use crate::numeric::matrix::Matrix;
+use crate::numeric::procedure::{HeldOut, OuterFit};
 
-/// The performance of a procedure on outer parts.
+/// The performance of a procedure on held-out parts.
 #[derive(Clone, Debug)]
 pub struct Performance {
-    /// The measures: computed over all samples of a repeat, then averaged over repeats.
+    /// The measures of each repeat, averaged over repeats. Within a repeat they are computed over
+    /// all samples, except that pairs are compared within held-out parts.
     pub mean: Measures,
     /// The measures of each repeat.
     pub repeats: Vec<Measures>,
     /// The measures of the model without predictors on the same parts, averaged over repeats.
     pub baseline: Measures,
-    /// The mean held-out prediction of each analysed sample over repeats.
-    pub predicted: Vec<f64>,
-    /// Squared errors by unit.
+    /// The mean held-out prediction of each sample over repeats; see [`Predictions::scores`].
+    pub scores: Matrix,
+    /// The held-out predictions of each repeat.
+    pub each: Vec<Matrix>,
+    /// The loss that is compared with that of the model without predictors.
     pub errors: HeldOutErrors,
+    /// The ends of 95 % intervals over units.
+    pub intervals: Vec<(Measure, f64, f64)>,
+    /// Which pairs were compared, where pairs are.
+    pub basis: Option<Basis>,
 }
 
-/// Squared held-out errors, summed by unit and averaged over repeats.
+/// Held-out losses, summed by unit and averaged over repeats.
 #[derive(Clone, Debug)]
 pub struct HeldOutErrors {
     /// How many samples each unit has.
     pub sizes: Vec<usize>,
-    /// The sum of squared errors of each unit's samples.
+    /// The sum of the losses of each unit's samples.
     pub model: Vec<f64>,
     /// The same for the model without predictors.
     pub baseline: Vec<f64>,
@@ -46,58 +56,226 @@ pub struct Interval {
 /// The normal quantile of a two-sided 95 % interval.
 const QUANTILE: f64 = 1.959_963_984_540_054;
 
-/// Gathers the outer fits over the analysed samples `rows`.
+/// Gathers held-out fits of the samples of a scene.
 #[must_use]
-pub fn performance(
-    held_out: &HeldOut,
-    data: &Dataset,
-    rows: &[usize],
-    observed: &[f64],
-) -> Performance {
+pub fn performance(scene: &Scene<'_>, data: &Dataset, held_out: &HeldOut) -> Performance {
     let n_repeats = held_out
         .fits
         .iter()
         .map(|fit| fit.repeat + 1)
         .max()
         .unwrap_or(0);
-    let place = |row: usize| {
-        rows.binary_search(&row)
-            .expect("held-out rows are analysed")
-    };
-    let outcome: Vec<f64> = rows.iter().map(|&row| observed[row]).collect();
-    let mut predicted = vec![0.0; rows.len()];
-    let mut repeats = Vec::with_capacity(n_repeats);
-    let mut baselines = Vec::with_capacity(n_repeats);
-    let mut model_error = vec![0.0; rows.len()];
-    let mut baseline_error = vec![0.0; rows.len()];
-    for repeat in 0..n_repeats {
-        let mut own = vec![0.0; rows.len()];
-        let mut mean_only = vec![0.0; rows.len()];
-        for fit in held_out.fits.iter().filter(|fit| fit.repeat == repeat) {
-            for (&row, &value) in fit.rows.iter().zip(&fit.predicted) {
-                own[place(row)] = value;
-                mean_only[place(row)] = fit.baseline;
+    let by_repeat: Vec<Vec<&OuterFit>> = (0..n_repeats)
+        .map(|repeat| {
+            let own = held_out.fits.iter();
+            own.filter(|fit| fit.repeat == repeat).collect()
+        })
+        .collect();
+    of_repeats(scene, data, &by_repeat)
+}
+
+/// The performance of a single fit on the samples that it had not seen.
+#[must_use]
+pub fn performance_of_one(scene: &Scene<'_>, data: &Dataset, fit: &OuterFit) -> Performance {
+    of_repeats(scene, data, &[vec![fit]])
+}
+
+fn of_repeats(scene: &Scene<'_>, data: &Dataset, by_repeat: &[Vec<&OuterFit>]) -> Performance {
+    let rows = scene.rows;
+    let sort = scene.sort();
+    let n_repeats = by_repeat.len() as f64;
+    let mut gathered = Gathered::default();
+    for fits in by_repeat {
+        let mut own = Predictions::new(scene);
+        let mut null = Predictions::new(scene);
+        for (part, fit) in fits.iter().enumerate() {
+            for (at, row) in fit.rows.iter().enumerate() {
+                let place = rows
+                    .binary_search(row)
+                    .expect("held-out rows are among those that are judged");
+                let linear: Vec<f64> = fit.linear.row(at).iter().copied().collect();
+                let hazards = fit.hazards.as_ref();
+                own.put(scene, place, part, &linear, hazards.map(|h| &h.fitted));
+                null.put(
+                    scene,
+                    place,
+                    part,
+                    &fit.baseline,
+                    hazards.map(|h| &h.baseline),
+                );
             }
         }
-        for at in 0..rows.len() {
-            let share = 1.0 / n_repeats as f64;
-            predicted[at] += own[at] * share;
-            model_error[at] += (own[at] - outcome[at]).powi(2) * share;
-            baseline_error[at] += (mean_only[at] - outcome[at]).powi(2) * share;
-        }
-        repeats.push(Measures::of(&outcome, &own));
-        baselines.push(Measures::of(&outcome, &mean_only));
+        gathered.add(scene, &own, &null, n_repeats);
+    }
+    let errors = errors_by_unit(
+        data,
+        rows,
+        &gathered.losses(paired_loss(sort), rows.len()),
+        &gathered.null_loss,
+    );
+    let intervals = gathered.intervals(scene, data);
+    let mut scores = Matrix::zeros(rows.len(), gathered.each.first().map_or(0, Matrix::ncols));
+    for repeat in &gathered.each {
+        scores += repeat / n_repeats;
     }
     Performance {
-        mean: mean_of(&repeats),
-        baseline: mean_of(&baselines),
-        repeats,
-        predicted,
-        errors: errors_by_unit(data, rows, &model_error, &baseline_error),
+        mean: Measures::mean_of(&gathered.repeats),
+        baseline: Measures::mean_of(&gathered.baselines),
+        repeats: gathered.repeats,
+        scores,
+        each: gathered.each,
+        errors,
+        intervals,
+        basis: gathered.basis,
     }
 }
 
-/// Sums squared errors by unit.
+/// The measure by whose losses a fit is compared with the model without predictors, sample by
+/// sample.
+#[must_use]
+pub const fn paired_loss(sort: Sort) -> Measure {
+    match sort {
+        Sort::Measured => Measure::Rmse,
+        Sort::YesNo | Sort::Classes => Measure::LogLoss,
+        Sort::Count => Measure::Deviance,
+        Sort::Time => Measure::BrierMiddle,
+    }
+}
+
+/// Measures that are means over samples, or follow from one.
+const MEANS: [Measure; 9] = [
+    Measure::Rmse,
+    Measure::R2,
+    Measure::LogLoss,
+    Measure::Brier,
+    Measure::Misclassification,
+    Measure::Accuracy,
+    Measure::Deviance,
+    Measure::DevianceExplained,
+    Measure::BrierMiddle,
+];
+
+/// What comes together over repeats.
+#[derive(Default)]
+struct Gathered {
+    repeats: Vec<Measures>,
+    baselines: Vec<Measures>,
+    each: Vec<Matrix>,
+    /// Mean losses over repeats, sample by sample.
+    losses: Vec<(Measure, Vec<f64>)>,
+    null_loss: Vec<f64>,
+    /// The measure over pairs: its mean and the mean sway of each sample.
+    ranked: Option<(Measure, Vec<f64>)>,
+    basis: Option<Basis>,
+}
+
+impl Gathered {
+    fn add(&mut self, scene: &Scene<'_>, own: &Predictions, null: &Predictions, n_repeats: f64) {
+        let share = 1.0 / n_repeats;
+        self.repeats.push(scene.measures(own));
+        self.baselines.push(scene.measures(null));
+        self.each.push(own.scores(scene));
+        for measure in MEANS {
+            let Some(losses) = scene.losses(measure, own) else {
+                continue;
+            };
+            match self.losses.iter_mut().find(|(known, _)| *known == measure) {
+                Some((_, sums)) => add(sums, &losses, share),
+                None => {
+                    let mut sums = vec![0.0; losses.len()];
+                    add(&mut sums, &losses, share);
+                    self.losses.push((measure, sums));
+                }
+            }
+        }
+        let paired = scene.losses(paired_loss(scene.sort()), null);
+        let paired = paired.unwrap_or_else(|| vec![f64::NAN; scene.rows.len()]);
+        if self.null_loss.is_empty() {
+            self.null_loss = vec![0.0; paired.len()];
+        }
+        add(&mut self.null_loss, &paired, share);
+        if let Some(ranked) = scene.ranked(own) {
+            let (_, sway) = self
+                .ranked
+                .get_or_insert_with(|| (ranked.measure, vec![0.0; ranked.sway.len()]));
+            add(sway, &ranked.sway, share);
+            self.basis = Some(match self.basis {
+                Some(Basis::Pooled) => Basis::Pooled,
+                Some(Basis::Within) | None => ranked.basis,
+            });
+        }
+    }
+
+    fn losses(&self, measure: Measure, n: usize) -> Vec<f64> {
+        self.losses
+            .iter()
+            .find(|(known, _)| *known == measure)
+            .map_or_else(|| vec![f64::NAN; n], |(_, losses)| losses.clone())
+    }
+
+    /// The 95 % intervals of the measures that have one.
+    fn intervals(&self, scene: &Scene<'_>, data: &Dataset) -> Vec<(Measure, f64, f64)> {
+        let mut intervals = Vec::new();
+        let null = scene.null_loss();
+        for (measure, losses) in &self.losses {
+            let errors = errors_by_unit(data, scene.rows, losses, losses);
+            let mean = interval(&errors.model, &errors.sizes);
+            let low = mean.low.max(0.0);
+            let explained = [Measure::R2, Measure::DevianceExplained].contains(measure);
+            let (low, high) = if *measure == Measure::Rmse {
+                (low.sqrt(), mean.high.sqrt())
+            } else if explained {
+                (1.0 - mean.high / null, 1.0 - low / null)
+            } else if *measure == Measure::Accuracy {
+                (1.0 - mean.high.min(1.0), 1.0 - low)
+            } else if *measure == Measure::Misclassification {
+                (low, mean.high.min(1.0))
+            } else {
+                (low, mean.high)
+            };
+            intervals.push((*measure, low, high));
+        }
+        if let Some((measure, sway)) = &self.ranked {
+            let repeats: Vec<f64> = self
+                .repeats
+                .iter()
+                .map(|repeat| repeat.get(*measure))
+                .filter(|value| value.is_finite())
+                .collect();
+            let value = repeats.iter().sum::<f64>() / repeats.len() as f64;
+            let error = error_of_sums(data, scene.rows, sway);
+            let reach = QUANTILE * error;
+            intervals.push((*measure, (value - reach).max(0.0), (value + reach).min(1.0)));
+        }
+        intervals
+    }
+}
+
+fn add(sums: &mut [f64], values: &[f64], share: f64) {
+    for (sum, value) in sums.iter_mut().zip(values) {
+        *sum += value * share;
+    }
+}
+
+/// The standard error of a measure over pairs from how much each sample sways it, the samples of a
+/// unit taken together (Obuchowski 1997 for the area under the curve), with the factor m/(m − 1) for
+/// m units.
+#[must_use]
+pub fn error_of_sums(data: &Dataset, rows: &[usize], sway: &[f64]) -> f64 {
+    let mut units = std::collections::BTreeMap::new();
+    for (row, sway) in rows.iter().zip(sway) {
+        *units.entry(data.units[*row]).or_insert(0.0) += sway;
+    }
+    let m = units.len() as f64;
+    let square: f64 = units.values().map(|sway: &f64| sway * sway).sum();
+    if m > 1.0 {
+        (square * m / (m - 1.0)).sqrt()
+    } else {
+        f64::NAN
+    }
+}
+
+/// Sums losses by unit.
 #[must_use]
 pub fn errors_by_unit(
     data: &Dataset,
@@ -147,74 +325,6 @@ pub fn interval(sums: &[f64], sizes: &[usize]) -> Interval {
         standard_error,
         low: value - QUANTILE * standard_error,
         high: value + QUANTILE * standard_error,
-    }
-}
-
-/// The measures of a measured quantity. NaN where a measure is not defined, such as the slope of
-/// constant predictions.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub struct Measures {
-    /// Root mean squared error.
-    pub rmse: f64,
-    /// Mean absolute error.
-    pub mae: f64,
-    /// 1 − SSE/SST, SST about the mean of the observed values.
-    pub r2: f64,
-    /// Mean of predicted minus observed.
-    pub bias: f64,
-    /// Standard deviation of the errors about the bias (divisor n − 1).
-    pub sep: f64,
-    /// Slope of the line of observed on predicted values.
-    pub slope: f64,
-    /// Intercept of the same line.
-    pub intercept: f64,
-    /// Pearson's correlation of observed and predicted values.
-    pub correlation: f64,
-}
-
-impl Measures {
-    /// The measures of predictions; all NaN when there are none.
-    #[must_use]
-    pub fn of(observed: &[f64], predicted: &[f64]) -> Self {
-        let known = |value: Option<f64>| value.unwrap_or(f64::NAN);
-        let agreement = Agreement::of(observed, predicted);
-        let get = |get: fn(&Agreement) -> Option<f64>| known(agreement.as_ref().and_then(get));
-        Self {
-            rmse: get(|a| Some(a.rmse)),
-            mae: get(|a| Some(a.mae)),
-            r2: get(|a| a.r_squared),
-            bias: get(|a| Some(a.bias)),
-            sep: get(|a| a.sep),
-            slope: get(|a| a.observed_on_predicted.map(|line| line.slope)),
-            intercept: get(|a| a.observed_on_predicted.map(|line| line.intercept)),
-            correlation: get(|a| a.pearson),
-        }
-    }
-}
-
-/// The mean of each measure over the repeats in which it is defined.
-fn mean_of(repeats: &[Measures]) -> Measures {
-    let mean = |get: fn(&Measures) -> f64| {
-        let known: Vec<f64> = repeats
-            .iter()
-            .map(get)
-            .filter(|value| value.is_finite())
-            .collect();
-        if known.is_empty() {
-            f64::NAN
-        } else {
-            known.iter().sum::<f64>() / known.len() as f64
-        }
-    };
-    Measures {
-        rmse: mean(|m| m.rmse),
-        mae: mean(|m| m.mae),
-        r2: mean(|m| m.r2),
-        bias: mean(|m| m.bias),
-        sep: mean(|m| m.sep),
-        slope: mean(|m| m.slope),
-        intercept: mean(|m| m.intercept),
-        correlation: mean(|m| m.correlation),
     }
 }
 

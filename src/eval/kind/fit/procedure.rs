@@ -1,11 +1,16 @@
 //! From the settings of a fit to the procedure that is carried out.
 
+use crate::eval::kind::data::Dataset;
 use crate::eval::kind::prepare::Prepared;
 use crate::numeric::choose;
 use crate::numeric::parts::{self, PartsParams};
-use crate::numeric::procedure::{Procedure, StrengthRule};
+use crate::numeric::path;
+use crate::numeric::procedure::{self, Material, Procedure, StrengthRule};
+use crate::numeric::response::{self, Response};
 use crate::numeric::task;
-use crate::study::settings::fit::{Fit, Plan, Rule, Scaling, Scheme, Strength};
+use crate::study::settings::fit::{
+    ErrorMeasure, Fit, Grouping, Plan, Rule, Scaling, Scheme, Strength, Ties,
+};
 
 /// The procedure that these settings describe.
 #[must_use]
@@ -17,6 +22,11 @@ pub fn numeric_procedure<'a>(settings: &Fit, prepared: &'a Prepared) -> Procedur
             Scaling::AsPrepared => task::Scaling::AsGiven,
         },
         shares: settings.penalty.shares(),
+        grouping: match settings.grouping {
+            Grouping::Apart => path::Grouping::Apart,
+            Grouping::Together => path::Grouping::Together,
+        },
+        measure: numeric_measure(settings.measure, &prepared.data.response),
         strength: match &settings.strength {
             Strength::ByHand(strength) => StrengthRule::Fixed(strength.get()),
             Strength::Chosen { rule, range, inner } => StrengthRule::Chosen {
@@ -31,6 +41,44 @@ pub fn numeric_procedure<'a>(settings: &Fit, prepared: &'a Prepared) -> Procedur
                 inner: parts_params(*inner, settings.seed),
             },
         },
+    }
+}
+
+/// The measure that these settings describe, for this outcome.
+#[must_use]
+pub const fn numeric_measure(
+    measure: ErrorMeasure,
+    response: &Response,
+) -> procedure::ErrorMeasure {
+    match measure {
+        ErrorMeasure::Usual => procedure::ErrorMeasure::usual(response),
+        ErrorMeasure::SquaredError => procedure::ErrorMeasure::SquaredError,
+        ErrorMeasure::Deviance => procedure::ErrorMeasure::Deviance,
+        ErrorMeasure::Misclassification => procedure::ErrorMeasure::Misclassification,
+        ErrorMeasure::PartialLikelihood => procedure::ErrorMeasure::PartialLikelihood,
+        ErrorMeasure::Concordance => procedure::ErrorMeasure::Concordance,
+    }
+}
+
+/// The outcome as these settings have it fitted.
+#[must_use]
+pub fn numeric_response(settings: &Fit, data: &Dataset) -> Response {
+    let mut response = data.response.clone();
+    if let Response::Time { ties, .. } = &mut response {
+        *ties = match settings.ties {
+            Ties::Efron => response::Ties::Efron,
+            Ties::Breslow => response::Ties::Breslow,
+        };
+    }
+    response
+}
+
+/// What a procedure works on, with the outcome as it is fitted.
+#[must_use]
+pub fn numeric_material<'a>(prepared: &'a Prepared, response: &'a Response) -> Material<'a> {
+    Material {
+        response,
+        ..prepared.material()
     }
 }
 

@@ -2,16 +2,22 @@
 
 use crate::base::number::Precision;
 use crate::eval::fact::{Fact, FactColumn};
-use crate::eval::kind::fit::facts::STRENGTH;
-use crate::eval::kind::fit::performance::Performance;
+use crate::eval::kind::fit::facts::{
+    STRENGTH, curve_error, curve_unit, error_digits, measure_words,
+};
+use crate::eval::kind::fit::measures::{Measure, Sort};
+use crate::eval::kind::fit::performance::{Performance, paired_loss};
+use crate::eval::kind::fit::scene::Predictions;
 use crate::eval::kind::fit::{Fitted, Judged};
 use crate::numeric::choose::Curve;
+use crate::numeric::measure::predicted_class;
+use crate::numeric::procedure::{OuterFit, chosen_predictors};
 
-/// The error curve as a table: root mean squared errors with a band of one standard error.
+/// The error curve as a table, with a band of one standard error.
 #[must_use]
-pub fn error_curve(fitted: &Fitted, curve: &Curve, unit: &str, digits: Precision) -> Fact {
+pub fn error_curve(fitted: &Fitted, curve: &Curve) -> Fact {
     let n = curve.strengths.len();
-    let root = |value: f64| value.max(0.0).sqrt();
+    let (unit, digits) = curve_unit(fitted);
     let mut columns = vec![FactColumn::numbers(
         "strength",
         curve.strengths.clone(),
@@ -28,51 +34,50 @@ pub fn error_curve(fitted: &Fitted, curve: &Curve, unit: &str, digits: Precision
             "The value of the criterion that chose the strength.",
         ));
     } else {
-        let shifted = |sign: f64| {
-            (0..n)
-                .map(|at| root(curve.errors[at] + sign * curve.standard_errors[at]))
-                .collect()
+        let told = |at: usize, shift: f64| {
+            let error = curve.errors[at] + shift * curve.standard_errors[at];
+            curve_error(fitted, error, curve.standard_errors[at])
         };
-        // By the delta method: the standard error of a root is that of the square over twice it.
-        let errors = (0..n)
-            .map(|at| curve.standard_errors[at] / (2.0 * root(curve.errors[at])))
-            .collect();
-        columns.push(FactColumn::numbers(
-            "error",
-            curve.errors.iter().map(|e| root(*e)).collect(),
-            unit,
-            digits,
-            "Root of the mean squared error in the inner parts.",
-        ));
-        columns.push(FactColumn::numbers(
+        let mut push = |name: &str, value: &dyn Fn(usize) -> f64, meaning: &str| {
+            columns.push(FactColumn::numbers(
+                name,
+                (0..n).map(value).collect(),
+                &unit,
+                digits,
+                meaning,
+            ));
+        };
+        let what = if unit.is_empty() && fitted.sort() != Sort::Measured {
+            format!("The {} in the inner parts.", measure_words(fitted))
+        } else {
+            "Root of the mean squared error in the inner parts.".to_owned()
+        };
+        push("error", &|at| told(at, 0.0).0, &what);
+        push(
             "standard error",
-            errors,
-            unit,
-            digits,
+            &|at| told(at, 0.0).1,
             "Standard error of this error over the parts of a repeat.",
-        ));
-        columns.push(FactColumn::numbers(
+        );
+        push(
             "low",
-            shifted(-1.0),
-            unit,
-            digits,
+            &|at| told(at, -1.0).0,
             "The error less one standard error.",
-        ));
-        columns.push(FactColumn::numbers(
+        );
+        push(
             "high",
-            shifted(1.0),
-            unit,
-            digits,
+            &|at| told(at, 1.0).0,
             "The error and one standard error.",
-        ));
+        );
     }
     let path = &fitted.last.path;
     let chosen = (0..n)
         .map(|at| {
-            if at < path.n_points() {
+            if at >= path.n_points() {
+                f64::NAN
+            } else if path.n_linear() == 1 {
                 path.info(at).n_chosen as f64
             } else {
-                f64::NAN
+                chosen_predictors(path, at).len() as f64
             }
         })
         .collect();
@@ -90,23 +95,37 @@ pub fn error_curve(fitted: &Fitted, curve: &Curve, unit: &str, digits: Precision
     )
 }
 
+/// The error of one outer fit on the part that it had not seen.
+fn part_error(fitted: &Fitted, fit: &OuterFit) -> f64 {
+    let scene = fitted.scene_of(&fit.rows);
+    let mut own = Predictions::new(&scene);
+    for place in 0..fit.rows.len() {
+        let linear: Vec<f64> = fit.linear.row(place).iter().copied().collect();
+        own.put(&scene, place, 0, &linear, None);
+    }
+    let sort = fitted.sort();
+    if sort == Sort::Time {
+        return scene.ranked(&own).map_or(f64::NAN, |ranked| ranked.value);
+    }
+    let losses = scene.losses(paired_loss(sort), &own).unwrap_or_default();
+    let mean = losses.iter().sum::<f64>() / losses.len() as f64;
+    if sort == Sort::Measured {
+        mean.sqrt()
+    } else {
+        mean
+    }
+}
+
 /// What each outer training part chose, and how well it predicted its held-out part.
 #[must_use]
-pub fn outer_choices(fitted: &Fitted, judged: &Judged, unit: &str, digits: Precision) -> Fact {
+pub fn outer_choices(fitted: &Fitted, judged: &Judged) -> Fact {
     let fits = &judged.held_out.fits;
-    let observed = fitted.observed();
-    let rmse = fits
-        .iter()
-        .map(|fit| {
-            let square: f64 = fit
-                .rows
-                .iter()
-                .zip(&fit.predicted)
-                .map(|(&row, p)| (p - observed[row]).powi(2))
-                .sum();
-            (square / fit.rows.len() as f64).sqrt()
-        })
-        .collect();
+    let sort = fitted.sort();
+    let shown = if sort == Sort::Time {
+        Measure::Concordance
+    } else {
+        paired_loss(sort)
+    };
     let number = |name: &str, values: Vec<f64>, precision: Precision, meaning: &str| {
         FactColumn::numbers(name, values, "", precision, meaning)
     };
@@ -144,28 +163,21 @@ pub fn outer_choices(fitted: &Fitted, judged: &Judged, unit: &str, digits: Preci
                 "How many predictors its training part chose.",
             ),
             FactColumn::numbers(
-                "rmse",
-                rmse,
-                unit,
-                digits,
-                "Root mean squared error on the held-out part.",
+                shown.name(),
+                fits.iter().map(|fit| part_error(fitted, fit)).collect(),
+                shown.unit(&fitted.prepared.data.outcome.unit),
+                shown.digits(error_digits(fitted)),
+                &format!("{}, on the held-out part.", shown.meaning(sort)),
             ),
         ],
         "What each outer training part chose.",
     )
 }
 
-/// The held-out prediction of every analysed sample, beside what was observed.
-#[must_use]
-pub fn held_out_predictions(
-    fitted: &Fitted,
-    performance: &Performance,
-    unit: &str,
-    digits: Precision,
-) -> Fact {
+/// The columns that name a sample.
+fn named(fitted: &Fitted) -> Vec<FactColumn> {
     let data = &fitted.prepared.data;
     let rows = &data.analysed;
-    let observed: Vec<f64> = rows.iter().map(|&row| fitted.observed()[row]).collect();
     let mut columns = vec![
         FactColumn::texts(
             "sample",
@@ -189,40 +201,134 @@ pub fn held_out_predictions(
             "The batch that it belongs to.",
         ));
     }
-    let residual = performance
-        .predicted
-        .iter()
-        .zip(&observed)
-        .map(|(p, o)| p - o)
-        .collect();
-    columns.push(FactColumn::numbers(
-        "observed",
-        observed,
-        unit,
-        digits,
-        "The observed outcome.",
-    ));
-    columns.push(FactColumn::numbers(
-        "predicted",
-        performance.predicted.clone(),
-        unit,
-        digits,
-        "The held-out prediction, the mean over repeats.",
-    ));
-    columns.push(FactColumn::numbers(
-        "residual",
-        residual,
-        unit,
-        digits,
-        "Predicted less observed.",
-    ));
-    columns.push(FactColumn::numbers(
-        "apparent",
-        fitted.last.fitted.clone(),
-        unit,
-        digits,
-        "The value of the final fit on its own sample; not a prediction.",
-    ));
+    columns
+}
+
+const HELD_OUT: &str = "The held-out prediction, the mean over repeats.";
+const APPARENT: &str = "The value of the final fit on its own sample; not a prediction.";
+
+/// The held-out prediction of every analysed sample, beside what was observed.
+#[must_use]
+pub fn held_out_predictions(fitted: &Fitted, performance: &Performance) -> Fact {
+    let mut columns = named(fitted);
+    let scene = fitted.scene();
+    let column =
+        |at: usize| -> Vec<f64> { performance.scores.column(at).iter().copied().collect() };
+    let own = fitted.last.apparent.scores(&scene);
+    let apparent = |at: usize| -> Vec<f64> { own.column(at).iter().copied().collect() };
+    let unit = &fitted.prepared.data.outcome.unit;
+    let labels = &fitted.prepared.data.outcome.classes;
+    let label = |class: usize| labels.get(class).cloned().unwrap_or_default();
+    let share = Precision::Decimals(3);
+    let mut number = |name: &str, values: Vec<f64>, unit: &str, digits: Precision, is: &str| {
+        columns.push(FactColumn::numbers(name, values, unit, digits, is));
+    };
+    match fitted.sort() {
+        Sort::Measured | Sort::Count => {
+            let digits = error_digits(fitted);
+            let observed = scene.observed();
+            let residual = column(0)
+                .iter()
+                .zip(&observed)
+                .map(|(p, o)| p - o)
+                .collect();
+            number("observed", observed, unit, digits, "The observed outcome.");
+            number("predicted", column(0), unit, digits, HELD_OUT);
+            number(
+                "residual",
+                residual,
+                unit,
+                digits,
+                "Predicted less observed.",
+            );
+            number("apparent", apparent(0), unit, digits, APPARENT);
+        }
+        Sort::YesNo => {
+            let observed = scene.classes().into_iter().map(label).collect();
+            columns.push(FactColumn::texts(
+                "observed",
+                observed,
+                "What was observed.",
+            ));
+            let what = "The held-out probability of the event, the mean over repeats.";
+            columns.push(FactColumn::numbers("predicted", column(0), "", share, what));
+            columns.push(FactColumn::numbers(
+                "apparent",
+                apparent(0),
+                "",
+                share,
+                APPARENT,
+            ));
+        }
+        Sort::Classes => {
+            let observed = scene.classes().into_iter().map(label).collect();
+            columns.push(FactColumn::texts(
+                "observed",
+                observed,
+                "The class it is of.",
+            ));
+            let called = (0..scene.rows.len())
+                .map(|place| {
+                    let row: Vec<f64> = performance.scores.row(place).iter().copied().collect();
+                    label(predicted_class(&row))
+                })
+                .collect();
+            columns.push(FactColumn::texts(
+                "predicted",
+                called,
+                "The class of the highest held-out probability, the mean over repeats.",
+            ));
+            for (class, name) in labels.iter().enumerate() {
+                columns.push(FactColumn::numbers(
+                    &format!("probability of {name}"),
+                    column(class),
+                    "",
+                    share,
+                    "The held-out probability of this class, the mean over repeats.",
+                ));
+            }
+        }
+        Sort::Time => {
+            let time = scene.observed();
+            number(
+                "observed",
+                time,
+                unit,
+                Precision::Significant(4),
+                "The observed time.",
+            );
+            let events = scene.events();
+            let word = |event: &bool| if *event { "event" } else { "censored" }.to_owned();
+            columns.push(FactColumn::texts(
+                "ended by",
+                events.iter().map(word).collect(),
+                "Whether the time ended with the event or with the observation.",
+            ));
+            columns.push(FactColumn::numbers(
+                "predicted",
+                column(0),
+                "",
+                share,
+                "The held-out linear predictor, the mean over repeats: higher is an earlier event; zero is the means of the training part.",
+            ));
+            for (at, when) in ["early", "middle", "late"].into_iter().enumerate() {
+                columns.push(FactColumn::numbers(
+                    &format!("without the event at the {when} time"),
+                    column(at + 1),
+                    "",
+                    share,
+                    "The held-out share without the event at that time, the mean over repeats.",
+                ));
+            }
+            columns.push(FactColumn::numbers(
+                "apparent",
+                apparent(0),
+                "",
+                share,
+                APPARENT,
+            ));
+        }
+    }
     Fact::table(
         "held-out predictions",
         columns,

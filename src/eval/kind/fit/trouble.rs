@@ -3,14 +3,16 @@
 use crate::base::number::{self, Precision};
 use crate::base::problem::Problem;
 use crate::eval::kind::Ended;
+use crate::eval::kind::fit::measures::Sort;
 use crate::eval::kind::prepare::Prepared;
 use crate::eval::kind::step::step_problem;
 use crate::eval::outcome::{Failure, Remedy};
 use crate::numeric::error::FitError;
 use crate::numeric::parts::PlanError;
-use crate::numeric::procedure::{Halt, Level, ProcedureError};
+use crate::numeric::procedure::{ErrorMeasure, Halt, Level, ProcedureError};
+use crate::numeric::response::Response;
 use crate::study::settings::Settings;
-use crate::study::settings::fit::{Fit, Judge, Strength};
+use crate::study::settings::fit::{self as settings, Fit, Judge, Rule, Strength};
 
 /// The end of a fit whose procedure was halted.
 #[must_use]
@@ -51,6 +53,19 @@ pub fn halted(halt: Halt, prepared: &Prepared, settings: &Fit) -> Ended {
         )
         .mend("Look for predictors of enormous size, or scale them to unit variance.")
         .into(),
+        ProcedureError::Measure(measure) => measure_problem(measure, prepared, settings).into(),
+        ProcedureError::NoPairs(_) => Problem::new(
+            "no-pairs",
+            "Ordering pairs needs held-out parts in which two samples can be compared, and these \
+             parts hold single samples.",
+        )
+        .mend("Ask for fewer parts, so that each holds several samples.")
+        .mend("Or choose another measure of the error.")
+        .into(),
+        ProcedureError::RuleForMeasured => gcv_failure(settings).into(),
+        ProcedureError::Training { level, error } => {
+            training_problem(level, error, prepared).into()
+        }
         ProcedureError::Leak => Problem::new(
             "leak",
             "A preparation step was learnt from a held-out sample, so no result is given out. \
@@ -60,6 +75,85 @@ pub fn halted(halt: Halt, prepared: &Prepared, settings: &Fit) -> Ended {
         .into(),
         ProcedureError::Fit(error) => fit_problem(error).into(),
     }
+}
+
+/// Generalised cross-validation counts the residuals of a linear fit.
+fn gcv_failure(settings: &Fit) -> Failure {
+    let problem = Problem::new(
+        "rule-for-measured",
+        "Generalised cross-validation is defined for measured quantities only: it sets squared \
+         residuals against degrees of freedom.",
+    )
+    .mend("Take the lowest error on held-out parts, or the extended Bayesian criterion.");
+    let mut remedies = Vec::new();
+    if let Strength::Chosen { range, inner, .. } = settings.strength {
+        let mut changed = settings.clone();
+        changed.strength = Strength::Chosen {
+            rule: Rule::LowestError,
+            range,
+            inner,
+        };
+        remedies.push(Remedy {
+            label: "Take the lowest error".to_owned(),
+            settings: Settings::Fit(changed),
+        });
+    }
+    Failure { problem, remedies }
+}
+
+fn measure_problem(measure: ErrorMeasure, prepared: &Prepared, settings: &Fit) -> Failure {
+    let word = match measure {
+        ErrorMeasure::SquaredError => "The mean squared error",
+        ErrorMeasure::Deviance => "The deviance",
+        ErrorMeasure::Misclassification => "The share called wrong",
+        ErrorMeasure::PartialLikelihood => "The partial likelihood",
+        ErrorMeasure::Concordance => "The share of pairs ordered wrongly",
+    };
+    let sort = Sort::of(&prepared.data.response).word();
+    let problem = Problem::new(
+        "measure-not-defined",
+        format!("{word} is no measure of errors for this kind of outcome ({sort})."),
+    )
+    .mend("Choose a measure that belongs to the kind of outcome.");
+    let changed = Fit {
+        measure: settings::ErrorMeasure::Usual,
+        ..settings.clone()
+    };
+    Failure {
+        problem,
+        remedies: vec![Remedy {
+            label: "Take the usual measure".to_owned(),
+            settings: Settings::Fit(changed),
+        }],
+    }
+}
+
+/// A training part that cannot be fitted, found before any work is done.
+fn training_problem(level: Level, error: FitError, prepared: &Prepared) -> Problem {
+    let word = prepared.data.unit_word();
+    let part = match level {
+        Level::Inner => "A training part in which strengths are compared",
+        Level::Outer => "An outer training part",
+    };
+    let class = |at: usize| {
+        let names = &prepared.data.outcome.classes;
+        names
+            .get(at)
+            .cloned()
+            .unwrap_or_else(|| "a class".to_owned())
+    };
+    let found = match error {
+        FitError::OneClass => format!("{part} would hold a single class."),
+        FitError::EmptyClass(at) => format!("{part} would hold no sample of “{}”.", class(at)),
+        FitError::NoEvents => format!("{part} would hold no event."),
+        FitError::NoCounts => format!("{part} would hold no count above 0."),
+        other => return fit_problem(other),
+    };
+    Problem::new("plan-not-feasible", found)
+        .mend("Ask for parts in which classes or events are spread evenly, or for fewer parts.")
+        .mend(format!(
+            "Or leave out a class that too few independent samples ({word}) are of."
+        ))
 }
 
 fn count_of(count: usize) -> String {
@@ -104,6 +198,11 @@ fn fit_problem(error: FitError) -> Problem {
 
 fn plan_failure(level: Level, error: &PlanError, prepared: &Prepared, settings: &Fit) -> Failure {
     let word = prepared.data.unit_word();
+    let is_time = matches!(prepared.data.response, Response::Time { .. });
+    let occurs = |stratum: usize| match prepared.data.outcome.classes.get(stratum) {
+        Some(class) => format!("“{class}” occurs"),
+        None => "the event occurs".to_owned(),
+    };
     let what = match level {
         Level::Inner => "The parts that choose the strength cannot be drawn",
         Level::Outer => "The outer parts cannot be drawn",
@@ -128,12 +227,23 @@ fn plan_failure(level: Level, error: &PlanError, prepared: &Prepared, settings: 
         PlanError::TooFewBatches { batches, parts } => {
             format!("{parts} parts are asked for, but only {batches} batches can be told apart")
         }
+        PlanError::OneStratum { .. } if is_time => "no sample has the event".to_owned(),
         PlanError::OneStratum { .. } => "all samples are of one class".to_owned(),
-        PlanError::RareStratum { units, parts, .. } => {
-            format!("a class has only {units} independent samples for {parts} parts")
-        }
-        PlanError::TrainingLacksStratum { units, .. } => format!(
-            "a training part would lack a class that occurs in only {units} independent samples"
+        PlanError::RareStratum {
+            stratum,
+            units,
+            parts,
+        } => format!(
+            "{} in only {} independent {} ({word}) for {parts} parts",
+            occurs(*stratum),
+            units,
+            if *units == 1 { "sample" } else { "samples" }
+        ),
+        PlanError::TrainingLacksStratum { stratum, units, .. } => format!(
+            "{} in only {} independent {} ({word}), and one held-out part would hold all of it",
+            occurs(*stratum),
+            units,
+            if *units == 1 { "sample" } else { "samples" }
         ),
         PlanError::UnitDivided { unit } => {
             format!(

@@ -3,8 +3,10 @@
 use crate::report::Context;
 use crate::report::block::Paragraph;
 use crate::report::chain::{Chain, questions_of};
+use crate::report::kind::fit::{formula, kind, performed};
 use crate::report::noun::{self, Noun};
 use crate::report::tell::{Source, Telling};
+use crate::study::settings::data::OutcomeKind;
 use crate::study::settings::fit::{Fit, Judge, Penalty, Plan, Rule, Scaling, Scheme, Strength};
 use crate::study::settings::question::Ask;
 
@@ -16,11 +18,24 @@ pub fn methods(context: &Context<'_>, fit: &Fit, source: &Source<'_>) -> Vec<Par
     let batch = noun::batch(chain.settings());
     let mut telling = Telling::new();
     model(&mut telling, fit, source, &chain, &unit);
-    choice(&mut telling, fit, source, &unit, &batch);
-    chosen(&mut telling, fit, source);
+    choice(
+        &mut telling,
+        fit,
+        source,
+        &unit,
+        &batch,
+        kind(chain.settings()),
+    );
+    chosen(&mut telling, fit, source, kind(chain.settings()));
     judged(&mut telling, fit, source, &unit, &batch);
     if matches!(fit.judge, Judge::Nested(_)) {
-        performance(&mut telling, source, &unit);
+        match kind(chain.settings()) {
+            Some(OutcomeKind::YesNo { .. }) => performed::yes_no(&mut telling, source, &unit),
+            Some(OutcomeKind::Classes) => performed::classes(&mut telling, source, &unit),
+            Some(OutcomeKind::Count { .. }) => performed::counts(&mut telling, source, &unit),
+            Some(OutcomeKind::Time { .. }) => performed::times(&mut telling, source, &unit),
+            Some(OutcomeKind::Measured) | None => performance(&mut telling, source, &unit),
+        }
     }
     solver(&mut telling, source);
     selection(&mut telling, context, fit, source);
@@ -48,35 +63,8 @@ fn model(telling: &mut Telling, fit: &Fit, source: &Source<'_>, chain: &Chain<'_
         &[&outcome],
     ));
     let has_covariates = source.is_above_zero("covariates");
-    let loss = if has_covariates {
-        "1/(2n) · Σᵢ (yᵢ − b₀ − zᵢ·c − xᵢ·b)²"
-    } else {
-        "1/(2n) · Σᵢ (yᵢ − b₀ − xᵢ·b)²"
-    };
-    let formula = match &fit.penalty {
-        Penalty::Ridge => format!("{loss} + λ · Σⱼ bⱼ²/2"),
-        Penalty::Lasso => format!("{loss} + λ · Σⱼ |bⱼ|"),
-        Penalty::ElasticNet { .. } => {
-            format!("{loss} + λ · Σⱼ ( s·|bⱼ| + (1 − s)/2 · bⱼ² )")
-        }
-    };
-    telling.say(
-        Paragraph::of("The intercept and the coefficients minimise ")
-            .formula(formula)
-            .text(", where ")
-            .formula("n")
-            .text(" is the number of samples, ")
-            .formula("yᵢ")
-            .text(" the outcome of a sample, ")
-            .formula("xᵢ")
-            .text(" its predictors, ")
-            .formula("b₀")
-            .text(" the intercept, ")
-            .formula("bⱼ")
-            .text(" the coefficient of a predictor and ")
-            .formula("λ")
-            .text(" the penalty strength."),
-    );
+    let kind = kind(chain.settings());
+    telling.say(formula::objective(fit, kind, source));
     if let Penalty::ElasticNet { shares } = &fit.penalty {
         if shares.len() > 1 {
             telling.say(source.say(
@@ -88,40 +76,64 @@ fn model(telling: &mut Telling, fit: &Fit, source: &Source<'_>, chain: &Chain<'_
             telling.say(source.say("The lasso share ⟨s⟩ was {lasso share}.", &[]));
         }
     }
-    telling.say(if has_covariates {
-        source.say(
+    let is_time = matches!(kind, Some(OutcomeKind::Time { .. }));
+    if has_covariates && is_time {
+        telling.say(source.say(
+            "The coefficients ⟨c⟩ of {covariates} [covariate|covariates] ⟨zᵢ⟩ were not penalised.",
+            &[],
+        ));
+    } else if has_covariates {
+        telling.say(source.say(
             "The intercept and the coefficients ⟨c⟩ of {covariates} [covariate|covariates] ⟨zᵢ⟩ \
              were not penalised.",
             &[],
-        )
+        ));
+    } else if !is_time {
+        telling.say(Paragraph::of("The intercept was not penalised."));
+    }
+    let unscaled = if matches!(kind, Some(OutcomeKind::Measured) | None) {
+        "; the outcome was not scaled."
     } else {
-        Paragraph::of("The intercept was not penalised.")
-    });
+        "."
+    };
     telling.say(
         match fit.scaling {
             Scaling::UnitVariance => Paragraph::of(
                 "Each predictor was centred and divided by its standard deviation (divisor ",
             )
             .formula("n")
-            .text(") in the training part at hand; the outcome was not scaled."),
+            .text(") in the training part at hand")
+            .text(unscaled),
             Scaling::AsPrepared => Paragraph::of(
                 "Each predictor was centred in the training part at hand and kept the scale on \
-                 which it arrived; the outcome was not scaled.",
-            ),
+                 which it arrived",
+            )
+            .text(unscaled),
         }
         .text(" Coefficients are reported on the scale that the predictors had before."),
     );
     telling.end();
 }
 
-fn choice(telling: &mut Telling, fit: &Fit, source: &Source<'_>, unit: &Noun, batch: &Noun) {
+fn is_measured(kind: Option<&OutcomeKind>) -> bool {
+    matches!(kind, Some(OutcomeKind::Measured) | None)
+}
+
+fn choice(
+    telling: &mut Telling,
+    fit: &Fit,
+    source: &Source<'_>,
+    unit: &Noun,
+    batch: &Noun,
+    kind: Option<&OutcomeKind>,
+) {
     let (rule, inner) = match &fit.strength {
         Strength::ByHand(_) => {
             telling.say(source.say(
                 "The penalty strength was set by hand to {chosen strength}.",
                 &[],
             ));
-            scalings(telling, source);
+            scalings(telling, source, kind);
             telling.end();
             return;
         }
@@ -157,13 +169,23 @@ fn choice(telling: &mut Telling, fit: &Fit, source: &Source<'_>, unit: &Noun, ba
         );
     }
     telling.say(match rule {
-        Rule::LowestError => {
+        Rule::LowestError if is_measured(kind) => {
             Paragraph::of("The strength with the lowest mean squared held-out error was taken.")
         }
-        Rule::OneStandardError => Paragraph::of(
+        Rule::LowestError => source.say(
+            "The strength with the lowest held-out error was taken, measured by the {error measure}.",
+            &[],
+        ),
+        Rule::OneStandardError if is_measured(kind) => Paragraph::of(
             "The strongest penalty whose mean squared held-out error lay within one standard error \
              of the lowest was taken (one-standard-error rule); the standard error is that of the \
              mean over held-out parts.",
+        ),
+        Rule::OneStandardError => source.say(
+            "The strongest penalty whose held-out error, the {error measure}, lay within one standard \
+             error of the lowest was taken (one-standard-error rule); the standard error is that of \
+             the mean over held-out parts.",
+            &[],
         ),
         Rule::GeneralisedCrossValidation => Paragraph::of(
             "The strength with the lowest generalised cross-validation value was taken; this rule \
@@ -174,6 +196,18 @@ fn choice(telling: &mut Telling, fit: &Fit, source: &Source<'_>, unit: &Noun, ba
              rule needs no held-out parts.",
         ),
     });
+    if rule.needs_parts()
+        && source
+            .facts
+            .words("error measure")
+            .is_some_and(|words| words.starts_with("partial likelihood"))
+    {
+        telling.say(Paragraph::of(
+            "The held-out partial likelihood is that of Verweij and van Houwelingen: the deviance of \
+             all samples of the level less that of the training samples, both at the coefficients of \
+             the training samples, over the held-out events.",
+        ));
+    }
     telling.end();
 }
 
@@ -213,7 +247,28 @@ fn plan(source: &Source<'_>, plan: Plan, unit: &Noun, batch: &Noun, level: &str)
     source.say(&pattern, &[])
 }
 
-fn scalings(telling: &mut Telling, source: &Source<'_>) {
+fn scalings(telling: &mut Telling, source: &Source<'_>, kind: Option<&OutcomeKind>) {
+    match kind {
+        Some(OutcomeKind::YesNo { .. } | OutcomeKind::Classes | OutcomeKind::Count { .. }) => {
+            telling.say(source.say(
+                "In other scalings of the objective this is ⟨nλ⟩ = {strength times n} (loss: minus \
+                 the log likelihood), ⟨2nλ⟩ = {strength times 2n} (loss: the deviance) and ⟨1/(nλ)⟩ = \
+                 {inverse strength} (inverse form).",
+                &[],
+            ));
+            return;
+        }
+        Some(OutcomeKind::Time { .. }) => {
+            telling.say(source.say(
+                "In other scalings of the objective this is ⟨nλ⟩ = {strength times n} (loss: minus \
+                 the log partial likelihood), ⟨2λ⟩ = {strength times 2} (that times ⟨2/n⟩) and \
+                 ⟨1/(nλ)⟩ = {inverse strength} (inverse form).",
+                &[],
+            ));
+            return;
+        }
+        Some(OutcomeKind::Measured) | None => {}
+    }
     telling.say(source.say(
         "In other scalings of the objective this is ⟨nλ⟩ = {strength times n} (loss ⟨½ Σ⟩), \
          ⟨2nλ⟩ = {strength times 2n} (loss ⟨Σ⟩) and ⟨1/(nλ)⟩ = {inverse strength} (inverse form).",
@@ -221,7 +276,7 @@ fn scalings(telling: &mut Telling, source: &Source<'_>) {
     ));
 }
 
-fn chosen(telling: &mut Telling, fit: &Fit, source: &Source<'_>) {
+fn chosen(telling: &mut Telling, fit: &Fit, source: &Source<'_>, kind: Option<&OutcomeKind>) {
     if matches!(fit.strength, Strength::ByHand(_)) {
         return;
     }
@@ -230,7 +285,10 @@ fn chosen(telling: &mut Telling, fit: &Fit, source: &Source<'_>) {
          of those tried, counted from the strongest.",
         &[],
     ));
-    scalings(telling, source);
+    scalings(telling, source, kind);
+    if source.has("range cut") {
+        telling.say(source.say("The range was cut short {range cut}.", &[]));
+    }
     if source.facts.words("strength at edge") == Some("yes") {
         telling.say(Paragraph::of(
             "It lay at the end of the range tried, so that a better one may lie outside.",

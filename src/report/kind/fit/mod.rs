@@ -1,15 +1,19 @@
 //! What a Fit cell has to say.
 
 pub mod answer;
+mod formula;
 pub mod methods;
+mod performed;
 
 use crate::report::Context;
 use crate::report::chain::Chain;
 use crate::report::noun::{self, Noun};
 use crate::report::sentence::{Editor, Sentence};
 use crate::report::word;
-use crate::study::settings::data::Data;
-use crate::study::settings::fit::{Fit, Judge, Penalty, Plan, Rule, Scaling, Scheme, Strength};
+use crate::study::settings::data::{Data, OutcomeKind};
+use crate::study::settings::fit::{
+    ErrorMeasure, Fit, Grouping, Judge, Penalty, Plan, Rule, Scaling, Scheme, Strength, Ties,
+};
 use crate::study::settings::slot::Slot;
 use crate::study::settings::slot::fit::FitSlot;
 
@@ -38,6 +42,14 @@ const WAYS: [(&str, &str); 5] = [
     ("ebic", "lowest extended Bayesian information criterion"),
     ("by-hand", "by hand"),
 ];
+const GROUPINGS: [(&str, &str); 2] = [
+    ("apart", "in each class by itself"),
+    (
+        "together",
+        "in all classes together, so that it is in or out as a whole",
+    ),
+];
+const TIES: [(&str, &str); 2] = [("efron", "after Efron"), ("breslow", "after Breslow")];
 const JUDGINGS: [(&str, &str); 2] = [("nested", "Judge"), ("not-judged", "Do not judge")];
 
 /// The words of the study that sentences about a fit need.
@@ -77,16 +89,31 @@ impl Words {
 pub fn sentences(context: &Context<'_>, fit: &Fit) -> Vec<Sentence> {
     let chain = Chain::from(context, fit.input);
     let words = Words::of(chain.settings());
-    let mut sentences = vec![
-        model(context, fit, &chain.outcome()),
-        strength(fit, &words),
+    let kind = kind(chain.settings());
+    let mut sentences = vec![model(context, fit, &chain.outcome())];
+    if FitSlot::Grouping.is_for(kind) {
+        sentences.push(grouping(fit));
+    }
+    sentences.extend([
+        strength(fit, &words, kind),
         judge(fit, &words),
         Sentence::new()
             .text("Seed ")
             .whole(Slot::Fit(FitSlot::Seed), fit.seed)
             .text("."),
         scaling(fit),
-    ];
+    ]);
+    if FitSlot::Ties.is_for(kind) {
+        let text = match fit.ties {
+            Ties::Efron => TIES[0].1,
+            Ties::Breslow => TIES[1].1,
+        };
+        let sentence = Sentence::new()
+            .text("Events at equal times are counted ")
+            .choice(Slot::Fit(FitSlot::Ties), text, &TIES)
+            .text(".");
+        sentences.push(sentence.detail());
+    }
     if let Strength::Chosen { range, .. } = fit.strength {
         let sentence = Sentence::new()
             .text("The weakest strength tried is ")
@@ -98,6 +125,88 @@ pub fn sentences(context: &Context<'_>, fit: &Fit) -> Vec<Sentence> {
         sentences.push(sentence.detail());
     }
     sentences
+}
+
+/// What sort of outcome is predicted, as far as it has been said.
+#[must_use]
+pub fn kind(data: Option<&Data>) -> Option<&OutcomeKind> {
+    data.and_then(|data| data.outcome.as_ref())
+        .map(|outcome| &outcome.kind)
+}
+
+fn grouping(fit: &Fit) -> Sentence {
+    let text = match fit.grouping {
+        Grouping::Apart => GROUPINGS[0].1,
+        Grouping::Together => GROUPINGS[1].1,
+    };
+    Sentence::new()
+        .text("A predictor is penalised ")
+        .choice(Slot::Fit(FitSlot::Grouping), text, &GROUPINGS)
+        .text(".")
+}
+
+/// The stable name of a measure of errors, and its words.
+#[must_use]
+pub const fn measure_words(
+    measure: ErrorMeasure,
+    kind: &OutcomeKind,
+) -> (&'static str, &'static str) {
+    match measure {
+        ErrorMeasure::Usual => ("usual", measure_words(ErrorMeasure::of(kind)[0], kind).1),
+        ErrorMeasure::SquaredError => match kind {
+            OutcomeKind::YesNo { .. } => {
+                ("squared-error", "the mean squared error of the probability")
+            }
+            OutcomeKind::Measured
+            | OutcomeKind::Classes
+            | OutcomeKind::Count { .. }
+            | OutcomeKind::Time { .. } => ("squared-error", "the mean squared error"),
+        },
+        ErrorMeasure::Deviance => ("deviance", "the deviance"),
+        ErrorMeasure::Misclassification => ("misclassification", "the share called wrong"),
+        ErrorMeasure::PartialLikelihood => (
+            "partial-likelihood",
+            "the deviance of the partial likelihood",
+        ),
+        ErrorMeasure::Concordance => ("concordance", "the share of pairs ordered wrongly"),
+    }
+}
+
+/// “, measured by **the deviance**”, where there is a choice.
+fn measured_by(sentence: Sentence, fit: &Fit, kind: Option<&OutcomeKind>) -> Sentence {
+    let Some(kind) = kind.filter(|kind| FitSlot::Measure.is_for(Some(kind))) else {
+        return sentence;
+    };
+    let mut offered: Vec<ErrorMeasure> = ErrorMeasure::of(kind).to_vec();
+    if fit.measure == ErrorMeasure::Usual {
+        offered[0] = ErrorMeasure::Usual;
+    } else if !offered.contains(&fit.measure) {
+        offered.push(fit.measure);
+    }
+    let labels: Vec<(&str, &str)> = offered
+        .iter()
+        .map(|measure| measure_words(*measure, kind))
+        .collect();
+    sentence.text(", measured by ").choice(
+        Slot::Fit(FitSlot::Measure),
+        measure_words(fit.measure, kind).1,
+        &labels,
+    )
+}
+
+/// The rules that this kind of outcome has, and the one that stands there.
+fn ways(fit: &Fit, kind: Option<&OutcomeKind>) -> Vec<(&'static str, &'static str)> {
+    let is_measured = matches!(kind, Some(OutcomeKind::Measured) | None);
+    let is_gcv = matches!(
+        fit.strength,
+        Strength::Chosen {
+            rule: Rule::GeneralisedCrossValidation,
+            ..
+        }
+    );
+    WAYS.into_iter()
+        .filter(|(name, _)| *name != "gcv" || is_measured || is_gcv)
+        .collect()
 }
 
 fn model(context: &Context<'_>, fit: &Fit, outcome: &str) -> Sentence {
@@ -138,13 +247,14 @@ fn model(context: &Context<'_>, fit: &Fit, outcome: &str) -> Sentence {
         .text(".")
 }
 
-fn strength(fit: &Fit, words: &Words) -> Sentence {
+fn strength(fit: &Fit, words: &Words, kind: Option<&OutcomeKind>) -> Sentence {
     let choice = Slot::Fit(FitSlot::Choice);
+    let ways = ways(fit, kind);
     let (rule, range, inner) = match &fit.strength {
         Strength::ByHand(strength) => {
             return Sentence::new()
                 .text("Set the penalty strength ")
-                .choice(choice, "by hand", &WAYS)
+                .choice(choice, "by hand", &ways)
                 .text(" to ")
                 .real(Slot::Fit(FitSlot::Strength), *strength)
                 .text(".");
@@ -165,26 +275,28 @@ fn strength(fit: &Fit, words: &Words) -> Sentence {
     };
     match rule {
         Rule::LowestError => {
-            parts(sentence)
-                .text(", taking the ")
-                .choice(choice, "lowest error", &WAYS)
+            let taking = parts(sentence).text(", taking the ");
+            measured_by(taking.choice(choice, "lowest error", &ways), fit, kind)
         }
-        Rule::OneStandardError => parts(sentence).text(", taking the ").choice(
-            choice,
-            "strongest penalty within one standard error of the lowest error",
-            &WAYS,
-        ),
+        Rule::OneStandardError => {
+            let taking = parts(sentence).text(", taking the ").choice(
+                choice,
+                "strongest penalty within one standard error of the lowest error",
+                &ways,
+            );
+            measured_by(taking, fit, kind)
+        }
         Rule::GeneralisedCrossValidation => {
             sentence
                 .text("the ")
-                .choice(choice, "lowest generalised cross-validation value", &WAYS)
+                .choice(choice, "lowest generalised cross-validation value", &ways)
         }
         Rule::ExtendedBic { gamma } => sentence
             .text("the ")
             .choice(
                 choice,
                 "lowest extended Bayesian information criterion",
-                &WAYS,
+                &ways,
             )
             .text(", with the weight ")
             .real(Slot::Fit(FitSlot::Gamma), gamma)

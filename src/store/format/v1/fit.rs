@@ -5,7 +5,8 @@ use crate::store::format::place::{At, Fault, Fields};
 use crate::store::format::v1::words;
 use crate::store::format::v1::{DRAWS_ON, Group, Reading, Writing, read_link};
 use crate::study::settings::fit::{
-    Fit, Judge, Penalty, PenaltyRange, Plan, Rule, Scaling, Scheme, Strength,
+    ErrorMeasure, Fit, Grouping, Judge, Penalty, PenaltyRange, Plan, Rule, Scaling, Scheme,
+    Strength, Ties,
 };
 use serde_json::Value;
 
@@ -36,6 +37,15 @@ pub fn read(fields: &mut Fields<'_>, reading: &Reading<'_>) -> Result<Fit, Fault
         scaling: fields
             .read("scaling", |at| at.one_of(words::SCALINGS))?
             .unwrap_or(Scaling::UnitVariance),
+        grouping: fields
+            .read("classes", |at| at.one_of(words::GROUPINGS))?
+            .unwrap_or(Grouping::Apart),
+        ties: fields
+            .read("ties", |at| at.one_of(words::TIES))?
+            .unwrap_or(Ties::Efron),
+        measure: fields
+            .read("error-measure", |at| at.one_of(words::ERROR_MEASURES))?
+            .unwrap_or(ErrorMeasure::Usual),
         strength: read_strength(fields)?,
         judge: read_judge(fields)?,
         seed: fields.read("seed", |at| at.whole())?.unwrap_or(SEED),
@@ -55,6 +65,16 @@ pub fn write(fit: &Fit, group: &mut Group, writing: &Writing<'_>) {
         }
     }
     group.put("scaling", words::scaling(fit.scaling));
+    // Later additions: written only where they are not the usual ones.
+    if fit.grouping != Grouping::Apart {
+        group.put("classes", words::grouping(fit.grouping));
+    }
+    if fit.ties != Ties::Efron {
+        group.put("ties", words::ties(fit.ties));
+    }
+    if fit.measure != ErrorMeasure::Usual {
+        group.put("error-measure", words::error_measure(fit.measure));
+    }
     match &fit.strength {
         Strength::ByHand(strength) => group.put("strength", strength.get()),
         Strength::Chosen { rule, range, inner } => {

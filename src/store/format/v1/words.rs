@@ -2,7 +2,7 @@
 
 use crate::base::layout::{DecimalMark, Delimiter, Encoding, Orientation, UnitsRow};
 use crate::study::settings::data::{LeadingZeros, LetterCase, OutcomeSeen, Subject};
-use crate::study::settings::fit::{Scaling, Scheme};
+use crate::study::settings::fit::{ErrorMeasure, Grouping, Scaling, Scheme, Ties};
 use crate::study::settings::question::Seal;
 
 /// Declares the words of a set of choices: the list for reading, and the function for writing.
@@ -79,4 +79,20 @@ words!(SCHEMES, scheme, Scheme {
 words!(SEALS, seal, Seal {
     Closed => "closed",
     Opened => "opened",
+});
+words!(GROUPINGS, grouping, Grouping {
+    Apart => "apart",
+    Together => "together",
+});
+words!(TIES, ties, Ties {
+    Efron => "efron",
+    Breslow => "breslow",
+});
+words!(ERROR_MEASURES, error_measure, ErrorMeasure {
+    Usual => "usual",
+    SquaredError => "squared-error",
+    Deviance => "deviance",
+    Misclassification => "misclassification",
+    PartialLikelihood => "partial-likelihood",
+    Concordance => "concordance",
 });

@@ -2,8 +2,10 @@
 
 use crate::base::problem::Problem;
 use crate::base::real::Real;
+use crate::study::settings::data::OutcomeKind;
 use crate::study::settings::fit::{
-    Fit, Judge, Penalty, PenaltyRange, Plan, Rule, Scaling, Scheme, Strength,
+    ErrorMeasure, Fit, Grouping, Judge, Penalty, PenaltyRange, Plan, Rule, Scaling, Scheme,
+    Strength, Ties,
 };
 use crate::study::settings::slot::{Bounds, Value, take};
 
@@ -18,6 +20,12 @@ pub enum FitSlot {
     Shares,
     /// On which scale the penalty acts.
     Scaling,
+    /// How the coefficients of a predictor in several classes are penalised.
+    Grouping,
+    /// How equal times are counted.
+    Ties,
+    /// What is made small when strengths are compared.
+    Measure,
     /// How the strength is chosen.
     Choice,
     /// The strength. Setting it sets the strength by hand.
@@ -65,6 +73,23 @@ const SCALINGS: [(&str, Scaling); 2] = [
     ("as-prepared", Scaling::AsPrepared),
 ];
 const SCALING_NAMES: [&str; 2] = take::names(&SCALINGS);
+
+const GROUPINGS: [(&str, Grouping); 2] =
+    [("apart", Grouping::Apart), ("together", Grouping::Together)];
+const GROUPING_NAMES: [&str; 2] = take::names(&GROUPINGS);
+
+const TIES: [(&str, Ties); 2] = [("efron", Ties::Efron), ("breslow", Ties::Breslow)];
+const TIES_NAMES: [&str; 2] = take::names(&TIES);
+
+const MEASURES: [(&str, ErrorMeasure); 6] = [
+    ("usual", ErrorMeasure::Usual),
+    ("squared-error", ErrorMeasure::SquaredError),
+    ("deviance", ErrorMeasure::Deviance),
+    ("misclassification", ErrorMeasure::Misclassification),
+    ("partial-likelihood", ErrorMeasure::PartialLikelihood),
+    ("concordance", ErrorMeasure::Concordance),
+];
+const MEASURE_NAMES: [&str; 6] = take::names(&MEASURES);
 
 #[derive(Clone, Copy, PartialEq)]
 enum Way {
@@ -165,11 +190,45 @@ impl FitSlot {
                 slots.push(Self::OuterRepeats);
             }
         }
-        slots.extend([Self::Seed, Self::Scaling]);
+        slots.extend([Self::Seed, Self::Scaling, Self::Grouping, Self::Ties]);
+        if inner(&fit.strength).is_some() {
+            slots.push(Self::Measure);
+        }
         if matches!(fit.strength, Strength::Chosen { .. }) {
             slots.push(Self::Ratio);
         }
         slots
+    }
+
+    /// Whether the setting says anything where this kind of outcome is fitted. What does not is
+    /// kept, and shown where it does.
+    #[must_use]
+    pub const fn is_for(self, kind: Option<&OutcomeKind>) -> bool {
+        match self {
+            Self::Grouping => matches!(kind, Some(OutcomeKind::Classes)),
+            Self::Ties => matches!(kind, Some(OutcomeKind::Time { .. })),
+            Self::Measure => match kind {
+                Some(kind) => ErrorMeasure::of(kind).len() > 1,
+                None => false,
+            },
+            Self::Input
+            | Self::Penalty
+            | Self::Shares
+            | Self::Scaling
+            | Self::Choice
+            | Self::Strength
+            | Self::Gamma
+            | Self::Count
+            | Self::Ratio
+            | Self::InnerScheme
+            | Self::InnerParts
+            | Self::InnerRepeats
+            | Self::Judge
+            | Self::OuterScheme
+            | Self::OuterParts
+            | Self::OuterRepeats
+            | Self::Seed => true,
+        }
     }
 
     /// What the setting is called.
@@ -180,6 +239,9 @@ impl FitSlot {
             Self::Penalty => "penalty",
             Self::Shares => "lasso share",
             Self::Scaling => "scale of the penalty",
+            Self::Grouping => "penalty of several classes",
+            Self::Ties => "counting of equal times",
+            Self::Measure => "measure of the error",
             Self::Choice => "choice of the penalty strength",
             Self::Strength => "penalty strength",
             Self::Gamma => "weight of the number of models",
@@ -202,6 +264,9 @@ impl FitSlot {
         match self {
             Self::Penalty => &PENALTY_NAMES,
             Self::Scaling => &SCALING_NAMES,
+            Self::Grouping => &GROUPING_NAMES,
+            Self::Ties => &TIES_NAMES,
+            Self::Measure => &MEASURE_NAMES,
             Self::Choice => &WAY_NAMES,
             Self::InnerScheme | Self::OuterScheme => &SCHEME_NAMES,
             Self::Judge => &JUDGING_NAMES,
@@ -249,6 +314,9 @@ impl FitSlot {
             Self::Input
             | Self::Penalty
             | Self::Scaling
+            | Self::Grouping
+            | Self::Ties
+            | Self::Measure
             | Self::Choice
             | Self::InnerScheme
             | Self::Judge
@@ -267,6 +335,12 @@ impl FitSlot {
                 Penalty::Ridge | Penalty::Lasso => return None,
             },
             Self::Scaling => take::named(&SCALINGS, fit.scaling),
+            Self::Grouping => take::named(&GROUPINGS, fit.grouping),
+            Self::Ties => take::named(&TIES, fit.ties),
+            Self::Measure => {
+                let _ = inner(&fit.strength)?;
+                take::named(&MEASURES, fit.measure)
+            }
             Self::Choice => take::named(&WAYS, way(&fit.strength)),
             Self::Strength => match fit.strength {
                 Strength::ByHand(strength) => Value::Number(strength),
@@ -328,6 +402,15 @@ impl FitSlot {
                 }
             },
             Self::Scaling => fit.scaling = take::pick(label, &SCALINGS, &value)?,
+            Self::Grouping => fit.grouping = take::pick(label, &GROUPINGS, &value)?,
+            Self::Ties => fit.ties = take::pick(label, &TIES, &value)?,
+            Self::Measure => {
+                if inner(&fit.strength).is_none() {
+                    let because = "the strength is not chosen on held-out parts";
+                    return Err(take::absent(label, because));
+                }
+                fit.measure = take::pick(label, &MEASURES, &value)?;
+            }
             Self::Choice => {
                 let chosen = take::pick(label, &WAYS, &value)?;
                 fit.strength = with_way(&fit.strength, chosen);
@@ -390,6 +473,9 @@ impl FitSlot {
             | Self::Penalty
             | Self::Shares
             | Self::Scaling
+            | Self::Grouping
+            | Self::Ties
+            | Self::Measure
             | Self::Choice
             | Self::Strength
             | Self::Judge
@@ -424,6 +510,9 @@ impl FitSlot {
             | Self::Penalty
             | Self::Shares
             | Self::Scaling
+            | Self::Grouping
+            | Self::Ties
+            | Self::Measure
             | Self::Choice
             | Self::Strength
             | Self::Gamma

@@ -1,25 +1,20 @@
-//! Do predictions match observations?
+//! Measured quantities: predicted against observed values.
 
 use crate::base::number::Precision;
-use crate::base::problem::Problem;
-use crate::eval::caveat::agreement_slope;
+use crate::eval::caveat::{Caveat, agreement_slope};
 use crate::eval::fact::{Fact, Facts};
-use crate::eval::kind::Ended;
-use crate::eval::kind::fit::{Fitted, error_digits, held_out_predictions, performance};
-use crate::eval::outcome::{Gives, Outcome};
+use crate::eval::kind::fit::{Fitted, Measure, Performance, error_digits, held_out_predictions};
 
-/// Answers from the held-out predictions of the outer parts.
-pub fn answer(fitted: &Fitted) -> Result<Outcome, Ended> {
-    let Some(judged) = &fitted.judged else {
-        return Err(not_judged().into());
-    };
+/// The facts and remarks.
+pub fn answer(fitted: &Fitted, held_out: &Performance) -> (Facts, Vec<Caveat>) {
     let data = &fitted.prepared.data;
     let rows = &data.analysed;
-    let held_out = performance(&judged.held_out, data, rows, fitted.observed());
-    let observed: Vec<f64> = rows.iter().map(|&row| fitted.observed()[row]).collect();
+    let observed = fitted.scene().observed();
+    let predicted: Vec<f64> = held_out.scores.column(0).iter().copied().collect();
     let unit = data.outcome.unit.clone();
     let digits = error_digits(fitted);
-    let mean = &held_out.mean;
+    let mean = |measure: Measure| held_out.mean.get(measure);
+    let slope = mean(Measure::Slope);
     let mut facts = Facts::new();
     let mut push = |name: &str, value: f64, unit: &str, precision: Precision, meaning: &str| {
         facts.push(Fact::number(name, value, unit, precision, meaning));
@@ -27,75 +22,75 @@ pub fn answer(fitted: &Fitted) -> Result<Outcome, Ended> {
     let share = Precision::Decimals(3);
     push(
         "nested rmse",
-        mean.rmse,
+        mean(Measure::Rmse),
         &unit,
         digits,
         "Root mean squared error on outer held-out samples.",
     );
     push(
         "nested mae",
-        mean.mae,
+        mean(Measure::Mae),
         &unit,
         digits,
         "Mean absolute error on outer held-out samples.",
     );
     push(
         "nested r²",
-        mean.r2,
+        mean(Measure::R2),
         "",
         share,
         "R² on outer held-out samples: 1 − SSE/SST, SST about the mean of the analysed samples.",
     );
     push(
         "bias",
-        mean.bias,
+        mean(Measure::Bias),
         &unit,
         digits,
         "Mean of held-out predicted minus observed values.",
     );
     push(
         "sep",
-        mean.sep,
+        mean(Measure::Sep),
         &unit,
         digits,
         "Standard deviation of the held-out errors about the bias (divisor n − 1).",
     );
     push(
         "slope",
-        mean.slope,
+        slope,
         "",
         share,
         "Slope of the line of observed on held-out predicted values: below 1 predictions are too extreme, above 1 too timid.",
     );
     push(
         "intercept",
-        mean.intercept,
+        mean(Measure::Intercept),
         &unit,
         digits,
         "Intercept of the same line.",
     );
     push(
         "correlation",
-        mean.correlation,
+        mean(Measure::Correlation),
         "",
         share,
         "Correlation of observed and held-out predicted values.",
     );
     let error = slope_error(
-        &held_out.predicted,
+        &predicted,
         &observed,
         &rows.iter().map(|&row| data.units[row]).collect::<Vec<_>>(),
     );
     push(
         "slope low",
-        mean.slope - 1.96 * error,
+        slope - 1.96 * error,
         "",
         share,
         "Lower end of a 95 % interval of the slope, with units as the independent observations.",
     );
     push(
         "slope high",
-        mean.slope + 1.96 * error,
+        slope + 1.96 * error,
         "",
         share,
         "Upper end of the same interval.",
@@ -109,26 +104,9 @@ pub fn answer(fitted: &Fitted) -> Result<Outcome, Ended> {
             "The standard deviation of the reference method's own error, as stated by the user.",
         );
     }
-    facts.push(held_out_predictions(fitted, &held_out, &unit, digits));
-    let caveats = agreement_slope::check(
-        mean.slope,
-        mean.slope - 1.96 * error,
-        mean.slope + 1.96 * error,
-    );
-    Ok(Outcome {
-        gives: Gives::Facts,
-        facts,
-        caveats: caveats.into_iter().collect(),
-    })
-}
-
-/// The problem of a fit whose judgement was declined.
-pub(super) fn not_judged() -> Problem {
-    Problem::new(
-        "not-judged",
-        "The fit was not judged on parts that it had not seen, so there are no held-out predictions.",
-    )
-    .mend("Let the fit be judged by nested cross-validation.")
+    facts.push(held_out_predictions(fitted, held_out));
+    let caveats = agreement_slope::check(slope, slope - 1.96 * error, slope + 1.96 * error);
+    (facts, caveats.into_iter().collect())
 }
 
 /// The standard error of the slope of observed on predicted values, with the samples of a unit as

@@ -3,12 +3,15 @@
 //! Every interpretation that the tables left open is written down in the settings, so that it is
 //! a word that can be changed, and said in a note.
 
+mod kind;
+
 use crate::base::layout::Orientation;
 use crate::base::number::{self, Precision};
 use crate::base::problem::{Place, Problem};
 use crate::base::thread::Threads;
 use crate::base::work::{Cancelled, Work};
 use crate::eval::finding::read_problem;
+use crate::eval::start::kind::{event_column, guess_kind, rarest, summary, with_event};
 use crate::study::Study;
 use crate::study::cell::{Cell, CellId};
 use crate::study::edit::Edit;
@@ -19,7 +22,7 @@ use crate::study::settings::data::{
     ColumnRange, Data, Exclusion, Join, LeadingZeros, LetterCase, Outcome, OutcomeKind,
     OutcomeSeen, TableSource,
 };
-use crate::study::settings::fit::{Fit, Judge, Penalty, Rule, Strength};
+use crate::study::settings::fit::{ErrorMeasure, Fit, Judge, Penalty, Rule, Strength};
 use crate::study::settings::prepare::{Prepare, Step};
 use crate::study::settings::question::{Ask, Question};
 use crate::study::source::{Shelf, SourceId};
@@ -125,6 +128,8 @@ struct ReadTable {
 /// What of the tables decides on the rest of the study.
 struct Shape {
     n_units: usize,
+    /// Of how many independent samples the rarest class is, or how many had the event.
+    n_rarest: Option<usize>,
     has_gaps: bool,
     has_limits: bool,
     is_spectrum: bool,
@@ -192,6 +197,12 @@ fn data_settings(
         Some(kind) => kind.clone(),
         None => guess_kind(outcome_column, notes),
     };
+    let kind = with_event(kind, outcome_column, notes);
+    if let Some(event) = event_column(&kind)
+        && find(event).is_none()
+    {
+        return Err(no_such_column(event, &tables));
+    }
     let first = &tables[0];
     let samples = wishes
         .samples
@@ -218,7 +229,8 @@ fn data_settings(
     )
     .collect();
     let predictors = predictor_columns(&tables, &taken, notes);
-    let shape = shape(&tables, &predictors, wishes, samples.as_deref());
+    let mut shape = shape(&tables, &predictors, wishes, samples.as_deref());
+    shape.n_rarest = rarest(&kind, &wishes.outcome, wishes.unit.as_deref(), &tables);
     let ranges = ranges(&tables, &predictors);
     let mut data = Data {
         tables: sources,
@@ -240,15 +252,6 @@ fn data_settings(
     };
     exclude_without_outcome(&mut data, first, notes);
     Ok((data, shape))
-}
-
-/// The column that says whether the event happened; it is no predictor.
-fn event_column(kind: &OutcomeKind) -> Option<&str> {
-    match kind {
-        OutcomeKind::Time { event } => Some(event),
-        OutcomeKind::Count { exposure } => exposure.as_deref(),
-        OutcomeKind::Measured | OutcomeKind::YesNo { .. } | OutcomeKind::Classes => None,
-    }
 }
 
 fn no_such_column(name: &str, tables: &[ReadTable]) -> Problem {
@@ -334,23 +337,6 @@ fn key_text(column: &Column, row: usize) -> Option<String> {
         Value::Number(value) => Some(number::text(value, Precision::Full)),
         Value::Missing | Value::BelowLimit(_) | Value::AboveLimit(_) => None,
     }
-}
-
-fn guess_kind(column: &Column, notes: &mut Vec<String>) -> OutcomeKind {
-    let mut distinct = BTreeSet::new();
-    for row in 0..column.len() {
-        distinct.extend(key_text(column, row));
-    }
-    let is_number = matches!(column.values, Values::Numbers(_));
-    let (kind, words) = if distinct.len() == 2 {
-        (OutcomeKind::YesNo { event: None }, "yes or no")
-    } else if is_number {
-        (OutcomeKind::Measured, "a measured quantity")
-    } else {
-        (OutcomeKind::Classes, "one of several classes")
-    };
-    notes.push(format!("“{}” is taken as {words}.", column.name));
-    kind
 }
 
 /// The first column of labels in the first table in which every value stands once.
@@ -503,6 +489,7 @@ fn shape(
         });
     Shape {
         n_units,
+        n_rarest: None,
         has_gaps,
         has_limits,
         is_spectrum,
@@ -568,6 +555,10 @@ fn ready_study(
         &wishes.title
     });
     let outcome = wishes.outcome.clone();
+    let kind = data
+        .outcome
+        .as_ref()
+        .map_or(OutcomeKind::Measured, |outcome| outcome.kind.clone());
     let data = add(&mut study, "Tables", Settings::Data(data))?;
     let steps = steps(shape, notes);
     let prepare = Prepare {
@@ -575,7 +566,7 @@ fn ready_study(
         steps,
     };
     let prepared = add(&mut study, "Prepared samples", Settings::Prepare(prepare))?;
-    let fit = fit_settings(wishes, shape, prepared, notes);
+    let fit = fit_settings(wishes, shape, &kind, prepared, notes)?;
     let penalty = match fit.penalty {
         Penalty::Ridge => "ridge",
         Penalty::Lasso => "lasso",
@@ -616,7 +607,7 @@ fn ready_study(
             .map(|cell| cell.title.clone())
             .unwrap_or_default()
     };
-    let text = summary(&title(data), &title(fit));
+    let text = summary(&kind, &title(data), &title(fit));
     let prose = Prose::parse(&text, &study);
     let id = study.next_id();
     let cell = Cell {
@@ -678,22 +669,68 @@ fn steps(shape: &Shape, notes: &mut Vec<String>) -> Vec<Step> {
 }
 
 /// The wished fit, with as many parts as there are units to fill them.
-fn fit_settings(wishes: &Wishes, shape: &Shape, prepared: CellId, notes: &mut Vec<String>) -> Fit {
+fn fit_settings(
+    wishes: &Wishes,
+    shape: &Shape,
+    kind: &OutcomeKind,
+    prepared: CellId,
+    notes: &mut Vec<String>,
+) -> Result<Fit, Problem> {
     let mut fit = Fit {
         input: Link::to(prepared),
         ..wishes.fit.clone()
     };
-    let units = u32::try_from(shape.n_units).unwrap_or(u32::MAX);
+    fit.spread_evenly(kind);
+    let by_gcv = matches!(
+        fit.strength,
+        Strength::Chosen {
+            rule: Rule::GeneralisedCrossValidation,
+            ..
+        }
+    );
+    if by_gcv && *kind != OutcomeKind::Measured {
+        return Err(Problem::new(
+            "rule-for-measured",
+            "Generalised cross-validation is defined for measured quantities only.",
+        )
+        .mend("Choose the strength by the lowest error, one standard error or the extended BIC."));
+    }
+    let usual = fit.measure == ErrorMeasure::Usual;
+    if !usual && !ErrorMeasure::of(kind).contains(&fit.measure) {
+        return Err(Problem::new(
+            "measure-not-defined",
+            "This measure of errors is not defined for this kind of outcome.",
+        )
+        .mend("Leave it out to take the usual one."));
+    }
+    let mut units = u32::try_from(shape.n_units).unwrap_or(u32::MAX);
+    if let Some(rarest) = shape.n_rarest.and_then(|n| u32::try_from(n).ok())
+        && rarest >= 2
+    {
+        // Every part gets one of the rarest; two in a held-out part are asked for below.
+        units = units.min(rarest.saturating_mul(2));
+    }
     if let Judge::Nested(plan) = &mut fit.judge {
         // Two units in a held-out part, so that parts can be told from single units.
         let most = (units / 2).max(2);
         if plan.parts > most {
             notes.push(format!(
-                "Only {units} independent samples: {most} outer parts are drawn."
+                "Only {} independent samples{}: {most} outer parts are drawn.",
+                shape
+                    .n_rarest
+                    .map_or(shape.n_units, |rarest| rarest.min(shape.n_units)),
+                if shape.n_rarest.is_some() {
+                    " of the rarest class"
+                } else {
+                    ""
+                }
             ));
             plan.parts = most;
         }
-        let kept = units - units.div_ceil(plan.parts.max(1));
+        let kept = match shape.n_rarest.and_then(|n| u32::try_from(n).ok()) {
+            Some(rarest) => rarest - rarest.div_ceil(plan.parts.max(1)),
+            None => units - units.div_ceil(plan.parts.max(1)),
+        };
         if let Strength::Chosen { rule, inner, .. } = &mut fit.strength {
             let needs = matches!(rule, Rule::LowestError | Rule::OneStandardError);
             if needs && kept < 2 {
@@ -704,22 +741,10 @@ fn fit_settings(wishes: &Wishes, shape: &Shape, prepared: CellId, notes: &mut Ve
                 );
                 inner.parts = 2;
             } else if needs && inner.parts > kept {
-                notes.push(format!("Only {kept} independent samples in a training part: {kept} inner parts are drawn."));
+                notes.push(format!("Only {kept} independent samples{} in a training part: {kept} inner parts are drawn.", if shape.n_rarest.is_some() { " of the rarest class" } else { "" }));
                 inner.parts = kept;
             }
         }
     }
-    fit
-}
-
-/// The summary on top of the page. Every number is a fact.
-fn summary(data: &str, fit: &str) -> String {
-    format!(
-        "We predicted {{{data}: outcome}} from {{{data}: predictors}} predictors of {{{data}: units}} \
-         independent samples by {{{fit}: penalty}} regression. On samples that the fits had not \
-         seen, the root mean squared error was {{{fit}: nested rmse}} and R² was {{{fit}: nested r²}}; \
-         on its own samples the model seemed to reach {{{fit}: apparent r²}}. The mean alone has an \
-         error of {{{fit}: mean-only rmse}}. The penalty strength {{{fit}: chosen strength}} left \
-         {{{fit}: chosen predictors}} predictors in the model."
-    )
+    Ok(fit)
 }

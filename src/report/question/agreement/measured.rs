@@ -1,4 +1,4 @@
-//! Do predictions match observations?
+//! Measured quantities: predicted against observed values.
 
 use crate::eval::fact::FactTable;
 use crate::figure::shape::agreement::Agreement;

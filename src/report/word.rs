@@ -55,26 +55,18 @@ pub fn number_editor(slot: Slot) -> Editor {
     Editor::Number { least, most, whole }
 }
 
-/// The editor for a choice in this slot, with a label for each stable name.
-///
-/// # Panics
-/// When a name has no label: both are written in this program.
+/// The editor for a choice in this slot. A stable name without a label is not offered: it stands in
+/// the slot's list for another kind of outcome.
 #[must_use]
 pub fn choice_editor(slot: Slot, labels: &[(&str, &str)]) -> Editor {
-    let choice = |name: &&'static str| Choice {
-        label: label(labels, name).to_owned(),
-        value: Value::choice(name),
+    let choice = |name: &&'static str| {
+        let (_, label) = labels.iter().find(|(known, _)| known == name)?;
+        Some(Choice {
+            label: (*label).to_owned(),
+            value: Value::choice(name),
+        })
     };
-    Editor::Choice(slot.choices().iter().map(choice).collect())
-}
-
-/// The label of a stable name.
-fn label<'l>(labels: &[(&str, &'l str)], name: &str) -> &'l str {
-    labels
-        .iter()
-        .find(|(known, _)| *known == name)
-        .map(|(_, label)| *label)
-        .expect("every choice has a label")
+    Editor::Choice(slot.choices().iter().filter_map(choice).collect())
 }
 
 impl Sentence {

@@ -7,6 +7,7 @@ use crate::numeric::path::{Params, fit_path};
 use crate::numeric::predictors::Predictors;
 use crate::numeric::response::{Response, Ties};
 use crate::numeric::task::{Scaling, Task};
+use std::collections::BTreeMap;
 use std::sync::Arc;
 
 /// The slope of a Poisson regression of counts on the logarithms of their held-out predictions.
@@ -37,7 +38,7 @@ pub fn time_calibration_slope(
         strata: Some(part.to_vec()),
         ties: Ties::Efron,
     };
-    let mut first: std::collections::BTreeMap<usize, f64> = std::collections::BTreeMap::new();
+    let mut first: BTreeMap<usize, f64> = BTreeMap::new();
     let varies = linear
         .iter()
         .zip(part)
@@ -45,7 +46,18 @@ pub fn time_calibration_slope(
     if !varies {
         return None;
     }
-    slope(&response, linear)
+    // Where a part's zero lies changes nothing; without it the numbers stay small.
+    let mut sums: BTreeMap<usize, (f64, f64)> = BTreeMap::new();
+    for (eta, part) in linear.iter().zip(part) {
+        let sum = sums.entry(*part).or_default();
+        *sum = (sum.0 + eta, sum.1 + 1.0);
+    }
+    let centred: Vec<f64> = linear
+        .iter()
+        .zip(part)
+        .map(|(eta, part)| eta - sums[part].0 / sums[part].1)
+        .collect();
+    slope(&response, &centred)
 }
 
 fn slope(response: &Response, linear: &[f64]) -> Option<f64> {

@@ -27,17 +27,25 @@ pub fn objective(fit: &Fit, kind: Option<&OutcomeKind>, source: &Source<'_>) -> 
                     .text(" the outcome of a sample"),
             )
         }
-        Some(OutcomeKind::YesNo { .. }) => letters(
-            start(
+        Some(OutcomeKind::YesNo { event }) => {
+            let odds = start(
                 format!("1/n · Σᵢ [ log(1 + exp ηᵢ) − yᵢ·ηᵢ ] + {}", penalty(fit)),
                 format!("ηᵢ = b₀{covariates} + xᵢ·b"),
+            );
+            let odds = match event {
+                Some(event) => odds
+                    .text(" the log odds of “")
+                    .name(event)
+                    .text("”, where "),
+                None => odds.text(" the log odds of the event, where "),
+            };
+            letters(
+                odds.formula("n")
+                    .text(" is the number of samples, ")
+                    .formula("yᵢ")
+                    .text(" is one with the event and zero without"),
             )
-            .and(source.say(" the log odds of “{event}”, ", &[]))
-            .formula("n")
-            .text(" is the number of samples, ")
-            .formula("yᵢ")
-            .text(" is one with the event and zero without"),
-        ),
+        }
         Some(OutcomeKind::Classes) => classes(fit, has_covariates),
         Some(OutcomeKind::Count { exposure }) => {
             let offset = if exposure.is_some() {
@@ -49,7 +57,7 @@ pub fn objective(fit: &Fit, kind: Option<&OutcomeKind>, source: &Source<'_>) -> 
                 format!("1/n · Σᵢ [ exp ηᵢ − yᵢ·ηᵢ ] + {}", penalty(fit)),
                 format!("ηᵢ = {offset}b₀{covariates} + xᵢ·b"),
             )
-            .text(" the logarithm of the expected count, ")
+            .text(" the logarithm of the expected count, where ")
             .formula("n")
             .text(" is the number of samples, ")
             .formula("yᵢ")

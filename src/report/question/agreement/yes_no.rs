@@ -132,9 +132,7 @@ fn at_prevalence(source: &Source<'_>) -> Option<(f64, f64, String, Option<Tip>)>
     let table = source.rows("receiver operating characteristic")?;
     let prevalence = source.value("prevalence")?;
     let thresholds = table.numbers("threshold");
-    let row = (0..thresholds.len())
-        .filter(|row| thresholds[*row] >= prevalence)
-        .next_back()?;
+    let row = (0..thresholds.len()).rfind(|row| thresholds[*row] >= prevalence)?;
     let (x, y) = (
         table.numbers("false alarms")[row],
         table.numbers("hits")[row],

@@ -25,7 +25,8 @@ use widefold::study::settings::data::{
     OutcomeSeen, Sealed, Subject, TableSource,
 };
 use widefold::study::settings::fit::{
-    Fit, Judge, Penalty, PenaltyRange, Plan, Rule, Scaling, Scheme, Strength,
+    ErrorMeasure, Fit, Grouping, Judge, Penalty, PenaltyRange, Plan, Rule, Scaling, Scheme,
+    Strength, Ties,
 };
 use widefold::study::settings::prepare::{Prepare, Step};
 use widefold::study::settings::question::{Ask, Question, Seal};
@@ -471,6 +472,16 @@ fn any_fit(study: &Study, dice: &mut Dice) -> Fit {
             },
         },
         scaling: dice.one_of(&[Scaling::UnitVariance, Scaling::AsPrepared]),
+        grouping: dice.one_of(&[Grouping::Apart, Grouping::Together]),
+        ties: dice.one_of(&[Ties::Efron, Ties::Breslow]),
+        measure: dice.one_of(&[
+            ErrorMeasure::Usual,
+            ErrorMeasure::SquaredError,
+            ErrorMeasure::Deviance,
+            ErrorMeasure::Misclassification,
+            ErrorMeasure::PartialLikelihood,
+            ErrorMeasure::Concordance,
+        ]),
         strength: match dice.below(3) {
             0 => Strength::ByHand(dice.size()),
             _ => Strength::Chosen {

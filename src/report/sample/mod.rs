@@ -1,5 +1,6 @@
 //! A study with facts written by hand, for tests: the cellar scans, fitted and asked.
 
+mod kind;
 mod question;
 
 use crate::base::number::Precision;
@@ -431,6 +432,9 @@ pub fn fit_facts(data: &Data, fit: &Fit) -> Facts {
     match fit.judge {
         Judge::Declined => writer = writer.texts(&[("judged", "not judged")]),
         Judge::Nested(_) => writer = nested(writer),
+    }
+    if let Some(outcome) = &data.outcome {
+        writer = kind::facts(writer, &outcome.kind, fit);
     }
     writer.0
 }

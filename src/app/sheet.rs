@@ -45,6 +45,8 @@ pub enum Part {
     Grid(FactGrid),
     /// A figure.
     Figure(Figure),
+    /// What can be done with one press.
+    Offers(Vec<block::Offer>),
 }
 
 /// A figure as it is shown.
@@ -98,6 +100,7 @@ fn part(block: &Block, width: f32) -> Part {
         }
         Block::Code(letters) => Part::Code(letters.clone()),
         Block::Rule => Part::Rule,
+        Block::Offers(offers) => Part::Offers(offers.clone()),
         Block::Tabular { head, align, rows } => {
             let row = |row: &Vec<Paragraph>| row.iter().map(pieces).collect();
             let all = std::iter::once(head).chain(rows).map(row).collect();

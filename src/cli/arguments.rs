@@ -51,6 +51,9 @@ pub struct Start {
     /// The column that names the independent thing a sample belongs to
     #[arg(long, value_name = "NAME")]
     pub unit: Option<String>,
+    /// Make the units from what the sample names begin with (“B07” of “B07-n1”)
+    #[arg(long)]
+    pub unit_from_names: bool,
     /// The column that names the batch
     #[arg(long, value_name = "NAME")]
     pub batch: Option<String>,
@@ -63,6 +66,15 @@ pub struct Start {
     /// A column to leave out; may be given more than once
     #[arg(long, value_name = "NAME")]
     pub ignore: Vec<String>,
+    /// Predictors: a name, a range ("900 nm ... 1700 nm"), a pattern ("MAR-2*") or a stretch of a
+    /// numeric axis ("900 ... 1250 nm"); may be given more than once; all that are left otherwise
+    #[arg(long, value_name = "COLUMNS")]
+    pub predictors: Vec<String>,
+    /// Any other setting of the Data cell, as the import report names it: "SETTING = VALUE", or
+    /// "SETTING += VALUE" to add to a list; "FILE: SETTING = VALUE" for a table beyond the first;
+    /// may be given more than once
+    #[arg(long, value_name = "LINE")]
+    pub set: Vec<String>,
     /// What sort of thing is predicted; guessed when left out
     #[arg(long, value_enum)]
     pub kind: Option<KindName>,
@@ -184,6 +196,17 @@ pub struct Update {
     /// Where to save it; in its own place when left out
     #[arg(short, long, value_name = "STUDY")]
     pub output: Option<PathBuf>,
+    /// A setting of the Data cell, as the import report names it: "SETTING = VALUE", or
+    /// "SETTING += VALUE" to add to a list; may be given more than once
+    #[arg(long, value_name = "LINE")]
+    pub set: Vec<String>,
+    /// A newer file for the table of this name: says what differs, and leaves the study as it is
+    /// unless --accept is given; may be given more than once
+    #[arg(long, value_name = "FILE")]
+    pub reread: Vec<PathBuf>,
+    /// Take the tables that have changed
+    #[arg(long)]
+    pub accept: bool,
 }
 
 /// Prints every fact and caveat.

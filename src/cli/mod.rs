@@ -6,6 +6,7 @@ mod export;
 mod facts;
 mod json;
 mod progress;
+mod reread;
 mod start;
 mod update;
 

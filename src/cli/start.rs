@@ -10,7 +10,7 @@ use crate::eval::start::{Wishes, start};
 use crate::store::{self, Record};
 use crate::study::ledger::Ledger;
 use crate::study::settings::Settings;
-use crate::study::settings::data::OutcomeKind;
+use crate::study::settings::data::{OutcomeKind, UnitMaking};
 use crate::study::settings::fit::{Fit, Penalty};
 use crate::study::settings::slot::fit::FitSlot;
 use crate::study::settings::slot::{Slot, Value};
@@ -93,10 +93,21 @@ fn wishes(arguments: &Start) -> Result<Wishes, Problem> {
         outcome: arguments.outcome.clone(),
         kind,
         samples: arguments.samples.clone(),
-        unit: arguments.unit.clone(),
+        unit: match (&arguments.unit, arguments.unit_from_names) {
+            (None, true) => Some("unit".to_owned()),
+            (unit, _) => unit.clone(),
+        },
         batch: arguments.batch.clone(),
         covariates: arguments.covariate.clone(),
         ignored: arguments.ignore.clone(),
+        predictors: arguments.predictors.clone(),
+        unit_making: if arguments.unit_from_names {
+            UnitMaking::FromNames
+        } else {
+            UnitMaking::InColumn
+        },
+        date: Some(super::today()),
+        said: arguments.set.clone(),
         orientation: arguments.sideways.then_some(Orientation::SamplesInColumns),
         sheet: arguments.sheet.clone(),
         fit: fit(arguments)?,

@@ -5,6 +5,7 @@ use crate::base::thread::Threads;
 use crate::base::work::CancelToken;
 use crate::cli::arguments::Update;
 use crate::cli::progress::Progress;
+use crate::cli::reread::{self, Taking};
 use crate::cli::{NOT_DONE, today};
 use crate::eval::desk::{MEMO_BUDGET, Snapshot, evaluate};
 use crate::eval::memo::Memo;
@@ -22,6 +23,24 @@ use std::sync::Mutex;
 pub fn run(arguments: &Update) -> Result<ExitCode, Problem> {
     let mut opened = store::open(&arguments.study)?;
     opened.problems.iter().for_each(super::say);
+    let taking = if arguments.accept {
+        Taking::Accepted
+    } else {
+        Taking::Asked
+    };
+    // A table beside a readable study that is not the one it was saved with is a newer file too.
+    let has_changed = opened
+        .problems
+        .iter()
+        .any(|problem| problem.code.0 == "table-changed");
+    if has_changed && taking == Taking::Asked {
+        eprintln!("Nothing was taken: the study stays as it is until --accept is given.");
+        return Ok(ExitCode::from(NOT_DONE));
+    }
+    if reread::reread(&mut opened, &arguments.reread, taking)? {
+        return Ok(ExitCode::from(NOT_DONE));
+    }
+    reread::set(&mut opened, &arguments.set)?;
     let standings = bring_up_to_date(&mut opened);
     let path = arguments.output.as_ref().unwrap_or(&arguments.study);
     let record = opened.record.updated(&opened.study, &standings);

@@ -9,5 +9,6 @@ pub mod memo;
 pub mod outcome;
 pub mod plan;
 pub mod question;
+pub mod reread;
 pub mod standing;
 pub mod start;

@@ -207,6 +207,8 @@ impl Page<'_> {
                     self.incomplete.extend(incomplete);
                 }
                 Block::Code(letters) => self.line(&format!("```\n{}\n```", letters.trim_end())),
+                // The grid of findings says the same in words.
+                Block::Offers(_) => {}
                 Block::Rule => self.line("---"),
                 Block::Tabular { head, align, rows } => self.tabular(head, align, rows),
             }

@@ -46,6 +46,17 @@ pub enum Block {
     Grid(Grid),
     /// A figure.
     Figure(NamedFigure),
+    /// What can be done with one press; nothing for readers.
+    Offers(Vec<Offer>),
+}
+
+/// Something that can be done with one press: a setting of the cell, as it is said.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct Offer {
+    /// What the button says.
+    pub label: String,
+    /// The setting, such as `words for missing values += -9`.
+    pub setting: String,
 }
 
 /// How a column of a table in prose is aligned.

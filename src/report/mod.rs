@@ -168,7 +168,8 @@ pub fn figures(context: &Context<'_>, id: CellId) -> Vec<NamedFigure> {
                 | Block::Code(_)
                 | Block::Rule
                 | Block::Tabular { .. }
-                | Block::Grid(_) => None,
+                | Block::Grid(_)
+                | Block::Offers(_) => None,
             })
             .collect(),
     }

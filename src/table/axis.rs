@@ -42,7 +42,8 @@ impl Axis {
 }
 
 /// Splits a name around the number it holds: the last one, or the first if a unit follows.
-fn parts(name: &str) -> Option<(&str, f64, &str)> {
+#[must_use]
+pub fn parts(name: &str) -> Option<(&str, f64, &str)> {
     let bytes = name.as_bytes();
     let is_part = |byte: u8| byte.is_ascii_digit() || byte == b'.';
     // A unit such as cm-1 ends in a digit that does not belong to the number.
@@ -158,20 +159,6 @@ impl std::fmt::Display for Range {
     }
 }
 
-/// Why a range cannot be followed.
-#[derive(Clone, Debug, PartialEq, Eq)]
-pub enum RangeError {
-    /// The table has no such column.
-    NoSuchColumn(String),
-    /// The last column stands before the first.
-    Backwards {
-        /// The first column as given.
-        first: String,
-        /// The last column as given.
-        last: String,
-    },
-}
-
 /// The ranges of neighbouring columns in which the given columns stand. `columns` are positions
 /// in the table, in any order.
 #[must_use]
@@ -189,76 +176,9 @@ pub fn ranges(table: &Table, columns: &[usize]) -> Vec<Range> {
         .collect()
 }
 
-/// The positions of the columns that a text names: single names and ranges, separated by commas
-/// or semicolons, such as `salt, 900 nm … 1700 nm (700)`. A count in parentheses may be left
-/// out; three dots may stand for “…”. A name that itself holds such signs is found as it is.
-///
-/// # Errors
-/// [`RangeError`] when a column does not exist or a range runs backwards.
-pub fn positions(table: &Table, text: &str) -> Result<Vec<usize>, RangeError> {
-    let mut found = Vec::new();
-    let mut rest = text.trim();
-    while !rest.is_empty() {
-        // The longest piece that can be followed, so that names may hold commas.
-        let ends = rest
-            .char_indices()
-            .filter(|(_, letter)| matches!(letter, ',' | ';'))
-            .map(|(at, _)| at)
-            .chain([rest.len()])
-            .collect::<Vec<_>>();
-        let piece = ends
-            .iter()
-            .rev()
-            .find_map(|&end| piece(table, rest[..end].trim()).map(|columns| (end, columns)));
-        let Some((end, columns)) = piece else {
-            return Err(why_not(table, rest[..ends[0]].trim()));
-        };
-        found.extend(columns);
-        rest = rest[end..].trim_start_matches([',', ';', ' ']);
-    }
-    let mut seen = vec![false; table.columns().len()];
-    found.retain(|&at| !std::mem::replace(&mut seen[at], true));
-    Ok(found)
-}
-
-fn ends_of(piece: &str) -> Option<(&str, &str)> {
-    let piece = piece
-        .strip_suffix(')')
-        .and_then(|open| open.rsplit_once(" ("))
-        .filter(|(_, count)| count.bytes().all(|b| b.is_ascii_digit() || b == b','))
-        .map_or(piece, |(range, _)| range);
-    let (first, last) = piece.split_once('…').or_else(|| piece.split_once("..."))?;
-    Some((first.trim(), last.trim()))
-}
-
-fn piece(table: &Table, text: &str) -> Option<Vec<usize>> {
-    if let Some(at) = table.position(text) {
-        return Some(vec![at]);
-    }
-    let (first, last) = ends_of(text)?;
-    let (first, last) = (table.position(first)?, table.position(last)?);
-    (first <= last).then(|| (first..=last).collect())
-}
-
-fn why_not(table: &Table, text: &str) -> RangeError {
-    let Some((first, last)) = ends_of(text) else {
-        return RangeError::NoSuchColumn(text.to_owned());
-    };
-    for name in [first, last] {
-        if table.position(name).is_none() {
-            return RangeError::NoSuchColumn(name.to_owned());
-        }
-    }
-    RangeError::Backwards {
-        first: first.to_owned(),
-        last: last.to_owned(),
-    }
-}
-
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::table::column::Column;
 
     #[test]
     fn names_around_a_number_are_an_axis_with_its_unit() {
@@ -306,48 +226,5 @@ mod tests {
         );
         assert!(!of_names(&["x1", "x2", "x3"]).unwrap().is_physical());
         assert!(!of_names(&["1", "2", "3", "4"]).unwrap().is_physical());
-    }
-
-    fn table() -> Table {
-        let names = ["id", "salt, g/100 g", "900 nm", "902 nm", "904 nm", "note"];
-        Table::new(
-            names
-                .iter()
-                .map(|name| Column::numbers(name, vec![1.0]))
-                .collect(),
-        )
-    }
-
-    #[test]
-    fn a_described_choice_of_columns_is_read_back_as_the_same_choice() {
-        let table = table();
-        let columns = [1, 2, 3, 4];
-        let ranges = ranges(&table, &columns);
-        assert_eq!(ranges[0].to_string(), "salt, g/100 g … 904 nm (4)");
-        assert_eq!(
-            positions(&table, &ranges[0].to_string()),
-            Ok(columns.to_vec())
-        );
-        assert_eq!(
-            positions(&table, "note, salt, g/100 g; 900 nm ... 904 nm"),
-            Ok(vec![5, 1, 2, 3, 4])
-        );
-        assert_eq!(positions(&table, ""), Ok(vec![]));
-    }
-
-    #[test]
-    fn a_range_that_cannot_be_followed_says_why() {
-        let table = table();
-        assert_eq!(
-            positions(&table, "900 nm … 990 nm"),
-            Err(RangeError::NoSuchColumn("990 nm".to_owned()))
-        );
-        assert_eq!(
-            positions(&table, "904 nm … 900 nm (3)"),
-            Err(RangeError::Backwards {
-                first: "904 nm".to_owned(),
-                last: "900 nm".to_owned()
-            })
-        );
     }
 }

@@ -1,6 +1,8 @@
 //! Digests of bytes, columns and tables: what tells a changed source from an unchanged one, to
 //! the column.
 
+use crate::base::thread::{Threads, in_order};
+use crate::base::work::{Cancelled, Work};
 use crate::table::Table;
 use crate::table::column::{Column, Value, Values};
 use sha2::{Digest as _, Sha256};
@@ -106,6 +108,32 @@ pub fn of_columns(table: &Table) -> Vec<(String, Digest)> {
         .iter()
         .map(|column| (column.name.clone(), of_column(column)))
         .collect()
+}
+
+/// The digests of all columns in order, made side by side.
+///
+/// # Errors
+/// [`Cancelled`] when the work was called off.
+pub fn of_columns_in(
+    table: &Table,
+    threads: Threads,
+    work: &Work<'_>,
+) -> Result<Vec<(String, Digest)>, Cancelled> {
+    /// Columns of a piece of work: some milliseconds.
+    const PIECE: usize = 64;
+    let columns = table.columns();
+    let quiet = work.part(1.0..1.0);
+    let pieces = in_order(threads, columns.len().div_ceil(PIECE), &quiet, |piece| {
+        let from = piece * PIECE;
+        let piece = &columns[from..columns.len().min(from + PIECE)];
+        let mut digests = Vec::with_capacity(piece.len());
+        for column in piece {
+            work.check()?;
+            digests.push((column.name.clone(), of_column(column)));
+        }
+        Ok(digests)
+    })?;
+    Ok(pieces.into_iter().flatten().collect())
 }
 
 /// The digest of a table: the number of samples, then the digests of its columns in order.

@@ -3,8 +3,14 @@
 use crate::base::layout::Encoding;
 use crate::base::problem::Place;
 
-/// How many places and examples a finding keeps.
+/// How many examples a finding keeps.
 pub const KEPT: usize = 20;
+
+/// How many places a finding keeps; where there are more, they are counted.
+pub const PLACES: usize = 200;
+
+/// How many columns a finding keeps.
+pub const COLUMNS: usize = 1_000;
 
 /// What was done about a finding.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
@@ -52,6 +58,13 @@ pub enum FindingKind {
     },
     /// The sheet that was read is hidden in the workbook.
     HiddenSheet,
+    /// Rows or columns of the sheet are hidden in the workbook; they were read like the others.
+    HiddenLines {
+        /// How many rows.
+        rows: usize,
+        /// How many columns.
+        columns: usize,
+    },
     /// Cells of the sheet are merged; the value stands in the first.
     MergedCells,
 
@@ -227,6 +240,7 @@ impl FindingKind {
             Self::BreaksInQuotes => "breaks-in-quotes",
             Self::OtherSheets { .. } => "other-sheets",
             Self::HiddenSheet => "hidden-sheet",
+            Self::HiddenLines { .. } => "hidden-lines",
             Self::MergedCells => "merged-cells",
             Self::LinesAbove => "lines-above",
             Self::NoHeader => "no-header",
@@ -333,6 +347,8 @@ pub enum Normalized {
 pub struct Finding {
     /// What it is.
     pub kind: FindingKind,
+    /// The file that it is about; `None` where it is about the samples as joined.
+    pub file: Option<String>,
     /// How many values, rows, columns or names it concerns.
     pub count: usize,
     /// The first places.
@@ -353,6 +369,7 @@ impl Finding {
     pub fn new(kind: FindingKind, treatment: Treatment) -> Self {
         Self {
             kind,
+            file: None,
             count: 0,
             places: Vec::new(),
             examples: Vec::new(),
@@ -372,7 +389,7 @@ impl Finding {
     /// Adds one more of its kind; only the first places and unlike examples are kept.
     pub fn add(&mut self, place: impl FnOnce() -> Place, example: &str) {
         self.count += 1;
-        if self.places.len() < KEPT {
+        if self.places.len() < PLACES {
             self.places.push(place());
         }
         self.add_example(example);
@@ -391,7 +408,7 @@ impl Finding {
     /// Adds a column that is concerned.
     pub fn add_column(&mut self, name: &str) {
         self.n_columns += 1;
-        if self.columns.len() < KEPT {
+        if self.columns.len() < COLUMNS {
             self.columns.push(name.to_owned());
         }
     }

@@ -7,6 +7,7 @@ pub mod digest;
 pub mod find;
 pub mod finding;
 pub mod guess;
+pub mod pick;
 pub mod read;
 pub mod samples;
 

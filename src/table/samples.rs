@@ -99,6 +99,8 @@ pub struct JoinReport {
     pub repeated_right: Vec<String>,
     /// How many rows of the left table lack values for that reason.
     pub undecided: usize,
+    /// The most rows of the left table that one row of the right one served.
+    pub most_shared: usize,
     /// Columns of the right table whose name was taken: the old and the new name.
     pub renamed: Vec<(String, String)>,
     /// How many rows would match under [`JoinRule::loosest`], if that is more.
@@ -196,6 +198,11 @@ pub fn join(
         rows.push(row.flatten());
         let _ = used.insert(folded);
     }
+    let mut served = vec![0_usize; right.n_rows()];
+    for &row in rows.iter().flatten() {
+        served[row] += 1;
+    }
+    report.most_shared = served.into_iter().max().unwrap_or(0);
     report.only_right = index
         .iter()
         .filter(|(folded, _)| !used.contains(*folded))

@@ -3,7 +3,7 @@
 use std::path::{Path, PathBuf};
 use std::sync::Arc;
 use std::sync::atomic::{AtomicU32, Ordering};
-use widefold::base::layout::{DecimalMark, Delimiter, Encoding, Orientation, UnitsRow};
+use widefold::base::layout::{DecimalMark, Delimiter, Encoding, Grouping, Orientation, UnitsRow};
 use widefold::base::number::Precision;
 use widefold::base::problem::{Place, Problem};
 use widefold::base::real::Real;
@@ -22,7 +22,7 @@ use widefold::study::settings::Settings;
 use widefold::study::settings::compare::Compare;
 use widefold::study::settings::data::{
     ColumnRange, Correction, Data, Exclusion, Join, LeadingZeros, LetterCase, Outcome, OutcomeKind,
-    OutcomeSeen, Sealed, Subject, TableSource,
+    OutcomeSeen, Sealed, Subject, TableSource, UnitMaking,
 };
 use widefold::study::settings::fit::{
     ErrorMeasure, Fit, Grouping, Judge, Penalty, PenaltyRange, Plan, Rule, Scaling, Scheme,
@@ -334,7 +334,9 @@ fn any_table(tables: &[TableSource], dice: &mut Dice) -> TableSource {
             ])
         }),
         decimal: dice.maybe(|dice| dice.one_of(&[DecimalMark::Point, DecimalMark::Comma])),
+        taken_on: dice.maybe(Dice::text),
         header_row: dice.maybe(|dice| dice.below(9)),
+        grouping: dice.maybe(|dice| dice.one_of(&[Grouping::Absent, Grouping::Read])),
         units_row: dice.maybe(|dice| dice.one_of(&[UnitsRow::Absent, UnitsRow::BelowHeader])),
         orientation: dice.maybe(|dice| {
             dice.one_of(&[Orientation::SamplesInRows, Orientation::SamplesInColumns])
@@ -380,11 +382,14 @@ fn any_data(tables: &[TableSource], dice: &mut Dice) -> Data {
         }),
         sample_name: dice.maybe(Dice::text),
         unit: dice.maybe(Dice::text),
+        unit_making: dice.one_of(&[UnitMaking::InColumn, UnitMaking::FromNames]),
         batch: dice.maybe(Dice::text),
         order: dice.maybe(Dice::text),
         weight: dice.maybe(Dice::text),
         covariates: dice.some(2, Dice::text),
         ignored: dice.some(2, Dice::text),
+        as_text: dice.some(2, Dice::text),
+        as_numbers: dice.some(2, Dice::text),
         corrections: Arc::new(dice.some(2, |dice| Correction {
             sample: dice.text(),
             column: dice.text(),

@@ -9,6 +9,7 @@ use crate::app::widget::press;
 use crate::base::number::{self, Precision};
 use crate::study::settings::data::ColumnRange;
 use crate::study::settings::slot::Value;
+use crate::table::pick;
 use iced::widget::{Column, column as below, row, text_input};
 use iced::{Alignment, Length};
 
@@ -95,6 +96,11 @@ impl Columns {
                 Some(from) => self.push(from, at),
                 None => self.from = Some(at),
             },
+            Message::Add if self.picked().is_some_and(|picked| picked.len() > 1) => {
+                for (from, to) in runs(&self.picked().unwrap_or_default()) {
+                    self.push(from, to);
+                }
+            }
             Message::Add => {
                 // “900 nm … 1700 nm”, or one name.
                 let mut ends = self.search.split('…').map(|end| self.position(end));
@@ -117,6 +123,12 @@ impl Columns {
             Message::Done => return Action::Commit(Value::Columns(self.ranges.clone())),
         }
         Action::None
+    }
+
+    /// The columns that what is typed chooses: ranges, patterns, stretches of an axis.
+    fn picked(&self) -> Option<Vec<usize>> {
+        let names: Vec<&str> = self.names.iter().map(String::as_str).collect();
+        pick::columns(&names, &|_| true, &self.search).ok()
     }
 
     fn width(&self, range: &ColumnRange) -> Option<usize> {
@@ -155,14 +167,17 @@ impl Columns {
             }
             None => "Choose the two ends of a range to add it.".to_owned(),
         };
-        let field = text_input("part of a name, or first … last", &self.search)
-            .id(FIELD)
-            .font(text::SANS)
-            .size(text::BODY)
-            .width(Length::Fill)
-            .style(input::line)
-            .on_input(Message::Typed)
-            .on_submit(Message::Add);
+        let field = text_input(
+            "part of a name, first … last, or a pattern such as MAR-2*",
+            &self.search,
+        )
+        .id(FIELD)
+        .font(text::SANS)
+        .size(text::BODY)
+        .width(Length::Fill)
+        .style(input::line)
+        .on_input(Message::Typed)
+        .on_submit(Message::Add);
         below![
             Column::with_children(ranges).spacing(space::TIGHT),
             text::quiet(hint),
@@ -181,6 +196,16 @@ impl Columns {
         .spacing(space::SMALL)
         .into()
     }
+}
+
+/// Runs of neighbours: their first and last.
+fn runs(columns: &[usize]) -> Vec<(usize, usize)> {
+    let mut sorted = columns.to_vec();
+    sorted.sort_unstable();
+    sorted
+        .chunk_by(|a, b| a + 1 == *b)
+        .map(|run| (run[0], run[run.len() - 1]))
+        .collect()
 }
 
 #[cfg(test)]
@@ -204,6 +229,21 @@ mod tests {
                 first: "910 nm".to_owned(),
                 last: "950 nm".to_owned()
             }]
+        );
+    }
+
+    #[test]
+    fn a_pattern_or_a_stretch_of_the_axis_can_be_typed() {
+        let mut columns = wavelengths();
+        let _ = columns.update(Message::Typed("9?5 nm".to_owned()));
+        let _ = columns.update(Message::Add);
+        assert_eq!(columns.ranges.len(), 10);
+        let _ = columns.update(Message::Typed("910.5 … 912.5 nm".to_owned()));
+        let _ = columns.update(Message::Add);
+        let last = columns.ranges.last().unwrap();
+        assert_eq!(
+            (last.first.as_str(), last.last.as_str()),
+            ("911 nm", "912 nm")
         );
     }
 

@@ -6,9 +6,14 @@ use crate::app::editor::{Action, FIELD};
 use crate::app::run;
 use crate::app::theme::{space, text};
 use crate::app::widget::Element;
+use crate::app::widget::press;
 use crate::base::problem::Problem;
-use iced::Task;
-use iced::widget::column;
+use crate::base::thread::Threads;
+use crate::base::work::Work;
+use crate::eval::reread::{Changes, changes};
+use crate::study::settings::data::Data;
+use iced::widget::{Column, column, row};
+use iced::{Alignment, Task};
 use std::path::PathBuf;
 use std::sync::Arc;
 
@@ -17,8 +22,34 @@ use std::sync::Arc;
 pub enum Message {
     /// About the place where it lies.
     Place(place::Message),
-    /// It has been read: from where, and what.
-    Read(PathBuf, Result<Arc<[u8]>, Problem>),
+    /// It has been read: from where, what, and what differs from the earlier one.
+    Read(PathBuf, Box<Result<Found, Problem>>),
+    /// A file that differs is taken.
+    Accept,
+    /// The earlier file stays.
+    Keep,
+}
+
+/// A file that has been read: its bytes, and what differs from the earlier one.
+type Found = (Arc<[u8]>, Option<Changes>);
+
+/// The table that a newer file would replace.
+#[derive(Clone, Debug)]
+pub struct Earlier {
+    /// The settings of its Data cell.
+    pub data: Data,
+    /// Its position among the tables.
+    pub at: usize,
+    /// Its bytes.
+    pub bytes: Arc<[u8]>,
+}
+
+/// A newer file that has been read and not yet been taken.
+#[derive(Clone, Debug)]
+struct Newer {
+    path: PathBuf,
+    bytes: Arc<[u8]>,
+    sentences: Vec<String>,
 }
 
 /// A file that is being chosen.
@@ -26,6 +57,8 @@ pub enum Message {
 pub struct File {
     place: Place,
     is_reading: bool,
+    earlier: Option<Arc<Earlier>>,
+    newer: Option<Box<Newer>>,
 }
 
 impl File {
@@ -35,8 +68,15 @@ impl File {
         let file = Self {
             place,
             is_reading: false,
+            earlier: None,
+            newer: None,
         };
         (file, task.map(Message::Place))
+    }
+
+    /// What differs from this table is shown before a file is taken for it.
+    pub fn replaces(&mut self, earlier: Earlier) {
+        self.earlier = Some(Arc::new(earlier));
     }
 
     /// Takes a message in.
@@ -49,10 +89,33 @@ impl File {
                 }
                 place::Action::Take(path) => Action::Run(self.read(path).map(super::Message::File)),
             },
-            Message::Read(path, Ok(bytes)) => Action::Take { path, bytes },
-            Message::Read(_, Err(problem)) => {
+            Message::Read(path, read) => {
                 self.is_reading = false;
-                self.place.refuse(problem);
+                match *read {
+                    Ok((bytes, Some(changes))) if !changes.is_none() => {
+                        self.newer = Some(Box::new(Newer {
+                            path,
+                            bytes,
+                            sentences: changes.sentences(),
+                        }));
+                        Action::None
+                    }
+                    Ok((bytes, _)) => Action::Take { path, bytes },
+                    Err(problem) => {
+                        self.place.refuse(problem);
+                        Action::None
+                    }
+                }
+            }
+            Message::Accept => match self.newer.take() {
+                Some(newer) => Action::Take {
+                    path: newer.path,
+                    bytes: newer.bytes,
+                },
+                None => Action::None,
+            },
+            Message::Keep => {
+                self.newer = None;
                 Action::None
             }
         }
@@ -61,15 +124,38 @@ impl File {
     /// Reads a file off the window's thread.
     pub fn read(&mut self, path: PathBuf) -> Task<Message> {
         self.is_reading = true;
+        let earlier = self.earlier.clone();
         run::off_thread(move || {
-            let bytes = crate::store::read_file(&path).map(Into::into);
-            Message::Read(path, bytes)
+            let read = crate::store::read_file(&path).map(|bytes| {
+                let bytes: Arc<[u8]> = bytes.into();
+                let found = earlier.and_then(|earlier| differs(&earlier, &bytes));
+                (bytes, found)
+            });
+            Message::Read(path, Box::new(read))
         })
     }
 
     /// The path, and what lies in the folder.
     #[must_use]
     pub fn view(&self) -> Element<'_, Message> {
+        if let Some(newer) = &self.newer {
+            let sentences = newer
+                .sentences
+                .iter()
+                .map(|sentence| text::body(sentence.as_str()).into());
+            return column![
+                Column::with_children(sentences).spacing(space::TIGHT),
+                text::quiet("Nothing has been taken yet; the study keeps the earlier file."),
+                row![
+                    press::main("Take the newer file", Message::Accept),
+                    press::words("Keep the earlier file", Message::Keep),
+                ]
+                .spacing(space::SMALL)
+                .align_y(Alignment::Center),
+            ]
+            .spacing(space::SMALL)
+            .into();
+        }
         let place = self.place.view(FIELD, "Take", space::LIST);
         let mut parts = column![place.map(Message::Place)].spacing(space::SMALL);
         if self.is_reading {
@@ -77,6 +163,22 @@ impl File {
         }
         parts.into()
     }
+}
+
+/// What differs between the earlier table and new bytes; `None` where the new ones hold no table
+/// that could be compared, which evaluating the cell then says.
+fn differs(earlier: &Earlier, bytes: &[u8]) -> Option<Changes> {
+    let work = Work::unattended();
+    changes(
+        &earlier.data,
+        earlier.at,
+        &earlier.bytes,
+        bytes,
+        Threads::all(),
+        &work,
+    )
+    .ok()?
+    .ok()
 }
 
 /// The folder in which a table of a study is looked for first: beside the study, else where the

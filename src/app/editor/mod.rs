@@ -186,6 +186,13 @@ impl Open {
         (open, Task::batch([task, focus]))
     }
 
+    /// What differs from this table is shown before a file is taken for it.
+    pub fn replaces(&mut self, earlier: file::Earlier) {
+        if let Editor::File(file) = &mut self.editor {
+            file.replaces(earlier);
+        }
+    }
+
     /// Takes a message in.
     pub fn update(&mut self, message: Message) -> Action {
         self.problem = None;

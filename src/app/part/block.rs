@@ -3,6 +3,7 @@
 use crate::app::part::facts;
 use crate::app::sheet::{Figure, Part};
 use crate::app::theme::Mode;
+use crate::app::theme::button::Look;
 use crate::app::theme::{container, space, text};
 use crate::app::widget::Element;
 use crate::app::widget::grid::{Grid, StandsOut};
@@ -27,6 +28,8 @@ pub enum Message {
     SaveFigure(usize),
     /// A table of facts is to be copied.
     CopyTable(usize),
+    /// A setting is taken, as it is said.
+    Offer(String),
 }
 
 /// How blocks are shown.
@@ -119,6 +122,20 @@ pub fn view<'a>(part: &'a Part, at: usize, manner: Manner<'a>) -> Element<'a, Me
                 .into()
         }
         Part::Figure(figure) => self::figure(figure, at, manner),
+        Part::Offers(_) if manner.is_reading => Column::new().into(),
+        Part::Offers(offers) => {
+            let offers = offers.iter().map(|offer| {
+                press::words(offer.label.as_str(), Message::Offer(offer.setting.clone()))
+                    .look(Look::Accent)
+                    .into()
+            });
+            column![
+                text::heading("What can be done about the findings"),
+                Row::with_children(offers).spacing(space::SMALL).wrap(),
+            ]
+            .spacing(space::TIGHT)
+            .into()
+        }
     }
 }
 

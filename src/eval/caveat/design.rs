@@ -154,6 +154,7 @@ fn of_finding(found: &Finding, data: &Dataset) -> Option<Caveat> {
         | FindingKind::BreaksInQuotes
         | FindingKind::OtherSheets { .. }
         | FindingKind::HiddenSheet
+        | FindingKind::HiddenLines { .. }
         | FindingKind::MergedCells
         | FindingKind::LinesAbove
         | FindingKind::NoHeader

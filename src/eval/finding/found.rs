@@ -50,6 +50,7 @@ pub fn found(finding: &Finding) -> String {
         FindingKind::HiddenSheet => {
             format!("The sheet that was read{shown} is hidden in the workbook.")
         }
+        FindingKind::HiddenLines { rows, columns } => hidden_lines(*rows, *columns),
         FindingKind::MergedCells => format!(
             "{} merged; the value counts for the first cell only.",
             counted(n, "group of cells is", "groups of cells are")
@@ -304,6 +305,21 @@ pub fn found(finding: &Finding) -> String {
             number::text(*largest, Precision::Percent(0))
         ),
     }
+}
+
+fn hidden_lines(rows: usize, columns: usize) -> String {
+    let rows_said = counted(rows, "row", "rows");
+    let columns_said = counted(columns, "column", "columns");
+    let (what, n) = match (rows, columns) {
+        (_, 0) => (rows_said, rows),
+        (0, _) => (columns_said, columns),
+        (_, _) => (format!("{rows_said} and {columns_said}"), rows + columns),
+    };
+    let are = if n == 1 { "is" } else { "are" };
+    format!(
+        "{what} of the sheet {are} hidden in the workbook and {} read all the same.",
+        if n == 1 { "was" } else { "were" }
+    )
 }
 
 /// The columns concerned, in parentheses.

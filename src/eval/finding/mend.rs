@@ -19,6 +19,11 @@ pub fn mend(finding: &Finding) -> Vec<&'static str> {
         }
         FindingKind::OtherSheets { .. } => vec!["Choose another sheet if this is not the one."],
         FindingKind::HiddenSheet => vec!["Choose another sheet if this is not the one."],
+        FindingKind::HiddenLines { .. } => {
+            vec![
+                "Exclude samples with a reason, or leave columns out, if they were hidden for one.",
+            ]
+        }
         FindingKind::MergedCells => {
             vec!["Undo the merging in the workbook if every cell should have the value."]
         }
@@ -30,15 +35,18 @@ pub fn mend(finding: &Finding) -> Vec<&'static str> {
             vec!["Add the missing name to the header if another column lacks it."]
         }
         FindingKind::UnitsRow => vec!["Say that there are no units if the row is a sample."],
-        FindingKind::BlankRows => Vec::new(),
-        FindingKind::BlankColumns => Vec::new(),
+        FindingKind::BlankRows | FindingKind::BlankColumns => {
+            vec!["Nothing needs to be done; take them out of the file if they should not be there."]
+        }
         FindingKind::LinesBelow => {
             vec!["Take out the blank row in the file if these lines are samples."]
         }
         FindingKind::SummaryRows => {
             vec!["Exclude these rows with a reason if they are no samples."]
         }
-        FindingKind::RepeatedHeader => Vec::new(),
+        FindingKind::RepeatedHeader => {
+            vec!["Nothing needs to be done; look whether two files were put together here."]
+        }
         FindingKind::ShortRows { .. } => {
             vec!["Add the missing values to the file, or choose another delimiter."]
         }
@@ -53,7 +61,9 @@ pub fn mend(finding: &Finding) -> Vec<&'static str> {
         | FindingKind::ErrorValues
         | FindingKind::ValuesWithUnit
         | FindingKind::NumbersTooLarge => vec![FILE],
-        FindingKind::NumbersAsText => Vec::new(),
+        FindingKind::NumbersAsText => vec![
+            "Nothing needs to be done if they measure something; read the column as text if they name something.",
+        ],
         FindingKind::OtherDecimalMark => vec![
             "Choose the other decimal mark if the whole file has it.",
             FILE,
@@ -67,7 +77,9 @@ pub fn mend(finding: &Finding) -> Vec<&'static str> {
             vec!["Choose in a Prepare cell what stands in for these values."]
         }
         FindingKind::MissingWords { .. } => vec!["Keep the column as text if the word is a label."],
-        FindingKind::MissingCodes => Vec::new(),
+        FindingKind::MissingCodes => {
+            vec!["Take the code off the words for missing values if it is a measured value."]
+        }
         FindingKind::SuspectedCode { .. } => {
             vec!["Name it as a code for missing values if it is one."]
         }
@@ -86,11 +98,15 @@ pub fn mend(finding: &Finding) -> Vec<&'static str> {
             }
         },
         FindingKind::ExponentLabels => vec!["Read the column as numbers if it measures something."],
-        FindingKind::DateLabels => Vec::new(),
+        FindingKind::DateLabels => {
+            vec!["Nothing needs to be done: they stand as they were written."]
+        }
         FindingKind::DatesAmongLabels | FindingKind::NumbersAmongLabels => {
             vec!["Restore the labels in the workbook and store them as text."]
         }
-        FindingKind::BlanksAround => Vec::new(),
+        FindingKind::BlanksAround => {
+            vec!["Nothing needs to be done; take the blanks out of the file if others read it."]
+        }
         FindingKind::LabelVariants => vec!["Write them alike if they mean the same."],
         FindingKind::RepeatedSamples => vec![
             "Give every sample its own name.",

@@ -2,10 +2,12 @@
 
 mod found;
 mod mend;
+mod offer;
 mod refusal;
 
 pub use mend::mend;
-pub use refusal::{join_error, join_report, read_problem};
+pub use offer::{Offer, join_offers, offers};
+pub use refusal::{join_error, join_report, join_rule, read_problem};
 
 use crate::base::number::{self, Precision};
 use crate::base::problem::{Place, Problem};

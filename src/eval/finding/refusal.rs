@@ -3,7 +3,7 @@
 use crate::base::problem::{Place, Problem};
 use crate::eval::finding::{count, counted, list};
 use crate::table::read::ReadError;
-use crate::table::samples::{JoinError, JoinReport, Side};
+use crate::table::samples::{JoinError, JoinReport, JoinRule, LeadingZeros, LetterCase, Side};
 
 /// The problem of a file that gave no table.
 #[must_use]
@@ -126,6 +126,20 @@ pub fn join_error(error: &JoinError) -> String {
             )
         }
     }
+}
+
+/// When two names are taken as the same.
+#[must_use]
+pub fn join_rule(rule: &JoinRule) -> String {
+    let case = match rule.case {
+        LetterCase::Distinct => "upper and lower case are told apart",
+        LetterCase::Folded => "upper and lower case are taken as the same",
+    };
+    let zeros = match rule.zeros {
+        LeadingZeros::Kept => "zeros in front of numbers count",
+        LeadingZeros::Ignored => "zeros in front of numbers do not count",
+    };
+    format!("blanks around a name do not count, {case}, {zeros}")
 }
 
 /// What a join did, one sentence for each thing to know.

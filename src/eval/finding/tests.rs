@@ -76,6 +76,17 @@ fn all() -> Vec<Finding> {
     add(sheets(&[]), T::LeftOut, 1, &[], &[], &[]);
     add(sheets(&["old", "older"]), T::LeftOut, 3, &[], &[], &[]);
     add(K::HiddenSheet, T::Kept, 1, &[], &["old"], &[]);
+    add(
+        K::HiddenLines {
+            rows: 2,
+            columns: 1,
+        },
+        T::Kept,
+        3,
+        &[(4, ""), (9, "")],
+        &[],
+        &[],
+    );
     add(K::MergedCells, T::Kept, 2, &[(1, "A"), (1, "F")], &[], &[]);
     add(
         K::LinesAbove,
@@ -673,4 +684,37 @@ fn every_kind_of_finding_is_in_the_snapshot() {
         .filter(|line| line.trim_start().starts_with("Self::"))
         .count();
     assert_eq!(codes.len(), listed);
+}
+
+#[test]
+fn every_offer_is_taken_by_the_door_of_the_settings_and_every_finding_says_what_could_be_done() {
+    let mut data = crate::study::settings::spread::cellar();
+    data.tables[0].file = "a.csv".to_owned();
+    data.tables[0].header_row = Some(30);
+    data.tables[0].decimal = None;
+    let mut offered = 0;
+    for mut finding in all() {
+        if matches!(finding.kind, FindingKind::OtherSheets { .. }) {
+            finding.file = Some("cellar-lab.xlsx".to_owned());
+        }
+        let offers = super::offers(&finding, &data);
+        assert!(
+            !offers.is_empty() || !mend(&finding).is_empty(),
+            "nothing could be done about {}",
+            finding.kind.code()
+        );
+        for offer in offers {
+            let after = crate::study::settings::said::said(&data, &offer.line)
+                .unwrap_or_else(|problem| panic!("{}: {problem}", offer.line));
+            // Some offers put back what stands there; none may change nothing for another reason.
+            assert!(
+                after != data || offer.line.ends_with("rows") || offer.line.contains("utf-8"),
+                "{} changes nothing",
+                offer.line
+            );
+            assert!(!offer.label.is_empty());
+            offered += 1;
+        }
+    }
+    assert!(offered >= 20, "only {offered} offers");
 }

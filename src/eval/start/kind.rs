@@ -1,6 +1,6 @@
 //! What the kind of outcome decides in a study that is started: the event, the parts, the summary.
 
-use crate::eval::start::{ReadTable, key_name, key_text};
+use crate::eval::start::settle::{ReadTable, key_name, key_text};
 use crate::study::settings::data::OutcomeKind;
 use crate::table::column::{Column, Values};
 use std::collections::{BTreeMap, BTreeSet};

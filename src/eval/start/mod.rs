@@ -3,34 +3,30 @@
 //! Every interpretation that the tables left open is written down in the settings, so that it is
 //! a word that can be changed, and said in a note.
 
+mod draft;
 mod kind;
+mod settle;
 
 use crate::base::layout::Orientation;
-use crate::base::number::{self, Precision};
-use crate::base::problem::{Place, Problem};
+use crate::base::problem::Problem;
 use crate::base::thread::Threads;
 use crate::base::work::{Cancelled, Work};
 use crate::eval::finding::read_problem;
-use crate::eval::start::kind::{event_column, guess_kind, rarest, summary, with_event};
+use crate::eval::kind::data::options;
+use crate::eval::start::kind::summary;
+use crate::eval::start::settle::{ReadTable, Shape, settle};
 use crate::study::Study;
 use crate::study::cell::{Cell, CellId};
 use crate::study::edit::Edit;
 use crate::study::link::Link;
 use crate::study::prose::Prose;
 use crate::study::settings::Settings;
-use crate::study::settings::data::{
-    ColumnRange, Data, Exclusion, Join, LeadingZeros, LetterCase, Outcome, OutcomeKind,
-    OutcomeSeen, TableSource,
-};
+use crate::study::settings::data::{Data, OutcomeKind, TableSource, UnitMaking};
 use crate::study::settings::fit::{ErrorMeasure, Fit, Judge, Penalty, Rule, Strength};
 use crate::study::settings::prepare::{Prepare, Step};
 use crate::study::settings::question::{Ask, Question};
-use crate::study::source::{Shelf, SourceId};
-use crate::table::Table;
-use crate::table::axis;
-use crate::table::column::{Column, Value, Values};
+use crate::study::source::Shelf;
 use crate::table::read::{Options, read};
-use std::collections::BTreeSet;
 use std::sync::Arc;
 
 /// What is wished for; what is left open is taken from the tables.
@@ -58,6 +54,14 @@ pub struct Wishes {
     pub weight: Option<String>,
     /// How each table is read; what is not said is guessed.
     pub reading: Vec<Options>,
+    /// The predictors: names, ranges, patterns, stretches of an axis. None: all that are left.
+    pub predictors: Vec<String>,
+    /// Whether the units are made from the sample names.
+    pub unit_making: UnitMaking,
+    /// The day, for the record of what was taken in.
+    pub date: Option<String>,
+    /// Further settings of the Data cell, each as it is said in one line.
+    pub said: Vec<String>,
     /// Whether samples are columns in the first table.
     pub orientation: Option<Orientation>,
     /// The sheet of the first workbook.
@@ -89,16 +93,25 @@ pub fn start(
     work: &Work<'_>,
 ) -> Result<Result<Started, Problem>, Cancelled> {
     let mut shelf = Shelf::default();
+    let ids = tables.iter().map(|(file, bytes)| {
+        let id = shelf.put(Arc::clone(bytes));
+        TableSource::new(id, file)
+    });
+    let draft = match draft::draft(ids.collect(), wishes) {
+        Ok(draft) => draft,
+        Err(problem) => return Ok(Err(problem)),
+    };
     let mut read_tables = Vec::new();
     for (at, (file, bytes)) in tables.iter().enumerate() {
-        let id = shelf.put(Arc::clone(bytes));
-        let options = first_options(wishes, at);
+        let source = &draft.data.tables[at];
+        let mut options = options(source, &draft.reading);
+        if let Some(wished) = wishes.reading.get(at) {
+            options.as_text.extend(wished.as_text.iter().cloned());
+            options.as_numbers.extend(wished.as_numbers.iter().cloned());
+        }
         let bar = work.part(at as f32 / tables.len() as f32..(at + 1) as f32 / tables.len() as f32);
         match read(bytes, file, &options, threads, &bar)? {
-            Ok(reading) => read_tables.push(ReadTable {
-                source: source(id, file, &reading.used),
-                table: reading.table,
-            }),
+            Ok(reading) => read_tables.push(ReadTable::new(source, reading)),
             Err(error) => return Ok(Err(read_problem(&error, file))),
         }
     }
@@ -109,7 +122,7 @@ pub fn start(
     }
     let mut notes = Vec::new();
     Ok(
-        data_settings(read_tables, wishes, &mut notes).and_then(|(data, shape)| {
+        settle(read_tables, wishes, draft, &mut notes).and_then(|(data, shape)| {
             let study = ready_study(data, &shape, wishes, &mut notes)?;
             Ok(Started {
                 study,
@@ -118,428 +131,6 @@ pub fn start(
             })
         }),
     )
-}
-
-struct ReadTable {
-    source: TableSource,
-    table: Table,
-}
-
-/// What of the tables decides on the rest of the study.
-struct Shape {
-    n_units: usize,
-    /// Of how many independent samples the rarest class is, or how many had the event.
-    n_rarest: Option<usize>,
-    has_gaps: bool,
-    has_limits: bool,
-    is_spectrum: bool,
-}
-
-fn first_options(wishes: &Wishes, at: usize) -> Options {
-    let mut as_text: Vec<String> = Vec::new();
-    as_text.extend(wishes.samples.clone());
-    as_text.extend(wishes.unit.clone());
-    as_text.extend(wishes.batch.clone());
-    let mut options = wishes.reading.get(at).cloned().unwrap_or_default();
-    options.as_text.extend(as_text);
-    if at == 0 {
-        options.orientation = wishes.orientation.or(options.orientation);
-        options.sheet = wishes.sheet.clone().or(options.sheet);
-    }
-    options
-}
-
-/// The source with every interpretation written down.
-fn source(id: SourceId, file: &str, used: &Options) -> TableSource {
-    TableSource {
-        sheet: used.sheet.clone(),
-        encoding: used.encoding,
-        delimiter: used.delimiter,
-        decimal: used.decimal,
-        header_row: used.header_row,
-        units_row: used.units_row,
-        orientation: used.orientation,
-        missing_codes: used.missing_codes.clone(),
-        ..TableSource::new(id, file)
-    }
-}
-
-fn data_settings(
-    tables: Vec<ReadTable>,
-    wishes: &Wishes,
-    notes: &mut Vec<String>,
-) -> Result<(Data, Shape), Problem> {
-    let mut sources = Vec::new();
-    for (at, read) in tables.iter().enumerate() {
-        let mut source = read.source.clone();
-        if at > 0 {
-            source.join = Some(join(&tables[..at], read, wishes, notes)?);
-        }
-        sources.push(source);
-    }
-    let find = |name: &str| tables.iter().find_map(|read| read.table.column(name));
-    let named = [
-        Some(&wishes.outcome),
-        wishes.samples.as_ref(),
-        wishes.unit.as_ref(),
-        wishes.batch.as_ref(),
-        wishes.order.as_ref(),
-        wishes.weight.as_ref(),
-    ];
-    let also = wishes.covariates.iter().chain(&wishes.ignored);
-    for name in named.into_iter().flatten().chain(also) {
-        if find(name).is_none() {
-            return Err(no_such_column(name, &tables));
-        }
-    }
-    let outcome_column = find(&wishes.outcome).expect("it was just found");
-    let kind = match &wishes.kind {
-        Some(kind) => kind.clone(),
-        None => guess_kind(outcome_column, notes),
-    };
-    let kind = with_event(kind, outcome_column, notes);
-    if let Some(event) = event_column(&kind)
-        && find(event).is_none()
-    {
-        return Err(no_such_column(event, &tables));
-    }
-    let first = &tables[0];
-    let samples = wishes
-        .samples
-        .clone()
-        .or_else(|| sample_names(first, wishes, notes));
-    let taken: BTreeSet<&str> = [
-        Some(wishes.outcome.as_str()),
-        samples.as_deref(),
-        wishes.unit.as_deref(),
-        wishes.batch.as_deref(),
-        wishes.order.as_deref(),
-        wishes.weight.as_deref(),
-        event_column(&kind),
-    ]
-    .into_iter()
-    .flatten()
-    .chain(wishes.covariates.iter().map(String::as_str))
-    .chain(wishes.ignored.iter().map(String::as_str))
-    .chain(
-        sources
-            .iter()
-            .filter_map(|s| s.join.as_ref())
-            .map(|join| join.left.as_str()),
-    )
-    .collect();
-    let predictors = predictor_columns(&tables, &taken, notes);
-    let mut shape = shape(&tables, &predictors, wishes, samples.as_deref());
-    shape.n_rarest = rarest(&kind, &wishes.outcome, wishes.unit.as_deref(), &tables);
-    let ranges = ranges(&tables, &predictors);
-    let mut data = Data {
-        tables: sources,
-        outcome: Some(Outcome {
-            column: wishes.outcome.clone(),
-            kind,
-            unit: outcome_column.unit.clone(),
-            reference_error: None,
-        }),
-        predictors: ranges,
-        sample_name: samples,
-        unit: wishes.unit.clone(),
-        batch: wishes.batch.clone(),
-        order: wishes.order.clone(),
-        weight: wishes.weight.clone(),
-        covariates: wishes.covariates.clone(),
-        ignored: wishes.ignored.clone(),
-        ..Data::default()
-    };
-    exclude_without_outcome(&mut data, first, notes);
-    Ok((data, shape))
-}
-
-fn no_such_column(name: &str, tables: &[ReadTable]) -> Problem {
-    let files: Vec<&str> = tables
-        .iter()
-        .map(|read| read.source.file.as_str())
-        .collect();
-    let some: Vec<&str> = tables
-        .iter()
-        .flat_map(|read| read.table.columns().iter().take(6))
-        .map(|column| column.name.as_str())
-        .take(8)
-        .collect();
-    Problem::new(
-        "missing-outcome",
-        format!("There is no column “{name}” in the tables."),
-    )
-    .at(Place::file(&files.join(", ")))
-    .mend(format!(
-        "Name a column that is there; the first are “{}”.",
-        some.join("”, “")
-    ))
-}
-
-/// The columns on which a table is joined: the wished ones if it has them, else the column that
-/// shares its name with one of the tables before and the most values with it.
-fn join(
-    before: &[ReadTable],
-    table: &ReadTable,
-    wishes: &Wishes,
-    notes: &mut Vec<String>,
-) -> Result<Join, Problem> {
-    let texts = |column: &Column| -> BTreeSet<String> {
-        (0..column.len())
-            .filter_map(|row| key_text(column, row))
-            .collect()
-    };
-    let mut best: Option<(usize, String)> = None;
-    let wished = [wishes.unit.as_ref(), wishes.samples.as_ref()];
-    let names: Vec<&String> = wished
-        .into_iter()
-        .flatten()
-        .chain(table.table.columns().iter().map(|column| &column.name))
-        .collect();
-    for name in names {
-        let (Some(right), Some(left)) = (
-            table.table.column(name),
-            before.iter().find_map(|read| read.table.column(name)),
-        ) else {
-            continue;
-        };
-        let shared = texts(left).intersection(&texts(right)).count();
-        if shared > 0 && best.as_ref().is_none_or(|(most, _)| shared > *most) {
-            best = Some((shared, name.clone()));
-        }
-    }
-    let Some((_, name)) = best else {
-        return Err(Problem::new(
-            "no-join",
-            format!(
-                "“{}” shares no column of names with the tables before it.",
-                table.source.file
-            ),
-        )
-        .at(Place::file(&table.source.file))
-        .mend("Give the column that names the same things the same head in both tables."));
-    };
-    notes.push(format!(
-        "“{}” is joined on the column “{name}”; case and blanks do not count.",
-        table.source.file
-    ));
-    Ok(Join {
-        left: name.clone(),
-        right: name,
-        case: LetterCase::Folded,
-        zeros: LeadingZeros::Kept,
-    })
-}
-
-fn key_text(column: &Column, row: usize) -> Option<String> {
-    match column.value(row) {
-        Value::Text(text) => Some(text.trim().to_lowercase()),
-        Value::Number(value) => Some(number::text(value, Precision::Full)),
-        Value::Missing | Value::BelowLimit(_) | Value::AboveLimit(_) => None,
-    }
-}
-
-/// The first column of labels in the first table in which every value stands once.
-fn sample_names(first: &ReadTable, wishes: &Wishes, notes: &mut Vec<String>) -> Option<String> {
-    let column = first.table.columns().iter().take(20).find(|column| {
-        if column.name == wishes.outcome || Some(&column.name) == wishes.unit.as_ref() {
-            return false;
-        }
-        let Values::Texts(texts) = &column.values else {
-            return false;
-        };
-        let distinct: BTreeSet<&String> = texts.iter().flatten().collect();
-        distinct.len() == texts.len()
-    })?;
-    notes.push(format!("Samples are named by “{}”.", column.name));
-    Some(column.name.clone())
-}
-
-/// The predictors: numeric columns without another role of the table that has most of them. For
-/// each the table's number and the column's position.
-fn predictor_columns(
-    tables: &[ReadTable],
-    taken: &BTreeSet<&str>,
-    notes: &mut Vec<String>,
-) -> (usize, Vec<usize>) {
-    let numeric = |table: &Table| -> Vec<usize> {
-        table
-            .columns()
-            .iter()
-            .enumerate()
-            .filter(|(_, column)| {
-                matches!(column.values, Values::Numbers(_)) && !taken.contains(column.name.as_str())
-            })
-            .map(|(at, _)| at)
-            .collect()
-    };
-    let mut best = (0, numeric(&tables[0].table));
-    for (at, read) in tables.iter().enumerate().skip(1) {
-        let columns = numeric(&read.table);
-        if columns.len() > best.1.len() {
-            best = (at, columns);
-        }
-    }
-    // A long run of columns along one axis is the spectrum; what stands beside it is not.
-    let table = &tables[best.0].table;
-    let runs = axis_runs(table, &best.1);
-    if let Some(run) = runs.into_iter().max_by_key(Vec::len)
-        && run.len() >= 30
-        && run.len() * 2 > best.1.len()
-        && run.len() < best.1.len()
-    {
-        let left: Vec<&str> = best
-            .1
-            .iter()
-            .filter(|at| !run.contains(at))
-            .map(|&at| table.columns()[at].name.as_str())
-            .collect();
-        notes.push(format!(
-            "The predictors are “{}” to “{}”; “{}” stand beside them and are left out.",
-            table.columns()[run[0]].name,
-            table.columns()[run[run.len() - 1]].name,
-            left.join("”, “")
-        ));
-        best.1 = run;
-    }
-    best
-}
-
-/// Runs of neighbouring columns whose names lie along one axis.
-fn axis_runs(table: &Table, columns: &[usize]) -> Vec<Vec<usize>> {
-    let mut runs: Vec<Vec<usize>> = Vec::new();
-    let stem = |at: usize| -> (String, String) {
-        let name = &table.columns()[at].name;
-        let begin = name
-            .find(|c: char| c.is_ascii_digit())
-            .unwrap_or(name.len());
-        let end = name
-            .rfind(|c: char| c.is_ascii_digit())
-            .map_or(begin, |end| end + 1);
-        (name[..begin].to_owned(), name[end..].to_owned())
-    };
-    for &at in columns {
-        match runs.last_mut() {
-            Some(run) if run.last() == Some(&(at - 1)) && stem(at) == stem(at - 1) => run.push(at),
-            Some(_) | None => runs.push(vec![at]),
-        }
-    }
-    runs.retain(|run| {
-        let names: Vec<&str> = run
-            .iter()
-            .map(|&at| table.columns()[at].name.as_str())
-            .collect();
-        run.len() >= 3 && axis::of_names(&names).is_some()
-    });
-    runs
-}
-
-fn ranges(tables: &[ReadTable], predictors: &(usize, Vec<usize>)) -> Vec<ColumnRange> {
-    axis::ranges(&tables[predictors.0].table, &predictors.1)
-        .into_iter()
-        .map(|range| ColumnRange {
-            first: range.first,
-            last: range.last,
-        })
-        .collect()
-}
-
-fn shape(
-    tables: &[ReadTable],
-    predictors: &(usize, Vec<usize>),
-    wishes: &Wishes,
-    samples: Option<&str>,
-) -> Shape {
-    let table = &tables[predictors.0].table;
-    let mut has_gaps = false;
-    let mut has_limits = false;
-    for &at in &predictors.1 {
-        if let Values::Numbers(numbers) = &table.columns()[at].values {
-            has_limits |= !numbers.censored().is_empty();
-            let n_gaps = numbers
-                .values()
-                .iter()
-                .filter(|value| value.is_nan())
-                .count();
-            has_gaps |= n_gaps > numbers.censored().len();
-        }
-    }
-    let names: Vec<&str> = predictors
-        .1
-        .iter()
-        .map(|&at| table.columns()[at].name.as_str())
-        .collect();
-    let is_spectrum = names.len() >= 50
-        && axis::of_names(&names).is_some_and(|axis| {
-            axis.is_monotone()
-                && axis
-                    .unit
-                    .as_deref()
-                    .is_some_and(|unit| LIGHT.contains(&unit))
-        });
-    let unit = wishes.unit.as_deref().or(samples);
-    let first = &tables[0].table;
-    let n_units = unit
-        .and_then(|name| first.column(name))
-        .map_or(first.n_rows(), |column| {
-            (0..column.len())
-                .filter_map(|row| key_text(column, row))
-                .collect::<BTreeSet<_>>()
-                .len()
-        });
-    Shape {
-        n_units,
-        n_rarest: None,
-        has_gaps,
-        has_limits,
-        is_spectrum,
-    }
-}
-
-/// Units of an axis of light: its tables are spectra.
-const LIGHT: [&str; 6] = ["nm", "cm-1", "cm⁻¹", "1/cm", "µm", "um"];
-
-/// Samples of the first table whose outcome stands there and is blank are excluded, recorded.
-fn exclude_without_outcome(data: &mut Data, first: &ReadTable, notes: &mut Vec<String>) {
-    let Some(outcome) = &data.outcome else { return };
-    let Some(column) = first.table.column(&outcome.column) else {
-        return;
-    };
-    let names = data
-        .sample_name
-        .as_ref()
-        .and_then(|name| first.table.column(name));
-    let name = |row: usize| match names {
-        Some(names) => key_name(names, row),
-        None => Some(format!("sample {}", row + 1)),
-    };
-    let exclusions: Vec<Exclusion> = (0..column.len())
-        .filter(|&row| column.value(row) == Value::Missing)
-        .filter_map(name)
-        .map(|sample| Exclusion {
-            sample,
-            reason: "The outcome is missing.".to_owned(),
-            outcome: OutcomeSeen::Before,
-        })
-        .collect();
-    if !exclusions.is_empty() && exclusions.len() < column.len() {
-        notes.push(match exclusions.len() {
-            1 => "1 sample without an outcome is excluded, with that reason.".to_owned(),
-            n => format!(
-                "{} samples without an outcome are excluded, with that reason.",
-                number::text(n as f64, Precision::Whole)
-            ),
-        });
-        data.exclusions = Arc::new(exclusions);
-    }
-}
-
-fn key_name(column: &Column, row: usize) -> Option<String> {
-    match column.value(row) {
-        Value::Text(text) => Some(text.to_owned()),
-        Value::Number(value) => Some(number::text(value, Precision::Full)),
-        Value::Missing | Value::BelowLimit(_) | Value::AboveLimit(_) => None,
-    }
 }
 
 /// Data, Prepare, Fit, the questions, and a summary with live facts.

@@ -184,6 +184,7 @@ fn paragraphs(report: &CellReport) -> Vec<Paragraph> {
             | Block::Quote(_)
             | Block::Code(_)
             | Block::Rule
+            | Block::Offers(_)
             | Block::Grid(_) => {}
         }
     }

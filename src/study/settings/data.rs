@@ -1,6 +1,6 @@
 //! Settings of a Data cell: tables, roles, corrections, exclusions, the sealed set.
 
-use crate::base::layout::{DecimalMark, Delimiter, Encoding, Orientation, UnitsRow};
+use crate::base::layout::{DecimalMark, Delimiter, Encoding, Grouping, Orientation, UnitsRow};
 use crate::base::real::Real;
 use crate::study::source::SourceId;
 use std::sync::Arc;
@@ -19,6 +19,8 @@ pub struct Data {
     pub sample_name: Option<String>,
     /// The column that names the independent thing a sample belongs to; kept together.
     pub unit: Option<String>,
+    /// Whether the tables have that column, or it is made from the sample names.
+    pub unit_making: UnitMaking,
     /// The column that names the batch.
     pub batch: Option<String>,
     /// The column with the position or time of measurement.
@@ -29,6 +31,10 @@ pub struct Data {
     pub covariates: Vec<String>,
     /// Columns that are left out although they would be predictors.
     pub ignored: Vec<String>,
+    /// Columns that are read as text, letter for letter, whatever they hold.
+    pub as_text: Vec<String>,
+    /// Columns that are read as numbers, even if most of their values are none.
+    pub as_numbers: Vec<String>,
     /// Recorded changes of single values, in the order in which they were made.
     pub corrections: Arc<Vec<Correction>>,
     /// Recorded removals of samples, in the order in which they were made.
@@ -47,6 +53,8 @@ pub struct TableSource {
     pub source: SourceId,
     /// The file's name, for people.
     pub file: String,
+    /// The day on which the bytes were taken in, where somebody told it.
+    pub taken_on: Option<String>,
     /// The sheet of a workbook.
     pub sheet: Option<String>,
     /// How bytes become letters.
@@ -55,6 +63,8 @@ pub struct TableSource {
     pub delimiter: Option<Delimiter>,
     /// What stands before decimals.
     pub decimal: Option<DecimalMark>,
+    /// Whether marks between groups of digits are read.
+    pub grouping: Option<Grouping>,
     /// The row with the column names, counted from 1.
     pub header_row: Option<usize>,
     /// Whether a row with units follows the header.
@@ -74,10 +84,12 @@ impl TableSource {
         Self {
             source,
             file: file.to_owned(),
+            taken_on: None,
             sheet: None,
             encoding: None,
             delimiter: None,
             decimal: None,
+            grouping: None,
             header_row: None,
             units_row: None,
             orientation: None,
@@ -85,6 +97,16 @@ impl TableSource {
             join: None,
         }
     }
+}
+
+/// Where the names of the units come from.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, Hash)]
+pub enum UnitMaking {
+    /// A column of the tables holds them.
+    #[default]
+    InColumn,
+    /// They are what the sample names begin with: “B07” of “B07-n1”.
+    FromNames,
 }
 
 /// How a table is joined: many samples may share one row of the joined table.

@@ -5,6 +5,7 @@ pub mod data;
 pub mod fit;
 pub mod prepare;
 pub mod question;
+pub mod said;
 pub mod score;
 pub mod slot;
 #[cfg(test)]
@@ -21,6 +22,10 @@ use crate::study::settings::question::Question;
 use crate::study::settings::score::Score;
 
 /// The settings of a cell, one variant per kind.
+#[expect(
+    clippy::large_enum_variant,
+    reason = "a study has a few dozen cells, and a Data cell is handed on as often as any"
+)]
 #[derive(Clone, Debug, PartialEq, Eq, Hash)]
 pub enum Settings {
     /// Reads tables.

@@ -1,6 +1,6 @@
 //! Settings of every kind with every choice at least once, for tests.
 
-use crate::base::layout::{DecimalMark, Delimiter, Encoding, Orientation, UnitsRow};
+use crate::base::layout::{DecimalMark, Delimiter, Encoding, Grouping, Orientation, UnitsRow};
 use crate::base::real::Real;
 use crate::study::cell::CellId;
 use crate::study::link::Link;
@@ -8,7 +8,7 @@ use crate::study::settings::Settings;
 use crate::study::settings::compare::Compare;
 use crate::study::settings::data::{
     ColumnRange, Correction, Data, Exclusion, Join, LeadingZeros, LetterCase, Outcome, OutcomeKind,
-    OutcomeSeen, Sealed, Subject, TableSource,
+    OutcomeSeen, Sealed, Subject, TableSource, UnitMaking,
 };
 use crate::study::settings::fit::{
     ErrorMeasure, Fit, Grouping, Judge, Penalty, PenaltyRange, Plan, Rule, Scaling, Scheme,
@@ -36,6 +36,7 @@ pub fn cellar() -> Data {
     scans.delimiter = Some(Delimiter::Semicolon);
     scans.decimal = Some(DecimalMark::Comma);
     scans.encoding = Some(Encoding::Utf8);
+    scans.taken_on = Some("2026-03-02".to_owned());
     scans.header_row = Some(1);
     scans.units_row = Some(UnitsRow::BelowHeader);
     scans.missing_codes = vec!["-999".to_owned(), "NA".to_owned()];
@@ -94,6 +95,10 @@ pub fn data() -> Vec<Data> {
     busy.tables[0].units_row = Some(UnitsRow::Absent);
     busy.covariates = vec!["age".to_owned(), "cellar temperature".to_owned()];
     busy.ignored = vec!["salt_calc".to_owned()];
+    busy.tables[0].grouping = Some(Grouping::Read);
+    busy.unit_making = UnitMaking::FromNames;
+    busy.as_text = vec!["lot".to_owned(), "1E-05".to_owned()];
+    busy.as_numbers = vec!["iron".to_owned()];
     busy.order = Some("minute".to_owned());
     busy.weight = Some("scans averaged".to_owned());
     busy.predictors.push(ColumnRange {

@@ -204,11 +204,7 @@ pub fn eta_squared(y: &[f64], batches: &[Option<String>]) -> Option<(f64, f64, u
 pub fn order(table: &Table, outcome: usize, order: usize) -> Option<Finding> {
     let y = in_numbers(&table.columns()[outcome])?;
     let x = in_numbers(&table.columns()[order])?;
-    let both: Vec<usize> = (0..y.len())
-        .filter(|&at| !y[at].is_nan() && !x[at].is_nan())
-        .collect();
-    let pick = |values: &[f64]| ranks(&both.iter().map(|&at| values[at]).collect::<Vec<_>>());
-    let (rank_correlation, n) = correlation(&pick(&y), &pick(&x))?;
+    let (rank_correlation, n) = rank_correlation(&y, &x)?;
     // Beyond 2.58 standard errors, so that a dozen samples do not cry wolf.
     let is_no_chance = rank_correlation.abs() * (n as f64 - 1.0).sqrt() >= 2.58;
     (rank_correlation.abs() >= RANK && is_no_chance).then(|| {
@@ -220,6 +216,16 @@ pub fn order(table: &Table, outcome: usize, order: usize) -> Option<Finding> {
         finding.add_column(&table.columns()[order].name);
         finding
     })
+}
+
+/// Spearman's rank correlation of the pairs that are both known, and how many these are.
+#[must_use]
+pub fn rank_correlation(y: &[f64], x: &[f64]) -> Option<(f64, usize)> {
+    let both: Vec<usize> = (0..y.len())
+        .filter(|&at| !y[at].is_nan() && !x[at].is_nan())
+        .collect();
+    let pick = |values: &[f64]| ranks(&both.iter().map(|&at| values[at]).collect::<Vec<_>>());
+    correlation(&pick(y), &pick(x))
 }
 
 /// Numbers as they are; two classes as 0 and 1; dates and other sortable labels by their order.

@@ -82,11 +82,7 @@ pub fn repeats(table: &Table, samples: usize) -> Option<Finding> {
 pub fn stems(labels: &[Option<String>]) -> Option<Vec<Option<String>>> {
     let stems: Vec<Option<String>> = labels
         .iter()
-        .map(|label| {
-            label
-                .as_ref()
-                .map(|label| stem(label).unwrap_or(label).to_owned())
-        })
+        .map(|label| label.as_ref().map(|label| unit_of(label).to_owned()))
         .collect();
     let mut members: BTreeMap<&str, Vec<&str>> = BTreeMap::new();
     for (label, stem) in labels.iter().zip(&stems) {
@@ -109,6 +105,12 @@ pub fn stems(labels: &[Option<String>]) -> Option<Vec<Option<String>>> {
         && members.len() >= 3
         && largest * 2 <= named;
     are_repeats.then_some(stems)
+}
+
+/// The unit that a name stands for: the name without a last part that counts repeats.
+#[must_use]
+pub fn unit_of(name: &str) -> &str {
+    stem(name).unwrap_or(name)
 }
 
 /// A name without its last part, if that part counts repeats.

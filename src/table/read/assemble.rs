@@ -5,7 +5,7 @@ use crate::base::problem::Place;
 use crate::base::thread::{Threads, in_order};
 use crate::base::work::{Cancelled, Work};
 use crate::table::column::{Censored, Column, Numbers, Values, plain};
-use crate::table::finding::{Finding, FindingKind, KEPT, Treatment};
+use crate::table::finding::{COLUMNS, Finding, FindingKind, PLACES, Treatment};
 use crate::table::read::cell::{Sort, trimmed};
 use crate::table::read::error::ReadError;
 use crate::table::read::raw::{Odd, Plan, Raw, RawLines, RawTable, Stored};
@@ -81,13 +81,10 @@ impl Gather {
             };
             known.count += finding.count;
             known.n_columns += finding.n_columns;
-            let room = |taken: usize| KEPT.saturating_sub(taken);
-            known
-                .places
-                .extend(finding.places.into_iter().take(room(known.places.len())));
-            known
-                .columns
-                .extend(finding.columns.into_iter().take(room(known.columns.len())));
+            let room = PLACES.saturating_sub(known.places.len());
+            known.places.extend(finding.places.into_iter().take(room));
+            let room = COLUMNS.saturating_sub(known.columns.len());
+            known.columns.extend(finding.columns.into_iter().take(room));
             for example in finding.examples {
                 known.add_example(&example);
             }

@@ -57,6 +57,26 @@ impl Sort {
         }
     }
 
+    /// The number, of a plain one.
+    pub fn plain(self) -> Option<f64> {
+        match self {
+            Self::Number(number) => Some(number),
+            Self::Blank
+            | Self::LeadingZeros(_)
+            | Self::LongDigits(_)
+            | Self::Below(_)
+            | Self::Above(_)
+            | Self::MissingWord
+            | Self::Error
+            | Self::OtherMark
+            | Self::Grouped(_)
+            | Self::WithUnit
+            | Self::Date
+            | Self::TooLarge
+            | Self::Text => None,
+        }
+    }
+
     /// Whether the text says that there is no value.
     pub fn is_nothing(self) -> bool {
         match self {

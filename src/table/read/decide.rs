@@ -88,10 +88,8 @@ pub fn settle(raw: &mut Raw<'_>, n_rows: usize, is_first: bool, manner: &Manner<
     }
     let census = Census::of_odd(raw);
     let are_labels = if raw.plan == Plan::Names {
-        let is_whole = |sort: Sort| match sort {
-            Sort::Number(number) | Sort::LongDigits(number) => number.fract() == 0.0,
-            _ => true,
-        };
+        // Long digits are whole by what they are.
+        let is_whole = |sort: Sort| sort.plain().is_none_or(|number| number.fract() == 0.0);
         census.labels + census.zeros > 0
             || raw.odd.iter().all(|odd| is_whole(odd.sort))
             || raw.odd.iter().any(|odd| is_exponent(trimmed(&odd.text)))
@@ -103,14 +101,20 @@ pub fn settle(raw: &mut Raw<'_>, n_rows: usize, is_first: bool, manner: &Manner<
     }
     raw.values = vec![f64::NAN; n_rows];
     let values = &mut raw.values;
-    raw.odd.retain(|odd| match (odd.stored, odd.sort) {
-        // A workbook's text that is a number stays, to be reported.
-        (Stored::Text, Sort::Number(_)) if manner.is_typed => true,
-        (Stored::Text | Stored::Number, Sort::Number(number)) => {
-            values[odd.row as usize] = number;
-            false
+    raw.odd.retain(|odd| {
+        let is_value = match odd.stored {
+            // A workbook's text that is a number stays, to be reported.
+            Stored::Text => !manner.is_typed,
+            Stored::Number => true,
+            Stored::Date | Stored::Truth | Stored::Error => false,
+        };
+        match odd.sort.plain().filter(|_| is_value) {
+            Some(number) => {
+                values[odd.row as usize] = number;
+                false
+            }
+            None => true,
         }
-        _ => true,
     });
     raw.plan = Plan::Numbers;
     false

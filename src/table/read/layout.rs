@@ -209,10 +209,7 @@ fn is_axis_row(rows: &[HeadRow], row: usize) -> bool {
         let numbers: Vec<f64> = row
             .cells
             .iter()
-            .filter_map(|cell| match cell.sort {
-                Sort::Number(number) => Some(number),
-                _ => None,
-            })
+            .filter_map(|cell| cell.sort.plain())
             .collect();
         let rises = numbers.windows(2).all(|pair| pair[0] < pair[1]);
         let falls = numbers.windows(2).all(|pair| pair[0] > pair[1]);

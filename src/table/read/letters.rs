@@ -18,16 +18,31 @@ pub struct Letters<'a> {
     pub encoding: Encoding,
 }
 
-/// Which encoding the bytes seem to have.
-pub fn guess(bytes: &[u8]) -> Encoding {
+/// Decodes bytes whose encoding nobody named. UTF-8 is tried by reading it, so that a large file
+/// is gone through once.
+pub fn decode_as_found<'a>(bytes: &'a [u8], work: &Work<'_>) -> Result<Letters<'a>, Cancelled> {
+    match guess(bytes) {
+        Some(encoding) => decode(bytes, encoding, work),
+        None => match std::str::from_utf8(bytes) {
+            Ok(text) => Ok(Letters {
+                text: Cow::Borrowed(text),
+                encoding: Encoding::Utf8,
+            }),
+            Err(_) => decode(bytes, Encoding::Windows1252, work),
+        },
+    }
+}
+
+/// The encoding that the bytes show by their first ones or by their zeros.
+fn guess(bytes: &[u8]) -> Option<Encoding> {
     if bytes.starts_with(&[0xef, 0xbb, 0xbf]) {
-        return Encoding::Utf8;
+        return Some(Encoding::Utf8);
     }
     if bytes.starts_with(&[0xff, 0xfe]) {
-        return Encoding::Utf16Le;
+        return Some(Encoding::Utf16Le);
     }
     if bytes.starts_with(&[0xfe, 0xff]) {
-        return Encoding::Utf16Be;
+        return Some(Encoding::Utf16Be);
     }
     // Latin letters in UTF-16 have a zero in every other byte.
     let look = &bytes[..bytes.len().min(LOOK)];
@@ -40,16 +55,12 @@ pub fn guess(bytes: &[u8]) -> Encoding {
     };
     let half = look.len() / 2;
     if half > 0 && zeros(1) * 10 > half * 7 && zeros(0) * 10 < half {
-        return Encoding::Utf16Le;
+        return Some(Encoding::Utf16Le);
     }
     if half > 0 && zeros(0) * 10 > half * 7 && zeros(1) * 10 < half {
-        return Encoding::Utf16Be;
+        return Some(Encoding::Utf16Be);
     }
-    if std::str::from_utf8(bytes).is_ok() {
-        Encoding::Utf8
-    } else {
-        Encoding::Windows1252
-    }
+    None
 }
 
 /// Decodes the bytes. What has no meaning in the encoding becomes U+FFFD.
@@ -156,9 +167,8 @@ mod tests {
     use super::*;
 
     fn read(bytes: &[u8]) -> (String, Encoding) {
-        let encoding = guess(bytes);
-        let letters = decode(bytes, encoding, &Work::unattended()).unwrap();
-        (letters.text.into_owned(), encoding)
+        let letters = decode_as_found(bytes, &Work::unattended()).unwrap();
+        (letters.text.into_owned(), letters.encoding)
     }
 
     #[test]

@@ -128,8 +128,11 @@ pub fn read(
     if let Some(what) = letters::known_binary(&bytes) {
         return Ok(Err(ReadError::Binary { what: Some(what) }));
     }
-    let encoding = options.encoding.unwrap_or_else(|| letters::guess(&bytes));
-    let letters = letters::decode(&bytes, encoding, &work.part(0.0..0.1))?;
+    let look = work.part(0.0..0.1);
+    let letters = match options.encoding {
+        Some(encoding) => letters::decode(&bytes, encoding, &look)?,
+        None => letters::decode_as_found(&bytes, &look)?,
+    };
     if letters::is_binary(&letters.text) {
         return Ok(Err(ReadError::Binary { what: None }));
     }

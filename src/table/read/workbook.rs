@@ -1,5 +1,6 @@
 //! Workbooks: one sheet, with the way in which every value is stored.
 
+mod hidden;
 mod sheet;
 
 use crate::base::layout::{DecimalMark, Delimiter, Grouping, Orientation, UnitsRow};
@@ -148,6 +149,47 @@ fn of_book(
     if is_hidden {
         let mut finding = Finding::new(FindingKind::HiddenSheet, Treatment::Kept);
         finding.add(|| here.clone(), &sheet.name);
+        findings.push(finding);
+    }
+    // Only what holds something can be missed by somebody who looks at the workbook.
+    let rows: Vec<u32> = sheet
+        .hidden
+        .rows
+        .iter()
+        .copied()
+        .filter(|&row| {
+            sheet
+                .rows
+                .get(row as usize)
+                .is_some_and(|cells| !cells.is_empty())
+        })
+        .collect();
+    let columns: Vec<u32> = sheet
+        .hidden
+        .columns
+        .iter()
+        .copied()
+        .filter(|&column| {
+            sheet.rows.iter().any(|cells| {
+                cells
+                    .binary_search_by_key(&column, |cell| cell.column)
+                    .is_ok()
+            })
+        })
+        .collect();
+    if rows.len() + columns.len() > 0 {
+        let kind = FindingKind::HiddenLines {
+            rows: rows.len(),
+            columns: columns.len(),
+        };
+        let mut finding = Finding::new(kind, Treatment::Kept);
+        for row in rows {
+            finding.add(|| here.clone().with_row(row as usize + 1), "");
+        }
+        for column in columns {
+            let letters = letters_of(column as usize);
+            finding.add(|| here.clone().with_column(&letters), &letters);
+        }
         findings.push(finding);
     }
     if !sheet.merged.is_empty() {
@@ -400,9 +442,12 @@ impl<'s> Grid<'s> {
     }
 
     fn put(&self, raw: &mut Raw<'s>, row: u32, cell: &'s Cell) {
-        match (&cell.stuff, raw.values.get_mut(row as usize)) {
-            (Stuff::Number(number), Some(place)) => *place = *number,
-            _ => raw.odd.push(self.odd(row, cell)),
+        if let (Stuff::Number(number), Some(place)) =
+            (&cell.stuff, raw.values.get_mut(row as usize))
+        {
+            *place = *number;
+        } else {
+            raw.odd.push(self.odd(row, cell));
         }
     }
 

@@ -597,6 +597,7 @@ impl Start {
             weight: first(Role::Weight),
             covariates: self.roles.all(Role::Covariate),
             ignored: self.roles.all(Role::Ignored),
+            date: Some(crate::app::disk::today()),
             reading: self
                 .tables
                 .iter()

@@ -14,11 +14,31 @@ use crate::study::cell::CellId;
 use crate::study::edit::Edit;
 use crate::study::settings::Settings;
 use crate::study::settings::fit::Strength;
+use crate::study::settings::said::said;
 use std::path::PathBuf;
 
 impl StudyScreen {
+    /// Takes up what was offered about a finding, as an ordinary edit.
+    fn take_offer(&mut self, id: CellId, setting: &str) -> Action {
+        let settings = self.session.study().cell(id).map(|cell| &cell.settings);
+        let Some(Settings::Data(data)) = settings else {
+            return Action::None;
+        };
+        match said(data, setting) {
+            Ok(data) => {
+                let settings = Settings::Data(data);
+                self.commit(setting, vec![Edit::Configure { id, settings }])
+            }
+            Err(problem) => {
+                self.said = Some(problem.found);
+                Action::None
+            }
+        }
+    }
+
     pub(super) fn in_block(&mut self, id: CellId, at: usize, message: block::Message) -> Action {
         match message {
+            block::Message::Offer(setting) => self.take_offer(id, &setting),
             block::Message::Figure(Told::Pressed(meaning)) => {
                 let is_thing = |meaning: &Meaning| !matches!(meaning, Meaning::Strength(_));
                 self.stand_out(meaning.filter(is_thing));
@@ -35,6 +55,7 @@ impl StudyScreen {
                         | Part::List(_)
                         | Part::Quote(_)
                         | Part::Code(_)
+                        | Part::Offers(_)
                         | Part::Rule
                         | Part::Tabular(..)
                         | Part::Figure(_),

@@ -1,6 +1,7 @@
 //! What the study screen does with words that are edited and prose that is typed.
 
 use crate::app::disk;
+use crate::app::editor::file::Earlier;
 use crate::app::editor::prose::{self, Offer, Prose};
 use crate::app::editor::{self, Open};
 use crate::app::part::cell;
@@ -11,7 +12,9 @@ use crate::report::sentence;
 use crate::study::cell::CellId;
 use crate::study::edit::Edit;
 use crate::study::settings::Settings;
-use crate::study::settings::slot::Value;
+use crate::study::settings::slot::data::DataSlot;
+use crate::study::settings::slot::table::TableSlot;
+use crate::study::settings::slot::{Slot, Value};
 use iced::widget::operation;
 use std::path::PathBuf;
 use std::sync::Arc;
@@ -32,7 +35,10 @@ impl StudyScreen {
         };
         let names = self.column_names(id);
         let beside = self.session.path();
-        let (open, task) = Open::new(self.session.study(), id, (nth, at), &word, names, beside);
+        let (mut open, task) = Open::new(self.session.study(), id, (nth, at), &word, names, beside);
+        if let Some(earlier) = self.earlier(id, &word.slot) {
+            open.replaces(earlier);
+        }
         self.editor = Some(open);
         let wrap = move |message| Message::Cell(id, Box::new(cell::Message::Editor(message)));
         Action::Run(task.map(wrap))
@@ -49,6 +55,22 @@ impl StudyScreen {
                 .map(|column| column.name.clone())
                 .collect()
         }))
+    }
+
+    /// The table that a file taken for this slot would replace.
+    fn earlier(&self, id: CellId, slot: &Slot) -> Option<Earlier> {
+        let Slot::Data(DataSlot::Table(at, TableSlot::File)) = slot else {
+            return None;
+        };
+        let Settings::Data(data) = &self.session.study().cell(id)?.settings else {
+            return None;
+        };
+        let bytes = self.session.shelf().get(&data.tables.get(*at)?.source)?;
+        Some(Earlier {
+            data: data.clone(),
+            at: *at,
+            bytes: Arc::clone(bytes),
+        })
     }
 
     pub(super) fn in_editor(&mut self, message: editor::Message) -> Action {

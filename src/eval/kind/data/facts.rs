@@ -1,174 +1,45 @@
 //! The facts of a Data cell.
 
-use crate::base::layout::Orientation;
 use crate::base::number::Precision;
 use crate::eval::fact::{Fact, FactColumn, Facts};
-use crate::eval::finding;
 use crate::eval::kind::data::Dataset;
+use crate::eval::kind::data::design;
+use crate::eval::kind::data::imported;
 use crate::eval::kind::data::roles::Roles;
 use crate::numeric::response::Response;
 use crate::numeric::samples::Side;
 use crate::study::settings::data::{Data, OutcomeSeen};
+use crate::table::column::Values;
+use std::collections::BTreeSet;
 
 /// Publishes the facts of a Data cell.
 pub fn publish(facts: &mut Facts, settings: &Data, roles: &Roles) {
     let data = &roles.dataset;
-    tables(facts, roles);
+    imported::publish(facts, settings, roles);
     acts(facts, settings);
     flow(facts, settings, data);
+    design::publish(facts, settings, roles);
     outcome(facts, data);
     predictors(facts, settings, roles);
+    coding(facts, settings, data);
     gaps(facts, data);
 }
 
-fn texts<T>(items: &[T], get: impl Fn(&T) -> String) -> Vec<String> {
+pub(super) fn texts<T>(items: &[T], get: impl Fn(&T) -> String) -> Vec<String> {
     items.iter().map(get).collect()
 }
 
-fn counts<T>(items: &[T], name: &str, meaning: &str, get: impl Fn(&T) -> usize) -> FactColumn {
+pub(super) fn counts<T>(
+    items: &[T],
+    name: &str,
+    meaning: &str,
+    get: impl Fn(&T) -> usize,
+) -> FactColumn {
     let values = items.iter().map(|item| get(item) as f64).collect();
     FactColumn::numbers(name, values, "", Precision::Whole, meaning)
 }
 
-fn tables(facts: &mut Facts, roles: &Roles) {
-    let sources = &roles.sources;
-    facts.push(Fact::count(
-        "tables",
-        sources.len(),
-        "How many tables were read.",
-    ));
-    let orientation = |used: Option<Orientation>| match used {
-        Some(Orientation::SamplesInColumns) => "samples in columns",
-        Some(Orientation::SamplesInRows) | None => "samples in rows",
-    };
-    facts.push(Fact::table(
-        "source files",
-        vec![
-            FactColumn::texts(
-                "file",
-                texts(sources, |s| s.file.clone()),
-                "The file's name.",
-            ),
-            FactColumn::texts(
-                "sheet",
-                texts(sources, |s| s.sheet.clone()),
-                "The sheet of a workbook.",
-            ),
-            counts(sources, "bytes", "The file's size in bytes.", |s| s.bytes),
-            FactColumn::texts(
-                "sha-256",
-                texts(sources, |s| s.hash.clone()),
-                "The SHA-256 of the file's bytes.",
-            ),
-            FactColumn::texts(
-                "orientation",
-                texts(sources, |s| orientation(s.used.orientation).to_owned()),
-                "Whether a sample is a row or a column of the file.",
-            ),
-            counts(
-                sources,
-                "rows read",
-                "How many samples or things the table describes.",
-                |s| s.shape.0,
-            ),
-            counts(
-                sources,
-                "columns read",
-                "How many columns the table has.",
-                |s| s.shape.1,
-            ),
-        ],
-        "The files that were read, with what identifies them.",
-    ));
-    let findings = &roles.findings;
-    let place = |finding: &crate::table::finding::Finding| {
-        finding
-            .places
-            .first()
-            .map(ToString::to_string)
-            .unwrap_or_default()
-    };
-    facts.push(Fact::table(
-        "import findings",
-        vec![
-            FactColumn::texts(
-                "finding",
-                texts(findings, finding::sentence),
-                "What was found.",
-            ),
-            counts(findings, "count", "How often it was found.", |f| f.count),
-            FactColumn::texts(
-                "places",
-                texts(findings, place),
-                "Where it was found first.",
-            ),
-            FactColumn::texts(
-                "treatment",
-                texts(findings, |f| finding::treatment(f).to_owned()),
-                "What was done about it.",
-            ),
-        ],
-        "What was found while reading the tables, and what was done about it.",
-    ));
-    if roles.joins.is_empty() {
-        return;
-    }
-    let joins = &roles.joins;
-    facts.push(Fact::table(
-        "join report",
-        vec![
-            FactColumn::texts(
-                "table",
-                texts(joins, |(s, _)| s.file.clone()),
-                "The table that was joined.",
-            ),
-            FactColumn::texts(
-                "key",
-                texts(joins, |(s, _)| {
-                    s.join.as_ref().map(|j| j.left.clone()).unwrap_or_default()
-                }),
-                "The column on which it was joined.",
-            ),
-            counts(
-                joins,
-                "matched",
-                "How many samples found a row in the joined table.",
-                |(_, r)| r.matched,
-            ),
-            counts(
-                joins,
-                "only left",
-                "How many names stand only in the tables before.",
-                |(_, r)| r.only_left.len(),
-            ),
-            counts(
-                joins,
-                "only right",
-                "How many names stand only in the joined table.",
-                |(_, r)| r.only_right.len(),
-            ),
-            counts(
-                joins,
-                "repeated",
-                "How many names stand in the joined table more than once.",
-                |(_, r)| r.repeated_right.len(),
-            ),
-            FactColumn::texts(
-                "only left names",
-                texts(joins, |(_, r)| shown(&r.only_left)),
-                "The first names that stand only in the tables before.",
-            ),
-            FactColumn::texts(
-                "only right names",
-                texts(joins, |(_, r)| shown(&r.only_right)),
-                "The first names that stand only in the joined table.",
-            ),
-        ],
-        "What joining the tables found.",
-    ));
-}
-
-fn shown(names: &[String]) -> String {
+pub(super) fn shown(names: &[String]) -> String {
     let mut text = names.iter().take(8).cloned().collect::<Vec<_>>().join(", ");
     if names.len() > 8 {
         text.push_str(", …");
@@ -437,12 +308,25 @@ fn outcome(facts: &mut Facts, data: &Dataset) {
             "The classes of the outcome.",
         ));
     }
-    if let Response::Time { event, .. } = &data.response {
-        let events = data.analysed.iter().filter(|&&at| event[at]).count();
+    if let Response::Time { event, .. } | Response::YesNo(event) = &data.response {
+        let happened: Vec<usize> = data
+            .analysed
+            .iter()
+            .copied()
+            .filter(|&at| event[at])
+            .collect();
+        if data.unit_column.is_some() {
+            facts.push(Fact::count(
+                "units with events",
+                data.count_units(&happened),
+                "How many units have an analysed sample with the event.",
+            ));
+        }
+        let events = happened.len();
         facts.push(Fact::count(
             "events",
             events,
-            "How many analysed samples had the event.",
+            "How many analysed samples had the event, or of yes/no answered yes.",
         ));
     }
 }
@@ -486,6 +370,75 @@ fn predictors(facts: &mut Facts, settings: &Data, roles: &Roles) {
     if !data.covariate_names.is_empty() {
         facts.push(Fact::text("covariate names", data.covariate_names.join(", "), "The columns that are always in the model; a category is one column per level but its first."));
     }
+}
+
+/// How each covariate enters the model: as a number, or as one column for every level but one.
+fn coding(facts: &mut Facts, settings: &Data, data: &Dataset) {
+    struct Coded {
+        name: String,
+        how: &'static str,
+        reference: String,
+        levels: String,
+    }
+    let coded: Vec<Coded> = settings
+        .covariates
+        .iter()
+        .filter_map(|name| {
+            let column = data.table.column(name)?;
+            let name = name.clone();
+            Some(match &column.values {
+                Values::Numbers(_) => Coded {
+                    name,
+                    how: "a number",
+                    reference: String::new(),
+                    levels: String::new(),
+                },
+                Values::Texts(texts) => {
+                    let levels: BTreeSet<&str> = data
+                        .table_rows
+                        .iter()
+                        .filter_map(|&row| texts[row].as_deref())
+                        .collect();
+                    let mut levels = levels.into_iter();
+                    Coded {
+                        name,
+                        how: "one column for each other level",
+                        reference: levels.next().unwrap_or_default().to_owned(),
+                        levels: levels.collect::<Vec<_>>().join(", "),
+                    }
+                }
+            })
+        })
+        .collect();
+    if coded.is_empty() {
+        return;
+    }
+    facts.push(Fact::table(
+        "covariate coding",
+        vec![
+            FactColumn::texts(
+                "covariate",
+                texts(&coded, |c| c.name.clone()),
+                "The covariate.",
+            ),
+            FactColumn::texts(
+                "coded as",
+                texts(&coded, |c| c.how.to_owned()),
+                "How it enters the model.",
+            ),
+            FactColumn::texts(
+                "reference",
+                texts(&coded, |c| c.reference.clone()),
+                "The level with which the others are compared; the first by its letters.",
+            ),
+            FactColumn::texts(
+                "other levels",
+                texts(&coded, |c| c.levels.clone()),
+                "The levels with a column of their own.",
+            ),
+        ],
+        "How covariates are coded.",
+    ));
 }
 
 fn gaps(facts: &mut Facts, data: &Dataset) {

@@ -1,12 +1,16 @@
 //! Evaluates a Data cell: tables read and joined, columns given their roles.
 
+mod design;
 mod facts;
+mod imported;
 mod outcome;
 mod roles;
 mod tables;
 
+pub use tables::{options, rule, with_units};
+
 use crate::base::work::{Cancelled, Work};
-use crate::eval::caveat::design;
+use crate::eval::caveat;
 use crate::eval::fact::Facts;
 use crate::eval::kind::{Ended, Inputs, verdict};
 use crate::eval::outcome::{Gives, Outcome, Verdict};
@@ -137,7 +141,7 @@ fn data(settings: &Data, inputs: &Inputs<'_>, work: &Work<'_>) -> Result<Outcome
     let roles = roles::assign(settings, joined, inputs.threads, &work.part(0.8..1.0))?;
     let mut facts = Facts::new();
     facts::publish(&mut facts, settings, &roles);
-    let caveats = design::caveats(&roles.dataset, &roles.findings, &facts);
+    let caveats = caveat::design::caveats(&roles.dataset, &roles.findings, &facts);
     Ok(Outcome {
         gives: Gives::Data(Arc::new(roles.dataset)),
         facts,

@@ -5,9 +5,12 @@ use crate::base::work::Work;
 use crate::eval::finding::read_problem;
 use crate::eval::kind::{Ended, Inputs};
 use crate::study::settings::data::{
-    Data, Join, LeadingZeros, LetterCase, OutcomeKind, Sealed, TableSource,
+    Data, Join, LeadingZeros, LetterCase, OutcomeKind, Sealed, TableSource, UnitMaking,
 };
 use crate::table::Table;
+use crate::table::column::Column;
+use crate::table::digest::{self, Digest};
+use crate::table::find::names::unit_of;
 use crate::table::finding::Finding;
 use crate::table::read::{Options, read};
 use crate::table::samples::{self, JoinReport, JoinRule};
@@ -36,6 +39,10 @@ pub struct SourceReport {
     pub bytes: usize,
     /// The SHA-256 of its bytes.
     pub hash: String,
+    /// The day on which the bytes were taken in, where it was told.
+    pub taken_on: String,
+    /// The digest of the table as read, whatever its form.
+    pub table: Digest,
     /// The sheet, of a workbook.
     pub sheet: String,
     /// Every interpretation.
@@ -74,10 +81,19 @@ pub fn read_and_join(
         let options = options(source, settings);
         let reading = read(bytes, &source.file, &options, inputs.threads, &bar)?
             .map_err(|error| read_problem(&error, &source.file))?;
+        let mut reading = reading;
+        for finding in &mut reading.findings {
+            finding.file = Some(source.file.clone());
+        }
         let report = SourceReport {
             file: source.file.clone(),
             bytes: bytes.len(),
             hash: source.source.hex().to_owned(),
+            taken_on: source.taken_on.clone().unwrap_or_default(),
+            table: digest::of_table(
+                reading.table.n_rows(),
+                &digest::of_columns_in(&reading.table, inputs.threads, &bar)?,
+            ),
             sheet: reading.used.sheet.clone().unwrap_or_default(),
             used: reading.used.clone(),
             shape: (reading.table.n_rows(), reading.table.columns().len()),
@@ -85,7 +101,7 @@ pub fn read_and_join(
         joined = Some(match joined {
             None => Joined {
                 n_first: reading.table.columns().len(),
-                table: reading.table,
+                table: with_units(reading.table, settings)?,
                 findings: reading.findings,
                 sources: vec![report],
                 joins: Vec::new(),
@@ -94,6 +110,41 @@ pub fn read_and_join(
         });
     }
     Ok(joined.expect("there is at least one table"))
+}
+
+/// The table with a column of units made from the sample names, where that is wished for.
+///
+/// # Errors
+/// When the names are in no column, or the column to be made is there already.
+pub fn with_units(mut table: Table, settings: &Data) -> Result<Table, Problem> {
+    let (Some(unit), UnitMaking::FromNames) = (&settings.unit, settings.unit_making) else {
+        return Ok(table);
+    };
+    let Some(names) = settings
+        .sample_name
+        .as_ref()
+        .and_then(|name| table.column(name))
+    else {
+        return Err(Problem::new(
+            "units-without-names",
+            format!("“{unit}” should be made from the sample names, but no column names them."),
+        )
+        .mend("Choose the column that names the samples."));
+    };
+    if table.column(unit).is_some() {
+        return Err(Problem::new(
+            "unit-is-there",
+            format!("“{unit}” should be made from the sample names, but the table has it."),
+        )
+        .mend("Take the unit from the table, or call the one that is made otherwise."));
+    }
+    let units = names
+        .labels()
+        .iter()
+        .map(|name| name.as_deref().map(|name| unit_of(name).to_owned()))
+        .collect();
+    table.add(vec![Column::texts(unit, units)], vec![(0, 0)]);
+    Ok(table)
 }
 
 fn join(
@@ -168,8 +219,8 @@ pub fn rule(join: &Join) -> JoinRule {
 
 /// How a table is read: what the settings say, and which columns are names or numbers because of
 /// their roles.
-fn options(source: &TableSource, settings: &Data) -> Options {
-    let mut as_text: Vec<String> = Vec::new();
+pub fn options(source: &TableSource, settings: &Data) -> Options {
+    let mut as_text: Vec<String> = settings.as_text.clone();
     as_text.extend(settings.sample_name.clone());
     as_text.extend(settings.unit.clone());
     as_text.extend(settings.batch.clone());
@@ -184,7 +235,7 @@ fn options(source: &TableSource, settings: &Data) -> Options {
     if let Sealed::Where { column, .. } = &settings.sealed {
         as_text.push(column.clone());
     }
-    let mut as_numbers: Vec<String> = Vec::new();
+    let mut as_numbers: Vec<String> = settings.as_numbers.clone();
     as_numbers.extend(settings.order.clone());
     as_numbers.extend(settings.weight.clone());
     if let Some(outcome) = &settings.outcome {
@@ -210,12 +261,12 @@ fn options(source: &TableSource, settings: &Data) -> Options {
         encoding: source.encoding,
         delimiter: source.delimiter,
         decimal: source.decimal,
+        grouping: source.grouping,
         header_row: source.header_row,
         units_row: source.units_row,
         orientation: source.orientation,
         missing_codes: source.missing_codes.clone(),
         as_text,
         as_numbers,
-        ..Options::default()
     }
 }

@@ -1,7 +1,8 @@
 //! What came of reading: how many samples, the design, the import report.
 
 use crate::eval::fact::Fact;
-use crate::report::block::{Block, Grid, Paragraph};
+use crate::report::block::{Block, Grid, Offer, Paragraph};
+use crate::report::kind::data::design;
 use crate::report::noun;
 use crate::report::tell::Source;
 use crate::study::settings::data::Data;
@@ -27,7 +28,7 @@ pub fn answer(data: &Data, source: &Source<'_>) -> Paragraph {
 }
 
 /// The facts of the design, in the order in which they are read.
-const DESIGN: [&str; 15] = [
+const DESIGN: [&str; 19] = [
     "samples",
     "units",
     "samples per unit least",
@@ -40,6 +41,10 @@ const DESIGN: [&str; 15] = [
     "outcome least",
     "outcome most",
     "events",
+    "units with events",
+    "batch association",
+    "order association",
+    "outcome share between units",
     "missing share",
     "below-limit share",
     "covariate names",
@@ -57,10 +62,23 @@ pub fn blocks(source: &Source<'_>) -> Vec<Block> {
             &design,
         )));
     }
+    blocks.extend(design::figures(source).into_iter().map(Block::Figure));
+    blocks.extend(offers(source));
     for (fact, title) in [
-        ("outcome classes", "Classes of the outcome"),
         ("import findings", "The import report"),
+        ("import places", "Where all that stands"),
         ("join report", "What was joined"),
+        ("names that did not match", "Names that did not match"),
+        ("flow of samples", "From the file to the fit"),
+        ("outcome classes", "Classes of the outcome"),
+        ("outcome by batch", "The outcome by batch"),
+        (
+            "outcome by order",
+            "The outcome by the order of measurement",
+        ),
+        ("units by size", "Units by their number of samples"),
+        ("outcome by unit", "The outcome by unit"),
+        ("covariate coding", "How covariates are coded"),
         ("exclusions", "Samples that were excluded"),
         ("corrections", "Values that were corrected"),
         ("source files", "The files"),
@@ -68,4 +86,18 @@ pub fn blocks(source: &Source<'_>) -> Vec<Block> {
         blocks.extend(Grid::of_table(title, source.cell, source.facts, fact).map(Block::Grid));
     }
     blocks
+}
+
+/// What can be done about the findings with one press.
+fn offers(source: &Source<'_>) -> Option<Block> {
+    let table = source.rows("import offers")?;
+    let offers = table
+        .texts("offer")
+        .iter()
+        .zip(table.texts("setting"))
+        .map(|(label, setting)| Offer {
+            label: label.clone(),
+            setting: setting.clone(),
+        });
+    Some(Block::Offers(offers.collect()))
 }

@@ -61,7 +61,15 @@ fn read(source: &Source<'_>, table: &FactTable, row: usize) -> Paragraph {
         said = entry(said.text(", sheet “"), "sheet").text("”");
     }
     said = entry(said.text(" ("), "bytes").text(" bytes, ");
-    said = entry(said.formula("SHA-256").text(" "), "sha-256").text("; ");
+    said = entry(said.formula("SHA-256").text(" "), "sha-256");
+    let is_dated = table
+        .texts("taken on")
+        .get(row)
+        .is_some_and(|day| !day.is_empty());
+    if is_dated {
+        said = entry(said.text(", taken in on "), "taken on");
+    }
+    said = said.text("; ");
     said = entry(said, "rows read").text(" samples or things in ");
     said = entry(said, "columns read").text(" columns; ");
     entry(said, "orientation").text(").")
@@ -75,8 +83,20 @@ fn joined(source: &Source<'_>, table: &FactTable, row: usize) -> Paragraph {
         ("” (samples that found their row: ", "matched"),
         ("; names only in the tables before: ", "only left"),
         ("; names only in this table: ", "only right"),
-        ("; names that occurred in it more than once: ", "repeated"),
+        (
+            "; names that occurred in it more than once with differing values: ",
+            "repeated",
+        ),
+        (
+            "; most samples served by one of its rows: ",
+            "samples per row",
+        ),
+        ("; ", "rule"),
     ] {
+        // A report of an earlier version lacks some of it.
+        if table.column(column).is_none() {
+            continue;
+        }
         said = said
             .text(before)
             .entry(source.cell, "join report", table, row, column);
@@ -158,6 +178,19 @@ fn flow(telling: &mut Telling, data: &Data, source: &Source<'_>) {
     if data.batch.is_some() {
         telling.say(source.say(
             "The column “{batch column}” told {batches} [batch|batches] apart.",
+            &[],
+        ));
+        if source.has("batch association") {
+            telling.say(source.say(
+                "Before any fit, the association of batch and outcome was {batch association}.",
+                &[],
+            ));
+        }
+    }
+    if data.order.is_some() && source.has("order association") {
+        telling.say(source.say(
+            "The rank correlation of the outcome with the order of measurement was {order \
+             association}.",
             &[],
         ));
     }
@@ -261,6 +294,23 @@ fn predictors(telling: &mut Telling, source: &Source<'_>) {
              without penalty.",
             &[],
         ));
+    }
+    if let Some(table) = source.rows("covariate coding") {
+        for row in 0..table.n_rows() {
+            let is_coded = table
+                .texts("reference")
+                .get(row)
+                .is_some_and(|reference| !reference.is_empty());
+            if is_coded {
+                let entry = |paragraph: Paragraph, column: &str| {
+                    paragraph.entry(source.cell, "covariate coding", table, row, column)
+                };
+                let said = entry(Paragraph::of("“"), "covariate").text("” entered as ");
+                let said = entry(said, "coded as").text(" (");
+                let said = entry(said, "other levels").text("), compared with “");
+                telling.say(entry(said, "reference").text("”."));
+            }
+        }
     }
     if source.has("weight column") {
         telling.say(source.say(

@@ -1,6 +1,7 @@
 //! What a Data cell has to say.
 
 pub mod answer;
+pub mod design;
 pub mod methods;
 pub mod table;
 
@@ -8,7 +9,7 @@ use crate::eval::fact::Facts;
 use crate::report::noun;
 use crate::report::sentence::{Editor, Sentence};
 use crate::report::word;
-use crate::study::settings::data::{Data, Outcome, OutcomeKind, Sealed, Subject};
+use crate::study::settings::data::{Data, Outcome, OutcomeKind, Sealed, Subject, UnitMaking};
 use crate::study::settings::slot::Slot;
 use crate::study::settings::slot::data::DataSlot;
 
@@ -23,6 +24,10 @@ const SEALINGS: [(&str, &str); 3] = [
     ("nothing", "no sample is sealed"),
     ("where", "those whose column holds certain words"),
     ("listed", "those that are named"),
+];
+const MAKINGS: [(&str, &str); 2] = [
+    ("in-column", "a column of the tables"),
+    ("from-names", "what the sample names begin with"),
 ];
 const SUBJECTS: [(&str, &str); 4] = [
     ("ordinary", "nothing that asks for special caution"),
@@ -66,6 +71,7 @@ pub fn sentences(data: &Data, facts: Option<&Facts>) -> Vec<Sentence> {
     for at in 0..data.tables.len() {
         sentences.push(table::details(data, at).detail());
     }
+    sentences.push(as_written(data).detail());
     sentences.push(
         Sentence::new()
             .text("Join ")
@@ -190,10 +196,27 @@ fn together(data: &Data) -> Sentence {
         Some(column) => Sentence::new()
             .text(format!("Keep {} of one ", samples.many))
             .word(unit, column.clone(), Editor::Column)
-            .text(" together"),
+            .text(" together, told by ")
+            .choice(
+                Slot::Data(DataSlot::UnitMaking),
+                reading(
+                    &MAKINGS,
+                    match data.unit_making {
+                        UnitMaking::InColumn => "in-column",
+                        UnitMaking::FromNames => "from-names",
+                    },
+                ),
+                &MAKINGS,
+            ),
         None => Sentence::new()
             .text(format!("Each {} is ", samples.one))
-            .word(unit, "a unit of its own", Editor::Column),
+            .word(unit, "a unit of its own", Editor::Column)
+            .text("; units could be told by ")
+            .choice(
+                Slot::Data(DataSlot::UnitMaking),
+                reading(&MAKINGS, "in-column"),
+                &MAKINGS,
+            ),
     };
     sentence
         .text("; batch is ")
@@ -226,6 +249,23 @@ fn covariates(data: &Data) -> Sentence {
             Editor::Names,
         )
         .text(" in the model whatever the penalty.")
+}
+
+fn as_written(data: &Data) -> Sentence {
+    Sentence::new()
+        .text("Read ")
+        .word(
+            Slot::Data(DataSlot::AsText),
+            names(&data.as_text, "no column"),
+            Editor::Names,
+        )
+        .text(" as text, letter for letter, and ")
+        .word(
+            Slot::Data(DataSlot::AsNumbers),
+            names(&data.as_numbers, "no column"),
+            Editor::Names,
+        )
+        .text(" as numbers, whatever they hold; of the others, as found.")
 }
 
 fn sealed(data: &Data, facts: Option<&Facts>) -> Sentence {

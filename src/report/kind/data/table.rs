@@ -1,6 +1,6 @@
 //! How a table is read, in words: for Data cells and for Score cells.
 
-use crate::base::layout::{DecimalMark, Delimiter, Encoding, Orientation, UnitsRow};
+use crate::base::layout::{DecimalMark, Delimiter, Encoding, Grouping, Orientation, UnitsRow};
 use crate::report::noun;
 use crate::report::sentence::{Editor, Sentence};
 use crate::report::word;
@@ -33,6 +33,11 @@ const DECIMALS: [(&str, &str); 3] = [
     ("as-found", "the mark that is found"),
     ("point", "a point"),
     ("comma", "a comma"),
+];
+const GROUPINGS: [(&str, &str); 3] = [
+    ("as-found", "as found"),
+    ("absent", "never as one number"),
+    ("read", "as one number"),
 ];
 const UNITS_ROWS: [(&str, &str); 3] = [
     ("as-found", "a row of units, if there is one,"),
@@ -174,6 +179,15 @@ pub fn layout(
     if !table.is_workbook() {
         sentence = marks(sentence, table, slot);
     }
+    let grouping = match table.grouping {
+        None => GROUPINGS[0].1,
+        Some(Grouping::Absent) => GROUPINGS[1].1,
+        Some(Grouping::Read) => GROUPINGS[2].1,
+    };
+    sentence = sentence
+        .text("groups of digits as in 1,234 are read ")
+        .choice(slot(TableSlot::Grouping), grouping, &GROUPINGS)
+        .text("; ");
     let mut codes = vec!["blanks".to_owned()];
     codes.extend(table.missing_codes.iter().map(|code| format!("“{code}”")));
     sentence

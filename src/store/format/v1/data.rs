@@ -5,7 +5,7 @@ use crate::store::format::v1::words;
 use crate::store::format::v1::{Group, Reading, Writing};
 use crate::study::settings::data::{
     ColumnRange, Correction, Data, Exclusion, Join, LeadingZeros, LetterCase, Outcome, OutcomeKind,
-    OutcomeSeen, Sealed, Subject, TableSource,
+    OutcomeSeen, Sealed, Subject, TableSource, UnitMaking,
 };
 use crate::study::source::SourceId;
 use serde_json::Value;
@@ -25,11 +25,16 @@ pub fn read(fields: &mut Fields<'_>, reading: &Reading<'_>) -> Result<Data, Faul
             .unwrap_or_default(),
         sample_name: fields.text("sample-name")?,
         unit: fields.text("unit")?,
+        unit_making: fields
+            .read("unit-from", |at| at.one_of(words::UNIT_MAKINGS))?
+            .unwrap_or_default(),
         batch: fields.text("batch")?,
         order: fields.text("order")?,
         weight: fields.text("weight")?,
         covariates: fields.texts("covariates")?,
         ignored: fields.texts("ignored")?,
+        as_text: fields.texts("as-text")?,
+        as_numbers: fields.texts("as-numbers")?,
         corrections: Arc::new(
             fields
                 .read("corrections", |at| at.each(|entry| read_correction(&entry)))?
@@ -58,11 +63,16 @@ pub fn write(data: &Data, group: &mut Group, writing: &Writing<'_>) {
     group.put_list("predictors", data.predictors.iter().map(write_range));
     group.put_some("sample-name", data.sample_name.clone());
     group.put_some("unit", data.unit.clone());
+    if data.unit_making != UnitMaking::InColumn {
+        group.put("unit-from", words::unit_making(data.unit_making));
+    }
     group.put_some("batch", data.batch.clone());
     group.put_some("order", data.order.clone());
     group.put_some("weight", data.weight.clone());
     group.put_list("covariates", data.covariates.iter().cloned());
     group.put_list("ignored", data.ignored.iter().cloned());
+    group.put_list("as-text", data.as_text.iter().cloned());
+    group.put_list("as-numbers", data.as_numbers.iter().cloned());
     group.put_list("corrections", data.corrections.iter().map(write_correction));
     group.put_list("exclusions", data.exclusions.iter().map(write_exclusion));
     match &data.sealed {
@@ -101,10 +111,12 @@ pub fn read_table(at: &At<'_>, reading: &Reading<'_>) -> Result<TableSource, Fau
     })?;
     let (source, file) = (reading.table)(&named, hash);
     let table = TableSource {
+        taken_on: fields.text("taken-on")?,
         sheet: fields.text("sheet")?,
         encoding: fields.read("encoding", |at| at.one_of(words::ENCODINGS))?,
         delimiter: fields.read("delimiter", |at| at.one_of(words::DELIMITERS))?,
         decimal: fields.read("decimal-mark", |at| at.one_of(words::DECIMAL_MARKS))?,
+        grouping: fields.read("groups-of-digits", |at| at.one_of(words::DIGIT_GROUPS))?,
         header_row: fields
             .read("header-row", |at| at.count())?
             .map(|row| row as usize),
@@ -126,10 +138,12 @@ pub fn write_table(table: &TableSource, writing: &Writing<'_>) -> Value {
     if table.source.is_known() {
         group.put("sha256", table.source.hex());
     }
+    group.put_some("taken-on", table.taken_on.clone());
     group.put_some("sheet", table.sheet.clone());
     group.put_some("encoding", table.encoding.map(words::encoding));
     group.put_some("delimiter", table.delimiter.map(words::delimiter));
     group.put_some("decimal-mark", table.decimal.map(words::decimal_mark));
+    group.put_some("groups-of-digits", table.grouping.map(words::digit_groups));
     group.put_some("header-row", table.header_row);
     group.put_some("units-row", table.units_row.map(words::units_row));
     group.put_some("samples-in", table.orientation.map(words::orientation));

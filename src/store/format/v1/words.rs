@@ -1,7 +1,9 @@
 //! The words by which format 1 calls the choices of the settings.
 
-use crate::base::layout::{DecimalMark, Delimiter, Encoding, Orientation, UnitsRow};
-use crate::study::settings::data::{LeadingZeros, LetterCase, OutcomeSeen, Subject};
+use crate::base::layout::{
+    DecimalMark, Delimiter, Encoding, Grouping as DigitGroups, Orientation, UnitsRow,
+};
+use crate::study::settings::data::{LeadingZeros, LetterCase, OutcomeSeen, Subject, UnitMaking};
 use crate::study::settings::fit::{ErrorMeasure, Grouping, Scaling, Scheme, Ties};
 use crate::study::settings::question::Seal;
 
@@ -45,6 +47,14 @@ words!(ORIENTATIONS, orientation, Orientation {
 words!(UNITS_ROWS, units_row, UnitsRow {
     Absent => "absent",
     BelowHeader => "below-header",
+});
+words!(DIGIT_GROUPS, digit_groups, DigitGroups {
+    Absent => "absent",
+    Read => "read",
+});
+words!(UNIT_MAKINGS, unit_making, UnitMaking {
+    InColumn => "column",
+    FromNames => "sample-names",
 });
 words!(LETTER_CASES, letter_case, LetterCase {
     Distinct => "distinct",

@@ -1,7 +1,9 @@
 //! The places of a Data cell's settings.
 
 use crate::base::problem::Problem;
-use crate::study::settings::data::{Data, Outcome, OutcomeKind, Sealed, Subject, TableSource};
+use crate::study::settings::data::{
+    Data, Outcome, OutcomeKind, Sealed, Subject, TableSource, UnitMaking,
+};
 use crate::study::settings::slot::table::{TableSlot, usual_join};
 use crate::study::settings::slot::{Bounds, Value, take};
 use std::sync::Arc;
@@ -37,6 +39,8 @@ pub enum DataSlot {
     SampleName,
     /// The column that names the units.
     Unit,
+    /// Whether the tables have that column, or it is made from the sample names.
+    UnitMaking,
     /// The column that names the batch.
     Batch,
     /// The column with the position or time of measurement.
@@ -51,6 +55,10 @@ pub enum DataSlot {
     SealedValues,
     /// The names of the sealed units.
     SealedNames,
+    /// The columns that are read as text.
+    AsText,
+    /// The columns that are read as numbers.
+    AsNumbers,
     /// The recorded changes of single values.
     Corrections,
     /// The recorded removals of samples.
@@ -101,8 +109,16 @@ const SUBJECTS: [(&str, Subject); 4] = [
 ];
 const SUBJECT_NAMES: [&str; 4] = take::names(&SUBJECTS);
 
+const MAKINGS: [(&str, UnitMaking); 2] = [
+    ("in-column", UnitMaking::InColumn),
+    ("from-names", UnitMaking::FromNames),
+];
+const MAKING_NAMES: [&str; 2] = take::names(&MAKINGS);
+
 /// The column of events that is taken until another is named.
 const USUAL_EVENT: &str = "event";
+/// What units are called that are made from the sample names until another word is chosen.
+const USUAL_UNIT: &str = "unit";
 /// The column that seals until another is named.
 const USUAL_SEAL: &str = "sealed";
 
@@ -134,6 +150,7 @@ impl DataSlot {
             Self::Ignored,
             Self::Covariates,
             Self::Unit,
+            Self::UnitMaking,
             Self::Batch,
             Self::Order,
             Self::Weight,
@@ -144,7 +161,13 @@ impl DataSlot {
             Sealed::Where { .. } => vec![Self::SealedColumn, Self::SealedValues],
             Sealed::Listed(_) => vec![Self::SealedNames],
         });
-        slots.extend([Self::Corrections, Self::Exclusions, Self::Subject]);
+        slots.extend([
+            Self::AsText,
+            Self::AsNumbers,
+            Self::Corrections,
+            Self::Exclusions,
+            Self::Subject,
+        ]);
         slots
     }
 
@@ -166,6 +189,7 @@ impl DataSlot {
             Self::Covariates => "covariates",
             Self::SampleName => "column of sample names",
             Self::Unit => "unit",
+            Self::UnitMaking => "making of the unit",
             Self::Batch => "batch",
             Self::Order => "order of measurement",
             Self::Weight => "weight",
@@ -173,6 +197,8 @@ impl DataSlot {
             Self::SealedColumn => "column of the sealed set",
             Self::SealedValues => "values of the sealed set",
             Self::SealedNames => "names of the sealed set",
+            Self::AsText => "columns of text",
+            Self::AsNumbers => "columns of numbers",
             Self::Corrections => "corrections",
             Self::Exclusions => "exclusions",
             Self::Subject => "subject of the study",
@@ -187,6 +213,7 @@ impl DataSlot {
             Self::OutcomeKind => &SORT_NAMES,
             Self::Sealed => &SEALING_NAMES,
             Self::Subject => &SUBJECT_NAMES,
+            Self::UnitMaking => &MAKING_NAMES,
             Self::NextTable
             | Self::Outcome
             | Self::OutcomeYes
@@ -205,6 +232,8 @@ impl DataSlot {
             | Self::SealedColumn
             | Self::SealedValues
             | Self::SealedNames
+            | Self::AsText
+            | Self::AsNumbers
             | Self::Corrections
             | Self::Exclusions => &[],
         }
@@ -231,6 +260,7 @@ impl DataSlot {
             | Self::Covariates
             | Self::SampleName
             | Self::Unit
+            | Self::UnitMaking
             | Self::Batch
             | Self::Order
             | Self::Weight
@@ -238,6 +268,8 @@ impl DataSlot {
             | Self::SealedColumn
             | Self::SealedValues
             | Self::SealedNames
+            | Self::AsText
+            | Self::AsNumbers
             | Self::Corrections
             | Self::Exclusions
             | Self::Subject => None,
@@ -283,6 +315,7 @@ impl DataSlot {
             Self::Covariates => Value::Texts(data.covariates.clone()),
             Self::SampleName => Value::Column(data.sample_name.clone()),
             Self::Unit => Value::Column(data.unit.clone()),
+            Self::UnitMaking => take::named(&MAKINGS, data.unit_making),
             Self::Batch => Value::Column(data.batch.clone()),
             Self::Order => Value::Column(data.order.clone()),
             Self::Weight => Value::Column(data.weight.clone()),
@@ -306,6 +339,8 @@ impl DataSlot {
                 Sealed::Listed(names) => Value::Texts(names.clone()),
                 Sealed::Nothing | Sealed::Where { .. } => return None,
             },
+            Self::AsText => Value::Texts(data.as_text.clone()),
+            Self::AsNumbers => Value::Texts(data.as_numbers.clone()),
             Self::Corrections => Value::Corrections(Arc::clone(&data.corrections)),
             Self::Exclusions => Value::Exclusions(Arc::clone(&data.exclusions)),
             Self::Subject => take::named(&SUBJECTS, data.subject),
@@ -339,12 +374,26 @@ impl DataSlot {
             Self::Ignored => data.ignored = take::texts(label, &value)?,
             Self::Covariates => data.covariates = take::texts(label, &value)?,
             Self::SampleName => data.sample_name = take::optional_column(label, &value)?,
-            Self::Unit => data.unit = take::optional_column(label, &value)?,
+            Self::Unit => set_unit(&mut data, take::optional_column(label, &value)?),
+            Self::UnitMaking => {
+                data.unit_making = take::pick(label, &MAKINGS, &value)?;
+                if data.unit_making == UnitMaking::FromNames {
+                    let _ = data.unit.get_or_insert_with(|| USUAL_UNIT.to_owned());
+                }
+            }
             Self::Batch => data.batch = take::optional_column(label, &value)?,
             Self::Order => data.order = take::optional_column(label, &value)?,
             Self::Weight => data.weight = take::optional_column(label, &value)?,
             Self::Sealed | Self::SealedColumn | Self::SealedValues | Self::SealedNames => {
                 data.sealed = self.sealed(&data.sealed, &value)?;
+            }
+            Self::AsText => {
+                data.as_text = take::texts(label, &value)?;
+                data.as_numbers.retain(|name| !data.as_text.contains(name));
+            }
+            Self::AsNumbers => {
+                data.as_numbers = take::texts(label, &value)?;
+                data.as_text.retain(|name| !data.as_numbers.contains(name));
             }
             Self::Corrections => {
                 let Value::Corrections(corrections) = value else {
@@ -418,6 +467,7 @@ impl DataSlot {
             | Self::Covariates
             | Self::SampleName
             | Self::Unit
+            | Self::UnitMaking
             | Self::Batch
             | Self::Order
             | Self::Weight
@@ -425,6 +475,8 @@ impl DataSlot {
             | Self::SealedColumn
             | Self::SealedValues
             | Self::SealedNames
+            | Self::AsText
+            | Self::AsNumbers
             | Self::Corrections
             | Self::Exclusions
             | Self::Subject => {}
@@ -506,6 +558,14 @@ fn set_outcome(data: &mut Data, value: &Value) -> Result<(), Problem> {
         }),
     };
     Ok(())
+}
+
+/// Another column is one of the tables until it is said to be made.
+fn set_unit(data: &mut Data, column: Option<String>) {
+    if column != data.unit {
+        data.unit_making = UnitMaking::InColumn;
+    }
+    data.unit = column;
 }
 
 fn set_table(data: &mut Data, at: usize, slot: TableSlot, value: &Value) -> Result<(), Problem> {

@@ -1,6 +1,6 @@
 //! The places of one imported table: the file, and how it is read.
 
-use crate::base::layout::{DecimalMark, Delimiter, Encoding, Orientation, UnitsRow};
+use crate::base::layout::{DecimalMark, Delimiter, Encoding, Grouping, Orientation, UnitsRow};
 use crate::base::problem::Problem;
 use crate::study::settings::data::{Join, LeadingZeros, LetterCase, TableSource};
 use crate::study::settings::slot::{Bounds, Value, take};
@@ -20,6 +20,8 @@ pub enum TableSlot {
     Delimiter,
     /// What stands before decimals.
     Decimal,
+    /// Whether marks between groups of digits are read.
+    Grouping,
     /// The row with the column names, counted from 1; nothing leaves it to the reader.
     HeaderRow,
     /// Whether a row of units follows.
@@ -65,6 +67,12 @@ const DECIMALS: [(&str, Option<DecimalMark>); 3] = [
     ("comma", Some(DecimalMark::Comma)),
 ];
 const DECIMAL_NAMES: [&str; 3] = take::names(&DECIMALS);
+const GROUPINGS: [(&str, Option<Grouping>); 3] = [
+    ("as-found", None),
+    ("absent", Some(Grouping::Absent)),
+    ("read", Some(Grouping::Read)),
+];
+const GROUPING_NAMES: [&str; 3] = take::names(&GROUPINGS);
 const UNITS_ROWS: [(&str, Option<UnitsRow>); 3] = [
     ("as-found", None),
     ("absent", Some(UnitsRow::Absent)),
@@ -101,7 +109,7 @@ impl TableSlot {
         if !table.is_workbook() {
             slots.extend([Self::Delimiter, Self::Decimal, Self::Encoding]);
         }
-        slots.push(Self::MissingCodes);
+        slots.extend([Self::Grouping, Self::MissingCodes]);
         if table.join.is_some() {
             slots.extend([Self::JoinRight, Self::JoinCase, Self::JoinZeros]);
         }
@@ -118,6 +126,7 @@ impl TableSlot {
             Self::Encoding => "encoding",
             Self::Delimiter => "separator",
             Self::Decimal => "decimal mark",
+            Self::Grouping => "groups of digits",
             Self::HeaderRow => "row of names",
             Self::UnitsRow => "row of units",
             Self::MissingCodes => "words for missing values",
@@ -136,6 +145,7 @@ impl TableSlot {
             Self::Encoding => &ENCODING_NAMES,
             Self::Delimiter => &DELIMITER_NAMES,
             Self::Decimal => &DECIMAL_NAMES,
+            Self::Grouping => &GROUPING_NAMES,
             Self::UnitsRow => &UNITS_ROW_NAMES,
             Self::JoinCase => &CASE_NAMES,
             Self::JoinZeros => &ZERO_NAMES,
@@ -162,6 +172,7 @@ impl TableSlot {
             | Self::Encoding
             | Self::Delimiter
             | Self::Decimal
+            | Self::Grouping
             | Self::UnitsRow
             | Self::MissingCodes
             | Self::JoinLeft
@@ -185,6 +196,7 @@ impl TableSlot {
             Self::Encoding => take::named(&ENCODINGS, table.encoding),
             Self::Delimiter => take::named(&DELIMITERS, table.delimiter),
             Self::Decimal => take::named(&DECIMALS, table.decimal),
+            Self::Grouping => take::named(&GROUPINGS, table.grouping),
             Self::HeaderRow => table
                 .header_row
                 .map_or(Value::Nothing, |row| Value::Whole(row as u64)),
@@ -216,6 +228,9 @@ impl TableSlot {
                     table.delimiter = None;
                     table.decimal = None;
                 }
+                if table.source != *source {
+                    table.taken_on = None;
+                }
                 table.source = source.clone();
                 table.file.clone_from(name);
             }
@@ -224,6 +239,7 @@ impl TableSlot {
             Self::Encoding => table.encoding = take::pick(label, &ENCODINGS, value)?,
             Self::Delimiter => table.delimiter = take::pick(label, &DELIMITERS, value)?,
             Self::Decimal => table.decimal = take::pick(label, &DECIMALS, value)?,
+            Self::Grouping => table.grouping = take::pick(label, &GROUPINGS, value)?,
             Self::HeaderRow => {
                 table.header_row = match self.bounds() {
                     Some(bounds) if !take::is_nothing(value) => {
@@ -265,6 +281,7 @@ impl TableSlot {
             | Self::Encoding
             | Self::Delimiter
             | Self::Decimal
+            | Self::Grouping
             | Self::HeaderRow
             | Self::UnitsRow
             | Self::MissingCodes => {}

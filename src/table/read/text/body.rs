@@ -344,14 +344,14 @@ fn strip<'a>(
                     };
                     let sort = sort(&text, manner.mark, manner.grouping);
                     *place = f64::NAN;
-                    match sort {
-                        Sort::Blank => return,
-                        Sort::Number(value) => {
-                            *place = value;
-                            return;
-                        }
-                        _ => (text, sort),
+                    if let Some(value) = sort.plain() {
+                        *place = value;
+                        return;
                     }
+                    if sort == Sort::Blank {
+                        return;
+                    }
+                    (text, sort)
                 }
             };
             let row = (first + at) as u32;

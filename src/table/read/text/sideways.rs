@@ -213,14 +213,15 @@ fn across<'a>(
             is_long = true;
             return;
         }
-        match (raw.values.get_mut(row), sort) {
-            (Some(place), Sort::Number(value)) => *place = value,
-            _ => raw.odd.push(Odd {
+        if let (Some(place), Some(value)) = (raw.values.get_mut(row), sort.plain()) {
+            *place = value;
+        } else {
+            raw.odd.push(Odd {
                 row: row as u32,
                 sort,
                 stored: Stored::Text,
                 text,
-            }),
+            });
         }
     });
     if is_long {

@@ -4,6 +4,7 @@ use crate::base::work::{Cancelled, Work};
 use crate::table::column::plain;
 use crate::table::read::cell::trimmed;
 use crate::table::read::error::ReadError;
+use crate::table::read::workbook::hidden::{Hidden, hidden};
 use crate::table::read::{Choices, SheetChoice, Visibility};
 use calamine::{
     Data, DataRef, ExcelDateTime, Ods, OdsError, Reader, SheetType, SheetVisible, Sheets,
@@ -63,6 +64,8 @@ pub struct Sheet {
     pub width: usize,
     /// The first cells of merged ones: row and column, from 0.
     pub merged: Vec<(u32, u32)>,
+    /// What the workbook hides of it.
+    pub hidden: Hidden,
 }
 
 /// A workbook of which one sheet has been read.
@@ -134,6 +137,10 @@ fn attempt(bytes: &[u8], asked: Option<&str>, work: &Work<'_>) -> Result<Book, S
         }
         None => first_with_table(&mut book, &choices, work)?,
     };
+    let mut sheet = sheet;
+    if let Sheets::Xlsx(_) = &book {
+        sheet.hidden = hidden(bytes, &sheet.name, work).map_err(|_| Stop::Cancelled)?;
+    }
     Ok(Book { sheet, choices })
 }
 
@@ -295,6 +302,7 @@ impl Filled {
             name: name.to_owned(),
             rows: vec![Vec::new(); n_rows],
             width: 0,
+            hidden: Hidden::default(),
             merged: self.merged,
         };
         for (row, cell) in self.cells {

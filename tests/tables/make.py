@@ -10,6 +10,8 @@ import numpy as np
 import openpyxl
 import pandas as pd
 
+import xlsb
+
 HERE = pathlib.Path(__file__).parent / "data"
 HERE.mkdir(exist_ok=True)
 EXPECTED = {}
@@ -291,6 +293,25 @@ frame.to_excel(HERE / "pandas.xlsx", index=False)
 # That writer keeps 16 digits.
 sixteen = lambda v: float(f"{v:.16g}") if isinstance(v, float) else v
 expect("pandas.xlsx", {k: [sixteen(v) for v in vs] for k, vs in base.items()})
+
+
+# A workbook of the binary sort, and one that hides a row and a column.
+binary = [["id", "lot", "salt", "fat"]] + [
+    [f"K-{i:02d}", ["MAR-2", "007", "1E-05"][i % 3], 1.5 + i / 7, "#DIV/0!" if i == 4 else 30.0 + i] for i in range(1, 9)
+]
+xlsb.write(HERE / "cellar.xlsb", [("Wet chemistry", False, binary), ("old", True, [["id", "x"], ["a", 1.0]])])
+column = lambda at: [None if row[at] == "#DIV/0!" else row[at] for row in binary[1:]]
+expect("cellar.xlsb", {name: column(at) for at, name in enumerate(binary[0])},
+       {"other-sheets": 1, "error-values": 1, "leading-zeros": 3, "exponent-labels": 3, "date-labels": 2})
+book = openpyxl.Workbook()
+sheet = book.active
+for row in [["id", "salt", "fat"]] + [[f"K-{i}", 1.0 + i / 4, 30.0 + i / 8] for i in range(6)]:
+    sheet.append(row)
+sheet.row_dimensions[4].hidden = True
+sheet.column_dimensions["C"].hidden = True
+book.save(HERE / "hidden.xlsx")
+expect("hidden.xlsx", {"id": [f"K-{i}" for i in range(6)], "salt": [1.0 + i / 4 for i in range(6)],
+                       "fat": [30.0 + i / 8 for i in range(6)]}, {"hidden-lines": 2}, rows=[2, 3, 4, 5, 6, 7])
 
 
 # Two damaged files, seeded, with the place of every damage known.

@@ -3,7 +3,9 @@
 use std::path::{Path, PathBuf};
 use std::sync::Arc;
 use std::sync::atomic::{AtomicU32, Ordering};
-use widefold::base::layout::{DecimalMark, Delimiter, Encoding, Grouping, Orientation, UnitsRow};
+use widefold::base::layout::{
+    DecimalMark, Delimiter, Encoding, Grouping as DigitGroups, Orientation, UnitsRow,
+};
 use widefold::base::number::Precision;
 use widefold::base::problem::{Place, Problem};
 use widefold::base::real::Real;
@@ -336,7 +338,7 @@ fn any_table(tables: &[TableSource], dice: &mut Dice) -> TableSource {
         decimal: dice.maybe(|dice| dice.one_of(&[DecimalMark::Point, DecimalMark::Comma])),
         taken_on: dice.maybe(Dice::text),
         header_row: dice.maybe(|dice| dice.below(9)),
-        grouping: dice.maybe(|dice| dice.one_of(&[Grouping::Absent, Grouping::Read])),
+        grouping: dice.maybe(|dice| dice.one_of(&[DigitGroups::Absent, DigitGroups::Read])),
         units_row: dice.maybe(|dice| dice.one_of(&[UnitsRow::Absent, UnitsRow::BelowHeader])),
         orientation: dice.maybe(|dice| {
             dice.one_of(&[Orientation::SamplesInRows, Orientation::SamplesInColumns])

@@ -1,6 +1,8 @@
 //! Settings of every kind with every choice at least once, for tests.
 
-use crate::base::layout::{DecimalMark, Delimiter, Encoding, Grouping, Orientation, UnitsRow};
+use crate::base::layout::{
+    DecimalMark, Delimiter, Encoding, Grouping as DigitGroups, Orientation, UnitsRow,
+};
 use crate::base::real::Real;
 use crate::study::cell::CellId;
 use crate::study::link::Link;
@@ -95,7 +97,7 @@ pub fn data() -> Vec<Data> {
     busy.tables[0].units_row = Some(UnitsRow::Absent);
     busy.covariates = vec!["age".to_owned(), "cellar temperature".to_owned()];
     busy.ignored = vec!["salt_calc".to_owned()];
-    busy.tables[0].grouping = Some(Grouping::Read);
+    busy.tables[0].grouping = Some(DigitGroups::Read);
     busy.unit_making = UnitMaking::FromNames;
     busy.as_text = vec!["lot".to_owned(), "1E-05".to_owned()];
     busy.as_numbers = vec!["iron".to_owned()];

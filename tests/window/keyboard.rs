@@ -36,7 +36,7 @@ pub fn travel(folder: &Path, shots: &Path) {
 
     press(&on, "Make the study", Letters::Strong);
     on.titled("a study", |title| title.contains("Scans"));
-    let _ = on.see("Everything is up to date.", Letters::Plain);
+    rest(&on);
     on.done("the fit is there");
 
     on.screen.keys("ctrl+s");
@@ -73,7 +73,7 @@ pub fn travel(folder: &Path, shots: &Path) {
     on.changed("the line that follows the keys", &moved);
     on.screen.keys("Return");
     let _ = on.window.settle();
-    let _ = on.see("Everything is up to date.", Letters::Plain);
+    rest(&on);
     on.titled("changed", |title| title.contains('•'));
     on.screen.keys("ctrl+s");
     on.titled("saved", |title| !title.contains('•'));
@@ -84,10 +84,10 @@ pub fn travel(folder: &Path, shots: &Path) {
     on.screen.keys("ctrl+z");
     on.titled("changed again", |title| title.contains('•'));
     on.screen.keys("ctrl+shift+z");
-    let _ = on.see("Everything is up to date.", Letters::Plain);
+    rest(&on);
     on.done("undo and redo");
 
-    press(&on, "Scans lasso", Letters::Strong);
+    press(&on, "sweetness lasso", Letters::Strong);
     let _ = on.see("Weights, not effects", Letters::Strong);
     on.done("the margin is read");
 
@@ -115,8 +115,13 @@ pub fn travel(folder: &Path, shots: &Path) {
         &on.folder.join("dishes.widefold").display().to_string(),
     );
     on.titled("the study again", |title| title.contains("Scans"));
-    let _ = on.see("Everything is up to date.", Letters::Plain);
+    rest(&on);
     on.done("the study is open again");
+}
+
+/// Waits until everything is up to date.
+fn rest(on: &Traveller) {
+    on.see_up_to_date(|_| on.screen.keys("Escape"));
 }
 
 /// Gives words the focus and presses them.

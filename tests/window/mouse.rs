@@ -28,15 +28,15 @@ pub fn travel(folder: &Path, shots: &Path) {
 
     press(&on, "Make the study", Letters::Strong);
     on.titled("a study", |title| title.contains("Scans"));
-    let _ = on.see("Everything is up to date.", Letters::Plain);
+    rest(&on);
     on.done("the fit is there");
 
     press(&on, "Save", Letters::Plain);
     let _ = on.see("Save the study as", Letters::Title);
     press_last(&on, "Save", Letters::Strong);
-    let _ = on.file("Scans.widefold");
+    let _ = on.file("scans.widefold");
     on.see_gone("Save the study as", Letters::Title);
-    let before = on.facts("Scans.widefold");
+    let before = on.facts("scans.widefold");
     assert!(before.contains("sweetness"), "the outcome is in the facts");
     assert!(
         before.contains("chosen strength"),
@@ -55,36 +55,37 @@ pub fn travel(folder: &Path, shots: &Path) {
     let _ = on.see("Error and strength", Letters::Name);
     let figure = on.see("Error against penalty strength", Letters::Strong);
     drag(&on, figure);
-    let _ = on.see("Everything is up to date.", Letters::Plain);
+    rest(&on);
     on.titled("changed", |title| title.contains('•'));
     press(&on, "Save", Letters::Plain);
     on.titled("saved", |title| !title.contains('•'));
-    let after = on.facts("Scans.widefold");
+    let after = on.facts("scans.widefold");
     assert_ne!(strength(&before), strength(&after), "the strength moved");
     on.done("the strength is dragged");
 
-    press(&on, "Scans lasso", Letters::Strong);
+    press(&on, "sweetness lasso", Letters::Strong);
     let _ = on.see("Weights, not effects", Letters::Strong);
     on.is_clean();
     on.done("the margin is read");
 
     press(&on, "Hand over", Letters::Plain);
     press_last(&on, "Write", Letters::Strong);
-    let workbook = on.file("Scans.xlsx");
+    let workbook = on.file("scans.xlsx");
     assert!(workbook.starts_with(b"PK"), "a workbook is a zip");
-    let text = String::from_utf8(on.file("Scans.md")).expect("the write-up is text");
+    let text = String::from_utf8(on.file("scans.md")).expect("the write-up is text");
     assert!(
         text.contains("sweetness"),
         "the write-up is about the outcome"
     );
     on.done("both hand-overs are written");
 
+    press(&on, "More", Letters::Plain);
     press(&on, "Close", Letters::Plain);
     let _ = on.see("Start from tables", Letters::Name);
     on.titled("no study", |title| !title.contains("Scans"));
-    press(&on, "Scans.widefold", Letters::Name);
+    press(&on, "scans.widefold", Letters::Name);
     on.titled("the study again", |title| title.contains("Scans"));
-    let _ = on.see("Everything is up to date.", Letters::Plain);
+    rest(&on);
     on.done("the study is open again");
 }
 
@@ -94,6 +95,14 @@ pub fn press(on: &Traveller, words: &str, letters: Letters) {
     on.screen.point(place.middle());
     on.screen.click();
     let _ = on.window.settle();
+}
+
+/// Waits until everything is up to date.
+fn rest(on: &Traveller) {
+    on.see_up_to_date(|place| {
+        on.screen.point(place.middle());
+        on.screen.click();
+    });
 }
 
 /// Presses the last of several places where words stand: that of a dialog lies over the page.

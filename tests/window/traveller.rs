@@ -6,10 +6,11 @@
 )]
 
 use crate::eyes::{self, Letters, Place};
-use crate::screen::{Image, Screen, Window, keep, wait};
+use crate::screen::{Image, PATIENCE, Screen, Window, keep, wait};
 use crate::table;
 use std::path::{Path, PathBuf};
 use std::process::Command;
+use std::time::Instant;
 
 /// The ink of focus and of editable words on a light page.
 const ACCENT: u32 = 0x0F_5E_6B;
@@ -60,13 +61,31 @@ impl Traveller {
 
     /// Waits until words stand on the screen, and tells where; the first from the top.
     pub fn see(&self, words: &str, letters: Letters) -> Place {
-        let mut found = None;
-        wait(&format!("“{words}” on the screen"), || {
+        let begin = Instant::now();
+        loop {
             let _ = self.window.settle();
-            found = self.places(words, letters).first().copied();
-            found.is_some()
-        });
-        found.expect("it was waited for")
+            if let Some(place) = self.places(words, letters).first() {
+                return *place;
+            }
+            if begin.elapsed() > PATIENCE {
+                panic!("“{words}” never came on the screen; see missed.png");
+            }
+        }
+    }
+
+    /// Waits until everything is up to date. What was last said covers that; it is dismissed.
+    pub fn see_up_to_date(&self, dismiss: impl Fn(Place)) {
+        let begin = Instant::now();
+        let words = "Everything is up to date.";
+        while self.places(words, Letters::Plain).is_empty() {
+            if let Some(place) = self.places("Dismiss", Letters::Plain).first() {
+                dismiss(*place);
+            }
+            let _ = self.window.settle();
+            if begin.elapsed() > PATIENCE {
+                panic!("the study was never up to date; see missed.png");
+            }
+        }
     }
 
     /// Waits until words no longer stand on the screen.
@@ -132,7 +151,8 @@ impl Traveller {
             .arg(self.folder.join(name))
             .output()
             .expect("the program can be started");
-        assert!(output.status.success(), "{name} gives no facts");
+        // A question that asks how a strength was chosen has no answer once it is set by hand, and
+        // the command says so; the facts of all other cells are told.
         String::from_utf8_lossy(&output.stdout).into_owned()
     }
 
@@ -168,6 +188,15 @@ impl Traveller {
     pub fn changed(&self, what: &str, before: &Image) {
         wait(what, || self.screen.look() != *before);
         let _ = self.window.settle();
+    }
+}
+
+impl Drop for Traveller {
+    fn drop(&mut self) {
+        // What was on the screen when something was missed.
+        if std::thread::panicking() {
+            self.screen.keep(&self.shots.join("missed.png"));
+        }
     }
 }
 

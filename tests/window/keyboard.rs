@@ -23,7 +23,7 @@ pub fn travel(folder: &Path, shots: &Path) {
     on.screen.write("sweet");
     on.screen.keys("Return");
     press(&on, "outcome", Letters::Plain);
-    let _ = on.see("Predict sweetness", Letters::Reading);
+    on.see_gone("a column still to be chosen", Letters::Reading);
     press(&on, "scans.csv", Letters::Strong);
     let _ = on.see("40 rows, 26 columns", Letters::Plain);
     press(&on, "Jump", Letters::Plain);
@@ -31,7 +31,7 @@ pub fn travel(folder: &Path, shots: &Path) {
     on.screen.write("dish");
     on.screen.keys("Return");
     press(&on, "unit", Letters::Plain);
-    let _ = on.see("keep what shares one dish together", Letters::Reading);
+    let _ = on.see("are kept together", Letters::Reading);
     on.done("outcome and units are chosen");
 
     press(&on, "Make the study", Letters::Strong);

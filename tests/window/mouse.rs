@@ -17,13 +17,13 @@ pub fn travel(folder: &Path, shots: &Path) {
     let _ = on.see("20 rows, 3 columns", Letters::Plain);
     press(&on, "sweetness", Letters::Strong);
     press(&on, "outcome", Letters::Plain);
-    let _ = on.see("Predict sweetness", Letters::Reading);
+    on.see_gone("a column still to be chosen", Letters::Reading);
     press(&on, "oven", Letters::Strong);
     press(&on, "batch", Letters::Plain);
     press(&on, "scans.csv", Letters::Strong);
     press(&on, "dish", Letters::Strong);
     press(&on, "unit", Letters::Plain);
-    let _ = on.see("keep what shares one dish together", Letters::Reading);
+    let _ = on.see("are kept together", Letters::Reading);
     on.done("outcome and units are chosen");
 
     press(&on, "Make the study", Letters::Strong);
@@ -79,7 +79,7 @@ pub fn travel(folder: &Path, shots: &Path) {
     );
     on.done("both hand-overs are written");
 
-    press(&on, "More", Letters::Plain);
+    press(&on, "And more", Letters::Plain);
     press(&on, "Close", Letters::Plain);
     let _ = on.see("Start from tables", Letters::Name);
     on.titled("no study", |title| !title.contains("Scans"));

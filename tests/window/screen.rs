@@ -13,7 +13,7 @@ use std::process::{Child, Command, Stdio};
 use std::time::{Duration, Instant};
 
 /// How long anything may take on a slow machine; a ready study is worked out in it.
-pub const PATIENCE: Duration = Duration::from_secs(120);
+pub const PATIENCE: Duration = Duration::from_secs(240);
 /// How long a window that does not rest is watched.
 const RESTLESS: Duration = Duration::from_secs(2);
 /// How often it is looked.

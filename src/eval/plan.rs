@@ -85,6 +85,7 @@ mod tests {
     use crate::study::link::Link;
     use crate::study::settings::data::Data;
     use crate::study::settings::fit::Fit;
+    use crate::study::settings::prepare::choice::ScaleRule;
     use crate::study::settings::prepare::{Prepare, Step};
 
     fn insert(study: &mut Study, at: usize, title: &str, settings: Settings) -> CellId {
@@ -140,7 +141,12 @@ mod tests {
     fn a_setting_changes_the_recipes_of_what_draws_on_it_and_no_other() {
         let (mut study, data, prepared, fit) = upside_down();
         let before = plan(&study).recipes;
-        let steps = vec![Step::Center, Step::UnitVariance];
+        let steps = vec![
+            Step::Center,
+            Step::Scale {
+                rule: ScaleRule::UnitVariance,
+            },
+        ];
         let settings = Settings::Prepare(Prepare {
             input: Link::to(data),
             steps,

@@ -1,5 +1,6 @@
 //! Text of the exports that is the same for every study.
 
+use crate::eval::kind::step::source;
 use crate::study::Study;
 use crate::study::settings::Settings;
 use crate::study::settings::fit::{Penalty, Rule, Strength};
@@ -83,24 +84,9 @@ const SHAH: &str = "Shah, R. D. & Samworth, R. J. (2013). Variable selection wit
 const MEINSHAUSEN: &str = "Meinshausen, N. & Bühlmann, P. (2010). Stability selection. Journal of the Royal Statistical Society B 72, 417–473.";
 const NOGUEIRA: &str = "Nogueira, S., Sechidis, K. & Brown, G. (2018). On the stability of feature selection algorithms. Journal of Machine Learning Research 18(174), 1–54.";
 const MANDOZZI: &str = "Mandozzi, J. & Bühlmann, P. (2016). Hierarchical testing in the high-dimensional setting with correlated variables. Journal of the American Statistical Association 111, 331–343.";
-const BARNES: &str = "Barnes, R. J., Dhanoa, M. S. & Lister, S. J. (1989). Standard normal variate transformation and de-trending of near-infrared diffuse reflectance spectra. Applied Spectroscopy 43, 772–777.";
-const SAVITZKY: &str = "Savitzky, A. & Golay, M. J. E. (1964). Smoothing and differentiation of data by simplified least squares procedures. Analytical Chemistry 36, 1627–1639.";
-const GELADI: &str = "Geladi, P., MacDougall, D. & Martens, H. (1985). Linearization and scatter-correction for near-infrared reflectance spectra of meat. Applied Spectroscopy 39, 491–500.";
-const SCHISTERMAN: &str = "Schisterman, E. F., Vexler, A., Whitcomb, B. W. & Liu, A. (2006). The limitations due to exposure detection limits for regression models. American Journal of Epidemiology 163, 374–383.";
 
 fn of_step(step: &Step) -> Option<&'static str> {
-    match step {
-        Step::StandardNormalVariate | Step::Detrend { .. } => Some(BARNES),
-        Step::SavitzkyGolay { .. } => Some(SAVITZKY),
-        Step::ScatterCorrection => Some(GELADI),
-        Step::BelowLimit { .. } => Some(SCHISTERMAN),
-        Step::Log { .. }
-        | Step::MissingShareFilter { .. }
-        | Step::NearConstantFilter { .. }
-        | Step::MedianImputation
-        | Step::Center
-        | Step::UnitVariance => None,
-    }
+    source(step).map(|source| source.full)
 }
 
 fn of_question(ask: &Ask) -> Vec<&'static str> {

@@ -4,7 +4,7 @@ use widefold::base::number::{Precision, text};
 use widefold::base::real::Real;
 use widefold::figure::shape::{
     Caption, Choice, Counts, Heading, agreement, confusion, distribution, error_curve, frequency,
-    histogram, ladder, learning, profile, reliability, residual, roc, spectrum, stand_ins,
+    histogram, ladder, learning, profile, reliability, residual, roc, spectrum, stages, stand_ins,
     survival, trace,
 };
 use widefold::figure::{Figure, Meaning, Note, Scale, Tip};
@@ -30,6 +30,7 @@ pub fn all() -> Vec<(&'static str, Figure)> {
         ("residual", residual()),
         ("learning", learning()),
         ("histogram", histogram()),
+        ("stages", stages()),
     ]
 }
 
@@ -726,6 +727,54 @@ fn histogram() -> Figure {
             label: "observed 0.80".to_owned(),
             tip: None,
         }),
+    }
+    .figure()
+}
+
+/// Four spectra as measured and after two steps.
+fn stages() -> Figure {
+    let mut dice = Dice::new(77);
+    let axis: Vec<f64> = (0..60).map(|j| 900.0 + 13.0 * f64::from(j)).collect();
+    let shapes: Vec<(f64, f64)> = (0..4)
+        .map(|_| (0.2 + 0.3 * dice.even(), 0.8 + 0.4 * dice.even()))
+        .collect();
+    let peak = |x: f64| (-((x - 1_300.0) / 120.0).powi(2)).exp();
+    let curves = |of: &dyn Fn(f64, f64, f64) -> f64| {
+        let curve = |(at, &(level, slope)): (usize, &(f64, f64))| stages::Curve {
+            sort: u8::from(at > 1),
+            label: match at {
+                0 => "training".to_owned(),
+                2 => "held-out".to_owned(),
+                _ => String::new(),
+            },
+            positions: axis.clone(),
+            values: axis.iter().map(|&x| of(x, level, slope)).collect(),
+            tip: Some(thing("a scan")),
+        };
+        shapes.iter().enumerate().map(curve).collect::<Vec<_>>()
+    };
+    let stage = |label: &str, curves: Vec<stages::Curve>| stages::Stage {
+        label: label.to_owned(),
+        position: Heading::new("", "nm"),
+        course: stages::Course::Line,
+        curves,
+    };
+    stages::Stages {
+        caption: Caption::titled("A few samples before and after the steps"),
+        stages: vec![
+            stage(
+                "as measured",
+                curves(&|x, level, slope| level + slope * peak(x)),
+            ),
+            stage(
+                "1. standard normal variate",
+                curves(&|x, level, _| 2.5 * peak(x) - 0.8 + 0.1 * level),
+            ),
+            stage(
+                "2. centring",
+                curves(&|x, level, slope| 0.3 * (level + slope - 1.3) * peak(x)),
+            ),
+        ],
     }
     .figure()
 }

@@ -204,7 +204,7 @@ fn each_damage_that_leaves_a_study_is_told_and_the_rest_opens() {
         })
     };
     let changes: [&dyn Fn(&str) -> String; 4] = [
-        &|text| text[..text.len() / 2].to_owned(),
+        &|text| text[..text.floor_char_boundary(text.len() / 2)].to_owned(),
         &|_| String::new(),
         &|text| text.replacen("\"format\":1", "\"format\":2", 1),
         &|text| {

@@ -22,7 +22,8 @@ use widefold::study::cell::Kind;
 use widefold::study::edit::Edit;
 use widefold::study::ledger::Ledger;
 use widefold::study::settings::Settings;
-use widefold::study::settings::prepare::Step;
+use widefold::study::settings::prepare::choice::{ScaleRule, Statistic};
+use widefold::study::settings::prepare::{Reference, Step};
 use widefold::study::source::Shelf;
 
 /// The steps that may be stacked in any order.
@@ -34,10 +35,16 @@ fn steps() -> Vec<Step> {
             degree: 2,
             derivative: 1,
         },
-        Step::ScatterCorrection,
+        Step::ScatterCorrection {
+            reference: Reference::Training,
+        },
         Step::Center,
-        Step::UnitVariance,
-        Step::MedianImputation,
+        Step::Scale {
+            rule: ScaleRule::UnitVariance,
+        },
+        Step::ColumnImputation {
+            statistic: Statistic::Median,
+        },
         Step::NearConstantFilter {
             least: Real::constant(0.05),
         },

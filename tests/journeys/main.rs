@@ -14,6 +14,8 @@ mod honest;
 mod numerals;
 /// Tables as they are delivered, from import to hand-over.
 mod real_tables;
+/// Every preparation step through its cell.
+mod preparation;
 /// Making studies from tables, running them, and running the program.
 mod run;
 /// What was saved opens again as it was, with its results.

@@ -23,7 +23,7 @@ use widefold::study::prose::{FactReference, Piece, Prose};
 use widefold::study::settings::Settings;
 use widefold::study::settings::compare::Compare;
 use widefold::study::settings::data::{
-    ColumnRange, Correction, Data, Exclusion, Join, LeadingZeros, LetterCase, Outcome, OutcomeKind,
+    ColumnRange, Correction, Data, Exclusion, Join, LeadingZeros, LetterCase, Marked, Outcome, OutcomeKind,
     OutcomeSeen, Sealed, Subject, TableSource, UnitMaking,
 };
 use widefold::study::settings::fit::{
@@ -33,6 +33,8 @@ use widefold::study::settings::fit::{
 use widefold::study::settings::prepare::{Prepare, Step};
 use widefold::study::settings::question::{Ask, Question, Seal};
 use widefold::study::settings::score::Score;
+use widefold::study::settings::slot::prepare::PrepareSlot;
+use widefold::study::settings::slot::{Bounds, Value};
 use widefold::study::source::Shelf;
 
 /// A seeded source of choices (SplitMix64; Steele, Lea and Flood 2014).
@@ -413,6 +415,12 @@ fn any_data(tables: &[TableSource], dice: &mut Dice) -> Data {
             },
             _ => Sealed::Listed(dice.some(3, Dice::text)),
         },
+        quality_control: (dice.below(3) == 0).then(|| {
+            Arc::new(Marked {
+                column: dice.text(),
+                values: dice.some(3, Dice::text),
+            })
+        }),
         subject: dice.one_of(&[
             Subject::Ordinary,
             Subject::Health,
@@ -422,34 +430,42 @@ fn any_data(tables: &[TableSource], dice: &mut Dice) -> Data {
     }
 }
 
+/// A step of the catalogue, each of its words set to something that may stand there.
 fn any_step(dice: &mut Dice) -> Step {
-    match dice.below(11) {
-        0 => Step::Log {
-            offset: dice.size(),
-        },
-        1 => Step::StandardNormalVariate,
-        2 => Step::SavitzkyGolay {
-            window: 2 * dice.count(5, 250) + 1,
-            degree: dice.count(2, 9),
-            derivative: dice.count(0, 2),
-        },
-        3 => Step::Detrend {
-            degree: dice.count(0, 9),
-        },
-        4 => Step::ScatterCorrection,
-        5 => Step::MissingShareFilter {
-            most: dice.between(0.0, 1.0),
-        },
-        6 => Step::NearConstantFilter {
-            least: dice.between(0.0, 1.0),
-        },
-        7 => Step::MedianImputation,
-        8 => Step::BelowLimit {
-            share: dice.between(0.0, 1.0),
-        },
-        9 => Step::Center,
-        _ => Step::UnitVariance,
+    let catalogue = Step::catalogue();
+    let step = catalogue[dice.below(catalogue.len())].clone();
+    let mut settings = Prepare {
+        input: Link::open(),
+        steps: vec![step],
+    };
+    // A choice can bring a word that was not there before, so that words are asked for anew.
+    for round in 0..2 {
+        for slot in PrepareSlot::of(&settings) {
+            let choices = slot.choices();
+            let is_given = matches!(slot.get(&settings), Some(Value::Numbers(_)));
+            let value = if !choices.is_empty() && round == 0 {
+                Value::choice(choices[dice.below(choices.len())])
+            } else if is_given {
+                let ends = [dice.size(), dice.size()];
+                Value::Numbers(vec![ends[0].min(ends[1]), ends[0].max(ends[1])])
+            } else {
+                match slot.bounds() {
+                    Some(Bounds::Whole { least, most }) => {
+                        Value::Whole(least + dice.below((most - least).min(40) as usize) as u64)
+                    }
+                    Some(Bounds::Any { least, most }) => {
+                        Value::Number(dice.between(least.max(-20.0), most.min(20.0)))
+                    }
+                    None => continue,
+                }
+            };
+            // Settings that do not go together are refused, and the old ones stand.
+            if let Ok(changed) = slot.set(&settings, value) {
+                settings = changed;
+            }
+        }
     }
+    settings.steps.remove(0)
 }
 
 fn any_fit(study: &Study, dice: &mut Dice) -> Fit {

@@ -5,6 +5,7 @@ mod class; // the class of every step, and that nothing is learnt from held-out 
 mod interval; // intervals for a new sample, and for the error of a procedure
 mod learned; // steps that learn from samples against general-purpose libraries
 mod measure; // measures against reference values
+mod null; // nothing is claimed where there is nothing to find
 mod order; // remarks on the order of steps
 mod preprocess; // steps against reference values
 mod proof; // chains, plans and the run-time proof together

@@ -15,6 +15,7 @@ use crate::eval::outcome::{Outcome, Verdict};
 use crate::numeric::spectrum::ColumnScale;
 use crate::study::settings::fit::Scaling;
 use crate::study::settings::prepare::Step;
+use crate::study::settings::prepare::choice::ScaleRule;
 use crate::study::settings::question::{Ask, Question};
 
 /// Evaluates a Question cell.
@@ -59,6 +60,10 @@ fn active_columns(fitted: &Fitted) -> Vec<usize> {
     (0..active.len()).filter(|&column| active[column]).collect()
 }
 
+const UNIT_VARIANCE: Step = Step::Scale {
+    rule: ScaleRule::UnitVariance,
+};
+
 /// On which scale the penalty of a fit acts.
 fn scale(fitted: &Fitted) -> ColumnScale {
     let scales = fitted
@@ -66,10 +71,8 @@ fn scale(fitted: &Fitted) -> ColumnScale {
         .steps
         .iter()
         .rev()
-        .take_while(|step| matches!(step, Step::Center | Step::UnitVariance));
-    let by_steps = scales
-        .into_iter()
-        .any(|step| matches!(step, Step::UnitVariance));
+        .take_while(|step| **step == Step::Center || **step == UNIT_VARIANCE);
+    let by_steps = scales.into_iter().any(|step| *step == UNIT_VARIANCE);
     match fitted.settings.scaling {
         Scaling::UnitVariance => ColumnScale::UnitVariance,
         Scaling::AsPrepared if by_steps => ColumnScale::UnitVariance,

@@ -9,6 +9,7 @@ mod settle;
 
 use crate::base::layout::Orientation;
 use crate::base::problem::Problem;
+use crate::base::real::Real;
 use crate::base::thread::Threads;
 use crate::base::work::{Cancelled, Work};
 use crate::eval::finding::read_problem;
@@ -23,7 +24,8 @@ use crate::study::prose::Prose;
 use crate::study::settings::Settings;
 use crate::study::settings::data::{Data, OutcomeKind, TableSource, UnitMaking};
 use crate::study::settings::fit::{ErrorMeasure, Fit, Judge, Penalty, Rule, Strength};
-use crate::study::settings::prepare::{Prepare, Step};
+use crate::study::settings::prepare::choice::{ScaleRule, Statistic};
+use crate::study::settings::prepare::{LimitValue, Prepare, Step};
 use crate::study::settings::question::{Ask, Question};
 use crate::study::source::Shelf;
 use crate::table::read::{Options, read};
@@ -230,23 +232,31 @@ fn apply(study: &mut Study, edit: Edit) -> Result<(), Problem> {
 
 fn steps(shape: &Shape, notes: &mut Vec<String>) -> Vec<Step> {
     let mut steps = Vec::new();
-    for step in Step::catalogue() {
-        let is_wanted = match step {
-            Step::BelowLimit { .. } => shape.has_limits,
-            Step::MissingShareFilter { .. } | Step::MedianImputation => shape.has_gaps,
-            Step::StandardNormalVariate | Step::SavitzkyGolay { .. } => {
-                shape.is_spectrum && !shape.has_gaps
-            }
-            Step::Center | Step::UnitVariance => true,
-            Step::Log { .. }
-            | Step::Detrend { .. }
-            | Step::ScatterCorrection
-            | Step::NearConstantFilter { .. } => false,
-        };
-        if is_wanted {
-            steps.push(step);
-        }
+    if shape.has_limits {
+        steps.push(Step::BelowLimit {
+            value: LimitValue::Share(Real::constant(0.5)),
+        });
     }
+    if shape.is_spectrum && !shape.has_gaps {
+        steps.push(Step::StandardNormalVariate);
+        steps.push(Step::SavitzkyGolay {
+            window: 15,
+            degree: 2,
+            derivative: 1,
+        });
+    }
+    if shape.has_gaps {
+        steps.push(Step::MissingShareFilter {
+            most: Real::constant(0.2),
+        });
+        steps.push(Step::ColumnImputation {
+            statistic: Statistic::Median,
+        });
+    }
+    steps.push(Step::Center);
+    steps.push(Step::Scale {
+        rule: ScaleRule::UnitVariance,
+    });
     if shape.is_spectrum && !shape.has_gaps {
         notes.push("The predictors are a spectrum: standard normal variate and a first derivative are taken first.".to_owned());
     }

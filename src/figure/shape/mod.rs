@@ -14,6 +14,7 @@ pub mod reliability;
 pub mod residual;
 pub mod roc;
 pub mod spectrum;
+pub mod stages;
 pub mod stand_ins;
 pub mod survival;
 pub mod trace;

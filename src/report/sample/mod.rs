@@ -291,31 +291,19 @@ pub fn data_facts(data: &Data) -> Facts {
 
 pub fn prepare_facts(steps: &[Step]) -> Facts {
     let texts = |text: fn(&Step) -> String| -> Vec<String> { steps.iter().map(text).collect() };
-    let name = |step: &Step| match step {
-        Step::SavitzkyGolay { .. } => "first derivative by local polynomials".to_owned(),
-        Step::Log { .. }
-        | Step::StandardNormalVariate
-        | Step::Detrend { .. }
-        | Step::ScatterCorrection
-        | Step::MissingShareFilter { .. }
-        | Step::NearConstantFilter { .. }
-        | Step::MedianImputation
-        | Step::BelowLimit { .. }
-        | Step::Center
-        | Step::UnitVariance => "another step".to_owned(),
+    let name = |step: &Step| {
+        if matches!(step, Step::SavitzkyGolay { .. }) {
+            "first derivative by local polynomials".to_owned()
+        } else {
+            "another step".to_owned()
+        }
     };
-    let parameters = |step: &Step| match step {
-        Step::SavitzkyGolay { window, degree, .. } => format!("window {window}, degree {degree}"),
-        Step::Log { .. }
-        | Step::StandardNormalVariate
-        | Step::Detrend { .. }
-        | Step::ScatterCorrection
-        | Step::MissingShareFilter { .. }
-        | Step::NearConstantFilter { .. }
-        | Step::MedianImputation
-        | Step::BelowLimit { .. }
-        | Step::Center
-        | Step::UnitVariance => String::new(),
+    let parameters = |step: &Step| {
+        if let Step::SavitzkyGolay { window, degree, .. } = step {
+            format!("window {window}, degree {degree}")
+        } else {
+            String::new()
+        }
     };
     let class = |step: &Step| step.class().words().to_owned();
     Writer(Facts::new())

@@ -505,7 +505,11 @@ fn a_refusal_from_the_settings_is_a_whole_sentence() {
 #[test]
 fn a_step_is_of_the_class_that_the_numbers_are_computed_by() {
     for step in Step::catalogue() {
-        let computed = numeric_step(&step).expect("the usual settings are lawful");
+        let computed = numeric_step(&step, &[]).expect("the usual settings are lawful");
+        let Some(computed) = computed else {
+            assert_eq!(step, Step::AverageUnits);
+            continue;
+        };
         assert_eq!(
             step.class().words(),
             class_name(computed.class()),

@@ -41,6 +41,8 @@ pub struct Data {
     pub exclusions: Arc<Vec<Exclusion>>,
     /// The samples kept for one last check.
     pub sealed: Sealed,
+    /// The quality-control samples, which are measured along with the others and not analysed.
+    pub quality_control: Option<Arc<Marked>>,
     /// What the study's subject is, which decides on the cautions that both exports carry.
     pub subject: Subject,
 }
@@ -241,6 +243,15 @@ pub enum Sealed {
     },
     /// The units with these names, or the samples where no units are named.
     Listed(Vec<String>),
+}
+
+/// The samples whose column holds one of some texts.
+#[derive(Clone, Debug, PartialEq, Eq, Hash)]
+pub struct Marked {
+    /// The column.
+    pub column: String,
+    /// The texts.
+    pub values: Vec<String>,
 }
 
 /// What the study's subject is.

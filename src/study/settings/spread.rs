@@ -9,14 +9,15 @@ use crate::study::link::Link;
 use crate::study::settings::Settings;
 use crate::study::settings::compare::Compare;
 use crate::study::settings::data::{
-    ColumnRange, Correction, Data, Exclusion, Join, LeadingZeros, LetterCase, Outcome, OutcomeKind,
+    ColumnRange, Correction, Data, Exclusion, Join, LeadingZeros, LetterCase, Marked, Outcome, OutcomeKind,
     OutcomeSeen, Sealed, Subject, TableSource, UnitMaking,
 };
 use crate::study::settings::fit::{
     ErrorMeasure, Fit, Grouping, Judge, Penalty, PenaltyRange, Plan, Rule, Scaling, Scheme,
     Strength, Ties,
 };
-use crate::study::settings::prepare::{Prepare, Step};
+use crate::study::settings::prepare::choice::ScaleRule;
+use crate::study::settings::prepare::{Prepare, Reference, Step};
 use crate::study::settings::question::{Ask, Question, Seal};
 use crate::study::settings::score::Score;
 use crate::study::source::SourceId;
@@ -109,6 +110,10 @@ pub fn data() -> Vec<Data> {
     });
     busy.sealed = Sealed::Listed(["W101", "W102", "W103", "W104"].map(str::to_owned).to_vec());
     busy.subject = Subject::Safety;
+    busy.quality_control = Some(Arc::new(Marked {
+        column: "sort of scan".to_owned(),
+        values: vec!["QC".to_owned(), "pool".to_owned()],
+    }));
     busy.corrections = Arc::new(vec![Correction {
         sample: "W012-a".to_owned(),
         column: "salt in moisture".to_owned(),
@@ -177,7 +182,9 @@ pub fn prepare() -> Vec<Prepare> {
                 derivative: 1,
             },
             Step::Center,
-            Step::UnitVariance,
+            Step::Scale {
+                rule: ScaleRule::UnitVariance,
+            },
         ]),
         of(vec![
             Step::SavitzkyGolay {
@@ -185,7 +192,9 @@ pub fn prepare() -> Vec<Prepare> {
                 degree: 3,
                 derivative: 0,
             },
-            Step::ScatterCorrection,
+            Step::ScatterCorrection {
+                reference: Reference::Training,
+            },
             Step::SavitzkyGolay {
                 window: 21,
                 degree: 2,

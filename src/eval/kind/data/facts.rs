@@ -140,7 +140,8 @@ fn flow(facts: &mut Facts, settings: &Data, data: &Dataset) {
     facts.push(Fact::count(
         "samples",
         data.analysed.len(),
-        "How many samples are analysed: those read, less the excluded and the sealed.",
+        "How many samples are analysed: those read, less the excluded, the sealed and those for \
+         quality control.",
     ));
     let units = data.count_units(&data.analysed);
     facts.push(Fact::count(
@@ -195,6 +196,14 @@ fn flow(facts: &mut Facts, settings: &Data, data: &Dataset) {
             "sealed units",
             data.count_units(&data.sealed),
             "How many units are kept for one last check.",
+        ));
+    }
+    let marked = data.quality_control();
+    if settings.quality_control.is_some() {
+        facts.push(Fact::count(
+            "quality-control samples",
+            marked.len(),
+            "How many samples are measured for quality control; they are not analysed.",
         ));
     }
     if settings.weight.is_some() {

@@ -3,6 +3,7 @@
 mod design;
 mod facts;
 mod imported;
+mod marked;
 mod outcome;
 mod roles;
 mod tables;
@@ -99,6 +100,15 @@ impl Dataset {
             needed: matches!(self.response, Response::Time { .. }).then_some(1),
             order: self.order.as_deref(),
         }
+    }
+
+    /// The quality-control samples, rising.
+    #[must_use]
+    pub fn quality_control(&self) -> Vec<usize> {
+        let flags = self.samples.companions.is_quality_control.as_deref();
+        (0..self.names.len())
+            .filter(|&at| flags.is_some_and(|flags| flags[at]))
+            .collect()
     }
 
     /// How many different units some samples belong to.

@@ -183,6 +183,48 @@ pub fn find(settings: &Data, table: &Table, rows: &[usize], file: &str) -> Resul
     })
 }
 
+/// The outcome of some samples among all: the others, which are not analysed, get one that means
+/// nothing. `at` says which samples have it, `n` how many there are.
+#[must_use]
+pub fn spread(response: Response, at: &[usize], n: usize) -> Response {
+    if at.len() == n {
+        return response;
+    }
+    match response {
+        Response::Measured(values) => Response::Measured(spread_list(&values, at, n, f64::NAN)),
+        Response::YesNo(values) => Response::YesNo(spread_list(&values, at, n, false)),
+        Response::Classes { class, n_classes } => Response::Classes {
+            class: spread_list(&class, at, n, 0),
+            n_classes,
+        },
+        Response::Count { count, offset } => Response::Count {
+            count: spread_list(&count, at, n, f64::NAN),
+            offset: offset.map(|offset| spread_list(&offset, at, n, f64::NAN)),
+        },
+        Response::Time {
+            time,
+            event,
+            strata,
+            ties,
+        } => Response::Time {
+            time: spread_list(&time, at, n, f64::NAN),
+            event: spread_list(&event, at, n, false),
+            strata: strata.map(|strata| spread_list(&strata, at, n, 0)),
+            ties,
+        },
+    }
+}
+
+/// A list with one entry for each of some samples, spread over all of them.
+#[must_use]
+pub fn spread_list<T: Copy>(values: &[T], at: &[usize], n: usize, other: T) -> Vec<T> {
+    let mut all = vec![other; n];
+    for (&at, &value) in at.iter().zip(values) {
+        all[at] = value;
+    }
+    all
+}
+
 fn places<T>(values: &[T], wanted: impl Fn(&T) -> bool) -> Vec<usize> {
     values
         .iter()

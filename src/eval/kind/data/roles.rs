@@ -6,6 +6,7 @@ use crate::base::thread::Threads;
 use crate::base::work::Work;
 use crate::eval::kind::Ended;
 use crate::eval::kind::data::Dataset;
+use crate::eval::kind::data::marked::{Own, blank_is_mean, marked};
 use crate::eval::kind::data::outcome::{self, Found};
 use crate::eval::kind::data::tables::{Joined, SourceReport};
 use crate::eval::outcome::{Failure, Remedy};
@@ -92,23 +93,37 @@ pub fn assign(
         .iter()
         .map(|&row| all_names[row].clone())
         .collect();
+    let is_marked = marked(settings, &table, &table_rows, &file)?;
+    let others: Vec<usize> = (0..names.len()).filter(|&at| !is_marked[at]).collect();
+    let other_rows: Vec<usize> = others.iter().map(|&at| table_rows[at]).collect();
     let Found {
         response,
         info,
         strata,
         missing,
         outcome_columns,
-    } = outcome::find(settings, &table, &table_rows, &file)?;
+    } = outcome::find(settings, &table, &other_rows, &file)?;
+    let response = outcome::spread(response, &others, names.len());
+    let strata = strata.map(|strata| outcome::spread_list(&strata, &others, names.len(), 0));
     if !missing.is_empty() {
-        let missing: Vec<String> = missing.iter().map(|&at| names[at].clone()).collect();
+        let missing: Vec<String> = missing
+            .iter()
+            .map(|&at| names[others[at]].clone())
+            .collect();
         return Err(outcome_missing(settings, &info.name, &missing, &file).into());
     }
     let (units, unit_names) = match &settings.unit {
-        Some(column) => groups(&table, column, &table_rows, &file, "unit")?,
+        Some(column) => {
+            let own = Own::Always(&names, &is_marked);
+            groups(&table, column, &table_rows, &file, "unit", own)?
+        }
         None => ((0..names.len()).collect(), names.clone()),
     };
     let batches = match &settings.batch {
-        Some(column) => Some(groups(&table, column, &table_rows, &file, "batch")?),
+        Some(column) => {
+            let own = Own::WhereBlank(&names, &is_marked);
+            Some(groups(&table, column, &table_rows, &file, "batch", own)?)
+        }
         None => None,
     };
     let order = match &settings.order {
@@ -116,10 +131,20 @@ pub fn assign(
         None => None,
     };
     let weights = match &settings.weight {
-        Some(column) => Some(weights(&table, column, &table_rows, &names, &file)?),
+        Some(column) => {
+            let names: Vec<String> = others.iter().map(|&at| names[at].clone()).collect();
+            let of_others = weights(&table, column, &other_rows, &names, &file)?;
+            Some(outcome::spread_list(
+                &of_others,
+                &others,
+                table_rows.len(),
+                0.0,
+            ))
+        }
         None => None,
     };
-    let (covariates, covariate_names) = covariates(settings, &table, &table_rows, &names, &file)?;
+    let (covariates, covariate_names) =
+        covariates(settings, &table, &table_rows, &names, &is_marked, &file)?;
     let sealed = sealed(
         settings,
         &table,
@@ -129,7 +154,12 @@ pub fn assign(
         &unit_names,
         &file,
     )?;
-    let analysed: Vec<usize> = (0..names.len()).filter(|at| !sealed.contains(at)).collect();
+    let sealed: BTreeSet<usize> = sealed.into_iter().filter(|&at| !is_marked[at]).collect();
+    let analysed: Vec<usize> = others
+        .iter()
+        .copied()
+        .filter(|at| !sealed.contains(at))
+        .collect();
     if analysed.len() < LEAST_SAMPLES {
         return Err(Problem::new(
             "too-few-samples",
@@ -161,7 +191,10 @@ pub fn assign(
     samples.companions = Companions {
         batch: batches.as_ref().map(|(batches, _)| batches.clone()),
         order: order.clone(),
-        is_quality_control: None,
+        is_quality_control: settings
+            .quality_control
+            .is_some()
+            .then(|| is_marked.clone()),
         covariates: (covariates.ncols() > 0).then(|| covariates.clone()),
     };
     let ranges = axis::ranges(&table, &columns);
@@ -173,7 +206,7 @@ pub fn assign(
     findings.extend(find::with_roles(
         &table,
         &FindRoles {
-            rows: &table_rows,
+            rows: &other_rows,
             sample_name: settings.sample_name.as_deref(),
             unit: settings.unit.as_deref(),
             batch: settings.batch.as_deref(),
@@ -379,13 +412,20 @@ fn groups(
     rows: &[usize],
     file: &str,
     role: &str,
+    own: Own<'_>,
 ) -> Result<(Vec<usize>, Vec<String>), Problem> {
     let values = &table.columns()[position(table, column, file)?];
     let mut known: BTreeMap<String, usize> = BTreeMap::new();
     let mut names = Vec::new();
     let mut members = Vec::with_capacity(rows.len());
-    for &row in rows {
-        let Some(text) = text_of(values, row) else {
+    for (at, &row) in rows.iter().enumerate() {
+        let text = text_of(values, row);
+        if let Some(name) = own.name(at, text.as_deref()) {
+            members.push(names.len());
+            names.push(name.clone());
+            continue;
+        }
+        let Some(text) = text else {
             let at = table.position(column).expect("the column was just found");
             return Err(Problem::new(
                 "group-missing",
@@ -464,6 +504,7 @@ fn covariates(
     table: &Table,
     rows: &[usize],
     names: &[String],
+    is_marked: &[bool],
     file: &str,
 ) -> Result<(Matrix, Vec<String>), Problem> {
     let mut columns: Vec<Vec<f64>> = Vec::new();
@@ -482,17 +523,20 @@ fn covariates(
         };
         match &column.values {
             Values::Numbers(numbers) => {
-                let values: Vec<f64> = rows.iter().map(|&row| numbers.values()[row]).collect();
-                if let Some(at) = values.iter().position(|value| value.is_nan()) {
+                let mut values: Vec<f64> = rows.iter().map(|&row| numbers.values()[row]).collect();
+                let gap = |at: &usize| values[*at].is_nan() && !is_marked[*at];
+                if let Some(at) = (0..values.len()).find(gap) {
                     return Err(missing(at));
                 }
+                blank_is_mean(&mut values);
                 columns.push(values);
                 column_names.push(name.clone());
             }
             Values::Texts(texts) => {
                 let texts: Vec<Option<&str>> =
                     rows.iter().map(|&row| texts[row].as_deref()).collect();
-                if let Some(at) = texts.iter().position(Option::is_none) {
+                let gap = |at: &usize| texts[*at].is_none() && !is_marked[*at];
+                if let Some(at) = (0..texts.len()).find(gap) {
                     return Err(missing(at));
                 }
                 let levels: BTreeSet<&str> = texts.iter().copied().flatten().collect();
@@ -582,6 +626,12 @@ fn predictor_columns(
     taken.extend(settings.unit.as_deref());
     taken.extend(settings.batch.as_deref());
     taken.extend(settings.order.as_deref());
+    taken.extend(
+        settings
+            .quality_control
+            .as_ref()
+            .map(|marked| marked.column.as_str()),
+    );
     taken.extend(settings.weight.as_deref());
     taken.extend(settings.covariates.iter().map(String::as_str));
     taken.extend(settings.ignored.iter().map(String::as_str));

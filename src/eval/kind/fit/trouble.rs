@@ -5,7 +5,6 @@ use crate::base::problem::Problem;
 use crate::eval::kind::Ended;
 use crate::eval::kind::fit::measures::Sort;
 use crate::eval::kind::prepare::Prepared;
-use crate::eval::kind::step::step_problem;
 use crate::eval::outcome::{Failure, Remedy};
 use crate::numeric::error::FitError;
 use crate::numeric::parts::PlanError;
@@ -22,9 +21,7 @@ pub fn halted(halt: Halt, prepared: &Prepared, settings: &Fit) -> Ended {
         Halt::Failed(error) => error,
     };
     match error {
-        ProcedureError::Step { step, error } => {
-            step_problem(&prepared.steps[step], step, &error, &prepared.data).into()
-        }
+        ProcedureError::Step { step, error } => prepared.step_problem(step, &error).into(),
         ProcedureError::Plan { level, error } => {
             plan_failure(level, &error, prepared, settings).into()
         }

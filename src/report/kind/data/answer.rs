@@ -28,7 +28,7 @@ pub fn answer(data: &Data, source: &Source<'_>) -> Paragraph {
 }
 
 /// The facts of the design, in the order in which they are read.
-const DESIGN: [&str; 19] = [
+const DESIGN: [&str; 20] = [
     "samples",
     "units",
     "samples per unit least",
@@ -36,6 +36,7 @@ const DESIGN: [&str; 19] = [
     "batches",
     "sealed units",
     "sealed samples",
+    "quality-control samples",
     "outcome mean",
     "outcome standard deviation",
     "outcome least",

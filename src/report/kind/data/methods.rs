@@ -150,6 +150,14 @@ fn flow(telling: &mut Telling, data: &Data, source: &Source<'_>) {
             &[],
         ));
     }
+    if source.is_above_zero("quality-control samples") {
+        telling.say(source.say(
+            "{quality-control samples} quality-control [sample|samples] [was|were] measured along \
+             with the others; [it is|they are] not analysed, and preparation steps may learn from \
+             [it|them].",
+            &[],
+        ));
+    }
     if data.unit.is_some() {
         telling.say(source.say(
             &format!(

@@ -218,7 +218,7 @@ fn together(data: &Data) -> Sentence {
                 &MAKINGS,
             ),
     };
-    sentence
+    let sentence = sentence
         .text("; batch is ")
         .column(
             Slot::Data(DataSlot::Batch),
@@ -237,7 +237,25 @@ fn together(data: &Data) -> Sentence {
             data.weight.as_ref(),
             "the same for all",
         )
-        .text(".")
+        .text(if data.quality_control.is_some() {
+            "; quality-control samples are those whose "
+        } else {
+            "; quality-control samples are "
+        })
+        .column(
+            Slot::Data(DataSlot::QualityControl),
+            data.quality_control.as_ref().map(|marked| &marked.column),
+            "not marked",
+        );
+    match &data.quality_control {
+        None => sentence,
+        Some(marked) => sentence.text(" is ").word(
+            Slot::Data(DataSlot::QualityControlValues),
+            alternatives(&marked.values),
+            Editor::List,
+        ),
+    }
+    .text(".")
 }
 
 fn covariates(data: &Data) -> Sentence {

@@ -4,7 +4,7 @@ use crate::store::format::place::{At, Fault, Fields};
 use crate::store::format::v1::words;
 use crate::store::format::v1::{Group, Reading, Writing};
 use crate::study::settings::data::{
-    ColumnRange, Correction, Data, Exclusion, Join, LeadingZeros, LetterCase, Outcome, OutcomeKind,
+    ColumnRange, Correction, Data, Exclusion, Join, LeadingZeros, LetterCase, Marked, Outcome, OutcomeKind,
     OutcomeSeen, Sealed, Subject, TableSource, UnitMaking,
 };
 use crate::study::source::SourceId;
@@ -48,6 +48,9 @@ pub fn read(fields: &mut Fields<'_>, reading: &Reading<'_>) -> Result<Data, Faul
         sealed: fields
             .read("sealed", |at| read_sealed(&at))?
             .unwrap_or_default(),
+        quality_control: fields
+            .read("quality-control", |at| read_marked(&at))?
+            .map(Arc::new),
         subject: fields
             .read("subject", |at| at.one_of(words::SUBJECTS))?
             .unwrap_or_default(),
@@ -88,6 +91,12 @@ pub fn write(data: &Data, group: &mut Group, writing: &Writing<'_>) {
             sealed.put("names", names.clone());
             group.put("sealed", sealed.value());
         }
+    }
+    if let Some(marked) = &data.quality_control {
+        let mut group_of = Group::default();
+        group_of.put("column", marked.column.clone());
+        group_of.put("values", marked.values.clone());
+        group.put("quality-control", group_of.value());
     }
     if data.subject != Subject::Ordinary {
         group.put("subject", words::subject(data.subject));
@@ -321,6 +330,16 @@ fn write_exclusion(exclusion: &Exclusion) -> Value {
 fn read_seen(fields: &mut Fields<'_>) -> Result<OutcomeSeen, Fault> {
     let seen = fields.read("outcome-seen", |at| at.one_of(words::OUTCOME_SEEN))?;
     Ok(seen.unwrap_or(OutcomeSeen::NotSaid))
+}
+
+fn read_marked(at: &At<'_>) -> Result<Marked, Fault> {
+    let mut fields = at.fields()?;
+    let marked = Marked {
+        column: fields.need("column")?.text()?,
+        values: fields.need("values")?.each(|value| value.text())?,
+    };
+    fields.done();
+    Ok(marked)
 }
 
 fn read_sealed(at: &At<'_>) -> Result<Sealed, Fault> {

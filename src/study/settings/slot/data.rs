@@ -2,7 +2,7 @@
 
 use crate::base::problem::Problem;
 use crate::study::settings::data::{
-    Data, Outcome, OutcomeKind, Sealed, Subject, TableSource, UnitMaking,
+    Data, Marked, Outcome, OutcomeKind, Sealed, Subject, TableSource, UnitMaking,
 };
 use crate::study::settings::slot::table::{TableSlot, usual_join};
 use crate::study::settings::slot::{Bounds, Value, take};
@@ -59,6 +59,10 @@ pub enum DataSlot {
     AsText,
     /// The columns that are read as numbers.
     AsNumbers,
+    /// The column by which quality-control samples are known; none where there are none.
+    QualityControl,
+    /// The texts in that column that mark one.
+    QualityControlValues,
     /// The recorded changes of single values.
     Corrections,
     /// The recorded removals of samples.
@@ -119,6 +123,8 @@ const MAKING_NAMES: [&str; 2] = take::names(&MAKINGS);
 const USUAL_EVENT: &str = "event";
 /// What units are called that are made from the sample names until another word is chosen.
 const USUAL_UNIT: &str = "unit";
+/// The text that marks a quality-control sample until another is named.
+const USUAL_MARK: &str = "QC";
 /// The column that seals until another is named.
 const USUAL_SEAL: &str = "sealed";
 
@@ -161,6 +167,10 @@ impl DataSlot {
             Sealed::Where { .. } => vec![Self::SealedColumn, Self::SealedValues],
             Sealed::Listed(_) => vec![Self::SealedNames],
         });
+        slots.push(Self::QualityControl);
+        if data.quality_control.is_some() {
+            slots.push(Self::QualityControlValues);
+        }
         slots.extend([
             Self::AsText,
             Self::AsNumbers,
@@ -199,6 +209,8 @@ impl DataSlot {
             Self::SealedNames => "names of the sealed set",
             Self::AsText => "columns of text",
             Self::AsNumbers => "columns of numbers",
+            Self::QualityControl => "column of quality-control samples",
+            Self::QualityControlValues => "mark of quality-control samples",
             Self::Corrections => "corrections",
             Self::Exclusions => "exclusions",
             Self::Subject => "subject of the study",
@@ -234,6 +246,8 @@ impl DataSlot {
             | Self::SealedNames
             | Self::AsText
             | Self::AsNumbers
+            | Self::QualityControl
+            | Self::QualityControlValues
             | Self::Corrections
             | Self::Exclusions => &[],
         }
@@ -270,6 +284,8 @@ impl DataSlot {
             | Self::SealedNames
             | Self::AsText
             | Self::AsNumbers
+            | Self::QualityControl
+            | Self::QualityControlValues
             | Self::Corrections
             | Self::Exclusions
             | Self::Subject => None,
@@ -341,6 +357,13 @@ impl DataSlot {
             },
             Self::AsText => Value::Texts(data.as_text.clone()),
             Self::AsNumbers => Value::Texts(data.as_numbers.clone()),
+            Self::QualityControl => {
+                let marked = data.quality_control.as_ref();
+                Value::Column(marked.map(|marked| marked.column.clone()))
+            }
+            Self::QualityControlValues => {
+                Value::Texts(data.quality_control.as_ref()?.values.clone())
+            }
             Self::Corrections => Value::Corrections(Arc::clone(&data.corrections)),
             Self::Exclusions => Value::Exclusions(Arc::clone(&data.exclusions)),
             Self::Subject => take::named(&SUBJECTS, data.subject),
@@ -395,6 +418,25 @@ impl DataSlot {
                 data.as_numbers = take::texts(label, &value)?;
                 data.as_text.retain(|name| !data.as_numbers.contains(name));
             }
+            Self::QualityControl => {
+                let column = take::optional_column(label, &value)?;
+                let old = data.quality_control.take().map(Arc::unwrap_or_clone);
+                data.quality_control = column.map(|column| {
+                    Arc::new(Marked {
+                        column,
+                        values: old.map_or_else(|| vec![USUAL_MARK.to_owned()], |old| old.values),
+                    })
+                });
+            }
+            Self::QualityControlValues => match &mut data.quality_control {
+                Some(marked) => Arc::make_mut(marked).values = take::texts(label, &value)?,
+                None => {
+                    return Err(take::absent(
+                        label,
+                        "no column marks quality-control samples",
+                    ));
+                }
+            },
             Self::Corrections => {
                 let Value::Corrections(corrections) = value else {
                     return Err(take::wrong_sort(label, "a list of corrections", &value));
@@ -477,6 +519,8 @@ impl DataSlot {
             | Self::SealedNames
             | Self::AsText
             | Self::AsNumbers
+            | Self::QualityControl
+            | Self::QualityControlValues
             | Self::Corrections
             | Self::Exclusions
             | Self::Subject => {}

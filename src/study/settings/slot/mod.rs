@@ -10,6 +10,7 @@ pub mod prepare;
 pub mod prose;
 pub mod question;
 pub mod score;
+pub mod step;
 pub mod table;
 pub(in crate::study::settings) mod take;
 

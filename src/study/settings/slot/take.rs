@@ -232,6 +232,39 @@ pub fn numbers(label: &str, bounds: Bounds, value: &Value) -> Result<Vec<Real>, 
     Ok(list)
 }
 
+/// Numbers in the order in which they are given; none where nothing is.
+pub fn series(label: &str, value: &Value) -> Result<Vec<Real>, Problem> {
+    let wrong = || {
+        wrong_sort(label, "numbers", value)
+            .mend("Separate the numbers by blanks or semicolons, or by commas and a blank.")
+    };
+    match value {
+        Value::Numbers(list) => Ok(list.clone()),
+        Value::Number(number) => Ok(vec![*number]),
+        Value::Whole(whole) => Real::new(*whole as f64)
+            .map(|number| vec![number])
+            .ok_or_else(wrong),
+        Value::Nothing => Ok(Vec::new()),
+        Value::Text(typed) => typed
+            .split(|c: char| c == ';' || c.is_whitespace())
+            .map(|part| part.trim().trim_end_matches(','))
+            .filter(|part| !part.is_empty())
+            .map(|part| parse(part).and_then(Real::new))
+            .collect::<Option<Vec<Real>>>()
+            .ok_or_else(wrong),
+        Value::Choice(_)
+        | Value::Column(_)
+        | Value::Columns(_)
+        | Value::Cell(_)
+        | Value::File { .. }
+        | Value::Steps(_)
+        | Value::Texts(_)
+        | Value::Corrections(_)
+        | Value::Exclusions(_)
+        | Value::Prose(_) => Err(wrong()),
+    }
+}
+
 /// The stable names of a table of choices.
 pub const fn names<T: Copy, const N: usize>(table: &[(&'static str, T); N]) -> [&'static str; N] {
     let mut names = [""; N];

@@ -71,8 +71,7 @@ impl Response {
             }
             Self::Classes { class, .. } => Some(OutcomeValues::Classes(class)),
             Self::Time { time, event, .. } => Some(OutcomeValues::Times { time, event }),
-            // Such a step would need a copy as numbers; none is there yet.
-            Self::YesNo(_) => None,
+            Self::YesNo(events) => Some(OutcomeValues::Events(events)),
         }
     }
 

@@ -189,8 +189,10 @@ impl Companions {
 /// The outcome of every sample, for the steps that are learnt with it.
 #[derive(Clone, Copy, Debug)]
 pub enum OutcomeValues<'a> {
-    /// Measured quantities, counts, or no (0) and yes (1).
+    /// Measured quantities or counts.
     Numbers(&'a [f64]),
+    /// No or yes; a training part sees 0 and 1.
+    Events(&'a [bool]),
     /// The class of each sample, from 0.
     Classes(&'a [usize]),
     /// The time of each sample and whether the event happened then (1) or not yet (0).
@@ -208,6 +210,7 @@ impl OutcomeValues<'_> {
     pub fn len(&self) -> usize {
         match self {
             Self::Numbers(values) => values.len(),
+            Self::Events(events) => events.len(),
             Self::Classes(classes) => classes.len(),
             Self::Times { time, .. } => time.len(),
         }

@@ -59,6 +59,31 @@ fn baselines_agree() {
 }
 
 #[test]
+fn a_well_conditioned_baseline_agrees_to_ten_digits() {
+    let values = values();
+    let block = &values["asymmetric_baseline_100"];
+    let rule = BaselineRule::Asymmetric {
+        smoothness: block["smoothness"].as_f64().unwrap(),
+        asymmetry: block["asymmetry"].as_f64().unwrap(),
+    };
+    let samples = spectra().select(&[0, 60]);
+    let flat = applied(Baseline::new(rule).unwrap(), &[0], &samples);
+    check_rows(&flat, &block["rows"], 1e-10);
+}
+
+#[test]
+fn spikes_are_found_and_mended_as_documented() {
+    let values = values();
+    let block = &values["spikes"];
+    let half = block["half"].as_u64().unwrap() as usize;
+    let step = SpikeRemoval::new(half, block["threshold"].as_f64().unwrap()).unwrap();
+    let samples = Samples::new(table(&block["values"]));
+    let mended = applied(step, &[0], &samples);
+    assert_ne!(mended, samples);
+    check_rows(&mended, &block["rows"], 1e-12);
+}
+
+#[test]
 fn a_curve_that_is_straight_is_its_own_baseline() {
     let rule = BaselineRule::Asymmetric {
         smoothness: 1e6,

@@ -41,6 +41,40 @@ out["asymmetric_baseline"] = {
     "rows": [asymmetric(spectra[i], 1e5, 0.01).tolist() for i in (0, 60)],
 }
 
+# At a smoothness of 100 the equations are well conditioned, so that two solvers agree closely.
+out["asymmetric_baseline_100"] = {
+    "smoothness": 1e2,
+    "asymmetry": 0.05,
+    "rows": [asymmetric(spectra[i], 1e2, 0.05).tolist() for i in (0, 60)],
+}
+
+
+def despiked(y, half, threshold):
+    """The rule as it is documented, with the medians of numpy and the spread of scipy."""
+    steps = np.diff(y)
+    spread = st.median_abs_deviation(steps, scale="normal")
+    result = y.copy()
+    for at in range(len(y)):
+        low, high = max(0, at - half), min(at + half, len(y) - 1)
+        local = np.median(np.abs(steps[low:high])) / st.norm.ppf(0.75)
+        middle = np.median(y[low : high + 1])
+        if abs(y[at] - middle) > threshold * max(spread, local):
+            result[at] = middle
+    return result
+
+
+spiky = spectra[:4].copy()
+spiky[0, 17] += 0.4
+spiky[1, 3] -= 0.3
+spiky[2, 96] += 0.2
+spiky[3, 50] += 1.0
+out["spikes"] = {
+    "values": spiky.tolist(),
+    "half": 4,
+    "threshold": 6.0,
+    "rows": [despiked(y, 4, 6.0).tolist() for y in spiky],
+}
+
 positions = np.linspace(851.3, 1047.9, 23)
 out["common_axis"] = {
     "positions": positions.tolist(),

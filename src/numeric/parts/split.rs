@@ -216,6 +216,12 @@ impl<'a> TrainingPart<'a> {
         }
         Some(match self.outcome? {
             OutcomeValues::Numbers(values) => PartOutcome::Numbers(chosen(values, &self.rows)),
+            OutcomeValues::Events(events) => PartOutcome::Numbers(
+                self.rows
+                    .iter()
+                    .map(|&row| f64::from(u8::from(events[row])))
+                    .collect(),
+            ),
             OutcomeValues::Classes(classes) => PartOutcome::Classes(chosen(classes, &self.rows)),
             OutcomeValues::Times { time, event } => {
                 PartOutcome::Times(chosen(time, &self.rows), chosen(event, &self.rows))

@@ -3,13 +3,13 @@
 use crate::base::number::Precision;
 use crate::eval::fact::{Fact, FactColumn, Facts};
 use crate::eval::kind::prepare::Prepared;
-use crate::eval::kind::prepare::preview::{Followed, Part, Seen, Side, Stage};
+use crate::eval::kind::prepare::preview::{Part, Seen, Side, Stage};
 use crate::eval::kind::step::{parameters, source, step_name};
 use crate::numeric::samples::Origin;
 use crate::study::settings::prepare::{Step, StepClass};
 
 /// So many columns of each followed sample are shown.
-const SHOWN: usize = 60;
+const SHOWN: usize = 100;
 
 /// Publishes what the steps are and what they do.
 pub(super) fn publish(facts: &mut Facts, prepared: &Prepared, seen: &Seen) {
@@ -209,17 +209,10 @@ fn effects(steps: &[Step], seen: &Seen) -> Fact {
     )
 }
 
-/// The columns that are shown at a stage: evenly spaced among those that take part at the last
-/// stage with the same columns.
-fn shown_columns(stages: &[Stage], at: usize) -> Vec<usize> {
-    let like = |other: &&Stage| other.origins == stages[at].origins;
-    let last = stages[at..]
-        .iter()
-        .take_while(like)
-        .last()
-        .expect("a stage is like itself");
-    let active: Vec<usize> = (0..last.active.len())
-        .filter(|&column| last.active[column])
+/// The columns that are shown at a stage: evenly spaced among those that take part.
+fn shown_columns(stage: &Stage) -> Vec<usize> {
+    let active: Vec<usize> = (0..stage.active.len())
+        .filter(|&column| stage.active[column])
         .collect();
     let n = active.len();
     if n <= SHOWN {
@@ -236,7 +229,7 @@ fn followed(prepared: &Prepared, seen: &Seen) -> Fact {
         (Vec::new(), Vec::new(), Vec::new(), Vec::new(), Vec::new());
     let (mut along, mut position, mut value) = (Vec::new(), Vec::new(), Vec::new());
     for (at, stage) in seen.stages.iter().enumerate() {
-        let columns = shown_columns(&seen.stages, at);
+        let columns = shown_columns(stage);
         for one in &stage.followed {
             for &column in &columns {
                 stage_at.push(at as f64);
@@ -259,7 +252,7 @@ fn followed(prepared: &Prepared, seen: &Seen) -> Fact {
                 };
                 along.push(kind.to_owned());
                 position.push(place);
-                value.push(stage.followed_value(one, column));
+                value.push(one.values[column]);
             }
         }
     }
@@ -292,16 +285,6 @@ fn followed(prepared: &Prepared, seen: &Seen) -> Fact {
             ),
             FactColumn::numbers("value", value, "", digits, "The value of the sample."),
         ],
-        "A few samples followed through the steps, at up to 60 predictors.",
+        "A few samples followed through the steps, at up to 100 predictors.",
     )
-}
-
-impl Stage {
-    fn followed_value(&self, one: &Followed, column: usize) -> f64 {
-        if self.active[column] {
-            one.values[column]
-        } else {
-            f64::NAN
-        }
-    }
 }

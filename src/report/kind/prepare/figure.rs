@@ -11,8 +11,8 @@ use std::ops::Range;
 /// So many stages stand in one figure; a longer list goes on in the next.
 const IN_A_FIGURE: usize = 4;
 
-/// The figures, so many as the stages need. A step that leaves every followed value as it was
-/// (such as a filter) has no panel of its own.
+/// The figures, so many as the stages need. A step that leaves every followed value as it was has
+/// no panel of its own.
 #[must_use]
 pub fn figures(source: &Source<'_>) -> Vec<NamedFigure> {
     let Some(table) = source.rows("followed samples") else {
@@ -134,11 +134,29 @@ fn stage(table: &FactTable, range: Range<usize>) -> Stage {
             "scores" => Heading::new("score", ""),
             _ => Heading::new("place among the predictors", ""),
         },
-        course: if along == "axis" {
+        course: if along == "axis" && is_dense(&curves) {
             Course::Line
         } else {
             Course::Dots
         },
         curves,
+    }
+}
+
+/// Whether the positions of the samples have no holes, such as a filter leaves: no distance is
+/// more than four times the usual one.
+fn is_dense(curves: &[Curve]) -> bool {
+    let Some(first) = curves.first() else {
+        return true;
+    };
+    let mut distances: Vec<f64> = first
+        .positions
+        .windows(2)
+        .map(|pair| pair[1] - pair[0])
+        .collect();
+    distances.sort_by(f64::total_cmp);
+    match (distances.get(distances.len() / 2), distances.last()) {
+        (Some(usual), Some(most)) => *most <= 4.0 * usual,
+        _ => true,
     }
 }

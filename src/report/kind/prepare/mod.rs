@@ -158,8 +158,8 @@ pub fn methods(source: &Source<'_>) -> Vec<Paragraph> {
     }
     if source.has("steps learned with the outcome") {
         telling.say(source.say(
-            "{steps learned with the outcome} of them [looks|look] at the outcome of the training \
-             samples, and [was|were] learnt anew wherever a part was held out, at both levels.",
+            "{steps learned with the outcome} of them [looks|look] at the outcome of the samples \
+             that [it is|they are] learnt from.",
             &[],
         ));
     }

@@ -191,7 +191,7 @@ fn columns_cells_steps_and_lists_hand_over_what_can_stand() {
                     Message::Names(names::Message::Done),
                 ],
                 Sort::Steps => vec![
-                    Message::Steps(steps::Message::Add(0)),
+                    Message::Steps(steps::Message::Add(0, 0)),
                     Message::Steps(steps::Message::Done),
                 ],
                 Sort::Cell(kinds) => {

@@ -10,8 +10,9 @@ use widefold::numeric::choose::Rule;
 use widefold::numeric::matrix::Matrix;
 use widefold::numeric::measure::area_under_curve;
 use widefold::numeric::parts::{PartsParams, Scheme, Structure, assign};
+use widefold::numeric::path::Grouping;
 use widefold::numeric::predictors::Predictors;
-use widefold::numeric::procedure::{Material, Procedure, StrengthRule, nested};
+use widefold::numeric::procedure::{ErrorMeasure, Material, Procedure, StrengthRule, nested};
 use widefold::numeric::random::Random;
 use widefold::numeric::response::Response;
 use widefold::numeric::samples::Samples;
@@ -59,6 +60,8 @@ fn nested_area(x: Matrix, is_event: &[bool], units: &[usize], steps: Vec<Step>, 
         chain: &chain,
         scaling: task::Scaling::AsGiven,
         shares: vec![0.0],
+        grouping: Grouping::Apart,
+        measure: ErrorMeasure::SquaredError,
         strength: StrengthRule::Chosen {
             rule: Rule::LowestError,
             count: 5,
@@ -79,7 +82,7 @@ fn nested_area(x: Matrix, is_event: &[bool], units: &[usize], steps: Vec<Step>, 
     assert!(held_out.tally.proof.holds());
     let mut score = vec![f64::NAN; n];
     for fit in &held_out.fits {
-        for (&row, &predicted) in fit.rows.iter().zip(&fit.predicted) {
+        for (&row, &predicted) in fit.rows.iter().zip(fit.linear.column(0).iter()) {
             score[row] = predicted;
         }
     }

@@ -12,10 +12,10 @@ mod evaluation;
 mod honest;
 /// Every number that is handed over is a value of the study.
 mod numerals;
-/// Tables as they are delivered, from import to hand-over.
-mod real_tables;
 /// Every preparation step through its cell.
 mod preparation;
+/// Tables as they are delivered, from import to hand-over.
+mod real_tables;
 /// Making studies from tables, running them, and running the program.
 mod run;
 /// What was saved opens again as it was, with its results.

@@ -23,8 +23,8 @@ use widefold::study::prose::{FactReference, Piece, Prose};
 use widefold::study::settings::Settings;
 use widefold::study::settings::compare::Compare;
 use widefold::study::settings::data::{
-    ColumnRange, Correction, Data, Exclusion, Join, LeadingZeros, LetterCase, Marked, Outcome, OutcomeKind,
-    OutcomeSeen, Sealed, Subject, TableSource, UnitMaking,
+    ColumnRange, Correction, Data, Exclusion, Join, LeadingZeros, LetterCase, Marked, Outcome,
+    OutcomeKind, OutcomeSeen, Sealed, Subject, TableSource, UnitMaking,
 };
 use widefold::study::settings::fit::{
     ErrorMeasure, Fit, Grouping, Judge, Penalty, PenaltyRange, Plan, Rule, Scaling, Scheme,

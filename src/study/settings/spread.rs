@@ -9,8 +9,8 @@ use crate::study::link::Link;
 use crate::study::settings::Settings;
 use crate::study::settings::compare::Compare;
 use crate::study::settings::data::{
-    ColumnRange, Correction, Data, Exclusion, Join, LeadingZeros, LetterCase, Marked, Outcome, OutcomeKind,
-    OutcomeSeen, Sealed, Subject, TableSource, UnitMaking,
+    ColumnRange, Correction, Data, Exclusion, Join, LeadingZeros, LetterCase, Marked, Outcome,
+    OutcomeKind, OutcomeSeen, Sealed, Subject, TableSource, UnitMaking,
 };
 use crate::study::settings::fit::{
     ErrorMeasure, Fit, Grouping, Judge, Penalty, PenaltyRange, Plan, Rule, Scaling, Scheme,

@@ -4,8 +4,8 @@ use crate::store::format::place::{At, Fault, Fields};
 use crate::store::format::v1::words;
 use crate::store::format::v1::{Group, Reading, Writing};
 use crate::study::settings::data::{
-    ColumnRange, Correction, Data, Exclusion, Join, LeadingZeros, LetterCase, Marked, Outcome, OutcomeKind,
-    OutcomeSeen, Sealed, Subject, TableSource, UnitMaking,
+    ColumnRange, Correction, Data, Exclusion, Join, LeadingZeros, LetterCase, Marked, Outcome,
+    OutcomeKind, OutcomeSeen, Sealed, Subject, TableSource, UnitMaking,
 };
 use crate::study::source::SourceId;
 use serde_json::Value;

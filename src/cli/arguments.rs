@@ -96,6 +96,18 @@ pub struct Start {
     /// Penalise the coefficients of a predictor in all classes together, for classes
     #[arg(long)]
     pub together: bool,
+    /// Weigh the predictors in the penalty by a first ridge fit to each training part
+    #[arg(long)]
+    pub learnt_weights: bool,
+    /// Keep coefficients from being negative
+    #[arg(long)]
+    pub not_negative: bool,
+    /// Compare times within their batch only
+    #[arg(long, requires = "batch")]
+    pub within_batch: bool,
+    /// Give the careful interval of the error beside the plain one; takes several times as long
+    #[arg(long)]
+    pub careful: bool,
     /// The column with the exposure of counts
     #[arg(long, value_name = "NAME")]
     pub exposure: Option<String>,

@@ -13,6 +13,7 @@ use crate::study::settings::Settings;
 use crate::study::settings::data::{OutcomeKind, UnitMaking};
 use crate::study::settings::fit::{Fit, Penalty};
 use crate::study::settings::slot::fit::FitSlot;
+use crate::study::settings::slot::weights::WeightSlot;
 use crate::study::settings::slot::{Slot, Value};
 use crate::study::source::SourceId;
 use std::path::Path;
@@ -194,6 +195,15 @@ fn fit(arguments: &Start) -> Result<Fit, Problem> {
             MeasureName::Concordance => "concordance",
         };
         set(FitSlot::Measure, Value::Choice(name.to_owned()))?;
+    }
+    let chosen = [
+        (arguments.learnt_weights, WeightSlot::Weighting, "learnt"),
+        (arguments.not_negative, WeightSlot::Signs, "not-negative"),
+        (arguments.within_batch, WeightSlot::Strata, "batches"),
+        (arguments.careful, WeightSlot::Interval, "careful"),
+    ];
+    for (_, slot, name) in chosen.into_iter().filter(|(is_asked, ..)| *is_asked) {
+        set(FitSlot::Weight(slot), Value::Choice(name.to_owned()))?;
     }
     if let Some(parts) = arguments.outer_parts {
         set(FitSlot::OuterParts, Value::Whole(parts.into()))?;

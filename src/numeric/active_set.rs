@@ -219,7 +219,7 @@ impl ActiveSet {
             for (&slot, &c) in slots.iter().zip(&self.scratch) {
                 self.correlation[slot] = c;
                 if let Some(excess) = problem.excess(slot, c)
-                    && excess > EQUATIONS * 10.0 * problem.lasso[slot] + floor
+                    && excess > 2.0 * EQUATIONS * problem.lasso[slot] + floor
                 {
                     found.push((excess, slot));
                 }

@@ -29,6 +29,17 @@ const FREE_SLOPE: f64 = 1e-10;
 /// A step that leaves more than this share of the gap has outlived its Hessian.
 const SLOW: f64 = 0.1;
 
+/// With goals below this share of the objective the Hessian is made anew in every step: the last
+/// digits come at once then.
+const KEEPING: f64 = 1e-10;
+
+/// Steps with a kept Hessian go on to this share of the goal, because they end just below it, and
+/// those with a new one far below.
+const SPARE: f64 = 0.01;
+
+/// The free coefficients alone are followed until their slopes have fallen to this.
+const FREE_EXACT: f64 = 1e-14;
+
 /// Steps at most that follow the free coefficients alone.
 const POLISH: usize = 6;
 
@@ -207,6 +218,8 @@ impl Newton {
     ) -> Result<Standing, Stop> {
         self.b.resize(working.problem.n_slots(), 0.0);
         let mut standing = self.stand(working);
+        let may_keep = goal > KEEPING * (standing.loss.abs() + standing.penalty);
+        let goal = if may_keep { SPARE * goal } else { goal };
         for _ in 0..STEPS {
             work.check()?;
             if standing.gap <= goal && standing.free_slope <= FREE_SLOPE {
@@ -216,7 +229,7 @@ impl Newton {
             let step = self.step(working, active, work)?;
             match self.take(working, &step, standing) {
                 Some(next) => {
-                    if next.gap > SLOW * standing.gap {
+                    if !may_keep || next.gap > SLOW * standing.gap {
                         self.model = None;
                     }
                     standing = next;
@@ -305,7 +318,7 @@ impl Newton {
         }
         let mut height = self.loss.evaluate(&self.eta);
         for _ in 0..POLISH {
-            if free_slope(&self.free, self.loss.residual()) <= FREE_SLOPE || !height.is_finite() {
+            if free_slope(&self.free, self.loss.residual()) <= FREE_EXACT || !height.is_finite() {
                 return;
             }
             let part = FreePart::new(self.loss.as_ref(), &self.free, self.m);

@@ -12,14 +12,22 @@
 )]
 
 use std::io::Read;
+use std::sync::Arc;
 use std::time::Instant;
 use widefold::base::thread::{Threads, in_order};
 use widefold::base::work::Work;
+use widefold::numeric::choose::Rule;
 use widefold::numeric::matrix::Matrix;
-use widefold::numeric::path::{Params, Path, fit_path};
+use widefold::numeric::parts::{PartsParams, Scheme, Structure, assign};
+use widefold::numeric::path::{Grouping, Params, Path, fit_path};
 use widefold::numeric::predictors::Predictors;
+use widefold::numeric::procedure::{
+    ErrorMeasure, Material, Procedure, StrengthRule, Weighting, nested,
+};
 use widefold::numeric::range::{RangeParams, strength_range};
 use widefold::numeric::response::{Response, Ties};
+use widefold::numeric::samples::Samples;
+use widefold::numeric::step::Chain;
 use widefold::numeric::task::{Scaling, Task};
 
 /// What a case came to.
@@ -130,6 +138,58 @@ impl Setting<'_> {
         .expect("the case has a range")
     }
 
+    /// The whole procedure as a Fit cell carries it out: five outer parts ten times, and in each of
+    /// them the strength among 100 by ten parts five times.
+    fn nested(&self, rows: &[usize]) -> Tally {
+        let samples = Samples::new(self.predictors.x().clone());
+        let predictors = Predictors::new(Arc::clone(&samples.x));
+        let chain = Chain::new(Vec::new());
+        let units = rows.to_vec();
+        let material = Material {
+            samples: &samples,
+            predictors: &predictors,
+            response: self.response,
+            covariates: self.covariates,
+            weights: None,
+            structure: Structure::of_units(&units),
+        };
+        let plan = |parts, repeats| PartsParams {
+            scheme: Scheme::Random,
+            parts,
+            repeats,
+            seed: 1,
+        };
+        let procedure = Procedure {
+            chain: &chain,
+            scaling: Scaling::UnitVariance,
+            shares: vec![1.0],
+            grouping: Grouping::Apart,
+            weighting: Weighting::Equal,
+            signs: Vec::new(),
+            measure: ErrorMeasure::SquaredError,
+            strength: StrengthRule::Chosen {
+                rule: Rule::LowestError,
+                count: 100,
+                ratio: Some(0.01),
+                inner: plan(10, 5),
+            },
+        };
+        let work = Work::unattended();
+        let outer = assign(&plan(5, 10), rows, &material.structure, "outer")
+            .expect("a hundred samples make five parts");
+        let threads = Threads::all();
+        let found = nested(&material, &procedure, &outer, "outer", threads, &work)
+            .expect("the procedure can be carried out");
+        assert!(found.tally.proof.holds());
+        Tally {
+            // The readings of single paths are not gathered by a procedure.
+            passes: f64::NAN,
+            gap: found.tally.worst_gap,
+            chosen: found.fits.last().map_or(0, |fit| fit.n_chosen),
+            settled: found.tally.unsettled == 0,
+        }
+    }
+
     /// A path on each part's training rows, with predictions of the others; then on all rows.
     fn parts(&self, n: usize, n_parts: usize, share: f64, strengths: &[f64]) -> Tally {
         let tallies = in_order(Threads::all(), n_parts + 1, &Work::unattended(), |part| {
@@ -236,34 +296,7 @@ fn run(name: &str, case: &Case, x: Matrix) -> Tally {
                 |sum, one| sum.and(one),
             )
         }
-        "nested" => {
-            let mut sum = Tally {
-                settled: true,
-                ..Tally::default()
-            };
-            let strengths = setting.range(&rows, 1.0, 100, 0.01);
-            for repeat in 0..10 {
-                for outer in 0..5 {
-                    let inside: Vec<usize> = (0..n)
-                        .filter(|row| (row * 7 + row / 5 + repeat) % 5 != outer)
-                        .collect();
-                    let tallies = in_order(Threads::all(), 51, &Work::unattended(), |inner| {
-                        let train: Vec<usize> = inside
-                            .iter()
-                            .enumerate()
-                            .filter(|(at, _)| {
-                                inner == 50 || (at * 3 + inner / 10) % 10 != inner % 10
-                            })
-                            .map(|(_, row)| *row)
-                            .collect();
-                        Ok(Tally::of(&setting.path(&train, 1.0, &strengths, 1e-8)))
-                    })
-                    .expect("nobody calls it off");
-                    sum = tallies.iter().fold(sum, |sum, one| sum.and(one));
-                }
-            }
-            sum
-        }
+        "nested" => setting.nested(&rows),
         other => panic!("there is no case {other}"),
     }
 }

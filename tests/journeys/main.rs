@@ -12,6 +12,8 @@ mod evaluation;
 mod honest;
 /// Every number that is handed over is a value of the study.
 mod numerals;
+/// What a fit may know beyond one penalty for all.
+mod options;
 /// Every preparation step through its cell.
 mod preparation;
 /// Tables as they are delivered, from import to hand-over.

@@ -35,6 +35,7 @@ use widefold::study::settings::question::{Ask, Question, Seal};
 use widefold::study::settings::score::Score;
 use widefold::study::settings::slot::prepare::PrepareSlot;
 use widefold::study::settings::slot::{Bounds, Value};
+use widefold::study::settings::weights::{Block, BlockChoice, Interval, Signs, Strata, Weighting};
 use widefold::study::source::Shelf;
 
 /// A seeded source of choices (SplitMix64; Steele, Lea and Flood 2014).
@@ -527,7 +528,43 @@ fn any_fit(study: &Study, dice: &mut Dice) -> Fit {
             0 => Judge::Declined,
             _ => Judge::Nested(plan(dice)),
         },
+        weighting: any_weighting(dice),
+        signs: match dice.below(3) {
+            0 => Signs::Any,
+            1 => Signs::NotNegative,
+            _ => Signs::NotNegativeIn(dice.some(3, any_range)),
+        },
+        strata: dice.one_of(&[Strata::None, Strata::Batches]),
+        interval: dice.one_of(&[Interval::OverUnits, Interval::Careful]),
         seed: dice.roll(),
+    }
+}
+
+fn any_range(dice: &mut Dice) -> ColumnRange {
+    ColumnRange {
+        first: dice.text(),
+        last: dice.text(),
+    }
+}
+
+fn any_weighting(dice: &mut Dice) -> Weighting {
+    match dice.below(3) {
+        0 => Weighting::Equal,
+        1 => Weighting::Adaptive {
+            power: dice.between(0.1, 4.0),
+        },
+        _ => Weighting::Blocks {
+            blocks: dice.some(3, |dice| Block {
+                range: any_range(dice),
+                weight: dice.between(0.001, 1000.0),
+            }),
+            choice: match dice.below(2) {
+                0 => BlockChoice::ByHand,
+                _ => BlockChoice::Chosen {
+                    grid: vec![dice.between(0.001, 0.9), Real::constant(1.0)],
+                },
+            },
+        },
     }
 }
 

@@ -10,6 +10,7 @@ use widefold::numeric::certificate::{certify, certify_classes};
 use widefold::numeric::matrix::Matrix;
 use widefold::numeric::path::{Params, Path, fit_path};
 use widefold::numeric::predictors::Predictors;
+use widefold::numeric::procedure::Hazard;
 use widefold::numeric::range::all_zero_point;
 use widefold::numeric::response::{Response, Ties};
 use widefold::numeric::task::{Scaling, Task};
@@ -396,6 +397,37 @@ fn cox_paths_agree_with_the_reference() {
         for part in list(case, "penalised") {
             check_times(name, part, &setting, n);
         }
+    }
+}
+
+#[test]
+fn the_cumulative_hazard_agrees_with_the_reference() {
+    // Breslow's estimate at the means of the predictors, from a lasso of the arrests after release.
+    let reference = values("cox.json");
+    let known = &reference["baseline_hazard"];
+    let table = Table::named(text(known, "data"));
+    let names: Vec<String> = known["coef_std"]
+        .as_object()
+        .unwrap()
+        .keys()
+        .cloned()
+        .collect();
+    let columns: Vec<Vec<f64>> = names.iter().map(|name| table.column(name)).collect();
+    let n = table.n_rows();
+    let x = Matrix::from_fn(n, names.len(), |i, j| columns[j][i]);
+    let (time, event) = (table.column("week"), table.column("arrest"));
+    let event: Vec<bool> = event.iter().map(|e| *e == 1.0).collect();
+    let setting = Setting::new(names, x, times(time.clone(), event.clone(), ties(known)), n);
+    let path = setting.fit(number(known, "share"), &[number(known, "lambda")]);
+    let rows: Vec<usize> = (0..n).collect();
+    let eta = path.predict(&setting.task(), &rows);
+    let seen: Vec<(f64, bool, usize)> = time.iter().zip(&event).map(|(t, e)| (*t, *e, 0)).collect();
+    let hazard = Hazard::of(&seen, eta.as_slice(), &vec![1.0; n]);
+    for (week, at) in [("1", 1.0), ("10", 10.0), ("26", 26.0), ("52", 52.0)] {
+        let wanted = number(&known["cumulative_baseline_hazard_at_week"], week);
+        close(week, hazard.at(0, at), wanted, 1e-6);
+        let wanted = number(&known["survival_of_row_0_at_week"], week);
+        close(week, hazard.survival(0, at, eta[0]), wanted, 1e-6);
     }
 }
 

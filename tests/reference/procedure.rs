@@ -13,7 +13,7 @@ use widefold::numeric::parts::{Assignment, Split, Structure};
 use widefold::numeric::path::Grouping;
 use widefold::numeric::predictors::Predictors;
 use widefold::numeric::procedure::{
-    ErrorMeasure, Material, Procedure, StrengthRule, Tally, fit_part,
+    ErrorMeasure, Material, Procedure, StrengthRule, Tally, Weighting, fit_part,
 };
 use widefold::numeric::response::Response;
 use widefold::numeric::samples::Samples;
@@ -82,6 +82,8 @@ impl Bench {
             scaling: Scaling::UnitVariance,
             shares: Vec::new(),
             grouping: Grouping::Apart,
+            weighting: Weighting::Equal,
+            signs: Vec::new(),
             measure: ErrorMeasure::usual(&self.response),
             strength: StrengthRule::Fixed(0.0),
         }

@@ -7,7 +7,7 @@ use crate::base::work::Work;
 use crate::eval::caveat::selection_unstable;
 use crate::eval::fact::{Fact, FactColumn, Facts};
 use crate::eval::kind::Ended;
-use crate::eval::kind::fit::{Fitted, Sort, halted, numeric_procedure};
+use crate::eval::kind::fit::{Fitted, Sort, halted};
 use crate::eval::outcome::{Gives, Outcome};
 use crate::eval::question::active_columns;
 use crate::numeric::halves::{HalfChoice, select_on_halves};
@@ -110,7 +110,7 @@ fn halves(
     } else {
         vec![chosen]
     };
-    let procedure = numeric_procedure(&fitted.settings, &fitted.prepared);
+    let procedure = fitted.procedure_as_chosen();
     let (choices, _) = select_on_halves(
         material,
         &procedure,

@@ -8,7 +8,7 @@ use crate::eval::fact::{Fact, FactColumn, Facts};
 use crate::eval::kind::Ended;
 use crate::eval::kind::fit::{
     Fitted, Measure, Measures, Performance, Sort, error_digits, halted, numeric_measure,
-    numeric_procedure, parts_params, performance, performance_of_one,
+    parts_params, performance, performance_of_one,
 };
 use crate::eval::outcome::{Gives, Outcome};
 use crate::eval::question::agreement::not_judged;
@@ -204,7 +204,7 @@ fn judge(
     threads: Threads,
     work: &Work<'_>,
 ) -> Result<HeldOut, Halt> {
-    let procedure = numeric_procedure(&fitted.settings, &fitted.prepared);
+    let procedure = fitted.procedure();
     let plan = assign(
         params,
         &fitted.prepared.data.analysed,
@@ -317,7 +317,7 @@ fn whole_batches(
 fn sealed(fitted: &Fitted, work: &Work<'_>) -> Result<Rung, Halt> {
     let data = &fitted.prepared.data;
     let material = fitted.material();
-    let procedure = numeric_procedure(&fitted.settings, &fitted.prepared);
+    let procedure = fitted.procedure();
     let split = Split::with_held_out(&data.analysed, &data.sealed, &material.structure).map_err(
         |error| ProcedureError::Plan {
             level: Level::Outer,

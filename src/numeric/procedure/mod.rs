@@ -9,22 +9,25 @@ mod part_error;
 mod recalibration;
 mod tally;
 mod tune;
+mod weighting;
 
 pub use feasible::check_plans;
 pub use hazard::Hazard;
-pub use nested::{Hazards, HeldOut, OuterFit, hazards, nested, one_split};
+pub use nested::{Hazards, HeldOut, OuterFit, PairFit, hazards, nested, one_split, without_pairs};
 pub use part::{PartFit, chosen_predictors, fit_part, penalised_freedom};
 pub use part_error::ErrorMeasure;
 pub use recalibration::{count_calibration_slope, time_calibration_slope};
 pub use tally::Tally;
 pub use tune::{Cut, ENOUGH, Extended, Reach, Tuned, tune};
+pub use weighting::{FirstStage, Weighting, first_stage};
 
 use crate::base::work::Cancelled;
 use crate::numeric::choose::Rule;
 use crate::numeric::error::{FitError, Stop};
 use crate::numeric::matrix::Matrix;
 use crate::numeric::parts::{PartsParams, PlanError, Structure};
-use crate::numeric::path::{Grouping, Params};
+use crate::numeric::path::Grouping;
+use crate::numeric::penalty::Sign;
 use crate::numeric::predictors::Predictors;
 use crate::numeric::response::Response;
 use crate::numeric::samples::Samples;
@@ -67,21 +70,14 @@ pub struct Procedure<'a> {
     pub shares: Vec<f64>,
     /// How the coefficients of a predictor in several classes are penalised.
     pub grouping: Grouping,
+    /// The penalty weights of the predictors.
+    pub weighting: Weighting,
+    /// The sign rule of each predictor given; empty for none.
+    pub signs: Vec<Sign>,
     /// What is made small when strengths are compared on held-out parts.
     pub measure: ErrorMeasure,
     /// How the strength comes about.
     pub strength: StrengthRule,
-}
-
-impl Procedure<'_> {
-    /// The rules by which every path of the procedure is fitted.
-    #[must_use]
-    pub fn params(&self) -> Params {
-        Params {
-            grouping: self.grouping,
-            ..Params::default()
-        }
-    }
 }
 
 /// How the strength comes about.

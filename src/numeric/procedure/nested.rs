@@ -7,7 +7,9 @@ use crate::numeric::parts::{Assignment, Split};
 use crate::numeric::path::Path;
 use crate::numeric::procedure::hazard::Hazard;
 use crate::numeric::procedure::tune::{Cut, Reach, tune};
-use crate::numeric::procedure::{Halt, Material, PartFit, Procedure, Tally, chosen_predictors};
+use crate::numeric::procedure::{
+    Halt, Level, Material, PartFit, Procedure, ProcedureError, Tally, chosen_predictors,
+};
 use crate::numeric::response::Response;
 
 /// The procedure on one outer training part, and what it predicted for the held-out part.
@@ -21,6 +23,8 @@ pub struct OuterFit {
     pub share: f64,
     /// The chosen strength.
     pub strength: f64,
+    /// The chosen weights of the blocks of predictors; empty without blocks.
+    pub block_weights: Vec<f64>,
     /// Whether the chosen strength lies at an end of its range.
     pub at_edge: bool,
     /// How many predictors were chosen.
@@ -103,6 +107,81 @@ pub fn nested(
     Ok(held_out)
 }
 
+/// The procedure without two parts of a repeat, and what it predicted for both.
+#[derive(Clone, Debug)]
+pub struct PairFit {
+    /// The repeat, from 0.
+    pub repeat: usize,
+    /// The two parts.
+    pub parts: (usize, usize),
+    /// The fit; its rows are those of both parts, rising.
+    pub fit: OuterFit,
+}
+
+/// Carries the procedure out without each pair of outer parts of a plan, and predicts both: what the
+/// careful interval needs beside the outer fits (Bates, Hastie & Tibshirani 2024).
+///
+/// # Errors
+/// The first pair, in order, in which the procedure cannot be carried out.
+pub fn without_pairs(
+    material: &Material<'_>,
+    procedure: &Procedure<'_>,
+    plan: &Assignment,
+    purpose: &str,
+    threads: Threads,
+    work: &Work<'_>,
+) -> Result<(Vec<PairFit>, Tally), Halt> {
+    let mut pairs: Vec<(usize, (usize, usize), Split)> = Vec::new();
+    for repeat in 0..plan.n_repeats() {
+        let splits = plan.splits(repeat);
+        for first in 0..splits.len() {
+            for second in first + 1..splits.len() {
+                let both = [&splits[first], &splits[second]];
+                let held: Vec<usize> = both
+                    .iter()
+                    .flat_map(|split| split.held_out())
+                    .copied()
+                    .collect();
+                let training: Vec<usize> = both[0]
+                    .training()
+                    .iter()
+                    .copied()
+                    .filter(|row| both[1].held_out().binary_search(row).is_err())
+                    .collect();
+                let split = Split::with_held_out(&training, &held, &material.structure).map_err(
+                    |error| ProcedureError::Plan {
+                        level: Level::Outer,
+                        error,
+                    },
+                )?;
+                pairs.push((repeat, (first, second), split));
+            }
+        }
+    }
+    let silent = work.silent();
+    let results = in_order(threads, pairs.len(), work, |at| {
+        let (repeat, (first, second), split) = &pairs[at];
+        let purpose = format!("{purpose} {repeat} {first} {second}");
+        match one_split(material, procedure, split, &purpose, &silent) {
+            Ok(found) => Ok(Ok(found)),
+            Err(Halt::Cancelled) => Err(crate::base::work::Cancelled),
+            Err(Halt::Failed(error)) => Ok(Err(error)),
+        }
+    })?;
+    let mut tally = Tally::default();
+    let mut fits = Vec::with_capacity(results.len());
+    for (result, (repeat, parts, _)) in results.into_iter().zip(&pairs) {
+        let (fit, counts) = result?;
+        tally.merge(&counts);
+        fits.push(PairFit {
+            repeat: *repeat,
+            parts: *parts,
+            fit,
+        });
+    }
+    Ok((fits, tally))
+}
+
 /// Carries the procedure out on the training rows of one split and predicts its held-out rows.
 ///
 /// # Errors
@@ -128,6 +207,7 @@ pub fn one_split(
         part: 0,
         share: tuned.share,
         strength: tuned.strength,
+        block_weights: tuned.block_weights,
         // The strong end of a sparse range is the empty model, beyond which nothing changes; only
         // ridge has more to find there.
         // The weak end of a range that was cut is where the fit follows its samples anyway.

@@ -5,7 +5,9 @@ use crate::numeric::matrix::Matrix;
 use crate::numeric::parts::Split;
 use crate::numeric::path::{Path, fit_path};
 use crate::numeric::predictors::Predictors;
-use crate::numeric::procedure::{Halt, Material, Procedure, ProcedureError, Tally};
+use crate::numeric::procedure::{
+    Halt, Material, Procedure, ProcedureError, Tally, Weighting, first_stage,
+};
 use crate::numeric::range::{RangeParams, strength_range};
 use crate::numeric::response::Response;
 use crate::numeric::samples::Samples;
@@ -24,6 +26,10 @@ pub struct Learnt<'a> {
     pub samples: Cow<'a, Samples>,
     predictors: PartPredictors<'a>,
     scaling: Scaling,
+    /// The penalty weight of each prepared column, where they are not 1.
+    factors: Option<Vec<f64>>,
+    /// For penalty weights that were learnt: the strength of the ridge fit in the first stage.
+    pub first_strength: Option<f64>,
 }
 
 /// The predictor matrix of a part: the shared one wherever preparation left it as it was.
@@ -71,27 +77,46 @@ pub fn learn_part<'a>(
     } else {
         PartPredictors::Own(Box::new(Predictors::new(Arc::clone(&samples.x))))
     };
+    let known = match &predictors {
+        PartPredictors::Shared(predictors) => predictors,
+        PartPredictors::Own(predictors) => predictors.as_ref(),
+    };
     let rows = split.training().iter().chain(split.held_out()).copied();
-    nothing_missing(&samples, rows)?;
+    nothing_missing(&samples, known, rows)?;
     let scaling = match chain.trailing().scale {
         TrailingScale::UnitVariance => Scaling::UnitVariance,
         TrailingScale::Leave => procedure.scaling,
     };
-    Ok(Learnt {
+    let mut learnt = Learnt {
+        factors: procedure.given_factors(&samples),
+        first_strength: None,
         chain,
         samples,
         predictors,
         scaling,
-    })
+    };
+    if let Weighting::Adaptive { power } = procedure.weighting {
+        let task = learnt.task(material, split.training());
+        tally.proof.check_moments(task.rows, split);
+        let first = first_stage(&task, power, work)?;
+        learnt.factors = Some(first.weights);
+        learnt.first_strength = first.strength;
+    }
+    Ok(learnt)
 }
 
 fn nothing_missing(
     samples: &Samples,
+    predictors: &Predictors,
     rows: impl Iterator<Item = usize> + Clone,
 ) -> Result<(), ProcedureError> {
     let mut first = None;
     let mut count = 0;
     for column in samples.active_columns() {
+        // Known once for all parts: most columns have nothing missing in any sample.
+        if predictors.half_range(column).is_finite() {
+            continue;
+        }
         let values = samples.column(column);
         for row in rows.clone() {
             if values[row].is_nan() {
@@ -116,6 +141,12 @@ impl Learnt<'_> {
         }
     }
 
+    /// The penalty weight of each prepared column, where they are not all 1.
+    #[must_use]
+    pub fn factors(&self) -> Option<&[f64]> {
+        self.factors.as_deref()
+    }
+
     /// The fitting problem of this part.
     #[must_use]
     pub fn task<'t>(&'t self, material: &'t Material<'_>, rows: &'t [usize]) -> Task<'t> {
@@ -126,7 +157,7 @@ impl Learnt<'_> {
             columns: Some(&self.samples.active),
             covariates: material.covariates,
             weights: material.weights,
-            factors: None,
+            factors: self.factors.as_deref(),
             scaling: self.scaling,
         }
     }
@@ -149,7 +180,7 @@ impl Learnt<'_> {
             &task,
             share,
             params,
-            &procedure.params(),
+            &procedure.params(&self.samples),
             work,
         )?)
     }
@@ -173,7 +204,13 @@ pub fn fit_learnt<'a>(
     if !tally.proof.holds() {
         return Err(ProcedureError::Leak.into());
     }
-    let path = fit_path(&task, share, strengths, &procedure.params(), work)?;
+    let path = fit_path(
+        &task,
+        share,
+        strengths,
+        &procedure.params(&learnt.samples),
+        work,
+    )?;
     tally.count(&path);
     Ok(PartFit { learnt, path })
 }

@@ -25,6 +25,10 @@ pub struct Tuned<'a> {
     pub share: f64,
     /// The chosen strength.
     pub strength: f64,
+    /// The chosen weights of the blocks of predictors; empty without blocks.
+    pub block_weights: Vec<f64>,
+    /// Where weights of blocks were to be chosen: every list that was tried, with its lowest error.
+    pub weights_tried: Vec<(Vec<f64>, f64)>,
     /// Whether the range was made longer once because its weak end won.
     pub extended: Extended,
     /// Whether the range was cut short because weaker penalties would only follow single samples.
@@ -72,6 +76,9 @@ pub enum Reach {
 /// One range of strengths serves all inner parts: it is taken from all rows that this level may
 /// see. A part whose own all-zero point is lower simply starts empty.
 ///
+/// Where there are several lists of block weights, all of this is done with each of them, on the
+/// same parts, and the list with the lowest error wins; of equals the first.
+///
 /// # Errors
 /// When preparation, plan or fit cannot be made, or the work was called off.
 pub fn tune<'a>(
@@ -82,6 +89,46 @@ pub fn tune<'a>(
     reach: Reach,
     work: &Work<'_>,
 ) -> Result<Tuned<'a>, Halt> {
+    let count = procedure.n_weightings();
+    let has_curves = matches!(procedure.strength, StrengthRule::Chosen { .. });
+    if count == 1 || !has_curves {
+        return tune_as_weighted(material, procedure, split, purpose, reach, work);
+    }
+    let mut best: Option<(f64, Tuned<'a>)> = None;
+    let mut tried = Vec::with_capacity(count);
+    let mut tally = Tally::default();
+    for at in 0..count {
+        let weights = procedure.block_weights(at);
+        let bar = work.part(at as f32 / count as f32..(at + 1) as f32 / count as f32);
+        let fixed = procedure.with_block_weights(weights);
+        let tuned = tune_as_weighted(material, &fixed, split, purpose, reach, &bar)?;
+        tally.merge(&tuned.tally);
+        let errors = tuned.curves.iter().flat_map(|curve| &curve.errors);
+        let lowest = errors
+            .copied()
+            .filter(|e| !e.is_nan())
+            .fold(f64::INFINITY, f64::min);
+        tried.push((weights.to_vec(), lowest));
+        if best.as_ref().is_none_or(|(least, _)| lowest < *least) {
+            best = Some((lowest, tuned));
+        }
+    }
+    let (_, mut tuned) = best.ok_or(ProcedureError::NoError)?;
+    tuned.weights_tried = tried;
+    tuned.tally = tally;
+    Ok(tuned)
+}
+
+/// [`tune`] with the first list of block weights.
+fn tune_as_weighted<'a>(
+    material: &Material<'a>,
+    procedure: &Procedure<'_>,
+    split: &Split,
+    purpose: &str,
+    reach: Reach,
+    work: &Work<'_>,
+) -> Result<Tuned<'a>, Halt> {
+    let block_weights = procedure.block_weights(0).to_vec();
     let mut tally = Tally::default();
     let (rule, count, ratio, inner) = match &procedure.strength {
         StrengthRule::Fixed(strength) => {
@@ -101,6 +148,8 @@ pub fn tune<'a>(
                 strength_at: 0,
                 share,
                 strength: *strength,
+                block_weights,
+                weights_tried: Vec::new(),
                 extended: Extended::No,
                 cut: Cut::No,
                 fit,
@@ -161,6 +210,8 @@ pub fn tune<'a>(
         strength_at,
         share,
         strength,
+        block_weights,
+        weights_tried: Vec::new(),
         extended,
         cut,
         fit,

@@ -19,6 +19,7 @@ use crate::study::settings::fit::{Fit, Judge, Penalty, Strength};
 use crate::study::settings::prepare::Step;
 use crate::study::settings::question::{Ask, Question};
 use crate::study::settings::spread;
+use crate::study::settings::weights::{BlockChoice, Interval, Signs, Weighting};
 use std::sync::Arc;
 
 const MEANING: &str = "What it is.";
@@ -424,7 +425,50 @@ pub fn fit_facts(data: &Data, fit: &Fit) -> Facts {
     if let Some(outcome) = &data.outcome {
         writer = kind::facts(writer, &outcome.kind, fit);
     }
-    writer.0
+    options(writer, fit).0
+}
+
+/// Penalty weights, signs and the careful interval, where they were set.
+fn options(mut writer: Writer, fit: &Fit) -> Writer {
+    let three = Precision::Significant(3);
+    match &fit.weighting {
+        Weighting::Equal => {}
+        Weighting::Blocks { choice, .. } => {
+            writer = writer.texts(&[("block weights", "900 nm … 1300 nm: 2; 1700 nm: 0.5")]);
+            if matches!(choice, BlockChoice::Chosen { .. }) {
+                writer = writer.counts(&[("block weights tried", 4)]).numbers(
+                    "",
+                    Precision::Percent(0),
+                    &[("outer parts with the same block weights", 0.62)],
+                );
+            }
+        }
+        Weighting::Adaptive { power } => {
+            writer = writer.numbers(
+                "",
+                three,
+                &[
+                    ("learnt weights power", power.get()),
+                    ("first-stage strength", 1.24),
+                ],
+            );
+        }
+    }
+    if fit.signs != Signs::Any {
+        writer = writer.counts(&[("predictors never negative", 401)]);
+    }
+    if fit.interval == Interval::Careful && matches!(fit.judge, Judge::Nested(_)) {
+        let numbers = [
+            ("careful error", 0.281),
+            ("careful error low", 0.23),
+            ("careful error high", 0.33),
+        ];
+        writer = writer
+            .numbers(UNIT, Precision::Decimals(2), &numbers)
+            .numbers("", three, &[("careful interval widening", 1.31)])
+            .counts(&[("careful refits", 100)]);
+    }
+    writer
 }
 
 fn nested(writer: Writer) -> Writer {

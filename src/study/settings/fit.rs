@@ -3,6 +3,7 @@
 use crate::base::real::Real;
 use crate::study::link::Link;
 use crate::study::settings::data::OutcomeKind;
+use crate::study::settings::weights::{Interval, Signs, Strata, Weighting};
 
 /// Settings of a Fit cell.
 #[derive(Clone, Debug, PartialEq, Eq, Hash)]
@@ -23,6 +24,14 @@ pub struct Fit {
     pub strength: Strength,
     /// How the whole procedure is judged.
     pub judge: Judge,
+    /// How the penalty weighs the predictors.
+    pub weighting: Weighting,
+    /// The signs that coefficients may have.
+    pub signs: Signs,
+    /// Which samples are compared; for times only.
+    pub strata: Strata,
+    /// The interval that the judgement gives.
+    pub interval: Interval,
     /// The seed of all that is drawn at random.
     pub seed: u64,
 }
@@ -52,6 +61,10 @@ impl Default for Fit {
                 parts: 5,
                 repeats: 10,
             }),
+            weighting: Weighting::Equal,
+            signs: Signs::Any,
+            strata: Strata::None,
+            interval: Interval::OverUnits,
             seed: 20_260_301,
         }
     }

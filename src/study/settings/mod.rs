@@ -10,6 +10,7 @@ pub mod score;
 pub mod slot;
 #[cfg(test)]
 pub mod spread;
+pub mod weights;
 
 use crate::study::cell::{CellId, Kind};
 use crate::study::link::Link;

@@ -20,6 +20,7 @@ use crate::study::settings::prepare::choice::ScaleRule;
 use crate::study::settings::prepare::{Prepare, Reference, Step};
 use crate::study::settings::question::{Ask, Question, Seal};
 use crate::study::settings::score::Score;
+use crate::study::settings::weights::{Block, BlockChoice, Interval, Signs, Strata, Weighting};
 use crate::study::source::SourceId;
 use std::sync::Arc;
 
@@ -214,6 +215,21 @@ pub const fn plan(scheme: Scheme, parts: u32, repeats: u32) -> Plan {
     }
 }
 
+/// A block of many columns and one of a single column.
+fn blocks() -> Vec<Block> {
+    let block = |first: &str, last: &str, weight: f64| Block {
+        range: ColumnRange {
+            first: first.to_owned(),
+            last: last.to_owned(),
+        },
+        weight: Real::constant(weight),
+    };
+    vec![
+        block("900 nm", "1300 nm", 2.0),
+        block("1700 nm", "1700 nm", 0.5),
+    ]
+}
+
 /// Fits with every choice at least once.
 pub fn fit() -> Vec<Fit> {
     let usual = || Fit {
@@ -283,6 +299,30 @@ pub fn fit() -> Vec<Fit> {
         ties: Ties::Breslow,
         ..usual()
     });
+    fits.push(Fit {
+        strata: Strata::Batches,
+        interval: Interval::Careful,
+        signs: Signs::NotNegative,
+        weighting: Weighting::Adaptive {
+            power: Real::constant(0.5),
+        },
+        ..usual()
+    });
+    for choice in [
+        BlockChoice::ByHand,
+        BlockChoice::Chosen {
+            grid: vec![Real::constant(0.25), Real::constant(1.0)],
+        },
+    ] {
+        fits.push(Fit {
+            weighting: Weighting::Blocks {
+                blocks: blocks(),
+                choice,
+            },
+            signs: Signs::NotNegativeIn(vec![blocks()[0].range.clone()]),
+            ..usual()
+        });
+    }
     fits.push(Fit {
         strength: Strength::ByHand(Real::constant(0.03)),
         judge: Judge::Declined,

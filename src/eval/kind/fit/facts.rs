@@ -5,7 +5,7 @@ use crate::eval::fact::{Fact, FactColumn, Facts};
 use crate::eval::kind::fit::measures::{Measure, Measures, Sort};
 use crate::eval::kind::fit::performance::performance;
 use crate::eval::kind::fit::procedure::numeric_measure;
-use crate::eval::kind::fit::{Fitted, coefficients, kinds, nested, tables};
+use crate::eval::kind::fit::{Fitted, coefficients, kinds, nested, tables, weights};
 use crate::numeric::choose;
 use crate::numeric::path::Params;
 use crate::numeric::procedure::{Cut, ErrorMeasure, Extended, penalised_freedom};
@@ -21,6 +21,7 @@ pub fn publish(facts: &mut Facts, fitted: &Fitted) {
     settings(facts, fitted);
     outcome(facts, fitted);
     strength(facts, fitted);
+    weights::publish(facts, fitted);
     let digits = error_digits(fitted);
     let apparent = fitted.scene().measures(&fitted.last.apparent);
     measures(

@@ -1,5 +1,6 @@
 //! Evaluates a Fit cell: the procedure on all analysed samples, and judged on outer parts.
 
+mod careful;
 mod coefficients;
 mod facts;
 mod kinds;
@@ -11,7 +12,9 @@ mod ranks;
 mod scene;
 mod tables;
 mod trouble;
+mod weights;
 
+pub use careful::Careful;
 pub use facts::{curve_error, curve_unit, error_digits, measure_words};
 pub use kinds::{at_times, by_class, class_counts, confusion, reliability, thirds, thresholds};
 pub use measures::{Measure, Measures, Sort};
@@ -37,11 +40,12 @@ use crate::numeric::parts::{Assignment, Split, assign};
 use crate::numeric::path::Path;
 use crate::numeric::procedure::{
     Cut, Extended, Halt, Hazard, HeldOut, Level, Material, PartFit, Procedure, ProcedureError,
-    Reach, Tally, check_plans, chosen_predictors, hazards, nested, tune,
+    Reach, Tally, check_plans, chosen_predictors, hazards, nested, tune, without_pairs,
 };
 use crate::numeric::response::Response;
 use crate::numeric::samples::Samples;
 use crate::study::settings::fit::{Fit, Judge};
+use crate::study::settings::weights::Interval;
 use std::sync::Arc;
 
 /// A fit: what questions are asked of.
@@ -76,6 +80,12 @@ pub struct FinalFit {
     pub share: f64,
     /// The chosen strength.
     pub strength: f64,
+    /// The weights of the blocks of predictors; empty without blocks.
+    pub block_weights: Vec<f64>,
+    /// The lists of block weights that were compared, each with its lowest error.
+    pub weights_tried: Vec<(Vec<f64>, f64)>,
+    /// For learnt penalty weights: the strength of the ridge fit in the first stage.
+    pub first_strength: Option<f64>,
     /// Whether the range was made longer once.
     pub extended: Extended,
     /// Whether the range was cut short.
@@ -97,6 +107,8 @@ pub struct Judged {
     pub plan: Assignment,
     /// The outer fits.
     pub held_out: HeldOut,
+    /// The careful interval, where it was asked for and could be made.
+    pub careful: Option<Careful>,
 }
 
 impl FinalFit {
@@ -126,6 +138,23 @@ impl Fitted {
     #[must_use]
     pub fn material(&self) -> Material<'_> {
         numeric_material(&self.prepared, &self.response)
+    }
+
+    /// The procedure that was carried out.
+    ///
+    /// # Panics
+    /// Never: the fit was made with these settings.
+    #[must_use]
+    pub fn procedure(&self) -> Procedure<'_> {
+        numeric_procedure(&self.settings, &self.prepared)
+            .expect("the fit was made with these settings")
+    }
+
+    /// The same with the weights of blocks that the final fit has, so that none are left to choose.
+    #[must_use]
+    pub fn procedure_as_chosen(&self) -> Procedure<'_> {
+        self.procedure()
+            .with_block_weights(&self.last.block_weights)
     }
 
     /// The analysed samples, to be judged.
@@ -183,9 +212,9 @@ pub fn evaluate(
 
 fn fit(settings: &Fit, inputs: &Inputs<'_>, work: &Work<'_>) -> Result<Outcome, Ended> {
     let prepared = inputs.prepared(settings.input)?;
-    let response = numeric_response(settings, &prepared.data);
+    let response = numeric_response(settings, &prepared.data)?;
     let material = numeric_material(&prepared, &response);
-    let procedure = numeric_procedure(settings, &prepared);
+    let procedure = numeric_procedure(settings, &prepared)?;
     let trouble = |halt| halted(halt, &prepared, settings);
     // The share of the bar that the final fit takes is about one part in all parts.
     let n_outer = match settings.judge {
@@ -212,6 +241,11 @@ fn fit(settings: &Fit, inputs: &Inputs<'_>, work: &Work<'_>) -> Result<Outcome, 
             )
         }
     };
+    if let Some(plan) = &plan
+        && settings.interval == Interval::Careful
+    {
+        careful::check(plan.n_parts())?;
+    }
     check_plans(
         &material,
         &procedure,
@@ -230,11 +264,33 @@ fn fit(settings: &Fit, inputs: &Inputs<'_>, work: &Work<'_>) -> Result<Outcome, 
     let judged = match plan {
         None => None,
         Some(plan) => {
-            let bar = work.part(first..1.0);
+            let is_careful = settings.interval == Interval::Careful;
+            // A repeat has one fit for each part, and half as many pairs as parts less one.
+            let pairs = 0.5 * (plan.n_parts() as f32 - 1.0);
+            let middle = if is_careful {
+                first + (1.0 - first) / (1.0 + pairs)
+            } else {
+                1.0
+            };
+            let bar = work.part(first..middle);
             let held_out = nested(&material, &procedure, &plan, "outer", inputs.threads, &bar)
                 .map_err(trouble)?;
             tally.merge(&held_out.tally);
-            Some(Judged { plan, held_out })
+            let mut found = None;
+            if is_careful {
+                let bar = work.part(middle..1.0);
+                let (pairs, counts) =
+                    without_pairs(&material, &procedure, &plan, "pair", inputs.threads, &bar)
+                        .map_err(trouble)?;
+                tally.merge(&counts);
+                let n_parts = plan.n_parts();
+                found = careful::careful(&scene, &prepared.data, n_parts, &held_out.fits, &pairs);
+            }
+            Some(Judged {
+                plan,
+                held_out,
+                careful: found,
+            })
         }
     };
     let horizons = scene.horizons;
@@ -293,6 +349,9 @@ fn final_fit(
             strength_at: at,
             share: tuned.share,
             strength: tuned.strength,
+            block_weights: tuned.block_weights,
+            weights_tried: tuned.weights_tried,
+            first_strength: learnt.first_strength,
             extended: tuned.extended,
             cut: tuned.cut,
             path,

@@ -5,7 +5,7 @@ use crate::eval::fact::{Fact, Facts};
 use crate::eval::kind::fit::facts::{STRENGTH, error_digits, measures};
 use crate::eval::kind::fit::measures::{Measure, Measures, Sort};
 use crate::eval::kind::fit::performance::{Performance, interval, paired_loss};
-use crate::eval::kind::fit::{Fitted, Judged, kinds};
+use crate::eval::kind::fit::{Fitted, Judged, careful, kinds};
 use crate::numeric::measure::quantile;
 
 /// Publishes what the outer parts say.
@@ -30,6 +30,7 @@ pub(super) fn publish(
     }
     spreads(facts, fitted, performance);
     intervals(facts, fitted, performance);
+    careful::publish(facts, fitted, judged);
     baselines(facts, fitted, performance);
     let main = sort.main();
     facts.push(Fact::number(

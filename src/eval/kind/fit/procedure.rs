@@ -1,6 +1,8 @@
 //! From the settings of a fit to the procedure that is carried out.
 
+use crate::base::problem::Problem;
 use crate::eval::kind::data::Dataset;
+use crate::eval::kind::fit::weights::{numeric_signs, numeric_weighting, stratify};
 use crate::eval::kind::prepare::Prepared;
 use crate::numeric::choose;
 use crate::numeric::parts::{self, PartsParams};
@@ -13,9 +15,16 @@ use crate::study::settings::fit::{
 };
 
 /// The procedure that these settings describe.
-#[must_use]
-pub fn numeric_procedure<'a>(settings: &Fit, prepared: &'a Prepared) -> Procedure<'a> {
-    Procedure {
+///
+/// # Errors
+/// What is wrong with the settings for these samples.
+pub fn numeric_procedure<'a>(
+    settings: &Fit,
+    prepared: &'a Prepared,
+) -> Result<Procedure<'a>, Problem> {
+    Ok(Procedure {
+        weighting: numeric_weighting(settings, &prepared.data)?,
+        signs: numeric_signs(settings, &prepared.data)?,
         chain: &prepared.chain,
         scaling: match settings.scaling {
             Scaling::UnitVariance => task::Scaling::UnitVariance,
@@ -41,7 +50,7 @@ pub fn numeric_procedure<'a>(settings: &Fit, prepared: &'a Prepared) -> Procedur
                 inner: parts_params(*inner, settings.seed),
             },
         },
-    }
+    })
 }
 
 /// The measure that these settings describe, for this outcome.
@@ -61,8 +70,10 @@ pub const fn numeric_measure(
 }
 
 /// The outcome as these settings have it fitted.
-#[must_use]
-pub fn numeric_response(settings: &Fit, data: &Dataset) -> Response {
+///
+/// # Errors
+/// When strata are asked for and there are none.
+pub fn numeric_response(settings: &Fit, data: &Dataset) -> Result<Response, Problem> {
     let mut response = data.response.clone();
     if let Response::Time { ties, .. } = &mut response {
         *ties = match settings.ties {
@@ -70,7 +81,8 @@ pub fn numeric_response(settings: &Fit, data: &Dataset) -> Response {
             Ties::Breslow => response::Ties::Breslow,
         };
     }
-    response
+    stratify(settings, data, &mut response)?;
+    Ok(response)
 }
 
 /// What a procedure works on, with the outcome as it is fitted.

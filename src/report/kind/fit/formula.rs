@@ -4,6 +4,7 @@ use crate::report::block::Paragraph;
 use crate::report::tell::Source;
 use crate::study::settings::data::OutcomeKind;
 use crate::study::settings::fit::{Fit, Grouping, Penalty, Ties};
+use crate::study::settings::weights::Weighting;
 
 /// What the fit minimises.
 #[must_use]
@@ -137,11 +138,20 @@ fn letters(paragraph: Paragraph) -> Paragraph {
         .text(" the penalty strength.")
 }
 
-fn penalty(fit: &Fit) -> &'static str {
-    match &fit.penalty {
+fn penalty(fit: &Fit) -> String {
+    let plain = match &fit.penalty {
         Penalty::Ridge => "λ · Σⱼ bⱼ²/2",
         Penalty::Lasso => "λ · Σⱼ |bⱼ|",
         Penalty::ElasticNet { .. } => "λ · Σⱼ ( s·|bⱼ| + (1 − s)/2 · bⱼ² )",
+    };
+    weighed(fit, plain)
+}
+
+/// With the penalty weights, where they are not 1 for all.
+fn weighed(fit: &Fit, plain: &str) -> String {
+    match fit.weighting {
+        Weighting::Equal => plain.to_owned(),
+        Weighting::Blocks { .. } | Weighting::Adaptive { .. } => plain.replacen("Σⱼ ", "Σⱼ fⱼ·", 1),
     }
 }
 
@@ -155,6 +165,7 @@ fn classes(fit: &Fit, has_covariates: bool) -> Paragraph {
             "λ · Σⱼ ( s·√(Σₖ bⱼₖ²) + (1 − s)/2 · Σₖ bⱼₖ² )"
         }
     };
+    let penalty = weighed(fit, penalty);
     let linear = if has_covariates {
         "ηᵢₖ = b₀ₖ + zᵢ·cₖ + xᵢ·bₖ"
     } else {

@@ -3,7 +3,7 @@
 use crate::report::Context;
 use crate::report::block::Paragraph;
 use crate::report::chain::{Chain, questions_of};
-use crate::report::kind::fit::{formula, kind, performed};
+use crate::report::kind::fit::{formula, kind, performed, weights};
 use crate::report::noun::{self, Noun};
 use crate::report::tell::{Source, Telling};
 use crate::study::settings::data::OutcomeKind;
@@ -18,6 +18,7 @@ pub fn methods(context: &Context<'_>, fit: &Fit, source: &Source<'_>) -> Vec<Par
     let batch = noun::batch(chain.settings());
     let mut telling = Telling::new();
     model(&mut telling, fit, source, &chain, &unit);
+    weights::methods(&mut telling, fit, source, &batch);
     choice(
         &mut telling,
         fit,
@@ -37,6 +38,7 @@ pub fn methods(context: &Context<'_>, fit: &Fit, source: &Source<'_>) -> Vec<Par
             Some(OutcomeKind::Measured) | None => performance(&mut telling, source, &unit),
         }
     }
+    weights::careful(&mut telling, kind(chain.settings()), source, &unit);
     solver(&mut telling, source);
     selection(&mut telling, context, fit, source);
     telling.done()

@@ -4,6 +4,7 @@ pub mod answer;
 mod formula;
 pub mod methods;
 mod performed;
+pub mod weights;
 
 use crate::report::Context;
 use crate::report::chain::Chain;
@@ -124,6 +125,7 @@ pub fn sentences(context: &Context<'_>, fit: &Fit) -> Vec<Sentence> {
             });
         sentences.push(sentence.detail());
     }
+    sentences.extend(weights::sentences(fit, kind, &words.batch));
     sentences
 }
 

@@ -259,7 +259,7 @@ fn write_outcome(outcome: &Outcome) -> Value {
 }
 
 /// A range may be written as the name of its only column.
-fn read_range(at: &At<'_>) -> Result<ColumnRange, Fault> {
+pub(super) fn read_range(at: &At<'_>) -> Result<ColumnRange, Fault> {
     if at.value().is_string() {
         let name = at.text()?;
         return Ok(ColumnRange {
@@ -276,7 +276,7 @@ fn read_range(at: &At<'_>) -> Result<ColumnRange, Fault> {
     Ok(range)
 }
 
-fn write_range(range: &ColumnRange) -> Value {
+pub(super) fn write_range(range: &ColumnRange) -> Value {
     let mut group = Group::default();
     group.put("first", range.first.clone());
     group.put("last", range.last.clone());

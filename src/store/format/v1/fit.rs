@@ -2,12 +2,13 @@
 
 use crate::base::real::Real;
 use crate::store::format::place::{At, Fault, Fields};
-use crate::store::format::v1::words;
 use crate::store::format::v1::{DRAWS_ON, Group, Reading, Writing, read_link};
+use crate::store::format::v1::{weights, words};
 use crate::study::settings::fit::{
     ErrorMeasure, Fit, Grouping, Judge, Penalty, PenaltyRange, Plan, Rule, Scaling, Scheme,
     Strength, Ties,
 };
+use crate::study::settings::weights::{Interval, Strata};
 use serde_json::Value;
 
 // What an absent field means, fixed for format 1 for ever: the usual choices of a later version
@@ -46,6 +47,14 @@ pub fn read(fields: &mut Fields<'_>, reading: &Reading<'_>) -> Result<Fit, Fault
         measure: fields
             .read("error-measure", |at| at.one_of(words::ERROR_MEASURES))?
             .unwrap_or(ErrorMeasure::Usual),
+        weighting: weights::read_weighting(fields)?,
+        signs: weights::read_signs(fields)?,
+        strata: fields
+            .read("strata", |at| at.one_of(words::STRATA))?
+            .unwrap_or(Strata::None),
+        interval: fields
+            .read("interval", |at| at.one_of(words::INTERVALS))?
+            .unwrap_or(Interval::OverUnits),
         strength: read_strength(fields)?,
         judge: read_judge(fields)?,
         seed: fields.read("seed", |at| at.whole())?.unwrap_or(SEED),
@@ -74,6 +83,13 @@ pub fn write(fit: &Fit, group: &mut Group, writing: &Writing<'_>) {
     }
     if fit.measure != ErrorMeasure::Usual {
         group.put("error-measure", words::error_measure(fit.measure));
+    }
+    weights::write(&fit.weighting, &fit.signs, group);
+    if fit.strata != Strata::None {
+        group.put("strata", words::strata(fit.strata));
+    }
+    if fit.interval != Interval::OverUnits {
+        group.put("interval", words::interval(fit.interval));
     }
     match &fit.strength {
         Strength::ByHand(strength) => group.put("strength", strength.get()),

@@ -8,6 +8,7 @@ pub mod prepare;
 pub mod prose;
 pub mod question;
 pub mod study;
+pub mod weights;
 pub mod words;
 
 use crate::base::problem::Problem;

@@ -6,6 +6,7 @@ use crate::base::layout::{
 use crate::study::settings::data::{LeadingZeros, LetterCase, OutcomeSeen, Subject, UnitMaking};
 use crate::study::settings::fit::{ErrorMeasure, Grouping, Scaling, Scheme, Ties};
 use crate::study::settings::question::Seal;
+use crate::study::settings::weights::{Interval, Strata};
 
 /// Declares the words of a set of choices: the list for reading, and the function for writing.
 macro_rules! words {
@@ -23,6 +24,14 @@ macro_rules! words {
     };
 }
 
+words!(STRATA, strata, Strata {
+    None => "none",
+    Batches => "batches",
+});
+words!(INTERVALS, interval, Interval {
+    OverUnits => "over-units",
+    Careful => "careful",
+});
 words!(ENCODINGS, encoding, Encoding {
     Utf8 => "utf-8",
     Utf16Le => "utf-16-low-byte-first",

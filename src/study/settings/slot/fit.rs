@@ -7,6 +7,7 @@ use crate::study::settings::fit::{
     ErrorMeasure, Fit, Grouping, Judge, Penalty, PenaltyRange, Plan, Rule, Scaling, Scheme,
     Strength, Ties,
 };
+use crate::study::settings::slot::weights::WeightSlot;
 use crate::study::settings::slot::{Bounds, Value, take};
 
 /// A place in the settings of a Fit cell.
@@ -52,6 +53,8 @@ pub enum FitSlot {
     OuterRepeats,
     /// The seed.
     Seed,
+    /// Penalty weights, signs, strata, the interval.
+    Weight(WeightSlot),
 }
 
 #[derive(Clone, Copy, PartialEq)]
@@ -197,6 +200,7 @@ impl FitSlot {
         if matches!(fit.strength, Strength::Chosen { .. }) {
             slots.push(Self::Ratio);
         }
+        slots.extend(WeightSlot::of(fit).into_iter().map(Self::Weight));
         slots
     }
 
@@ -211,6 +215,7 @@ impl FitSlot {
                 Some(kind) => ErrorMeasure::of(kind).len() > 1,
                 None => false,
             },
+            Self::Weight(slot) => slot.is_for(kind),
             Self::Input
             | Self::Penalty
             | Self::Shares
@@ -255,6 +260,7 @@ impl FitSlot {
             Self::OuterParts => "number of outer parts",
             Self::OuterRepeats => "number of outer repeats",
             Self::Seed => "seed",
+            Self::Weight(slot) => slot.label(),
         }
     }
 
@@ -270,6 +276,7 @@ impl FitSlot {
             Self::Choice => &WAY_NAMES,
             Self::InnerScheme | Self::OuterScheme => &SCHEME_NAMES,
             Self::Judge => &JUDGING_NAMES,
+            Self::Weight(slot) => slot.choices(),
             Self::Input
             | Self::Shares
             | Self::Strength
@@ -307,6 +314,7 @@ impl FitSlot {
             }),
             Self::InnerParts | Self::OuterParts => Some(PARTS),
             Self::InnerRepeats | Self::OuterRepeats => Some(REPEATS),
+            Self::Weight(slot) => slot.bounds(),
             Self::Seed => Some(Bounds::Whole {
                 least: 0,
                 most: LARGEST_SEED,
@@ -371,6 +379,7 @@ impl FitSlot {
             Self::OuterParts => parts(outer(fit.judge)?)?,
             Self::OuterRepeats => repeats(outer(fit.judge)?)?,
             Self::Seed => Value::Whole(fit.seed),
+            Self::Weight(slot) => slot.get(fit)?,
         })
     }
 
@@ -438,6 +447,7 @@ impl FitSlot {
                 }
             },
             Self::Seed => fit.seed = take::whole(label, self.limits(), &value)?,
+            Self::Weight(slot) => slot.set(&mut fit, &value)?,
         }
         Ok(fit)
     }
@@ -482,7 +492,8 @@ impl FitSlot {
             | Self::OuterScheme
             | Self::OuterParts
             | Self::OuterRepeats
-            | Self::Seed => {}
+            | Self::Seed
+            | Self::Weight(_) => {}
         }
         Ok(())
     }
@@ -519,7 +530,8 @@ impl FitSlot {
             | Self::Count
             | Self::Ratio
             | Self::Judge
-            | Self::Seed => {}
+            | Self::Seed
+            | Self::Weight(_) => {}
         }
         Ok(())
     }

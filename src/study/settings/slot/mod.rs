@@ -13,6 +13,7 @@ pub mod score;
 pub mod step;
 pub mod table;
 pub(in crate::study::settings) mod take;
+pub mod weights;
 
 #[cfg(test)]
 mod tests;

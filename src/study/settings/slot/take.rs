@@ -198,7 +198,15 @@ pub fn optional_number(
 
 /// Several numbers within bounds, rising, each once, at least one.
 pub fn numbers(label: &str, bounds: Bounds, value: &Value) -> Result<Vec<Real>, Problem> {
-    let mut list: Vec<Real> = match value {
+    let mut list = ordered(label, bounds, value)?;
+    list.sort();
+    list.dedup();
+    Ok(list)
+}
+
+/// Several numbers within bounds, in the order given, at least one.
+pub fn ordered(label: &str, bounds: Bounds, value: &Value) -> Result<Vec<Real>, Problem> {
+    let list: Vec<Real> = match value {
         Value::Numbers(list) => list.clone(),
         Value::Number(number) => vec![*number],
         Value::Text(typed) => typed
@@ -227,8 +235,6 @@ pub fn numbers(label: &str, bounds: Bounds, value: &Value) -> Result<Vec<Real>, 
     if let Some(strange) = list.iter().find(|number| !within(bounds, number.get())) {
         return Err(outside(label, bounds, &Value::Number(*strange)));
     }
-    list.sort();
-    list.dedup();
     Ok(list)
 }
 

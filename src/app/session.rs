@@ -9,7 +9,7 @@ use crate::base::hash::ContentHash;
 use crate::base::problem::Problem;
 use crate::base::thread::Threads;
 use crate::eval::desk::{Desk, Snapshot};
-use crate::eval::outcome::Gives;
+use crate::eval::outcome::{Gives, Outcome};
 use crate::eval::plan;
 use crate::eval::standing::{Event, Standings, State};
 use crate::store::{self, Record};
@@ -286,8 +286,20 @@ impl Session {
         }
     }
 
+    /// Evaluates what is due, and a cell whose recorded outcome has facts but no table.
+    pub fn bring_table(&mut self, id: CellId) -> Task<Message> {
+        let mut recorded = self.record.outcomes(&self.study);
+        let _ = recorded.remove(&id);
+        self.start(recorded)
+    }
+
     /// Evaluates what is due.
     pub fn bring_up_to_date(&mut self) -> Task<Message> {
+        let recorded = self.record.outcomes(&self.study);
+        self.start(recorded)
+    }
+
+    fn start(&mut self, recorded: BTreeMap<CellId, Arc<Outcome>>) -> Task<Message> {
         // Dropping the run that is under way calls it off.
         self.run = None;
         self.n_runs += 1;
@@ -295,7 +307,7 @@ impl Session {
         let snapshot = Snapshot {
             study: self.study.clone(),
             shelf: self.shelf.clone(),
-            recorded: self.record.outcomes(&self.study),
+            recorded,
             threads: Threads::all(),
         };
         let number = self.n_runs;
@@ -423,6 +435,21 @@ pub fn new_cell(study: &Study, wish: &str, settings: Settings) -> Cell {
         title: study.free_title(wish),
         settings,
     }
+}
+
+/// The Data cell that a cell leads back to.
+#[must_use]
+pub fn data_cell(study: &Study, from: CellId) -> Option<CellId> {
+    let mut at = from;
+    // A study has fewer links in a row than cells, unless it was edited into a circle.
+    for _ in 0..=study.cells().len() {
+        let settings = &study.cell(at)?.settings;
+        if matches!(settings, Settings::Data(_)) {
+            return Some(at);
+        }
+        at = *settings.draws_on().first()?;
+    }
+    None
 }
 
 /// The samples with roles that a cell leads back to.

@@ -74,7 +74,10 @@ pub const LISTED: &[(&str, &str)] = &[
         "move the penalty strength, finely; set it",
     ),
     ("Ctrl Z, Ctrl Shift Z", "undo, redo"),
-    ("Ctrl Enter", "bring up to date"),
+    (
+        "Ctrl Enter",
+        "bring up to date; while prose is typed, set it",
+    ),
     ("Ctrl S, Ctrl Shift S", "save, save under another name"),
     ("Ctrl O, Ctrl N", "open a study, start from tables"),
     ("Ctrl E", "hand over"),

@@ -23,7 +23,8 @@ pub struct Snapshot {
     pub study: Study,
     /// The imported bytes.
     pub shelf: Shelf,
-    /// Outcomes from the record of the study file, for the cells whose record agrees.
+    /// Outcomes from the record of the study file, for the cells whose record agrees. A cell that
+    /// is left out is evaluated, even if its recorded outcome is remembered from an earlier run.
     pub recorded: BTreeMap<CellId, Arc<Outcome>>,
     /// How many threads may be used; the outcomes do not depend on it.
     pub threads: Threads,
@@ -48,7 +49,7 @@ pub fn evaluate(
             memo.put(recipe, Arc::new(Ok(outcome.as_ref().clone())));
         }
     }
-    let fresh = needs_evaluation(&snapshot.study, &plan, memo);
+    let fresh = needs_evaluation(snapshot, &plan, memo);
     tell(Event::Planned(first_states(&snapshot.study, &plan, &fresh)));
     for id in &plan.circular {
         let verdict = Arc::new(Err(circle(&snapshot.study, *id).into()));
@@ -115,8 +116,10 @@ fn token_check(token: &CancelToken) -> Result<(), Cancelled> {
 }
 
 /// The cells that must be evaluated: those that the memo does not know, and those that are known
-/// only from the record although one of the former draws on them.
-fn needs_evaluation(study: &Study, plan: &Plan, memo: &mut Memo) -> Vec<CellId> {
+/// only from the record although one of the former draws on them, or the record may not stand for
+/// them.
+fn needs_evaluation(snapshot: &Snapshot, plan: &Plan, memo: &mut Memo) -> Vec<CellId> {
+    let study = &snapshot.study;
     let mut fresh = Vec::new();
     for &id in plan.order.iter().rev() {
         let known = memo.get(plan.recipes[&id]);
@@ -127,11 +130,12 @@ fn needs_evaluation(study: &Study, plan: &Plan, memo: &mut Memo) -> Vec<CellId> 
                 ..
             }))
         );
-        let is_wanted = study.cells().iter().any(|cell| {
-            fresh.contains(&cell.id)
-                && kind::computes_with(&cell.settings)
-                && cell.settings.draws_on().contains(&id)
-        });
+        let is_wanted = !snapshot.recorded.contains_key(&id)
+            || study.cells().iter().any(|cell| {
+                fresh.contains(&cell.id)
+                    && kind::computes_with(&cell.settings)
+                    && cell.settings.draws_on().contains(&id)
+            });
         if known.is_none() || (on_record && is_wanted) {
             fresh.push(id);
         }

@@ -165,3 +165,68 @@ fn a_dialog_that_closes_leaves_the_page_where_it_was() {
     assert!(!bench.sees("the workbook"));
     assert_eq!(bench.place_of("chosen"), before);
 }
+
+#[test]
+fn the_table_of_a_recorded_study_is_read_when_it_is_opened() {
+    use widefold::app::part::cell;
+    use widefold::app::screen::study;
+    let mut bench = Bench::new(1280.0, 1400.0);
+    let id = bench.cell("Tables");
+    let open = Box::new(cell::Message::OpenTable);
+    bench.send(Message::Study(study::Message::Cell(id, open)));
+    bench.go_to("Tables");
+    bench.scroll(500.0);
+    assert!(bench.sees("24 samples, 33 columns"));
+    let session = bench.app.study().expect("a study is open").session();
+    assert!(!session.is_due(), "and nothing has become due by it");
+}
+
+#[test]
+fn the_editor_of_a_column_knows_the_columns_of_a_recorded_study() {
+    let mut bench = Bench::new(1280.0, 1400.0);
+    bench.go_to("Tables");
+    bench.press("sweetness");
+    assert!(bench.sees("33 of 33 columns."), "their names were read");
+}
+
+#[test]
+fn every_word_of_every_cell_opens_its_editor_in_the_window() {
+    use widefold::app::part::cell;
+    use widefold::app::screen::study;
+    use widefold::report::sentence::Piece;
+    let mut bench = Bench::new(1280.0, 900.0);
+    let session = bench.app.study().expect("a study is open").session();
+    let context = widefold::report::Context {
+        study: session.study(),
+        standings: session.standings(),
+        ledger: session.ledger(),
+    };
+    let mut words = Vec::new();
+    for cell in session.study().cells() {
+        let sentences = widefold::report::cell(&context, cell.id).sentences;
+        for (nth, sentence) in sentences.iter().enumerate() {
+            for (at, piece) in sentence.pieces.iter().enumerate() {
+                if matches!(piece, Piece::Word(_)) {
+                    words.push((cell.id, nth, at));
+                }
+            }
+        }
+    }
+    assert!(words.len() > 60, "{} words", words.len());
+    for (id, nth, at) in words {
+        let word = || {
+            Message::Study(study::Message::Cell(
+                id,
+                Box::new(cell::Message::Word(nth, at)),
+            ))
+        };
+        bench.send(word());
+        let typing = bench.app.study().expect("a study is open").is_typing();
+        assert!(typing, "word {at} of sentence {nth} opens its editor");
+        bench.send(Message::Shortcut(Shortcut::Escape));
+        let typing = bench.app.study().expect("a study is open").is_typing();
+        assert!(!typing, "escape closes it");
+    }
+    let session = bench.app.study().expect("a study is open").session();
+    assert!(!session.is_modified(), "looking changes nothing");
+}

@@ -53,6 +53,18 @@ impl Column {
         column
     }
 
+    /// Whether no name is known.
+    #[must_use]
+    pub fn is_nameless(&self) -> bool {
+        self.names.is_empty()
+    }
+
+    /// The names have become known; what is typed stays.
+    pub fn learn(&mut self, names: Names) {
+        self.names = names;
+        self.find();
+    }
+
     fn find(&mut self) {
         (self.found, self.n_found) = found(&self.names, &self.search);
     }

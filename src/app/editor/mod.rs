@@ -225,6 +225,39 @@ impl Open {
         }
     }
 
+    /// Whether the editor chooses among names of columns and knows none yet.
+    #[must_use]
+    pub fn lacks_names(&self) -> bool {
+        match &self.editor {
+            Editor::Column(column) => column.is_nameless(),
+            Editor::Columns(columns) => columns.is_nameless(),
+            Editor::Names(chosen) => chosen.is_nameless(),
+            Editor::Line(_)
+            | Editor::Choice(_)
+            | Editor::Cell(_)
+            | Editor::File(_)
+            | Editor::Steps(_)
+            | Editor::List(_)
+            | Editor::Acts(_) => false,
+        }
+    }
+
+    /// The names of the columns have become known.
+    pub fn learn(&mut self, names: Names) {
+        match &mut self.editor {
+            Editor::Column(column) => column.learn(names),
+            Editor::Columns(columns) => columns.learn(names),
+            Editor::Names(chosen) => chosen.learn(names),
+            Editor::Line(_)
+            | Editor::Choice(_)
+            | Editor::Cell(_)
+            | Editor::File(_)
+            | Editor::Steps(_)
+            | Editor::List(_)
+            | Editor::Acts(_) => {}
+        }
+    }
+
     /// Takes a file that was dropped on the window, where one is asked for.
     pub fn drop_file(&mut self, path: std::path::PathBuf) -> Option<Task<Message>> {
         let Editor::File(file) = &mut self.editor else {

@@ -1,35 +1,30 @@
 //! Starting from tables: choose files, see them as a grid, give columns their roles, read the
 //! import report, get a ready study.
 
+mod make;
 mod noticed;
 pub mod role;
+mod say;
 pub mod taken;
 mod view;
 pub mod word;
 
 use crate::app::disk::{self, Wanted};
 use crate::app::editor::place::{self, Place};
-use crate::app::editor::{self, choice, column, names};
+use crate::app::editor::{choice, column, names};
 use crate::app::run;
 use crate::app::screen::start::role::{Role, Roles};
-use crate::app::screen::start::taken::{Shown, Taken, take, take_bytes, title};
+use crate::app::screen::start::taken::{Shown, Taken, take, take_bytes};
 use crate::app::screen::start::word::Ask;
 use crate::app::session::Opened;
 use crate::app::widget::grid::{Did, Show};
-use crate::base::layout::Orientation;
 use crate::base::problem::Problem;
-use crate::base::thread::Threads;
 use crate::base::work::{CancelSource, Work};
-use crate::eval::start::{Started, Wishes, start};
-use crate::report::kind::data;
-use crate::report::sentence::Choice;
-use crate::study::settings::data::OutcomeKind;
-use crate::study::settings::slot::Value;
-use crate::study::source::SourceId;
+use crate::eval::start::Started;
 use crate::table::read::Options;
 use iced::Task;
 use std::collections::BTreeSet;
-use std::path::{Path, PathBuf};
+use std::path::PathBuf;
 use std::sync::Arc;
 
 /// The name by which the path is given the focus.
@@ -418,307 +413,6 @@ impl Start {
             .filter(|column| seen.insert(column.name.as_str()))
             .map(|column| column.name.clone())
             .collect()
-    }
-
-    fn open_word(&mut self, sentence: usize, piece: usize) -> Action {
-        let Some(shown) = &self.shown else {
-            return Action::None;
-        };
-        let open = self.open.as_ref().map(|(ask, _)| *ask);
-        let sentences = word::sentences(&self.roles, self.kind, &shown.taken, open);
-        let ask = sentences
-            .get(sentence)
-            .and_then(|words| words.get(piece))
-            .and_then(|(_, ask)| *ask);
-        let Some(ask) = ask.filter(|ask| open != Some(*ask)) else {
-            self.open = None;
-            return Action::None;
-        };
-        let field = match ask {
-            Ask::Column(_) => Field::Column(column::Column::new(Arc::new(self.names()))),
-            Ask::Columns(role) => {
-                let given = Value::Texts(self.roles.all(role));
-                let names = Arc::new(self.names());
-                Field::Names(names::Chosen::new(names, Some(given)))
-            }
-            Ask::Kind | Ask::Orientation | Ask::Sheet | Ask::Header => {
-                let (choices, present) = choices(ask, self.kind, &shown.taken);
-                Field::Choice(choice::Choice::new(choices, Some(&present)))
-            }
-        };
-        self.open = Some((ask, field));
-        Action::Run(iced::widget::operation::focus(editor::FIELD))
-    }
-
-    fn in_editor(&mut self, message: EditorMessage) -> Action {
-        let Some((ask, field)) = &mut self.open else {
-            return Action::None;
-        };
-        let ask = *ask;
-        let action = match (field, message) {
-            (Field::Choice(choice), EditorMessage::Choice(message)) => choice.update(message),
-            (Field::Column(column), EditorMessage::Column(message)) => column.update(message),
-            (Field::Names(names), EditorMessage::Names(message)) => names.update(message),
-            // A message of an editor that was closed meanwhile.
-            (Field::Choice(_) | Field::Column(_) | Field::Names(_), _) => editor::Action::None,
-        };
-        match action {
-            editor::Action::None | editor::Action::Take { .. } | editor::Action::Run(_) => {
-                Action::None
-            }
-            editor::Action::Close => {
-                self.open = None;
-                Action::None
-            }
-            editor::Action::Commit(value) => {
-                self.open = None;
-                self.set(ask, value)
-            }
-        }
-    }
-
-    fn set(&mut self, ask: Ask, value: Value) -> Action {
-        self.problem = None;
-        match (ask, value) {
-            (Ask::Column(role), Value::Column(Some(name))) => {
-                self.give(&name, role);
-                let is_shown = self.shown.as_ref().is_some_and(|shown| {
-                    shown
-                        .table()
-                        .columns()
-                        .iter()
-                        .any(|column| column.name == name)
-                });
-                if is_shown {
-                    self.jump(&name);
-                }
-            }
-            (Ask::Column(role), _) => {
-                self.roles.clear(role);
-                self.refresh();
-            }
-            (Ask::Columns(role), Value::Texts(names)) => {
-                self.roles.clear(role);
-                for name in &names {
-                    self.roles.give(name, role);
-                }
-                self.refresh();
-            }
-            (Ask::Kind, Value::Choice(name)) => {
-                self.kind = data::kinds()
-                    .iter()
-                    .map(|(known, _)| *known)
-                    .find(|known| *known == name);
-            }
-            (Ask::Kind | Ask::Columns(_), _) => {}
-            (Ask::Orientation, Value::Choice(name)) => {
-                let orientation = match name.as_str() {
-                    "columns" => Orientation::SamplesInColumns,
-                    _ => Orientation::SamplesInRows,
-                };
-                return self.again(|options| options.orientation = Some(orientation));
-            }
-            (Ask::Sheet, Value::Choice(name)) => {
-                return self.again(|options| {
-                    // Another sheet may lie in another way.
-                    *options = Options {
-                        sheet: Some(name),
-                        ..Options::default()
-                    };
-                });
-            }
-            (Ask::Header, Value::Whole(line)) => {
-                let line = usize::try_from(line).unwrap_or(0);
-                return self.again(|options| options.header_row = Some(line));
-            }
-            (Ask::Orientation | Ask::Sheet | Ask::Header, _) => {}
-        }
-        Action::None
-    }
-
-    /// Reads the table that is shown in another way, off the window's thread.
-    fn again(&mut self, change: impl FnOnce(&mut Options)) -> Action {
-        let Some(taken) = self.tables.get(self.at) else {
-            return Action::None;
-        };
-        let mut options = taken.asked.clone();
-        change(&mut options);
-        let (at, path, bytes) = (self.at, taken.path.clone(), Arc::clone(&taken.bytes));
-        let cancel = CancelSource::new();
-        let token = cancel.token();
-        self.busy = Busy::Reading {
-            name: taken.name.clone(),
-            cancel,
-        };
-        Action::Run(run::off_thread(move || {
-            let report = |_: f32| {};
-            let work = Work::new(token, &report);
-            Message::ReadAgain(at, Box::new(take_bytes(&path, bytes, options, &work)))
-        }))
-    }
-
-    /// What is wished for, from what has been said.
-    fn wishes(&self) -> Result<Wishes, Problem> {
-        let first = |role| self.roles.first(role).map(str::to_owned);
-        let Some(outcome) = first(Role::Outcome) else {
-            return Err(
-                Problem::new("no-outcome", "It is not said yet what is predicted.")
-                    .mend("Press the head of a column and say that it is the outcome."),
-            );
-        };
-        let kind = match self.kind {
-            None => None,
-            Some("yes-no") => Some(OutcomeKind::YesNo { event: None }),
-            Some("classes") => Some(OutcomeKind::Classes),
-            Some("count") => Some(OutcomeKind::Count { exposure: None }),
-            Some("time") => Some(OutcomeKind::Time {
-                event: first(Role::Event).ok_or_else(|| {
-                    Problem::new(
-                        "no-event",
-                        "For a time it must be said which column tells whether the event happened.",
-                    )
-                    .mend("Press the head of that column and say that it is the event.")
-                })?,
-            }),
-            Some(_) => Some(OutcomeKind::Measured),
-        };
-        let title_from = self
-            .tables
-            .first()
-            .map_or("study", |taken| taken.name.as_str());
-        Ok(Wishes {
-            title: title(title_from),
-            outcome,
-            kind,
-            samples: first(Role::SampleName),
-            unit: first(Role::Unit),
-            batch: first(Role::Batch),
-            order: first(Role::Order),
-            weight: first(Role::Weight),
-            covariates: self.roles.all(Role::Covariate),
-            ignored: self.roles.all(Role::Ignored),
-            date: Some(crate::app::disk::today()),
-            reading: self
-                .tables
-                .iter()
-                .map(|taken| taken.asked.clone())
-                .collect(),
-            ..Wishes::default()
-        })
-    }
-
-    fn make(&mut self) -> Action {
-        let wishes = match self.wishes() {
-            Ok(wishes) => wishes,
-            Err(problem) => {
-                self.problem = Some(problem);
-                return Action::None;
-            }
-        };
-        let tables: Vec<(String, Arc<[u8]>)> = self
-            .tables
-            .iter()
-            .map(|taken| (taken.name.clone(), Arc::clone(&taken.bytes)))
-            .collect();
-        let cancel = CancelSource::new();
-        let token = cancel.token();
-        self.busy = Busy::Making { cancel };
-        Action::Run(run::off_thread(move || {
-            let report = |_: f32| {};
-            let work = Work::new(token, &report);
-            let made = match start(&tables, &wishes, Threads::all(), &work) {
-                Ok(made) => made.map(Arc::new),
-                Err(crate::base::work::Cancelled) => {
-                    Err(Problem::new("stopped", "Making the study was stopped."))
-                }
-            };
-            Message::Made(Box::new(made))
-        }))
-    }
-
-    fn made(&mut self, result: Result<Arc<Started>, Problem>) -> Action {
-        if !matches!(self.busy, Busy::Making { .. }) {
-            // It was called off meanwhile.
-            return Action::None;
-        }
-        self.busy = Busy::No;
-        match result {
-            Ok(started) => {
-                let mut shelf = started.shelf.clone();
-                for taken in &self.tables {
-                    // The readable form of a study names its tables by path.
-                    let path = absolute(&taken.path);
-                    shelf.came_from(&SourceId::of(&taken.bytes), &taken.name, &path);
-                }
-                let opened = Opened {
-                    study: started.study.clone(),
-                    shelf,
-                    ..Opened::default()
-                };
-                Action::Begin(Box::new(opened), started.notes.clone())
-            }
-            Err(problem) => {
-                self.problem = Some(problem);
-                Action::None
-            }
-        }
-    }
-}
-
-fn absolute(path: &Path) -> PathBuf {
-    std::path::absolute(path).unwrap_or_else(|_| path.to_owned())
-}
-
-/// The choices of a word that has a few, and which of them stands.
-fn choices(ask: Ask, kind: Option<&str>, taken: &Taken) -> (Vec<Choice>, Value) {
-    let used = &taken.reading.used;
-    let named = |label: &str, name: &str| Choice {
-        label: label.to_owned(),
-        value: Value::choice(name),
-    };
-    match ask {
-        Ask::Kind => {
-            let own = named("the kind that its values show", "");
-            let kinds = data::kinds().iter().map(|(name, label)| named(label, name));
-            (
-                std::iter::once(own).chain(kinds).collect(),
-                Value::choice(kind.unwrap_or("")),
-            )
-        }
-        Ask::Sheet => {
-            let sheets = taken.reading.choices.sheets.iter();
-            (
-                sheets
-                    .map(|sheet| named(&sheet.name, &sheet.name))
-                    .collect(),
-                Value::choice(used.sheet.as_deref().unwrap_or("")),
-            )
-        }
-        Ask::Header => {
-            const LINES: u64 = 12;
-            let line = |line: u64| Choice {
-                label: match line {
-                    0 => "no line: the columns have no names".to_owned(),
-                    _ => format!("line {line}"),
-                },
-                value: Value::Whole(line),
-            };
-            let present = used.header_row.unwrap_or(1) as u64;
-            ((0..=LINES).map(line).collect(), Value::Whole(present))
-        }
-        Ask::Orientation | Ask::Column(_) | Ask::Columns(_) => {
-            let present = match used.orientation {
-                Some(Orientation::SamplesInColumns) => "columns",
-                Some(Orientation::SamplesInRows) | None => "rows",
-            };
-            (
-                vec![
-                    named("rows: one row is one sample", "rows"),
-                    named("columns: one column is one sample", "columns"),
-                ],
-                Value::choice(present),
-            )
-        }
     }
 }
 

@@ -1,6 +1,11 @@
 //! Tests of starting from tables, on tables that lie in memory.
 
 use super::*;
+use crate::base::layout::Orientation;
+use crate::report::kind::data;
+use crate::study::settings::data::OutcomeKind;
+use crate::study::settings::slot::Value;
+use std::path::Path;
 
 fn taken(name: &str, text: &str, asked: Options) -> Arc<Taken> {
     let bytes: Arc<[u8]> = Arc::from(text.as_bytes());

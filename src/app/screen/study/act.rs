@@ -14,6 +14,7 @@ impl StudyScreen {
             Message::Session(message) => {
                 let task = self.session.update(message);
                 self.follow_table();
+                self.follow_data();
                 Action::Run(task.map(Message::Session))
             }
             Message::Head(message) => self.head(message),

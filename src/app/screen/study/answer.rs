@@ -166,12 +166,27 @@ impl StudyScreen {
             return Action::None;
         }
         // Results from the record have facts but no table; a run brings it.
-        self.said = Some(
-            "The table is read when the study is brought up to date; then it can be opened."
-                .to_owned(),
-        );
-        let task = self.session.bring_up_to_date();
+        self.said = Some("The table is being read.".to_owned());
+        self.table_wanted = Some(id);
+        let task = self.session.bring_table(id);
         Action::Run(task.map(Message::Session))
+    }
+
+    /// A table that was waited for is opened, and an editor learns the names of its columns.
+    pub(super) fn follow_data(&mut self) {
+        if let Some(id) = self.table_wanted
+            && dataset(self.session.study(), self.session.standings(), id).is_some()
+        {
+            self.table_wanted = None;
+            self.said = None;
+            let _ = self.open_table(id);
+        }
+        if let Some(open) = self.editor.as_ref().filter(|open| open.lacks_names()) {
+            let names = self.column_names(open.cell);
+            if let Some(open) = self.editor.as_mut().filter(|_| !names.is_empty()) {
+                open.learn(names);
+            }
+        }
     }
 
     /// The open table shows what its cell gives now.

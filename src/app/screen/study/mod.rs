@@ -102,6 +102,8 @@ pub struct StudyScreen {
     editor: Option<Open>,
     prose: Option<Prose>,
     table: Option<table::Open>,
+    /// The cell whose table is opened as soon as it has been read.
+    table_wanted: Option<CellId>,
     renaming: Option<Renaming>,
     more: Option<CellId>,
     head_more: head::More,
@@ -173,6 +175,7 @@ impl StudyScreen {
             editor: None,
             prose: None,
             table: None,
+            table_wanted: None,
             renaming: None,
             more: None,
             head_more: head::More::default(),

@@ -6,7 +6,7 @@ use crate::app::editor::prose::{self, Offer, Prose};
 use crate::app::editor::{self, Open};
 use crate::app::part::cell;
 use crate::app::screen::study::{Action, Message, StudyScreen};
-use crate::app::session::dataset;
+use crate::app::session::{Following, data_cell, dataset};
 use crate::eval::fact::FactValue;
 use crate::report::sentence;
 use crate::study::cell::CellId;
@@ -39,9 +39,20 @@ impl StudyScreen {
         if let Some(earlier) = self.earlier(id, &word.slot) {
             open.replaces(earlier);
         }
+        let lacks_names = open.lacks_names();
         self.editor = Some(open);
         let wrap = move |message| Message::Cell(id, Box::new(cell::Message::Editor(message)));
-        Action::Run(task.map(wrap))
+        let task = task.map(wrap);
+        // A study that was opened with its record knows its tables' columns only once it has read
+        // them; nothing that is due runs for that unless it would run anyway.
+        let may_read = self.session.following() == Following::AsIEdit || !self.session.is_due();
+        match data_cell(self.session.study(), id) {
+            Some(data) if lacks_names && may_read && self.session.run().is_none() => {
+                let read = self.session.bring_table(data).map(Message::Session);
+                Action::Run(iced::Task::batch([task, read]))
+            }
+            Some(_) | None => Action::Run(task),
+        }
     }
 
     /// The names of the columns of the tables that a cell leads back to.

@@ -128,7 +128,7 @@ fn an_open_table() {
         bench.send(open());
         bench.send(open());
         bench.go_to("Tables");
-        bench.scroll(560.0);
+        bench.scroll(480.0);
         bench
     });
 }

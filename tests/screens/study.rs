@@ -184,8 +184,13 @@ fn the_table_of_a_recorded_study_is_read_when_it_is_opened() {
 #[test]
 fn the_editor_of_a_column_knows_the_columns_of_a_recorded_study() {
     let mut bench = Bench::new(1280.0, 1400.0);
+    let id = bench.cell("Tables");
     bench.go_to("Tables");
-    bench.press("sweetness");
+    // “Predict sweetness”: the second sentence, its first word.
+    let word = Box::new(widefold::app::part::cell::Message::Word(1, 1));
+    bench.send(Message::Study(widefold::app::screen::study::Message::Cell(
+        id, word,
+    )));
     assert!(bench.sees("33 of 33 columns."), "their names were read");
 }
 

@@ -252,9 +252,13 @@ impl Place {
         line = match self.desktop {
             Desktop::Free => line.push(press::words("Desktop’s dialog", Message::Ask)),
             Desktop::Asked => line.push(text::quiet("The desktop’s dialog is open.")),
-            Desktop::Missing => line.push(text::quiet("The desktop has no dialog for files.")),
+            Desktop::Missing => line,
         };
         let mut parts = Column::new().spacing(space::SMALL).push(line);
+        if self.desktop == Desktop::Missing {
+            let words = "The desktop has no dialog for files; type the path, or choose below.";
+            parts = parts.push(text::quiet(words));
+        }
         if let Some(problem) = &self.problem {
             parts = parts.push(text::wrong(problem.to_string()));
         }

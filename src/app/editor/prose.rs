@@ -212,6 +212,8 @@ impl Prose {
                 text::READING_LINE,
             )))
             .wrapping(Wrapping::WordOrGlyph)
+            // A long text scrolls inside, so that the facts that are offered below stay in sight.
+            .max_height(space::GRID)
             .padding(space::SMALL)
             .style(input::editor)
             .key_binding(move |press| binding(&press, is_offering))

@@ -99,7 +99,7 @@ pub fn view<'a>(part: &'a Part, at: usize, manner: Manner<'a>) -> Element<'a, Me
             .height(Length::Shrink)
             .into()
         }
-        Part::Code(letters) => boxed(text::code(letters.as_str()))
+        Part::Code(letters) => boxed(text::code(letters.trim_end_matches('\n')))
             .padding(space::SMALL)
             .width(Length::Fill)
             .style(container::sheet)

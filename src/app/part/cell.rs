@@ -140,6 +140,10 @@ pub fn view<'a>(
     {
         parts = parts.push(failed(failure, is_reading));
     }
+    // Right below what was pressed, and not below the whole answer.
+    if let Some(table) = opened.table {
+        parts = parts.push(table.view(opened.highlight).map(Message::Table));
+    }
     if opened.are_notes_folded && !caveats.is_empty() {
         parts = parts.push(folded(caveats, opened.are_notes_open));
     }
@@ -156,9 +160,6 @@ pub fn view<'a>(
         if is_prose && sheet.parts.is_empty() && !is_reading {
             parts = parts.push(press::words("Write here", Message::Write).look(Look::Accent));
         }
-    }
-    if let Some(table) = opened.table {
-        parts = parts.push(table.view(opened.highlight).map(Message::Table));
     }
     if opened.is_offering && !is_reading {
         let offer = offer::view().map(Message::Offer);

@@ -137,7 +137,7 @@ impl StudyScreen {
         Action::None
     }
 
-    fn go_to(&mut self, id: CellId) -> Action {
+    pub(super) fn go_to(&mut self, id: CellId) -> Action {
         self.shown = Some(id);
         self.go_to.key = cell::key(id);
         self.go_to.serial += 1;

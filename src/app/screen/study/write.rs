@@ -169,6 +169,7 @@ impl StudyScreen {
         let typed = prose.typed(study);
         self.editor = None;
         self.prose = Some(Prose::new(id, &typed, self.offers(id)));
+        let _ = self.go_to(id);
         Action::Run(operation::focus(prose::FIELD))
     }
 

@@ -12,7 +12,9 @@ use widefold::numeric::measure::area_under_curve;
 use widefold::numeric::parts::{PartsParams, Scheme, Structure, assign};
 use widefold::numeric::path::Grouping;
 use widefold::numeric::predictors::Predictors;
-use widefold::numeric::procedure::{ErrorMeasure, Material, Procedure, StrengthRule, nested};
+use widefold::numeric::procedure::{
+    ErrorMeasure, Material, Procedure, StrengthRule, Weighting, nested,
+};
 use widefold::numeric::random::Random;
 use widefold::numeric::response::Response;
 use widefold::numeric::samples::Samples;
@@ -57,6 +59,8 @@ fn nested_area(x: Matrix, is_event: &[bool], units: &[usize], steps: Vec<Step>, 
         seed,
     };
     let procedure = Procedure {
+        weighting: Weighting::Equal,
+        signs: Vec::new(),
         chain: &chain,
         scaling: task::Scaling::AsGiven,
         shares: vec![0.0],

@@ -56,7 +56,7 @@ pub fn references(study: &Study) -> Vec<&'static str> {
                 used.push(BATES);
                 if let Strength::Chosen { rule, .. } = &fit.strength {
                     used.extend(match rule {
-                        Rule::LowestError => None,
+                        Rule::LowestError | Rule::Given { .. } => None,
                         Rule::OneStandardError => Some(BREIMAN),
                         Rule::GeneralisedCrossValidation => Some(GOLUB),
                         Rule::ExtendedBic { .. } => Some(CHEN),

@@ -20,6 +20,11 @@ pub enum Rule {
         /// γ, from 0 to 1.
         gamma: f64,
     },
+    /// The strength given, which is one of those that are compared.
+    Given {
+        /// The strength.
+        strength: f64,
+    },
 }
 
 impl Rule {
@@ -27,7 +32,7 @@ impl Rule {
     #[must_use]
     pub const fn needs_parts(self) -> bool {
         match self {
-            Self::LowestError | Self::OneStandardError => true,
+            Self::LowestError | Self::OneStandardError | Self::Given { .. } => true,
             Self::GeneralisedCrossValidation | Self::ExtendedBic { .. } => false,
         }
     }
@@ -126,6 +131,7 @@ pub fn pick(rule: Rule, curve: &Curve) -> Option<usize> {
             let limit = curve.errors[lowest] + curve.standard_errors[lowest];
             curve.errors.iter().position(|error| *error <= limit)
         }
+        Rule::Given { strength } => curve.strengths.iter().position(|tried| *tried == strength),
     }
 }
 

@@ -11,6 +11,9 @@ const SHARE: f64 = 0.2;
 /// once. Common practice, from memory.
 #[must_use]
 pub fn check(fitted: &Fitted) -> Option<Caveat> {
+    if fitted.settings.strength.is_by_hand() {
+        return None;
+    }
     let last = &fitted.last;
     let _ = last.curves.get(last.share_at)?;
     let at_edge = last.is_at_edge();

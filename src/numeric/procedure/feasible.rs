@@ -49,13 +49,16 @@ fn check_rule(
         Rule::GeneralisedCrossValidation if !matches!(response, Response::Measured(_)) => {
             Err(ProcedureError::RuleForMeasured)
         }
-        Rule::LowestError | Rule::OneStandardError if !measure.applies_to(response) => {
+        Rule::LowestError | Rule::OneStandardError | Rule::Given { .. }
+            if !measure.applies_to(response) =>
+        {
             Err(ProcedureError::Measure(measure))
         }
         Rule::LowestError
         | Rule::OneStandardError
         | Rule::GeneralisedCrossValidation
-        | Rule::ExtendedBic { .. } => Ok(()),
+        | Rule::ExtendedBic { .. }
+        | Rule::Given { .. } => Ok(()),
     }
 }
 

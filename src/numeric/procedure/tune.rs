@@ -163,6 +163,14 @@ fn tune_as_weighted<'a>(
             inner,
         } => (*rule, *count, *ratio, inner),
     };
+    if let (Rule::Given { strength }, Reach::Chosen, [_]) = (rule, reach, &procedure.shares[..]) {
+        // Nothing is left to choose: the comparison beside it is only for looking at.
+        let given = Procedure {
+            strength: StrengthRule::Fixed(strength),
+            ..procedure.clone()
+        };
+        return tune_as_weighted(material, &given, split, purpose, reach, work);
+    }
     let mut search = Search {
         material,
         procedure,
@@ -276,6 +284,14 @@ impl Search<'_, '_> {
         if strengths.is_empty() {
             // Nothing varies with the outcome: at every strength the model is empty.
             strengths.push(1.0);
+        }
+        if let Rule::Given { strength } = self.rule {
+            let at = strengths.partition_point(|tried| *tried > strength);
+            if strengths.get(at) != Some(&strength) {
+                strengths.insert(at, strength);
+            }
+            let curve = self.errors(share, &strengths, &work.part(0.1..1.0))?;
+            return Ok((curve, Extended::No, Cut::No));
         }
         let cut = self.cut(learnt, share, &mut strengths, &work.part(0.0..0.1))?;
         let curve = self.errors(share, &strengths, &work.part(0.1..0.7))?;
@@ -454,7 +470,10 @@ impl Search<'_, '_> {
                 let coefficients = p * fit.path.n_linear() as f64;
                 choose::extended_bic(deviance, counted, k, coefficients, gamma)
             }
-            Rule::GeneralisedCrossValidation | Rule::LowestError | Rule::OneStandardError => {
+            Rule::GeneralisedCrossValidation
+            | Rule::LowestError
+            | Rule::OneStandardError
+            | Rule::Given { .. } => {
                 let df = fit.path.info(at).effective_df;
                 choose::generalised_cross_validation(deviances[at], n, df)
             }

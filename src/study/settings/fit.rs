@@ -220,6 +220,36 @@ pub enum Rule {
         /// The weight of the number of possible models, from 0 to 1.
         gamma: Real,
     },
+    /// Set by hand, with the range compared beside it all the same, so that it can be seen where
+    /// on the curve of errors the hand chose.
+    Given {
+        /// The strength; 0 or more.
+        strength: Real,
+    },
+}
+
+impl Strength {
+    /// Whether the strength was set by hand, with or without a comparison beside it.
+    #[must_use]
+    pub const fn is_by_hand(&self) -> bool {
+        match self {
+            Self::ByHand(_) => true,
+            Self::Chosen { rule, .. } => matches!(rule, Rule::Given { .. }),
+        }
+    }
+
+    /// The same comparison, where there is one, with the strength set by hand.
+    #[must_use]
+    pub fn set_by_hand(&self, strength: Real) -> Self {
+        match self {
+            Self::Chosen { range, inner, .. } => Self::Chosen {
+                rule: Rule::Given { strength },
+                range: *range,
+                inner: *inner,
+            },
+            Self::ByHand(_) => Self::ByHand(strength),
+        }
+    }
 }
 
 impl Rule {
@@ -227,7 +257,7 @@ impl Rule {
     #[must_use]
     pub const fn needs_parts(self) -> bool {
         match self {
-            Self::LowestError | Self::OneStandardError => true,
+            Self::LowestError | Self::OneStandardError | Self::Given { .. } => true,
             Self::GeneralisedCrossValidation | Self::ExtendedBic { .. } => false,
         }
     }

@@ -324,6 +324,10 @@ pub fn fit() -> Vec<Fit> {
         });
     }
     fits.push(Fit {
+        strength: Fit::default().strength.set_by_hand(Real::constant(0.04)),
+        ..usual()
+    });
+    fits.push(Fit {
         strength: Strength::ByHand(Real::constant(0.03)),
         judge: Judge::Declined,
         ..usual()

@@ -13,7 +13,6 @@ use crate::figure::{Meaning, svg};
 use crate::study::cell::CellId;
 use crate::study::edit::Edit;
 use crate::study::settings::Settings;
-use crate::study::settings::fit::Strength;
 use crate::study::settings::said::said;
 use std::path::PathBuf;
 
@@ -151,7 +150,7 @@ impl StudyScreen {
             return Action::None;
         };
         let mut settings = settings.clone();
-        settings.strength = Strength::ByHand(real);
+        settings.strength = settings.strength.set_by_hand(real);
         let words = number::text(rounded, Precision::Significant(3));
         let label = format!("drag the strength to {words}");
         let settings = Settings::Fit(settings);

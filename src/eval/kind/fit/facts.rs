@@ -289,6 +289,7 @@ fn settings(facts: &mut Facts, fitted: &Fitted) {
                 Rule::OneStandardError => "one standard error",
                 Rule::GeneralisedCrossValidation => "generalised cross-validation",
                 Rule::ExtendedBic { .. } => "extended BIC",
+                Rule::Given { .. } => "by hand",
             }
         }
     };

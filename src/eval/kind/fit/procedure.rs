@@ -44,6 +44,9 @@ pub fn numeric_procedure<'a>(
                     Rule::OneStandardError => choose::Rule::OneStandardError,
                     Rule::GeneralisedCrossValidation => choose::Rule::GeneralisedCrossValidation,
                     Rule::ExtendedBic { gamma } => choose::Rule::ExtendedBic { gamma: gamma.get() },
+                    Rule::Given { strength } => choose::Rule::Given {
+                        strength: strength.get(),
+                    },
                 },
                 count: range.count as usize,
                 ratio: range.ratio.map(crate::base::real::Real::get),

@@ -165,7 +165,20 @@ fn choice(
     if rule.needs_parts() {
         telling.say(
             source
-                .say("The strength was chosen by cross-validation with ", &[])
+                .say(
+                    match rule {
+                        Rule::Given { .. } => {
+                            "Their errors were compared by cross-validation with "
+                        }
+                        Rule::LowestError
+                        | Rule::OneStandardError
+                        | Rule::GeneralisedCrossValidation
+                        | Rule::ExtendedBic { .. } => {
+                            "The strength was chosen by cross-validation with "
+                        }
+                    },
+                    &[],
+                )
                 .and(plan(source, inner, unit, batch, "inner"))
                 .text("."),
         );
@@ -192,6 +205,10 @@ fn choice(
         Rule::GeneralisedCrossValidation => Paragraph::of(
             "The strength with the lowest generalised cross-validation value was taken; this rule \
              needs no held-out parts.",
+        ),
+        Rule::Given { .. } => source.say(
+            "The strength was then set by hand to {chosen strength}.",
+            &[],
         ),
         Rule::ExtendedBic { .. } => Paragraph::of(
             "The strength with the lowest extended Bayesian information criterion was taken; this \
@@ -279,7 +296,11 @@ fn scalings(telling: &mut Telling, source: &Source<'_>, kind: Option<&OutcomeKin
 }
 
 fn chosen(telling: &mut Telling, fit: &Fit, source: &Source<'_>, kind: Option<&OutcomeKind>) {
-    if matches!(fit.strength, Strength::ByHand(_)) {
+    if fit.strength.is_by_hand() {
+        if let Strength::Chosen { .. } = fit.strength {
+            scalings(telling, source, kind);
+            telling.end();
+        }
         return;
     }
     telling.say(source.say(
@@ -317,7 +338,7 @@ fn judged(telling: &mut Telling, fit: &Fit, source: &Source<'_>, unit: &Noun, ba
         telling.end();
         return;
     };
-    let is_by_hand = matches!(fit.strength, Strength::ByHand(_));
+    let is_by_hand = fit.strength.is_by_hand();
     telling.say(
         Paragraph::of(if is_by_hand {
             "The whole procedure was judged by cross-validation with "

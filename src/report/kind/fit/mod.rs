@@ -263,10 +263,17 @@ fn strength(fit: &Fit, words: &Words, kind: Option<&OutcomeKind>) -> Sentence {
         }
         Strength::Chosen { rule, range, inner } => (*rule, *range, *inner),
     };
+    let (before, after) = match rule {
+        Rule::Given { .. } => ("Compare ", " penalty strengths by "),
+        Rule::LowestError
+        | Rule::OneStandardError
+        | Rule::GeneralisedCrossValidation
+        | Rule::ExtendedBic { .. } => ("Choose the penalty strength among ", " values by "),
+    };
     let sentence = Sentence::new()
-        .text("Choose the penalty strength among ")
+        .text(before)
         .whole(Slot::Fit(FitSlot::Count), u64::from(range.count))
-        .text(" values by ");
+        .text(after);
     let parts = |sentence: Sentence| {
         let slots = [
             FitSlot::InnerScheme,
@@ -292,6 +299,13 @@ fn strength(fit: &Fit, words: &Words, kind: Option<&OutcomeKind>) -> Sentence {
             sentence
                 .text("the ")
                 .choice(choice, "lowest generalised cross-validation value", &ways)
+        }
+        Rule::Given { strength } => {
+            let set = measured_by(parts(sentence), fit, kind)
+                .text("; set it ")
+                .choice(choice, "by hand", &ways)
+                .text(" to ");
+            set.real(Slot::Fit(FitSlot::Strength), strength)
         }
         Rule::ExtendedBic { gamma } => sentence
             .text("the ")

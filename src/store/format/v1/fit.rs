@@ -105,6 +105,10 @@ pub fn write(fit: &Fit, group: &mut Group, writing: &Writing<'_>) {
                     choose.put("rule", "extended-bic");
                     choose.put("gamma", gamma.get());
                 }
+                Rule::Given { strength } => {
+                    choose.put("rule", "by-hand");
+                    choose.put("strength", strength.get());
+                }
             }
             choose.put("strengths", range.count);
             choose.put_some("weakest-share", range.ratio.map(|ratio| ratio.get()));
@@ -175,11 +179,15 @@ fn read_rule(at: &At<'_>, fields: &mut Fields<'_>) -> Result<Rule, Fault> {
         "extended-bic" => Ok(Rule::ExtendedBic {
             gamma: fields.read("gamma", |at| at.real())?.unwrap_or(GAMMA),
         }),
+        "by-hand" => Ok(Rule::Given {
+            strength: fields.need("strength")?.real()?,
+        }),
         _ => Err(at.not_among(&[
             "lowest-error",
             "one-standard-error",
             "generalised-cross-validation",
             "extended-bic",
+            "by-hand",
         ])),
     }
 }

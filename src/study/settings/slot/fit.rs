@@ -178,8 +178,12 @@ impl FitSlot {
                         slots.push(Self::InnerRepeats);
                     }
                 }
-                if matches!(rule, Rule::ExtendedBic { .. }) {
-                    slots.push(Self::Gamma);
+                match rule {
+                    Rule::ExtendedBic { .. } => slots.push(Self::Gamma),
+                    Rule::Given { .. } => slots.push(Self::Strength),
+                    Rule::LowestError
+                    | Rule::OneStandardError
+                    | Rule::GeneralisedCrossValidation => {}
                 }
             }
         }
@@ -351,7 +355,11 @@ impl FitSlot {
             }
             Self::Choice => take::named(&WAYS, way(&fit.strength)),
             Self::Strength => match fit.strength {
-                Strength::ByHand(strength) => Value::Number(strength),
+                Strength::ByHand(strength)
+                | Strength::Chosen {
+                    rule: Rule::Given { strength },
+                    ..
+                } => Value::Number(strength),
                 Strength::Chosen { .. } => return None,
             },
             Self::Gamma => match fit.strength {
@@ -425,7 +433,8 @@ impl FitSlot {
                 fit.strength = with_way(&fit.strength, chosen);
             }
             Self::Strength => {
-                fit.strength = Strength::ByHand(take::number(label, self.limits(), &value)?);
+                let strength = take::number(label, self.limits(), &value)?;
+                fit.strength = fit.strength.set_by_hand(strength);
             }
             Self::Gamma
             | Self::Count
@@ -465,7 +474,10 @@ impl FitSlot {
         match self {
             Self::Gamma => match rule {
                 Rule::ExtendedBic { gamma } => *gamma = take::number(label, self.limits(), value)?,
-                Rule::LowestError | Rule::OneStandardError | Rule::GeneralisedCrossValidation => {
+                Rule::LowestError
+                | Rule::OneStandardError
+                | Rule::GeneralisedCrossValidation
+                | Rule::Given { .. } => {
                     let because = "the strength is not chosen by the extended criterion";
                     return Err(take::absent(label, because));
                 }
@@ -573,6 +585,7 @@ fn way(strength: &Strength) -> Way {
             Rule::OneStandardError => Way::OneStandardError,
             Rule::GeneralisedCrossValidation => Way::GeneralisedCrossValidation,
             Rule::ExtendedBic { .. } => Way::ExtendedBic,
+            Rule::Given { .. } => Way::ByHand,
         },
     }
 }
@@ -582,7 +595,7 @@ fn with_way(strength: &Strength, chosen: Way) -> Strength {
         return strength.clone();
     }
     let rule = match chosen {
-        Way::ByHand => return Strength::ByHand(USUAL_STRENGTH),
+        Way::ByHand => return strength.set_by_hand(USUAL_STRENGTH),
         Way::LowestError => Rule::LowestError,
         Way::OneStandardError => Rule::OneStandardError,
         Way::GeneralisedCrossValidation => Rule::GeneralisedCrossValidation,

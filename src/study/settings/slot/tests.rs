@@ -109,7 +109,7 @@ fn a_choice_that_needs_more_settings_fills_in_the_usual_ones() {
         }
     );
     let by_hand = fit(FitSlot::Choice, Value::choice("by-hand")).unwrap();
-    assert!(matches!(by_hand.strength, Strength::ByHand(_)));
+    assert!(by_hand.strength.is_by_hand());
     let back = Settings::Fit(by_hand)
         .with(&Slot::Fit(FitSlot::Choice), Value::choice("lowest-error"))
         .unwrap();
@@ -139,7 +139,9 @@ fn settings_that_two_choices_share_are_kept() {
 #[test]
 fn a_strength_that_is_set_is_set_by_hand() {
     let fit = typed(FitSlot::Strength, "0,0312").unwrap();
-    assert_eq!(fit.strength, Strength::ByHand(Real::constant(0.0312)));
+    let by_rule = Fit::default().strength;
+    assert_eq!(fit.strength, by_rule.set_by_hand(Real::constant(0.0312)));
+    assert!(matches!(fit.strength, Strength::Chosen { .. }), "the comparison stays");
 }
 
 #[test]

@@ -323,7 +323,7 @@ fn give_numbers(settings: &mut Prepare) {
             Some(Value::Numbers(numbers)) if numbers.is_empty() => {
                 Value::Numbers(Vec::clone(&reference))
             }
-            Some(Value::Column(None)) => Value::Column(Some("908 nm".to_owned())),
+            Some(Value::Column(None)) => Value::Column(Some("924 nm".to_owned())),
             Some(_) | None => continue,
         };
         *settings = slot.set(settings, value).unwrap();

@@ -87,7 +87,10 @@ fn words_are_reached_and_pressed_by_the_keyboard_alone() {
         bench.tab();
     }
     bench.key(Named::Space);
-    bench.tab();
+    // To the third choice: what has the focus is brought into sight.
+    for _ in 0..3 {
+        bench.tab();
+    }
     assert!(bench.sees("elastic net"), "the choices are open");
 }
 

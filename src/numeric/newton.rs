@@ -318,7 +318,8 @@ impl Newton {
         }
         let mut height = self.loss.evaluate(&self.eta);
         for _ in 0..POLISH {
-            if free_slope(&self.free, self.loss.residual()) <= FREE_EXACT || !height.is_finite() {
+            let slope = free_slope(&self.free, self.loss.residual());
+            if slope <= FREE_EXACT || !height.is_finite() {
                 return;
             }
             let part = FreePart::new(self.loss.as_ref(), &self.free, self.m);
@@ -333,7 +334,10 @@ impl Newton {
                 }
             }
             let now = self.loss.evaluate(&self.eta);
-            let is_lower = now <= height + 4.0 * f64::EPSILON * height.abs();
+            // Near the end the loss itself no longer tells better from worse; the slope does.
+            let is_flatter = free_slope(&self.free, self.loss.residual()) < slope;
+            let room = if is_flatter { 1e-12 } else { 0.0 };
+            let is_lower = now <= height + room * height.abs();
             if !(now.is_finite() && is_lower) {
                 (self.a, self.eta) = (a, eta);
                 let _ = self.loss.evaluate(&self.eta);

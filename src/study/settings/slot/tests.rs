@@ -141,7 +141,10 @@ fn a_strength_that_is_set_is_set_by_hand() {
     let fit = typed(FitSlot::Strength, "0,0312").unwrap();
     let by_rule = Fit::default().strength;
     assert_eq!(fit.strength, by_rule.set_by_hand(Real::constant(0.0312)));
-    assert!(matches!(fit.strength, Strength::Chosen { .. }), "the comparison stays");
+    assert!(
+        matches!(fit.strength, Strength::Chosen { .. }),
+        "the comparison stays"
+    );
 }
 
 #[test]

@@ -10,6 +10,8 @@ mod damaged_files;
 mod evaluation;
 /// Where there is nothing to find, nothing is claimed.
 mod honest;
+/// Every kind of outcome, the whole way; and what cannot be fitted.
+mod kinds;
 /// Every number that is handed over is a value of the study.
 mod numerals;
 /// What a fit may know beyond one penalty for all.

@@ -6,16 +6,16 @@ use serde_json::Value;
 use std::collections::BTreeMap;
 use widefold::base::thread::Threads;
 use widefold::base::work::Work;
-use widefold::numeric::choose::{self, Curve, Rule};
+use widefold::numeric::choose::{self, Curve, PartErrors, Rule};
 use widefold::numeric::halves::select_on_halves;
 use widefold::numeric::matrix::Matrix;
 use widefold::numeric::parts::{Assignment, Split, Structure};
 use widefold::numeric::path::Grouping;
 use widefold::numeric::predictors::Predictors;
 use widefold::numeric::procedure::{
-    ErrorMeasure, Material, Procedure, StrengthRule, Tally, Weighting, fit_part,
+    ErrorMeasure, Material, Procedure, StrengthRule, Tally, Weighting, fit_part, part_errors,
 };
-use widefold::numeric::response::Response;
+use widefold::numeric::response::{Response, Ties};
 use widefold::numeric::samples::Samples;
 use widefold::numeric::step::Chain;
 use widefold::numeric::task::Scaling;
@@ -187,6 +187,105 @@ fn errors_over_given_parts_and_the_choices_from_them_agree() {
             Some(number(case, "index_1se"))
         );
     }
+}
+
+/// The errors of given parts of a response, part by part, at every strength.
+fn errors_of(
+    case: &Value,
+    (x, response): (Matrix, Response),
+    measure: ErrorMeasure,
+) -> (Vec<PartErrors>, Vec<f64>) {
+    let mut bench = Bench::new(x, Vec::new());
+    bench.response = response;
+    let rows: Vec<usize> = (0..bench.units.len()).collect();
+    let (share, strengths) = (number(case, "share"), numbers(case, "lambda"));
+    let material = bench.material();
+    let of_part = |split: &Split| {
+        let fit = fit_part(
+            &material,
+            &bench.procedure(),
+            split,
+            share,
+            &strengths,
+            &mut Tally::default(),
+            &Work::unattended(),
+        );
+        part_errors(measure, &material, &fit.unwrap(), split)
+    };
+    let parts = bench.splits(&rows, 5).iter().map(of_part).collect();
+    (parts, strengths)
+}
+
+fn agree(parts: &[PartErrors], expected: &[Value], factor: f64, what: &str) {
+    for (part, expected) in parts.iter().zip(expected) {
+        for (sum, expected) in part.sums.iter().zip(expected.as_array().unwrap()) {
+            let expected = expected.as_f64().unwrap() * factor;
+            let distance = (sum - expected).abs();
+            // Shares of few samples can be 0, where nothing is relative.
+            assert!(
+                distance <= TOLERANCE * expected.abs().max(1e-3),
+                "{what}: {sum} instead of {expected}"
+            );
+        }
+    }
+}
+
+#[test]
+fn deviances_and_wrong_calls_over_given_parts_agree() {
+    let reference = values("cv.json");
+    for (name, outcome) in [
+        ("breast80_lasso_5_folds", "target"),
+        ("wine_multinomial_lasso_5_folds", "class"),
+    ] {
+        let case = &reference["cases"][name];
+        let table = Table::named(case["data"].as_str().unwrap());
+        let x = table.matrix(&table.names_but(&[outcome]));
+        let y = table.column(outcome);
+        let response = || match outcome {
+            "target" => Response::YesNo(y.iter().map(|y| *y > 0.5).collect()),
+            _ => Response::Classes {
+                class: y.iter().map(|y| *y as usize).collect(),
+                n_classes: 3,
+            },
+        };
+        let deviance = ErrorMeasure::Deviance;
+        let (parts, strengths) = errors_of(case, (x.clone(), response()), deviance);
+        agree(&parts, list(case, "fold_mean"), 1.0, name);
+        let curve = choose::curve_of_parts(number(case, "share"), &strengths, &[parts]);
+        for (found, expected) in curve.standard_errors.iter().zip(numbers(case, "se")) {
+            near(*found, expected, name);
+        }
+        let picked = |rule| choose::pick(rule, &curve).map(|at| at as f64);
+        assert_eq!(picked(Rule::LowestError), Some(number(case, "index_min")));
+        assert_eq!(
+            picked(Rule::OneStandardError),
+            Some(number(case, "index_1se"))
+        );
+        let calls = ErrorMeasure::Misclassification;
+        let (parts, _) = errors_of(case, (x, response()), calls);
+        agree(&parts, list(case, "misclassified_fold_mean"), 1.0, name);
+    }
+}
+
+#[test]
+fn partial_likelihoods_over_given_parts_agree() {
+    let reference = values("cv.json");
+    let case = &reference["cases"]["rossi_cox_lasso_5_folds"];
+    let table = Table::named("rossi.csv");
+    let x = table.matrix(&table.names_but(&["week", "arrest"]));
+    let response = Response::Time {
+        time: table.column("week"),
+        event: table.column("arrest").iter().map(|y| *y > 0.5).collect(),
+        strata: None,
+        ties: Ties::Efron,
+    };
+    let measure = ErrorMeasure::PartialLikelihood;
+    let (parts, strengths) = errors_of(case, (x, response), measure);
+    // The reference lists log likelihoods, of which larger is better; these are deviances.
+    agree(&parts, list(case, "fold_value"), -2.0, "rossi");
+    let curve = choose::curve_of_parts(1.0, &strengths, &[parts]);
+    let best = choose::pick(Rule::LowestError, &curve).map(|at| at as f64);
+    assert_eq!(best, Some(number(case, "index_best")));
 }
 
 #[test]

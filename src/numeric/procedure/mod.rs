@@ -15,7 +15,7 @@ pub use feasible::check_plans;
 pub use hazard::Hazard;
 pub use nested::{Hazards, HeldOut, OuterFit, PairFit, hazards, nested, one_split, without_pairs};
 pub use part::{PartFit, chosen_predictors, fit_part, penalised_freedom};
-pub use part_error::ErrorMeasure;
+pub use part_error::{ErrorMeasure, part_errors};
 pub use recalibration::{count_calibration_slope, time_calibration_slope};
 pub use tally::Tally;
 pub use tune::{Cut, ENOUGH, Extended, Reach, Tuned, tune};

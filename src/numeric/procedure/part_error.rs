@@ -66,8 +66,9 @@ impl ErrorMeasure {
     }
 }
 
-/// The errors of the held-out rows of a split at every strength of a fit.
-pub(super) fn part_errors(
+/// The errors of the held-out rows of a split at every strength of a fit to its training rows.
+#[must_use]
+pub fn part_errors(
     measure: ErrorMeasure,
     material: &Material<'_>,
     fit: &PartFit<'_>,

@@ -106,7 +106,12 @@ fn with_other_training(sort: Values, table: &[Vec<Option<f64>>]) -> Vec<Vec<Opti
             (0..COLUMNS)
                 .map(|column| {
                     // Neighbours change places: spectra still rise.
-                    values[column ^ 1].map(|x| x * (1.0 + growth * (row * row) as f64))
+                    let other = values[column ^ 1];
+                    if sort == Values::Markers && column % 2 == 0 {
+                        // Another share of missing calls.
+                        return Some(other.unwrap_or(0.0));
+                    }
+                    other.map(|x| x * (1.0 + growth * (row * row) as f64))
                 })
                 .collect()
         })

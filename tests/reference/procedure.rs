@@ -23,6 +23,10 @@ use widefold::numeric::task::Scaling;
 /// Of all values of `cv.json`: 1e-7, relative.
 const TOLERANCE: f64 = 1e-7;
 
+/// Of deviances over given parts: fits of a procedure stop at a relative gap of 1e-9, which leaves
+/// linear predictors exact to about its root (3e-5); worst seen 5e-6.
+const DEVIANCE_TOLERANCE: f64 = 2e-5;
+
 /// Samples without units, covariates or preparation.
 struct Bench {
     samples: Samples,
@@ -223,7 +227,7 @@ fn agree(parts: &[PartErrors], expected: &[Value], factor: f64, what: &str) {
             let distance = (sum - expected).abs();
             // Shares of few samples can be 0, where nothing is relative.
             assert!(
-                distance <= TOLERANCE * expected.abs().max(1e-3),
+                distance <= DEVIANCE_TOLERANCE * expected.abs().max(1e-3),
                 "{what}: {sum} instead of {expected}"
             );
         }
@@ -253,7 +257,11 @@ fn deviances_and_wrong_calls_over_given_parts_agree() {
         agree(&parts, list(case, "fold_mean"), 1.0, name);
         let curve = choose::curve_of_parts(number(case, "share"), &strengths, &[parts]);
         for (found, expected) in curve.standard_errors.iter().zip(numbers(case, "se")) {
-            near(*found, expected, name);
+            let distance = (found - expected).abs();
+            assert!(
+                distance <= DEVIANCE_TOLERANCE * expected.abs(),
+                "{name}: {found} instead of {expected}"
+            );
         }
         let picked = |rule| choose::pick(rule, &curve).map(|at| at as f64);
         assert_eq!(picked(Rule::LowestError), Some(number(case, "index_min")));

@@ -175,7 +175,7 @@ impl Traveller {
         let _ = self.window.settle();
         let whole = self.screen.look();
         let differ: Vec<(usize, usize)> = (0..whole.pixels.len())
-            .filter(|at| pieces.pixels[*at] != whole.pixels[*at])
+            .filter(|at| is_other(pieces.pixels[*at], whole.pixels[*at]))
             .map(|at| (at % whole.width, at / whole.width))
             .collect();
         if let (Some(first), Some(last)) = (differ.first(), differ.last()) {
@@ -207,4 +207,13 @@ impl Drop for Traveller {
 /// The color of a pixel.
 pub fn color(image: &Image, x: usize, y: usize) -> u32 {
     image.pixels[y * image.width + x] & 0x00FF_FFFF
+}
+
+/// Whether two pixels differ by more than the rounding of translucent colours, which depends on
+/// how often a place is painted over.
+fn is_other(one: u32, other: u32) -> bool {
+    one.to_le_bytes()
+        .iter()
+        .zip(other.to_le_bytes())
+        .any(|(one, other)| one.abs_diff(other) > 2)
 }

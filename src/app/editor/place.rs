@@ -105,6 +105,12 @@ impl Place {
         &self.path
     }
 
+    /// Looks again in the folder of the last file: all that lies there is listed.
+    pub fn again(&mut self) {
+        self.path = shown(&self.listing.folder);
+        self.problem = None;
+    }
+
     /// What stood against it is told beside the field.
     pub fn refuse(&mut self, problem: Problem) {
         self.problem = Some(problem);

@@ -227,6 +227,7 @@ impl Start {
             Message::Files => {
                 self.has_files = !self.has_files;
                 if self.has_files {
+                    self.place.again();
                     return Action::Run(iced::widget::operation::focus(FIELD));
                 }
             }

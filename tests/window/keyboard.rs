@@ -18,7 +18,7 @@ pub fn travel(folder: &Path, shots: &Path) {
     press(&on, "Add a table", Letters::Plain);
     press(&on, "lab.csv", Letters::Plain);
     let _ = on.see("20 rows, 3 columns", Letters::Plain);
-    press(&on, "Jump", Letters::Plain);
+    to_jump(&on);
     on.screen.keys("shift+Tab");
     on.screen.write("sweet");
     on.screen.keys("Return");
@@ -26,7 +26,7 @@ pub fn travel(folder: &Path, shots: &Path) {
     on.see_gone("a column still to be chosen", Letters::Reading);
     press(&on, "scans.csv", Letters::Strong);
     let _ = on.see("40 rows, 26 columns", Letters::Plain);
-    press(&on, "Jump", Letters::Plain);
+    to_jump(&on);
     on.screen.keys("shift+Tab ctrl+a");
     on.screen.write("dish");
     on.screen.keys("Return");
@@ -122,6 +122,12 @@ pub fn travel(folder: &Path, shots: &Path) {
 /// Waits until everything is up to date.
 fn rest(on: &Traveller) {
     on.see_up_to_date(|_| on.screen.keys("Escape"));
+}
+
+/// Goes to “Jump”, beside whose field the next letters are wanted.
+fn to_jump(on: &Traveller) {
+    let _ = on.see("Jump", Letters::Plain);
+    on.tab_to("Jump", Letters::Plain);
 }
 
 /// Gives words the focus and presses them.

@@ -101,12 +101,16 @@ impl Traveller {
         let image = self.screen.look();
         let (top, bottom) = (place.y as usize, (place.y + place.height) as usize);
         let left = place.x as usize;
-        (left.saturating_sub(12)..left).any(|x| {
-            let n_accent = (top..bottom)
-                .filter(|y| color(&image, x, *y) == ACCENT)
-                .count();
-            n_accent + 1 >= bottom - top
-        })
+        // The outline of a neighbour ends there, too; only its own goes over the words.
+        let middle = (place.x + place.width / 2.0) as usize;
+        let goes_over = (top.saturating_sub(12)..top).any(|y| color(&image, middle, y) == ACCENT);
+        goes_over
+            && (left.saturating_sub(12)..left).any(|x| {
+                let n_accent = (top..bottom)
+                    .filter(|y| color(&image, x, *y) == ACCENT)
+                    .count();
+                n_accent + 1 >= bottom - top
+            })
     }
 
     /// Moves the focus on with the Tab key until words have it.
